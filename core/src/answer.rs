@@ -1,0 +1,168 @@
+//! The one way through: project in, answer out.
+
+use crate::analysis::Analysis;
+use crate::exact::ExactError;
+use crate::locus::{Branch, trade};
+use crate::model;
+use crate::project::{PROJECT_FORMAT, Project};
+use crate::record::{Program, RECORD_FORMAT, Reading, Record};
+use alloc::format;
+use alloc::string::{String, ToString};
+use alloc::vec::Vec;
+use serde::Serialize;
+
+/// What Stayband says to a project: a record, or what must be put right before there can be one.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Answer {
+    /// What could be read of the blocks, even where something is wrong.
+    pub reading: Reading,
+    /// What must be put right; empty where there is a record.
+    pub problems: Vec<Problem>,
+    /// The result; None where there are problems.
+    pub record: Option<Record>,
+}
+
+/// Something to be put right in the project, with the place and what to type instead.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Problem {
+    /// The field of the form.
+    pub field: Field,
+    /// The quantity's symbol, where the field is a row of the quantities table.
+    pub symbol: Option<String>,
+    /// First character and the one behind the last, counted in characters of the field's text.
+    pub span: Option<[usize; 2]>,
+    /// What is wrong and what to type instead.
+    pub message: String,
+}
+
+/// A field of the form.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "lowercase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub enum Field {
+    /// The controller's text.
+    Controller,
+    /// The plant's text.
+    Plant,
+    /// The sensor's text.
+    Sensor,
+    /// A row of the quantities table.
+    Quantity,
+    /// The choice of the knob.
+    Knob,
+    /// The setting.
+    Setting,
+    /// The loop as a whole.
+    Loop,
+    /// The project document itself.
+    Document,
+}
+
+/// Answers projects one after the other; what does not depend on the setting is kept while only the setting changes.
+#[derive(Default)]
+pub struct Session {
+    /// The last project without its setting, with its analysis.
+    last: Option<(Project, Analysis)>,
+    analyses: u32,
+}
+
+/// An answer with the branches of the locus.
+#[derive(Debug)]
+pub struct Solved<'a> {
+    /// The answer.
+    pub answer: Answer,
+    /// Both halves of the locus; empty where there is no record.
+    pub branches: &'a [Branch],
+    /// Counts up with every new analysis: the branches are the same while it stays.
+    pub analysis: u32,
+}
+
+impl Session {
+    /// Nothing answered yet.
+    #[must_use]
+    pub fn new() -> Self {
+        Self::default()
+    }
+
+    /// Answers a project document; `program_hash` goes into the record.
+    pub fn solve(&mut self, project_json: &str, program_hash: Option<&str>) -> Solved<'_> {
+        let project = match read_project(project_json) {
+            Ok(project) => project,
+            Err(message) => {
+                let problems = [Problem { field: Field::Document, symbol: None, span: None, message }].into();
+                let answer = Answer { reading: Reading::default(), problems, record: None };
+                return Solved { answer, branches: &[], analysis: self.analyses };
+            }
+        };
+        let reading = model::reading(&project);
+        match self.record(&project, &reading, program_hash) {
+            Ok(record) => {
+                let answer = Answer { reading, problems: Vec::new(), record: Some(record) };
+                let branches = self.last.as_ref().map_or(&[][..], |(_, analysis)| &analysis.branches);
+                Solved { answer, branches, analysis: self.analyses }
+            }
+            Err(problems) => Solved { answer: Answer { reading, problems, record: None }, branches: &[], analysis: self.analyses },
+        }
+    }
+
+    fn record(&mut self, project: &Project, reading: &Reading, program_hash: Option<&str>) -> Result<Record, Vec<Problem>> {
+        let model = model::build(project)?;
+        let setting = model.setting.clone();
+        let analysis = self.analysis(project, model).map_err(|error| [too_hard(&error)])?;
+        let closed_loop = setting.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
+        let affine = analysis.affine();
+        Ok(Record {
+            format: RECORD_FORMAT.to_string(),
+            program: Program { version: env!("CARGO_PKG_VERSION").to_string(), hash: program_hash.map(ToString::to_string) },
+            project: project.clone(),
+            reading: reading.clone(),
+            model: model::record(&analysis.model),
+            stability: analysis.stability.clone(),
+            character: analysis.character.clone(),
+            landmarks: analysis.landmarks.clone(),
+            asymptotes: affine.map(|p| trade::for_both_signs(|sign| trade::asymptotes(p.d, p.n, sign))),
+            real_axis: affine.map(|p| trade::for_both_signs(|sign| trade::real_axis(p.d, p.n, p.poles, p.zeros, sign))),
+            poles: analysis.poles.clone(),
+            zeros: analysis.zeros.clone(),
+            closed_loop,
+            view: analysis.view,
+            notices: analysis.notices.clone(),
+        })
+    }
+
+    /// The analysis of this project, kept or new.
+    fn analysis(&mut self, project: &Project, model: model::Loop) -> Result<&Analysis, ExactError> {
+        let mut key = project.clone();
+        key.setting.value.clear();
+        let kept = self.last.take().filter(|(last, _)| *last == key);
+        let entry = match kept {
+            Some(entry) => entry,
+            None => {
+                self.analyses += 1;
+                (key, Analysis::new(model)?)
+            }
+        };
+        Ok(&self.last.insert(entry).1)
+    }
+}
+
+/// Reads a project document; the message says what is wrong with it.
+fn read_project(json: &str) -> Result<Project, String> {
+    let project: Project = serde_json::from_str(json).map_err(|error| format!("this is no project that can be read: {error}"))?;
+    if project.format == PROJECT_FORMAT {
+        return Ok(project);
+    }
+    Err(match project.format.strip_prefix("stayband-project/") {
+        Some(version) => format!("this project has version {version}; this Stayband reads version 1: open it with a newer Stayband"),
+        None => format!("this is no Stayband project: its format is \"{}\", not \"{PROJECT_FORMAT}\"", project.format),
+    })
+}
+
+fn too_hard(error: &ExactError) -> Problem {
+    let message = format!("this loop could not be solved within the limits of the exact methods: {error}");
+    Problem { field: Field::Loop, symbol: None, span: None, message }
+}

@@ -1,0 +1,90 @@
+//! Every point where branches meet at a real, finite, non-zero knob: breakaway and break-in points, real and complex.
+
+use crate::exact::complex_roots::{enclose, negative_ratio_at};
+use crate::exact::gcd::{squarefree_factors, without_common_roots};
+use crate::exact::{ExactError, IntPoly};
+use crate::ranges::{Contact, Family, Partition, affine, polynomial};
+use alloc::vec::Vec;
+use nalgebra::Complex;
+
+/// The knob at a candidate is first looked at in f64: beyond this relative imaginary part it is surely not real. The
+/// knob is stationary at these points, so that it is far more precise than the point itself.
+const SURELY_COMPLEX: f64 = 1e-3;
+
+/// A knob computed to 30 digits or more with a relative imaginary part below this is real.
+const SURELY_REAL: f64 = 1e-25;
+
+/// Bits to which candidates are enclosed for that decision.
+const CANDIDATE_BITS: i64 = 128;
+
+/// Branches meet here.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Meeting {
+    /// In the closed upper half plane; the imaginary part is exactly 0 on the real axis.
+    pub s: Complex<f64>,
+    /// The knob; not 0.
+    pub knob: f64,
+    /// How many branches meet.
+    pub multiplicity: usize,
+    /// Whether real poles become fewer, or stay as many, as |knob| grows; true away from the axis.
+    pub leaves_axis: bool,
+}
+
+/// All meetings, by growing knob.
+///
+/// # Errors
+/// From the exact methods, when a cap is met.
+pub fn meetings(family: &Family, partition: &Partition) -> Result<Vec<Meeting>, ExactError> {
+    let mut found = Vec::new();
+    for (i, place) in partition.places.iter().enumerate() {
+        let sign = place.bracket.midpoint().signum();
+        for contact in place.contacts.iter().filter(|_| sign != 0) {
+            if let Contact::RealMeeting { s, multiplicity } = contact {
+                found.push(Meeting {
+                    s: Complex::new(*s, 0.0),
+                    knob: place.value(),
+                    multiplicity: *multiplicity,
+                    leaves_axis: partition.loses_real_poles(i, sign),
+                });
+            }
+        }
+    }
+    match family.affine() {
+        Some((d, n)) => found.extend(complex_meetings(d, n)?),
+        None if family.knob_degree() == 0 => {}
+        None => found.extend(polynomial::meetings(family)?.into_iter().filter(|m| m.s.im > 0.0).filter_map(|m| {
+            let knob = m.bracket.midpoint().to_f64();
+            (knob != 0.0).then_some(Meeting { s: m.s, knob, multiplicity: m.multiplicity, leaves_axis: true })
+        })),
+    }
+    found.sort_by(|a, b| a.knob.total_cmp(&b.knob));
+    Ok(found)
+}
+
+/// The complex roots of W = D′N − DN′ at which q = −D/N is real; the others are the false candidates of dq/ds = 0.
+fn complex_meetings(d: &IntPoly, n: &IntPoly) -> Result<Vec<Meeting>, ExactError> {
+    let mut found = Vec::new();
+    for (factor, order) in squarefree_factors(&affine::meeting_polynomial(d, n)) {
+        let factor = without_common_roots(&without_common_roots(&factor, n), d);
+        if factor.degree() < 2 || !may_have_real_knob(&factor, d, n) {
+            continue;
+        }
+        for disc in enclose(&factor, CANDIDATE_BITS)? {
+            let s = disc.center.to_f64();
+            let Some(knob) = negative_ratio_at(d, n, &disc.center).filter(|_| s.im > 0.0) else { continue };
+            if knob.im.abs() <= SURELY_REAL * knob.re.abs() {
+                found.push(Meeting { s, knob: knob.re, multiplicity: order + 1, leaves_axis: true });
+            }
+        }
+    }
+    Ok(found)
+}
+
+/// A quick look in f64 that spares most loops the enclosing.
+fn may_have_real_knob(factor: &IntPoly, d: &IntPoly, n: &IntPoly) -> bool {
+    crate::exact::complex_roots::approximations(factor).iter().any(|s| {
+        let upper = s.im > 1e-9 * s.re.abs();
+        let knob = crate::exact::complex_roots::ComplexDyadic::from_f64(*s).and_then(|s| negative_ratio_at(d, n, &s));
+        upper && knob.is_none_or(|q| q.im.abs() <= SURELY_COMPLEX * q.re.abs())
+    })
+}

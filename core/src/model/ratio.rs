@@ -1,0 +1,228 @@
+//! Ratios of polynomials in s and the knob, kept in factored form.
+//!
+//! Products, quotients and powers only move factors about. A sum is brought to the least common denominator, so that
+//! `1/(s + 1) + 1/(s + 1)` gets no second pole. Denominators common to both sides of a compound fraction are cleared, as
+//! on paper. Any other factor common to numerator and denominator stays in both: it is a fixed mode of the machine.
+//!
+//! Known limit: least common denominators find common parts of factors in s alone or in the knob alone by their greatest
+//! common divisor; factors that mix s and the knob are compared as wholes.
+
+use super::MAXIMUM_BITS;
+use super::factors::{
+    Excess, Factor, expanded, knob_degree, merged, order, shared, split, without, without_common,
+};
+use super::polynomial::KnobPolynomial;
+use crate::notation::Sign;
+use alloc::vec;
+use alloc::vec::Vec;
+use dashu_int::ops::BitTest;
+use dashu_int::{IBig, UBig};
+use dashu_ratio::RBig;
+
+/// The highest degree that a product may have while it is only a list of factors. Expanded polynomials have far stricter
+/// limits; this one keeps exponents small, and the order in the message true.
+const MAXIMUM_FACTORED_DEGREE: u64 = 1_000_000;
+
+/// A constant times a product of factors over a product of factors.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Ratio {
+    /// The constant; zero makes the whole ratio zero.
+    pub constant: RBig,
+    /// Factors of the numerator, all different; empty for a ratio that is zero.
+    pub numerator: Vec<Factor>,
+    /// Factors of the denominator, all different. A ratio that is zero keeps them: they are poles of the machine.
+    pub denominator: Vec<Factor>,
+}
+
+impl Ratio {
+    /// A number.
+    #[must_use]
+    pub fn constant(constant: RBig) -> Self {
+        Self {
+            constant,
+            numerator: Vec::new(),
+            denominator: Vec::new(),
+        }
+    }
+
+    /// A polynomial that is not constant, primitive and of the right sign.
+    pub(super) fn factor(polynomial: KnobPolynomial) -> Self {
+        Self {
+            constant: RBig::ONE,
+            numerator: vec![Factor {
+                polynomial,
+                exponent: 1,
+            }],
+            denominator: Vec::new(),
+        }
+    }
+
+    /// True where the ratio is zero for every s and knob.
+    #[must_use]
+    pub fn is_zero(&self) -> bool {
+        self.constant.is_zero()
+    }
+
+    /// The number of zeros: the degree of the numerator in s.
+    #[must_use]
+    pub fn zero_count(&self) -> u64 {
+        order(&self.numerator)
+    }
+
+    /// The number of poles: the degree of the denominator in s.
+    #[must_use]
+    pub fn pole_count(&self) -> u64 {
+        order(&self.denominator)
+    }
+
+    pub(super) fn negated(mut self) -> Self {
+        self.constant = -self.constant;
+        self
+    }
+
+    pub(super) fn times(&self, other: &Self) -> Result<Self, Excess> {
+        Self::checked(
+            &self.constant * &other.constant,
+            merged(&self.numerator, &other.numerator),
+            merged(&self.denominator, &other.denominator),
+        )
+    }
+
+    /// self/other, cleared of factors common to both denominators. None where `other` is zero.
+    pub(super) fn over(&self, other: &Self) -> Option<Result<Self, Excess>> {
+        if other.is_zero() {
+            return None;
+        }
+        let (below, above) = without_common(&self.denominator, &other.denominator);
+        Some(Self::checked(
+            &self.constant / &other.constant,
+            merged(&self.numerator, &above),
+            merged(&below, &other.numerator),
+        ))
+    }
+
+    /// self^exponent. None where zero is raised to a negative power.
+    pub(super) fn power(&self, exponent: i32) -> Option<Result<Self, Excess>> {
+        if exponent < 0 {
+            return match Self::constant(RBig::ONE).over(self)? {
+                Ok(inverse) => inverse.power(-exponent),
+                Err(excess) => Some(Err(excess)),
+            };
+        }
+        let times = exponent.unsigned_abs();
+        if bits(&self.constant).saturating_mul(times as usize) > MAXIMUM_BITS {
+            return Some(Err(Excess::Digits));
+        }
+        let raised = |factors: &[Factor]| {
+            let raise = |factor: &Factor| Factor {
+                exponent: factor.exponent * u64::from(times),
+                ..factor.clone()
+            };
+            if times == 0 {
+                Vec::new()
+            } else {
+                factors.iter().map(raise).collect()
+            }
+        };
+        Some(Self::checked(
+            self.constant.pow(times as isize),
+            raised(&self.numerator),
+            raised(&self.denominator),
+        ))
+    }
+
+    /// self ± other over the least common denominator.
+    pub(super) fn plus(&self, sign: Sign, other: &Self) -> Result<Self, Excess> {
+        // Nothing plus something keeps its factors.
+        if self.is_zero() && self.denominator.is_empty() {
+            return Ok(if sign == Sign::Minus {
+                other.clone().negated()
+            } else {
+                other.clone()
+            });
+        }
+        let common = shared(&self.numerator, &other.numerator);
+        let (lacking_there, lacking_here) = without_common(&self.denominator, &other.denominator);
+        let here = expanded(&merged(&without(&self.numerator, &common), &lacking_here))?;
+        let there = expanded(&merged(&without(&other.numerator, &common), &lacking_there))?;
+        let (sum, scale) = weighted_sum(&self.constant, &here, sign, &other.constant, &there);
+        let (factors, content) = split(&sum);
+        let constant = if sum.is_zero() {
+            RBig::ZERO
+        } else {
+            RBig::from_parts(content, scale)
+        };
+        Self::checked(
+            constant,
+            merged(&common, &factors),
+            merged(&self.denominator, &lacking_here),
+        )
+    }
+
+    /// The polynomial denominator ± numerator over the integers, up to a positive factor.
+    pub(super) fn characteristic(&self, sign: Sign) -> Result<KnobPolynomial, Excess> {
+        let below = expanded(&self.denominator)?;
+        let above = expanded(&self.numerator)?;
+        let (sum, _) = weighted_sum(&RBig::ONE, &below, sign, &self.constant, &above);
+        if sum.bits() > MAXIMUM_BITS {
+            Err(Excess::Digits)
+        } else {
+            Ok(sum)
+        }
+    }
+
+    /// A ratio within the limits.
+    fn checked(
+        constant: RBig,
+        mut numerator: Vec<Factor>,
+        denominator: Vec<Factor>,
+    ) -> Result<Self, Excess> {
+        if bits(&constant) > MAXIMUM_BITS {
+            return Err(Excess::Digits);
+        }
+        if constant.is_zero() {
+            numerator.clear();
+        }
+        for factors in [&numerator, &denominator] {
+            if order(factors) > MAXIMUM_FACTORED_DEGREE {
+                return Err(Excess::Order(order(factors)));
+            }
+            if knob_degree(factors) > MAXIMUM_FACTORED_DEGREE {
+                return Err(Excess::KnobDegree(knob_degree(factors)));
+            }
+        }
+        Ok(Self {
+            constant,
+            numerator,
+            denominator,
+        })
+    }
+}
+
+fn bits(constant: &RBig) -> usize {
+    constant
+        .numerator()
+        .bit_len()
+        .max(constant.denominator().bit_len())
+}
+
+/// a·left ± b·right, multiplied by the second value to make the coefficients integers.
+fn weighted_sum(
+    a: &RBig,
+    left: &KnobPolynomial,
+    sign: Sign,
+    b: &RBig,
+    right: &KnobPolynomial,
+) -> (KnobPolynomial, UBig) {
+    let scale_left = a.numerator() * IBig::from(b.denominator().clone());
+    let scale_right = b.numerator() * IBig::from(a.denominator().clone());
+    let scale_right = if sign == Sign::Minus {
+        -scale_right
+    } else {
+        scale_right
+    };
+    (
+        left.combined(&scale_left, right, &scale_right),
+        a.denominator() * b.denominator(),
+    )
+}

@@ -1,0 +1,100 @@
+//! Places of an affine family D + q·N: where the knob brings a pole to the axis, to infinity, or two together.
+//!
+//! On s = jw, with x = w², D = De(x) + jw·Do(x) and N alike; q is real there exactly where P = Do·Ne − De·No vanishes,
+//! and then q = −De/Ne = −Do/No. Multiple poles lie where W = D′N − DN′ vanishes, with q = −D/N.
+
+use super::place::{Contact, Place, Quotient, knob_at};
+use crate::exact::gcd::{gcd, squarefree_factors, squarefree_part, without_common_roots};
+use crate::exact::real_roots::{positive_roots, real_roots};
+use crate::exact::{ExactError, IntPoly};
+use alloc::vec::Vec;
+use dashu_int::IBig;
+use dashu_ratio::RBig;
+
+/// Where a pole reaches the imaginary axis or infinity, for finite q, in no particular order; D and N have no common root.
+///
+/// # Errors
+/// From the exact methods, when a cap is met.
+pub fn stability_places(d: &IntPoly, n: &IntPoly) -> Result<Vec<Place>, ExactError> {
+    let mut places = Vec::new();
+    places.extend(ratio_place(&d.coefficient(0), &n.coefficient(0), Contact::Origin));
+    let order = d.degree().max(n.degree());
+    if order > 0 {
+        places.extend(ratio_place(&d.coefficient(order), &n.coefficient(order), Contact::DegreeDrop));
+    }
+    let ((d_even, d_odd), (n_even, n_odd)) = (d.axis_parts(), n.axis_parts());
+    let crossing = d_odd.times(&n_even).minus(&d_even.times(&n_odd));
+    if crossing.is_zero() {
+        // D and N depend on s² only: a pole on the axis stays there until it meets another one.
+        return even_places(&d_even, &n_even, places);
+    }
+    // Where N(jw) = 0 the knob is infinite; where D(jw) = 0 it is zero, and a relative bracket would never close.
+    let finite = without_common_roots(&squarefree_part(&crossing), &gcd(&n_even, &n_odd));
+    let at_zero = gcd(&finite, &gcd(&d_even, &d_odd));
+    for root in positive_roots(&at_zero)? {
+        places.push(zero_place(root, &at_zero)?);
+    }
+    let rest = without_common_roots(&finite, &at_zero);
+    let quotients = [Quotient { above: &d_even, below: &n_even }, Quotient { above: &d_odd, below: &n_odd }];
+    for mut root in positive_roots(&rest)? {
+        let (bracket, exact) = knob_at(&rest, &mut root, &quotients)?;
+        let omega = libm::sqrt(root.to_f64());
+        places.push(Place { bracket, exact, contacts: [Contact::Axis { omega }].into() });
+    }
+    Ok(places)
+}
+
+/// The place q = −d/n, if n is not zero.
+fn ratio_place(d: &IBig, n: &IBig, contact: Contact) -> Option<Place> {
+    (*n != IBig::ZERO).then(|| Place::exactly(RBig::from_parts_signed(-d, n.clone()), contact))
+}
+
+fn zero_place(mut root: crate::exact::RealRoot, p: &IntPoly) -> Result<Place, ExactError> {
+    root.refine_to(p, super::EDGE_BITS)?;
+    Ok(Place::exactly(RBig::ZERO, Contact::Axis { omega: libm::sqrt(root.to_f64()) }))
+}
+
+/// The places of De(x) + q·Ne(x): where two axis pairs meet, or one meets the origin (found by the caller) or infinity.
+fn even_places(d: &IntPoly, n: &IntPoly, mut places: Vec<Place>) -> Result<Vec<Place>, ExactError> {
+    let meeting = squarefree_part(&d.derivative().times(n).minus(&d.times(&n.derivative())));
+    let finite = without_common_roots(&meeting, n);
+    let at_zero = gcd(&finite, d);
+    for root in positive_roots(&at_zero)? {
+        places.push(zero_place(root, &at_zero)?);
+    }
+    let rest = without_common_roots(&finite, &at_zero);
+    for mut root in positive_roots(&rest)? {
+        let (bracket, exact) = knob_at(&rest, &mut root, &[Quotient { above: d, below: n }])?;
+        places.push(Place { bracket, exact, contacts: [Contact::Axis { omega: libm::sqrt(root.to_f64()) }].into() });
+    }
+    Ok(places)
+}
+
+/// Where poles meet on the real axis, for finite q, in no particular order; D and N have no common root.
+///
+/// # Errors
+/// From the exact methods, when a cap is met.
+pub fn real_meetings(d: &IntPoly, n: &IntPoly) -> Result<Vec<Place>, ExactError> {
+    let mut places = Vec::new();
+    for (factor, order) in squarefree_factors(&meeting_polynomial(d, n)) {
+        let finite = without_common_roots(&factor, n);
+        let at_zero = gcd(&finite, d);
+        for mut root in real_roots(&at_zero)? {
+            root.refine_to(&at_zero, super::EDGE_BITS)?;
+            let contact = Contact::RealMeeting { s: root.to_f64(), multiplicity: order + 1 };
+            places.push(Place::exactly(RBig::ZERO, contact));
+        }
+        let rest = without_common_roots(&finite, &at_zero);
+        for mut root in real_roots(&rest)? {
+            let (bracket, exact) = knob_at(&rest, &mut root, &[Quotient { above: d, below: n }])?;
+            let contact = Contact::RealMeeting { s: root.to_f64(), multiplicity: order + 1 };
+            places.push(Place { bracket, exact, contacts: [contact].into() });
+        }
+    }
+    Ok(places)
+}
+
+/// W = D′N − DN′: its roots are the multiple poles, of multiplicity one more than in W.
+pub fn meeting_polynomial(d: &IntPoly, n: &IntPoly) -> IntPoly {
+    d.derivative().times(n).minus(&d.times(&n.derivative()))
+}

@@ -1,0 +1,325 @@
+//! The real line of the knob, cut into ranges with a verdict on each range and on each place between two.
+
+use super::place::{Contact, Place, merge, samples};
+use super::verdict::{Verdict, name, verdict};
+use super::{Family, affine, polynomial};
+use crate::exact::complex_roots::{Disc, ROOT_BITS, enclose_all};
+use crate::exact::half_plane::HalfPlaneCount;
+use crate::exact::{ExactError, IntPoly};
+use crate::record::{CharacterName, CharacterRange, Edge, EdgeKind, StabilityRange};
+use alloc::vec::Vec;
+use nalgebra::ComplexField;
+
+/// At a bracket of 2^−56 a pole that is on the axis at the edge is computed within this fraction of its magnitude of it.
+const ON_AXIS: f64 = 1e-12;
+
+/// Digits of the bracket's decimals: one more than 1e-17 relative needs.
+const BRACKET_DIGITS: u32 = 19;
+
+/// The partition. `ranges` has one entry more than `places`.
+#[derive(Clone, Debug)]
+pub struct Partition {
+    /// What happens where, ascending.
+    pub places: Vec<Place>,
+    /// The verdict before the first place, between neighbours, and behind the last.
+    pub ranges: Vec<Verdict>,
+    /// The verdict at each place.
+    pub at_places: Vec<Verdict>,
+    /// Whether places where real poles meet have been looked for; without them `real` and `pairs` mean nothing.
+    pub with_meetings: bool,
+    affine: bool,
+}
+
+impl Partition {
+    /// Cuts the line; without the meetings of real poles where those cannot be told.
+    ///
+    /// # Errors
+    /// From the exact methods, when a cap is met.
+    pub fn new(family: &Family) -> Result<Self, ExactError> {
+        let mut places = match family.affine() {
+            Some((d, n)) => affine::stability_places(d, n)?,
+            None if family.knob_degree() == 0 => Vec::new(),
+            None => polynomial::stability_places(family)?,
+        };
+        let meetings = real_meetings(family);
+        let with_meetings = meetings.is_ok();
+        places.extend(meetings.unwrap_or_default());
+        let places = merge(places);
+        let whole = |moving: &IntPoly| verdict(&moving.times(&family.fixed));
+        let ranges = samples(&places).iter().map(|q| whole(&family.at(q))).collect::<Result<Vec<_>, _>>()?;
+        let mut at_places = Vec::with_capacity(places.len());
+        for (i, place) in places.iter().enumerate() {
+            at_places.push(match &place.exact {
+                Some(q) => whole(&family.at(q))?,
+                None => between(family, place, &ranges[i], &ranges[i + 1])?,
+            });
+        }
+        Ok(Self { places, ranges, at_places, with_meetings, affine: family.knob_degree() < 2 })
+    }
+
+    /// The ranges of constant counts of unstable poles.
+    pub fn stability(&self) -> Vec<StabilityRange> {
+        let cuts = self.cuts(|i| self.is_stability_place(i));
+        ranges_between(&cuts, |from, to, first| StabilityRange {
+            from: from.map(|i| self.edge(i)),
+            to: to.map(|i| self.edge(i)),
+            unstable_poles: self.ranges[first].half_plane.right,
+            axis_poles: self.ranges[first].half_plane.axis,
+            stable: self.ranges[first].half_plane.is_stable(),
+        })
+    }
+
+    /// The ranges of constant character; empty where it could not be told.
+    pub fn character(&self) -> Vec<CharacterRange> {
+        if !self.with_meetings {
+            return Vec::new();
+        }
+        let kind = |v: &Verdict| (v.real, v.pairs, v.name);
+        let cuts = self.cuts(|i| {
+            kind(&self.ranges[i]) != kind(&self.ranges[i + 1])
+                || (self.is_stability_place(i) && self.at_places[i].name != self.ranges[i].name)
+        });
+        ranges_between(&cuts, |from, to, first| CharacterRange {
+            from: from.map(|i| self.edge(i)),
+            to: to.map(|i| self.edge(i)),
+            real_poles: self.ranges[first].real,
+            pairs: self.ranges[first].pairs,
+            name: self.ranges[first].name,
+        })
+    }
+
+    fn cuts(&self, keep: impl Fn(usize) -> bool) -> Vec<usize> {
+        (0..self.places.len()).filter(|i| keep(*i)).collect()
+    }
+
+    fn is_stability_place(&self, i: usize) -> bool {
+        self.places[i].contacts.iter().any(|c| !matches!(c, Contact::RealMeeting { .. }))
+    }
+
+    /// The record of a place.
+    fn edge(&self, i: usize) -> Edge {
+        let (place, here) = (&self.places[i], &self.at_places[i]);
+        let mut omegas: Vec<f64> = place.contacts.iter().filter_map(Contact::omega).collect();
+        omegas.sort_by(f64::total_cmp);
+        let (below, above) = (self.ranges[i].half_plane, self.ranges[i + 1].half_plane);
+        let touching = self.is_stability_place(i) && below == above;
+        Edge {
+            value: place.value(),
+            bracket: match &place.exact {
+                Some(q) => crate::exact::dyadic::rational_bracket(q, BRACKET_DIGITS),
+                None => place.bracket.decimal_bracket(BRACKET_DIGITS),
+            },
+            exact: place.exact.as_ref().map(crate::exact::dyadic::exact_text),
+            // Of a family of higher degree in the knob a touching edge is told from a near miss by 100 bits, not by proof.
+            proven: self.affine || !touching,
+            kind: self.kind(i),
+            omega: omegas.first().copied(),
+            omegas,
+            touching,
+            unstable_poles: here.half_plane.right,
+            axis_poles: here.half_plane.axis,
+            name: here.name,
+        }
+    }
+
+    fn kind(&self, i: usize) -> EdgeKind {
+        let has = |wanted: fn(&Contact) -> bool| self.places[i].contacts.iter().any(wanted);
+        if has(|c| matches!(c, Contact::DegreeDrop)) {
+            EdgeKind::DegreeDrop
+        } else if has(|c| matches!(c, Contact::Axis { .. })) {
+            EdgeKind::AxisCrossing
+        } else if has(|c| matches!(c, Contact::Origin)) {
+            EdgeKind::OriginCrossing
+        } else {
+            match self.places[i].bracket.midpoint().signum() {
+                0 => EdgeKind::RepeatedPole,
+                sign if self.loses_real_poles(i, sign) => EdgeKind::Breakaway,
+                _ => EdgeKind::BreakIn,
+            }
+        }
+    }
+
+    /// Whether real poles become fewer, or stay as many, as |knob| grows past the place.
+    pub fn loses_real_poles(&self, i: usize, sign: i32) -> bool {
+        let (inner, outer) = if sign >= 0 { (i, i + 1) } else { (i + 1, i) };
+        self.ranges[inner].real >= self.ranges[outer].real
+    }
+}
+
+fn real_meetings(family: &Family) -> Result<Vec<Place>, ExactError> {
+    match family.affine() {
+        Some((d, n)) => affine::real_meetings(d, n),
+        None if family.knob_degree() == 0 => Ok(Vec::new()),
+        None => Ok(polynomial::meetings(family)?
+            .into_iter()
+            .filter(|meeting| meeting.s.im == 0.0)
+            .map(|meeting| Place {
+                bracket: meeting.bracket,
+                exact: meeting.exact,
+                contacts: [Contact::RealMeeting { s: meeting.s.re, multiplicity: meeting.multiplicity }].into(),
+            })
+            .collect()),
+    }
+}
+
+/// Builds one range for every gap between the chosen places; `make` gets the places' and the first range's indices.
+fn ranges_between<T>(cuts: &[usize], make: impl Fn(Option<usize>, Option<usize>, usize) -> T) -> Vec<T> {
+    (0..=cuts.len())
+        .map(|k| {
+            let from = k.checked_sub(1).map(|j| cuts[j]);
+            make(from, cuts.get(k).copied(), from.map_or(0, |i| i + 1))
+        })
+        .collect()
+}
+
+/// The verdict at an irrational place, from its contacts and the verdicts on both sides.
+fn between(family: &Family, place: &Place, below: &Verdict, above: &Verdict) -> Result<Verdict, ExactError> {
+    let (low, high) = (below.half_plane, above.half_plane);
+    match &place.contacts[..] {
+        // Real poles meet away from the axis: nothing else changes, and at the meeting they are all real.
+        [Contact::RealMeeting { .. }] if low == high => {
+            let (real, pairs) = (below.real.max(above.real), below.pairs.min(above.pairs));
+            Ok(Verdict { half_plane: low, real, pairs, name: name(low, pairs, pairs == 0) })
+        }
+        // One pair crosses: it is on the axis, and the others are where they are on the better side.
+        [Contact::Axis { .. }] if low.right.abs_diff(high.right) == 2 => {
+            let half_plane = HalfPlaneCount { right: low.right.min(high.right), axis: low.axis + 2 };
+            let fixed_on_axis = low.axis > 0;
+            Ok(Verdict { half_plane, real: below.real, pairs: below.pairs, name: name(half_plane, below.pairs, fixed_on_axis) })
+        }
+        _ => looked_at(family, place),
+    }
+}
+
+/// Several things at once, or a touch: the roots at the middle of the bracket show what is on the axis.
+fn looked_at(family: &Family, place: &Place) -> Result<Verdict, ExactError> {
+    let p = family.at_dyadic(&place.bracket.midpoint()).times(&family.fixed);
+    let roots: Vec<(nalgebra::Complex<f64>, usize)> =
+        enclose_all(&p, ROOT_BITS)?.iter().map(|disc: &Disc| (disc.center.to_f64(), disc.multiplicity)).collect();
+    let on_axis = |z: &nalgebra::Complex<f64>| libm::fabs(z.re) <= ON_AXIS * z.modulus();
+    let sum = |wanted: &dyn Fn(&nalgebra::Complex<f64>) -> bool| roots.iter().filter(|(z, _)| wanted(z)).map(|(_, m)| m).sum::<usize>();
+    let axis = sum(&|z| on_axis(z));
+    let real = sum(&|z| libm::fabs(z.im) <= ON_AXIS * z.modulus());
+    let half_plane = HalfPlaneCount { right: sum(&|z| !on_axis(z) && z.re > 0.0), axis };
+    let distinct = place.contacts.iter().filter(|c| matches!(c, Contact::Axis { .. })).count();
+    let pairs = (p.degree() - real) / 2;
+    Ok(Verdict { half_plane, real, pairs, name: name(half_plane, pairs, axis > 2 * distinct || axis == 0) })
+}
+
+impl Contact {
+    fn omega(&self) -> Option<f64> {
+        match self {
+            Self::Axis { omega } => Some(*omega),
+            _ => None,
+        }
+    }
+}
+
+impl Verdict {
+    /// Whether this is one of the stable characters.
+    pub fn is_stable(&self) -> bool {
+        matches!(self.name, CharacterName::Overdamped | CharacterName::CriticallyDamped | CharacterName::Underdamped)
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use alloc::string::String;
+
+    fn cut(d: &[i64], n: &[i64]) -> Partition {
+        let family = Family::new([IntPoly::from_i64(d), IntPoly::from_i64(n)].into()).expect("not zero");
+        Partition::new(&family).expect("cut")
+    }
+
+    fn edges(p: &Partition) -> Vec<(String, usize, EdgeKind, usize)> {
+        let stability = p.stability();
+        stability
+            .windows(2)
+            .map(|pair| {
+                let edge = pair[0].to.clone().expect("an inner edge");
+                let text = edge.exact.unwrap_or_else(|| alloc::format!("{:.4}", edge.value));
+                (text, pair[0].unstable_poles, edge.kind, pair[1].unstable_poles)
+            })
+            .collect()
+    }
+
+    #[test]
+    fn a_third_order_loop_crosses_at_the_root_of_77() {
+        // 1/(s (s + 7) (s + 11)): stable for 0 < q < 1386.
+        let p = cut(&[0, 77, 18, 1], &[1]);
+        assert_eq!(
+            edges(&p),
+            [("0".into(), 1, EdgeKind::OriginCrossing, 0), ("1386".into(), 0, EdgeKind::AxisCrossing, 2)]
+        );
+        let edge = p.stability()[1].to.clone().expect("an edge");
+        assert!(libm::fabs(edge.omega.expect("a frequency") - libm::sqrt(77.0)) < 1e-12);
+        assert_eq!((edge.unstable_poles, edge.axis_poles, edge.name), (0, 2, CharacterName::MarginallyStable));
+    }
+
+    #[test]
+    fn a_bi_proper_loop_loses_a_pole_at_infinity() {
+        // (s − 5)(s − 3)/((s + 1)(s + 2)): stable for −2/15 < q < 3/8; the degree drops at −1.
+        let p = cut(&[2, 3, 1], &[15, -8, 1]);
+        let kinds: Vec<_> = edges(&p).into_iter().map(|e| (e.0, e.2)).collect();
+        assert_eq!(
+            kinds,
+            [
+                ("-1".into(), EdgeKind::DegreeDrop),
+                ("-2/15".into(), EdgeKind::OriginCrossing),
+                ("3/8".replace("3/8", "0.375"), EdgeKind::AxisCrossing)
+            ]
+        );
+        assert!(p.stability()[2].stable);
+    }
+
+    #[test]
+    fn even_loops_sit_on_the_axis_until_pairs_meet() {
+        // (s² + 1)(s² + 4) + q: on the axis from −4 to 9/4.
+        let p = cut(&[4, 0, 5, 0, 1], &[1]);
+        let found: Vec<_> = p.stability().iter().map(|r| (r.unstable_poles, r.axis_poles)).collect();
+        assert_eq!(found, [(1, 2), (0, 4), (2, 0)]);
+        assert_eq!(p.stability()[1].to.clone().expect("an edge").exact.as_deref(), Some("2.25"));
+    }
+
+    #[test]
+    fn a_touch_without_crossing_is_an_edge() {
+        // D + qN with P(x) = (x − 1)²: D = s³ + 2s, N = s² + 1/… chosen so that q touches at w = 1.
+        // F = (s² + 1)(s + 1) + (q − 1)·N(s), N = s² + a s + b: dRe/dq = 0 at s = j for N(j)/F'(j) imaginary.
+        let d = IntPoly::from_i64(&[1, 1, 1, 1]);
+        // F'(j) = 2j(1 + j) = −2 + 2j; N(j) = (b − 1) + ja must be proportional to (−2 + 2j)·j = −2 − 2j: a = b − 1.
+        let n = IntPoly::from_i64(&[3, 2, 1]);
+        let family = Family::new([d.minus(&n), n].into()).expect("not zero");
+        let p = Partition::new(&family).expect("cut");
+        let touching: Vec<_> = p.stability().into_iter().filter_map(|r| r.to).filter(|e| e.touching).collect();
+        assert_eq!(touching.len(), 1, "{:?}", edges(&p));
+        assert_eq!(touching[0].exact.as_deref(), Some("1"));
+        assert_eq!(touching[0].axis_poles, 2);
+    }
+
+    #[test]
+    fn character_changes_where_real_poles_meet() {
+        // (s + 1)(s + 3) + q: two real poles below q = 1.
+        let p = cut(&[3, 4, 1], &[1]);
+        let found: Vec<_> = p.character().into_iter().map(|r| (r.real_poles, r.pairs, r.name)).collect();
+        use CharacterName::{Overdamped, Underdamped, Unstable};
+        assert_eq!(found, [(2, 0, Unstable), (2, 0, Overdamped), (0, 1, Underdamped)]);
+        let edge = p.character()[1].to.clone().expect("an edge");
+        assert_eq!((edge.kind, edge.name, edge.exact.as_deref()), (EdgeKind::Breakaway, CharacterName::CriticallyDamped, Some("1")));
+    }
+
+    #[test]
+    fn a_quadratic_knob_has_the_same_edges_as_its_square() {
+        // s³ + 18 s² + 77 s + q²: stable for 0 < q² < 1386, so for q in ±(0, √1386).
+        let family = Family::new(
+            [IntPoly::from_i64(&[0, 77, 18, 1]), IntPoly::default(), IntPoly::from_i64(&[1])].into(),
+        )
+        .expect("not zero");
+        let p = Partition::new(&family).expect("cut");
+        let values: Vec<_> = p.stability().iter().filter_map(|r| r.to.as_ref()).map(|e| libm::round(e.value * 1e6) / 1e6).collect();
+        assert_eq!(values, [-37.229021, 0.0, 37.229021]);
+        let counts: Vec<_> = p.stability().iter().map(|r| r.unstable_poles).collect();
+        assert_eq!(counts, [2, 0, 0, 2]);
+        assert!(p.with_meetings);
+    }
+}

@@ -1,0 +1,119 @@
+"""Compares Stayband's records with certified truth, and the published figures with both.
+
+    run.py --binary target/release/records              everything
+    run.py --binary … --only 117                        the random loop of seed 117
+    run.py --binary … --only "touching edge"            a nasty one by name
+    run.py --binary … --self-test                       shows that the checks can fail
+
+Prints each failure with the project, what was expected and what was found, and ends with "N passed, M failed".
+"""
+
+import argparse
+import json
+import multiprocessing
+import os
+import sys
+import time
+from pathlib import Path
+
+sys.path.insert(0, str(Path(__file__).parent))
+sys.path.insert(0, str(Path(__file__).parent.parent / "published"))
+
+import published
+import selftest
+from binary import Records
+from checks import check_case
+from generator import random_case
+from nasty import all_cases
+
+#: Random loops in a run; --seeds asks for more.
+SEEDS = 520
+#: Failures shown of one case; the rest is counted.
+SHOWN = 6
+
+
+def main():
+    arguments = parse()
+    started = time.monotonic()
+    jobs = named_jobs(arguments.only) if arguments.only else every_job(arguments.seeds)
+    passed, failed = 0, 0
+    with multiprocessing.Pool(arguments.workers, initializer=start_worker, initargs=(arguments.binary,)) as pool:
+        if arguments.self_test or not arguments.only:
+            passed, failed = show(pool.apply(run_self_test))
+        if not arguments.self_test:
+            for result in pool.imap_unordered(run_job, jobs, chunksize=1):
+                counts = show(result)
+                passed, failed = passed + counts[0], failed + counts[1]
+    print(f"{time.monotonic() - started:.0f} s")
+    print(f"{passed} passed, {failed} failed")
+    return 1 if failed or not passed else 0
+
+
+def parse():
+    parser = argparse.ArgumentParser(description=__doc__.splitlines()[0])
+    parser.add_argument("--binary", required=True, help="the program `records` of crate stayband-tests")
+    parser.add_argument("--only", help="one seed, name of a nasty case, or id of a published figure")
+    parser.add_argument("--seeds", type=int, default=SEEDS, help="number of random loops")
+    parser.add_argument("--workers", type=int, default=os.cpu_count())
+    parser.add_argument("--self-test", action="store_true", help="only show that each check fails on a corrupted record")
+    return parser.parse_args()
+
+
+def every_job(seeds):
+    """The slow ones first, so that the workers end together."""
+    nasty = sorted(all_cases(), key=lambda case: -case.loop.order)
+    return (
+        [("nasty", case.name) for case in nasty]
+        + [("random", seed) for seed in sorted(range(seeds), key=lambda seed: -(seed % 19))]
+        + [("published", figure["id"]) for figure in published.figures()]
+    )
+
+
+def named_jobs(name):
+    """The jobs of this seed or name."""
+    if name.isdigit():
+        return [("random", int(name))]
+    found = [job for job in every_job(0) if job[1] == name]
+    if not found:
+        sys.exit(f"no case is called {name!r}")
+    return found
+
+
+RECORDS = None
+
+
+def start_worker(path):
+    """Every worker talks to its own process of the program."""
+    global RECORDS
+    RECORDS = Records(path)
+
+
+def run_self_test():
+    return selftest.run(RECORDS)
+
+
+def run_job(job):
+    """(name, project, passed, failures)."""
+    kind, key = job
+    if kind == "published":
+        return published.check(key, RECORDS)
+    case = random_case(key) if kind == "random" else next(c for c in all_cases() if c.name == key)
+    report = check_case(case, RECORDS)
+    return case.name, case.text, report.passed, report.failures
+
+
+def show(result):
+    """Prints what failed; (passed, failed)."""
+    name, project, passed, failures = result
+    if failures:
+        print(f"\n=== {name}\n    {project}")
+        for what, expected, actual in failures[:SHOWN]:
+            print(f"  {what}\n    expected {expected[:600]}\n    actual   {actual[:600]}")
+        if len(failures) > SHOWN:
+            print(f"  and {len(failures) - SHOWN} more")
+        sys.stdout.flush()
+    return passed, len(failures)
+
+
+if __name__ == "__main__":
+    sys.exit(main())

@@ -1,0 +1,224 @@
+"""Following one root of F(s, q) along the knob, with proof that it stays the same root.
+
+A disc around c holds exactly m roots of a(u) = F(c + u, q) for every q of an interval if |a_m| r^m > Σ_{k≠m} |a_k| r^k with every
+coefficient at its worst (A. E. Pellet, Sur un mode de séparation des racines des équations, Bull. Sci. Math. 5, 1881). Two vertices
+in one such disc with m = 1 are the same root. `fast` does this in f64 for all segments at once, with bounds on the rounding;
+`Follower` does it in ball arithmetic for the ones that remain, in steps as small as they must be.
+"""
+
+from math import comb
+
+import numpy as np
+from flint import acb, acb_poly, arb, fmpq
+
+from certified import precision, roots
+
+#: Bits of the slow follower: order 40 loses some 250 of them.
+FOLLOW_BITS = 640
+#: Steps after which a follower gives up; near a double root it needs some four for every halving of the distance.
+FOLLOW_STEPS = 3000
+#: Halvings of one segment after which its root is said to be not separable: 2^-SMALLEST_STEP of the segment.
+SMALLEST_STEP = 160
+#: Newton steps towards a root that is known to be near.
+NEWTON_STEPS = 60
+#: Radii tried for a disc, in distances between its vertices.
+FAST_RADII = (1.0, 1.6, 2.6, 4.5)
+#: f64 rounding of a product of n factors, in units of n·EPSILON: each factor and each addition rounds once.
+ROUNDINGS = 4
+
+
+class Fast:
+    """The loop in factored f64, evaluated for many points at once."""
+
+    def __init__(self, moving):
+        self.parts = []
+        for p in moving:
+            listed = [complex(ball.real.mid(), ball.imag.mid()) for ball, m in roots(p) for _ in range(m)]
+            lead = float(int(p.leading_coefficient())) if p.degree() >= 0 else 0.0
+            self.parts.append((lead, np.array(listed, dtype=complex)))
+        self.order = max(p.degree() for p in moving)
+        self.noise = ROUNDINGS * (self.order + 1) * np.finfo(float).eps
+
+    def taylor(self, centers):
+        """For every part the coefficients around the centres, and the same with absolute values."""
+        found = []
+        for lead, listed in self.parts:
+            plain = np.zeros((len(centers), self.order + 1), dtype=complex)
+            bound = np.zeros((len(centers), self.order + 1))
+            plain[:, 0], bound[:, 0] = lead, abs(lead)
+            for root in listed:
+                off = (centers - root)[:, None]
+                shifted, lifted = plain * off, bound * abs(off)
+                shifted[:, 1:] += plain[:, :-1]
+                lifted[:, 1:] += bound[:, :-1]
+                plain, bound = shifted, lifted
+            found.append((plain, bound))
+        return found
+
+    def discs(self, start, end, q0, q1):
+        """Radius of a disc around the middle of each segment with one root all along; 0 where none is proven."""
+        middle, half = (q0 + q1) / 2, abs(q1 - q0) / 2
+        center, apart = (start + end) / 2, abs(end - start)
+        size, worst = self.sizes(center, middle, half)
+        radius = np.zeros(len(center))
+        powers = np.arange(self.order + 1)
+        for factor in FAST_RADII:
+            trial = apart * factor
+            with np.errstate(all="ignore"):
+                scaled = trial[:, None] ** powers
+                others = (size + worst) * scaled
+                most = others.sum(axis=1) - others[:, 1]
+                good = (size[:, 1] - worst[:, 1]) * trial > most
+            radius = np.where((radius == 0) & good, trial, radius)
+        return center, radius
+
+    def sizes(self, center, middle, half):
+        """|a_k| at the middle of the knob's interval, and how much less or more it may be."""
+        total = np.zeros((len(center), self.order + 1), dtype=complex)
+        worst = np.zeros((len(center), self.order + 1))
+        for k, (plain, bound) in enumerate(self.taylor(center)):
+            total += plain * (middle**k)[:, None]
+            reach = (abs(middle) + half) ** k - abs(middle) ** k
+            worst += abs(plain) * reach[:, None] + bound * (self.noise * (abs(middle) + half) ** k)[:, None]
+        return abs(total), worst
+
+    def value_and_slope(self, s, q):
+        """F and dF/ds with a bound on the rounding of F."""
+        value, slope, noise = np.zeros_like(s), np.zeros_like(s), np.zeros(len(s))
+        for k, (lead, listed) in enumerate(self.parts):
+            f, df, size = np.full_like(s, lead), np.zeros_like(s), np.full(len(s), abs(lead))
+            for root in listed:
+                df = df * (s - root) + f
+                f = f * (s - root)
+                size = size * (abs(s - root) + np.finfo(float).eps * abs(root))
+            value, slope, noise = value + q**k * f, slope + q**k * df, noise + abs(q) ** k * size * self.noise
+        return value, slope, noise
+
+    def newton(self, s, q, steps=12):
+        """Roots near s, without proof."""
+        with np.errstate(all="ignore"):
+            for _ in range(steps):
+                value, slope, _ = self.value_and_slope(s, q)
+                s = s - np.where(slope != 0, value / slope, 0)
+        return s
+
+    def root_distance(self, s, q):
+        """A bound on the distance to the nearest root: n |F / F′|, rounding included."""
+        with np.errstate(all="ignore"):
+            value, slope, noise = self.value_and_slope(s, q)
+            return self.order * (abs(value) + noise) / abs(slope)
+
+
+class Lost(ArithmeticError):
+    """A root could not be told from its neighbours: at or next to a multiple point."""
+
+
+class Follower:
+    """The loop in ball arithmetic; the knob is an exact rational."""
+
+    def __init__(self, moving):
+        with precision(FOLLOW_BITS):
+            self.polys = [acb_poly(p) for p in moving]
+        self.order = max(p.degree() for p in moving)
+
+    def coefficients(self, center, middle, half):
+        """(size, worst) of the coefficients around a centre for a knob within half of middle, as exact f64-free balls."""
+        shifted = [p(acb_poly([center, 1])) for p in self.polys]
+        q, h = arb(middle), arb(abs(half))
+        found = []
+        for k in range(self.order + 1):
+            total, spread = acb(0), arb(0)
+            for power, p in enumerate(shifted):
+                c = p[k] if k <= p.degree() else acb(0)
+                total += c * q**power
+                spread += abs(c) * ((abs(q) + h) ** power - abs(q) ** power)
+            found.append((abs(total), spread))
+        return found
+
+    def holds(self, center, q0, q1, count, radius):
+        """True if the disc surely has `count` roots for every knob between q0 and q1."""
+        with precision(FOLLOW_BITS):
+            listed = self.coefficients(center, (q0 + q1) / 2, (q1 - q0) / 2)
+            return self.pellet(listed, count, arb(radius))
+
+    @staticmethod
+    def pellet(listed, count, radius):
+        most, power, lead = arb(0), arb(1), arb(0)
+        for k, (size, spread) in enumerate(listed):
+            if k == count:
+                lead = (size - spread) * power
+            else:
+                most += (size + spread) * power
+            power *= radius
+        return bool(lead > most)
+
+    def newton(self, s, q):
+        """The root near s at a knob, to some FOLLOW_BITS / 2 bits, without proof."""
+        total = acb_poly([])
+        for k, p in enumerate(self.polys):
+            total += p * acb(arb(q) ** k)
+        slope = total.derivative()
+        for _ in range(NEWTON_STEPS):
+            down = slope(s)
+            if down.contains(0):
+                raise Lost(f"slope vanishes at {s.str(12)}")
+            step = total(s) / down
+            s = acb((s - step).real.mid(), (s - step).imag.mid())
+            if abs(step) <= abs(s) * arb(2) ** -(FOLLOW_BITS // 3) or step.contains(0):
+                return s
+        raise Lost(f"no root near {s.str(12)}")
+
+    def follow(self, s, q0, q1):
+        """The root at q1 that the one next to s at q0 becomes."""
+        with precision(FOLLOW_BITS):
+            s = self.settle(acb(s), q0)
+            step, span, q = q1 - q0, abs(q1 - q0), q0
+            for _ in range(FOLLOW_STEPS):
+                if q == q1:
+                    return s
+                if abs(step) > abs(q1 - q):
+                    step = q1 - q
+                ahead = self.step(s, q, q + step)
+                if ahead is None:
+                    step /= 4
+                    if abs(step) < span / 2**SMALLEST_STEP:
+                        raise Lost(f"not separable at {s.str(12)}, knob {float_of(q)!r}")
+                else:
+                    s, q, step = ahead, q + step, step * 2
+            raise Lost(f"more than {FOLLOW_STEPS} steps from {s.str(12)}")
+
+    def settle(self, s, q):
+        """The one root next to s, as far as it can be told from the others."""
+        root = self.newton(s, q)
+        moved = abs(root - s)
+        if moved.contains(0) or self.pellet(self.coefficients(s, q, fmpq(0)), 1, moved * 2):
+            return root
+        raise Lost(f"no single root next to {s.str(12)}")
+
+    def step(self, s, q0, q1):
+        """The root after a step, or None where it is not proven to be the same one."""
+        try:
+            ahead = self.newton(s, q1)
+        except Lost:
+            return None
+        apart = abs(ahead - s)
+        if apart.contains(0) or apart < abs(s) * arb(2) ** -200:
+            apart = abs(s) * arb(2) ** -200 + arb(2) ** -FOLLOW_BITS
+        listed = self.coefficients(s, (q0 + q1) / 2, (q1 - q0) / 2)
+        return ahead if any(self.pellet(listed, 1, apart * factor) for factor in (1.5, 3, 8)) else None
+
+
+def float_of(value):
+    """A flint rational as f64."""
+    return int(value.p) / int(value.q)
+
+
+def reversed_knob(moving):
+    """F with q replaced by 1/q, times its power: for the last segment into a zero."""
+    return list(reversed(moving))
+
+
+def fraction(value):
+    """An f64 as a flint rational."""
+    top, bottom = float(value).as_integer_ratio()
+    return fmpq(top, bottom)

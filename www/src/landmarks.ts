@@ -1,0 +1,113 @@
+// The landmarks of the locus in words and as a table; a row sets the pointer to its place.
+import { knobUnit } from "./answer.ts";
+import { fromNumber, roundDigits, typedText } from "./decimal.ts";
+import { byId, button, html } from "./dom.ts";
+import { angleText, counted, figure, listed, pairText, withUnit } from "./format.ts";
+import { shownSigns } from "./halves.ts";
+import type { Plane } from "./plane.ts";
+import { withSetting } from "./project.ts";
+import type { Session, Situation } from "./session.ts";
+import type { KnobSign, Landmark, Record as Findings, Segment } from "./types.ts";
+
+/** Digits of a setting taken from the table; the landmark itself lies between two such numbers. */
+const PICKED_DIGITS = 6;
+
+/** The landmarks worth a row: on the shown halves, without simple real poles and zeros, whose branch follows the axis. */
+export function notable(landmarks: readonly Landmark[], signs: readonly KnobSign[]): Landmark[] {
+  const trivial = ({ kind, s, multiplicity }: Landmark): boolean =>
+    (kind === "departure" || kind === "arrival") && s.im === 0 && multiplicity === 1;
+  const size = ({ knob }: Landmark): number => (knob === null ? Infinity : Math.abs(knob));
+  return landmarks
+    .filter((landmark) => signs.includes(landmark.sign) && !trivial(landmark))
+    .sort((left, right) => size(left) - size(right) || 0);
+}
+
+/** A landmark in words. */
+export function landmarkWords({ kind, s, angle, multiplicity }: Landmark): string {
+  const together = multiplicity > 2 ? ` (${multiplicity} poles)` : "";
+  switch (kind) {
+    case "breakaway":
+      return (s.im === 0 ? "leaves the real axis" : "branches meet") + together;
+    case "break-in":
+      return `joins the real axis${together}`;
+    case "axis crossing":
+      return "crosses the imaginary axis";
+    case "origin crossing":
+      return "passes the origin";
+    case "departure":
+      return `leaves the pole at ${angleText(angle ?? 0)}`;
+    case "arrival":
+      return `arrives at the zero at ${angleText(angle ?? 0)}`;
+  }
+}
+
+/** The asymptotes of one half in words; null where the half has none. */
+export function asymptoteWords(record: Findings, sign: KnobSign): string | null {
+  const found = record.asymptotes?.[sign];
+  if (!found || found.count === 0) return null;
+  const from = found.centroid === null ? "" : ` from ${figure(found.centroid)}`;
+  return `${counted(found.count, "branch").replace("branchs", "branches")} to infinity${from} at ${listed(found.angles.map(angleText))}`;
+}
+
+/** The parts of the real axis on the locus in words; null where there are none. */
+export function realAxisWords(record: Findings, sign: KnobSign): string | null {
+  const segments = record.realAxis?.[sign] ?? [];
+  if (segments.length === 0) return null;
+  const end = (value: number | null, infinite: string): string => (value === null ? infinite : figure(value));
+  return listed(segments.map(([from, to]: Segment) => `${end(from, "−∞")} to ${end(to, "+∞")}`));
+}
+
+/** Keeps the table in step with the session and the half that is shown. */
+export function landmarksTable(session: Session, plane: Plane): void {
+  const body = byId("landmarks", HTMLTableSectionElement);
+  const head = byId("landmarks-knob", HTMLElement);
+  const none = byId("landmarks-none", HTMLElement);
+  const more = byId("landmarks-more", HTMLElement);
+  let drawn = "";
+  const show = ({ good }: Situation): void => {
+    if (!good) return;
+    const { record } = good;
+    const signs = shownSigns(record, plane.half);
+    const key = `${good.analysis} ${signs.join()} ${record.project.knob} ${knobUnit(record)}`;
+    if (key === drawn) return;
+    drawn = key;
+    head.textContent = withUnit(record.project.knob, knobUnit(record) && `(${knobUnit(record)})`);
+    const rows = notable(record.landmarks, signs);
+    body.replaceChildren(...rows.map((landmark) => tableRow(landmark, session)));
+    none.hidden = rows.length > 0;
+    more.replaceChildren(...signs.flatMap((sign) => summary(record, sign, signs.length > 1)));
+  };
+  session.onChange(show);
+  plane.onHalf(() => {
+    plane.show(session.situation);
+    show(session.situation);
+  });
+}
+
+function tableRow(landmark: Landmark, session: Session): HTMLTableRowElement {
+  const { knob, s } = landmark;
+  const words = landmarkWords(landmark);
+  const choose = (): void => {
+    if (knob === null) return;
+    const setting = typedText(roundDigits(fromNumber(knob), PICKED_DIGITS, "nearest"));
+    session.change(withSetting(session.situation.project, setting), "setting");
+  };
+  const text = knob === null ? "∞" : figure(knob);
+  const value = knob === null ? text : button(text, choose, { class: "figure", title: `Set the pointer here: ${words}` });
+  return html(
+    "tr",
+    {},
+    html("td", {}, words),
+    html("td", { class: "number" }, pairText(s.re, s.im)),
+    html("td", { class: "number" }, value),
+  );
+}
+
+function summary(record: Findings, sign: KnobSign, named: boolean): HTMLElement[] {
+  const side = named ? `, ${sign} knob` : "";
+  const lines = [
+    { term: `asymptotes${side}`, text: asymptoteWords(record, sign) },
+    { term: `real axis${side}`, text: realAxisWords(record, sign) },
+  ];
+  return lines.flatMap(({ term, text }) => (text === null ? [] : [html("dt", {}, term), html("dd", {}, text)]));
+}

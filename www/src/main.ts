@@ -1,0 +1,81 @@
+// The page: connects the session with its views and opens the first project.
+import { byId } from "./dom.ts";
+import { DEMOS } from "./demos.ts";
+import { Engine } from "./engine.ts";
+import { figuresTable } from "./figures.ts";
+import { loopForm } from "./form.ts";
+import { headline } from "./headline.ts";
+import { landmarksTable } from "./landmarks.ts";
+import { carriesProject, projectText } from "./link.ts";
+import { messageBar, say } from "./message.ts";
+import { Plane } from "./plane.ts";
+import { Ruler } from "./ruler.ts";
+import { offerScripting } from "./script.ts";
+import { Session } from "./session.ts";
+import { Store } from "./store.ts";
+import { openDocument, tools } from "./tools.ts";
+import { reasonPanel } from "./why.ts";
+
+function start(): void {
+  messageBar();
+  const engine = new Engine();
+  const store = new Store(() => say("This browser does not let the page keep your work. Save it to a file before closing."));
+  const session = new Session(engine, store);
+  const why = reasonPanel(session);
+  headline(session, why);
+  loopForm(session);
+  new Ruler(session, why);
+  landmarksTable(session, new Plane(session));
+  figuresTable(session);
+  tools(session);
+  busySign(engine, session);
+  session.onFailure((message) => say(message, "trouble"));
+  offerScripting(session);
+  window.addEventListener("hashchange", () => void openLink(session));
+  void openFirst(session, store);
+  showHash();
+}
+
+/** The project of the link, else the one kept in this browser, else the first demo. */
+async function openFirst(session: Session, store: Store): Promise<void> {
+  if (await openLink(session)) return;
+  const kept = store.restore();
+  if (kept !== null && (await openKept(session, kept))) return;
+  if (session.situation.answer === null) await openDocument("The demo", () => session.begin(DEMOS[0]?.document));
+}
+
+/** Opens the project kept in this browser. One that cannot be opened, say of a newer version, is handed to the user. */
+async function openKept(session: Session, kept: string): Promise<boolean> {
+  try {
+    await session.begin(kept);
+    return true;
+  } catch (error) {
+    const reason = error instanceof Error ? error.message : String(error);
+    say(`The project kept in this browser was not opened: ${reason}. Copy it from here before you type:`, "trouble", kept);
+    return false;
+  }
+}
+
+/** Opens the project in the address, if there is one, and takes it out: what is typed from now on is newer. */
+async function openLink(session: Session): Promise<boolean> {
+  const part = location.hash;
+  if (!carriesProject(part)) return false;
+  history.replaceState(null, "", location.href.replace(/#.*$/s, ""));
+  return openDocument("The link", async () => session.open(await projectText(part)));
+}
+
+function busySign(engine: Engine, session: Session): void {
+  const sign = byId("busy", HTMLElement);
+  engine.onBusy((busy) => {
+    sign.hidden = !busy;
+  });
+  byId("stop", HTMLButtonElement).addEventListener("click", () => session.stop());
+}
+
+/** Shows which build this page is. */
+function showHash(): void {
+  const hash = document.querySelector<HTMLMetaElement>('meta[name="program-hash"]')?.content ?? "";
+  if (/^[0-9a-f]{64}$/.test(hash)) byId("build", HTMLElement).textContent = `build ${hash.slice(0, 12)}`;
+}
+
+start();

@@ -1,0 +1,100 @@
+// Changes of the project. Each returns a new project and leaves the old one as it was, so that it can be undone.
+import type { Feedback, LoopText, Project, Quantity } from "./types.ts";
+
+/** The blocks that are typed. */
+export type BlockName = "controller" | "plant" | "sensor";
+
+/** All of them, in the order of the form. */
+export const BLOCKS: readonly BlockName[] = ["controller", "plant", "sensor"];
+
+/** The name and version of the project document. */
+export const PROJECT_FORMAT = "stayband-project/1";
+
+/** A project nobody has typed anything into. */
+export function emptyProject(): Project {
+  return {
+    format: PROJECT_FORMAT,
+    title: "",
+    loop: { controller: "", plant: "", sensor: "1", feedback: "negative" },
+    quantities: [],
+    knob: "",
+    setting: { value: "" },
+  };
+}
+
+/** With another title. */
+export function withTitle(project: Project, title: string): Project {
+  return { ...project, title };
+}
+
+/** With another text for a block. */
+export function withBlock(project: Project, block: BlockName, text: string): Project {
+  return withLoop(project, { [block]: text });
+}
+
+/** With another feedback sign. */
+export function withFeedback(project: Project, feedback: Feedback): Project {
+  return withLoop(project, { feedback });
+}
+
+/** With another setting. */
+export function withSetting(project: Project, value: string): Project {
+  return { ...project, setting: { ...project.setting, value } };
+}
+
+/** With another value, unit or meaning for a quantity; a row is made where there is none. */
+export function withQuantity(project: Project, symbol: string, part: Partial<Omit<Quantity, "symbol">>): Project {
+  const known = project.quantities.some((row) => row.symbol === symbol);
+  const rows = known ? project.quantities : [...project.quantities, { symbol, value: "", unit: "", meaning: "" }];
+  return { ...project, quantities: rows.map((row) => (row.symbol === symbol ? { ...row, ...part } : row)) };
+}
+
+/** Without the row of a quantity. */
+export function withoutQuantity(project: Project, symbol: string): Project {
+  return { ...project, quantities: project.quantities.filter((row) => row.symbol !== symbol) };
+}
+
+/**
+ * With another knob. The value the old knob was set to becomes its value in the table, and the value of the new one
+ * becomes the setting: the loop stays the same loop, seen from another knob.
+ */
+export function withKnob(project: Project, knob: string): Project {
+  if (knob === project.knob) return project;
+  const value = project.quantities.find((row) => row.symbol === knob)?.value ?? "";
+  const kept = project.knob === "" ? project : withQuantity(project, project.knob, { value: project.setting.value });
+  const moved = value === "" ? kept : withQuantity(kept, knob, { value: "" });
+  return withSetting({ ...moved, knob }, value);
+}
+
+/** The names of the loop that have no row yet get one in the table; rows of names that are gone stay while they hold something. */
+export function rowsOf(project: Project, names: readonly string[]): { row: Quantity; used: boolean }[] {
+  const rowOf = (symbol: string): Quantity =>
+    project.quantities.find((row) => row.symbol === symbol) ?? { symbol, value: "", unit: "", meaning: "" };
+  const unused = project.quantities.filter((row) => !names.includes(row.symbol) && (row.value || row.unit || row.meaning));
+  return [...names.map((name) => ({ row: rowOf(name), used: true })), ...unused.map((row) => ({ row, used: false }))];
+}
+
+/** A project as an older or scripted document may give it, with everything that may be left out filled in. */
+export function completed(given: Project): Project {
+  const empty = emptyProject();
+  const quantity = { value: "", unit: "", meaning: "" };
+  return {
+    format: given.format,
+    title: given.title ?? empty.title,
+    loop: { ...empty.loop, ...given.loop },
+    quantities: (given.quantities ?? []).map((row) => ({ ...quantity, ...row })),
+    knob: given.knob,
+    setting: { ...empty.setting, ...given.setting },
+  };
+}
+
+/** The setting as a number; null where none can be read. */
+export function settingNumber(project: Project): number | null {
+  const text = project.setting.value.trim().replace("−", "-");
+  const value = Number(text);
+  return text === "" || !Number.isFinite(value) ? null : value;
+}
+
+function withLoop(project: Project, part: Partial<LoopText>): Project {
+  return { ...project, loop: { ...project.loop, ...part } };
+}

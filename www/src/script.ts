@@ -1,0 +1,39 @@
+// What people who script the page can use.
+import { problemText, type Session } from "./session.ts";
+import type { Project, Record as Findings } from "./types.ts";
+
+/**
+ * `window.stayband`, for scripts that drive the page:
+ *
+ * - `open(project)` opens a project, given as an object or as JSON text, as if the user had opened a file. The promise
+ *   holds the record. It is rejected, with what is wrong as its message, where there is no record: a document that is
+ *   no project changes nothing; a project with problems in its fields is opened and shows them.
+ * - `record()` is the newest record, the one on the screen, or null while there is none.
+ * - `project()` is the project as it stands in the form.
+ *
+ * Both documents are described in DEVELOPERS.md of the project.
+ */
+export interface Scripting {
+  open(project: Project | string): Promise<Findings>;
+  record(): Findings | null;
+  project(): Project;
+}
+
+declare global {
+  interface Window {
+    stayband: Scripting;
+  }
+}
+
+/** Offers the session to scripts. */
+export function offerScripting(session: Session): void {
+  window.stayband = {
+    async open(project) {
+      const { record, problems } = await session.open(project);
+      if (!record) throw new Error(problemText(problems));
+      return record;
+    },
+    record: () => session.situation.good?.record ?? null,
+    project: () => session.situation.project,
+  };
+}

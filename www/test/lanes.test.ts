@@ -1,0 +1,49 @@
+import assert from "node:assert/strict";
+import test from "node:test";
+import { characterWords, kindWords, stabilityLane, stabilityWords } from "../src/lanes.ts";
+import { happening, reasonLines } from "../src/reason.ts";
+import { edge, record, stability } from "./record.ts";
+
+test("The stability lane covers the whole line and names every range", () => {
+  const lane = stabilityLane(record(stability([edge(1), edge(5)], [1, 0, 2])));
+  assert.deepEqual(
+    lane.segments.map(({ from, to, look, words }) => [from, to, look, words[0]]),
+    [
+      [-Infinity, 1, "unstable", "1 unstable pole"],
+      [1, 5, "stable", "stable"],
+      [5, Infinity, "unstable", "2 unstable poles"],
+    ],
+  );
+  assert.equal(lane.edges.length, 2);
+});
+
+test("Poles that stay on the axis are not called stable", () => {
+  const range = { from: null, to: null, unstablePoles: 0, axisPoles: 2, stable: false };
+  assert.equal(stabilityWords(range), "2 poles on the axis");
+});
+
+test("The character is named in full where there is room, in short where not", () => {
+  const range = { from: null, to: null, realPoles: 1, pairs: 1, name: "underdamped" as const };
+  assert.deepEqual(characterWords(range), ["one oscillating pair, underdamped", "one oscillating pair", "1 pair"]);
+  assert.deepEqual(characterWords({ ...range, name: "unstable" }), ["one oscillating pair", "1 pair"]);
+  assert.equal(kindWords(4, 0), "all real");
+  assert.equal(kindWords(0, 3), "3 oscillating pairs");
+});
+
+test("Every kind of edge says what happens", () => {
+  assert.equal(happening(edge(1, { omegas: [84.6123] })), "A pole pair crosses the imaginary axis at ±84.61\u202fj rad/s.");
+  assert.match(happening(edge(1, { touching: true })), /touches the imaginary axis and returns/);
+  assert.match(happening(edge(1, { omegas: [1, 2] })), /±1\u202fj and ±2\u202fj rad\/s/);
+  assert.match(happening(edge(1, { kind: "origin crossing" })), /origin/);
+  assert.match(happening(edge(1, { kind: "degree drop" })), /infinity/);
+  assert.match(happening(edge(1, { kind: "breakaway" })), /leave the real axis/);
+});
+
+test("The reason of an edge holds its exact value, its bracket and its proof", () => {
+  const at = edge(3.857, { exact: "27/7", bracket: ["3.857142857142857", "3.857142857142858"] });
+  const lines = new Map(reasonLines(record(stability([at], [1, 0])), at).map(({ term, text }) => [term, text]));
+  assert.equal(lines.get("exact value"), "K = 27/7");
+  assert.equal(lines.get("lies between"), "3.857142857142857 and 3.857142857142858");
+  assert.equal(lines.get("proof"), "proven by exact arithmetic");
+  assert.deepEqual([lines.get("below"), lines.get("above")], ["1 unstable pole", "stable"]);
+});
