@@ -49,7 +49,8 @@ impl Analysis {
     pub fn new(model: Loop) -> Result<Self, ExactError> {
         let polynomial = &model.characteristic;
         let parts = (0..=polynomial.knob_degree()).map(|k| IntPoly::new(polynomial.at_knob_power(k))).collect();
-        let family = Family::new(parts).unwrap_or(Family { fixed: IntPoly::default(), parts: [IntPoly::from_i64(&[1])].into() });
+        let family =
+            Family::new(parts).unwrap_or(Family { fixed: IntPoly::default(), parts: [IntPoly::from_i64(&[1])].into() });
         let partition = Partition::new(&family)?;
         let mut notices = notices(&model, &family, &partition)?;
         let meetings = meetings(&family, &partition);
@@ -62,7 +63,14 @@ impl Analysis {
         let landmarks = all_landmarks(&family, &partition, found, &moving);
         let (poles, zeros) = open_loop(&family, &moving)?;
         let view = view::frame(poles.iter().chain(&zeros).map(place).chain(landmarks.iter().map(|l| l.s)));
-        let input = LocusInput { family: &family, partition: &partition, meetings: found, poles: &moving.0, zeros: &moving.1, view };
+        let input = LocusInput {
+            family: &family,
+            partition: &partition,
+            meetings: found,
+            poles: &moving.0,
+            zeros: &moving.1,
+            view,
+        };
         let mut all = Vec::new();
         for sign in KnobSign::BOTH {
             match branches(&input, sign).filter(|_| meetings.is_ok()) {
@@ -129,7 +137,12 @@ fn open_loop(family: &Family, moving: &(Vec<Root>, Vec<Root>)) -> Result<(Vec<Ro
     Ok((with_fixed(&family.parts[0])?, zeros))
 }
 
-fn all_landmarks(family: &Family, partition: &Partition, meetings: &[Meeting], moving: &(Vec<Root>, Vec<Root>)) -> Vec<Landmark> {
+fn all_landmarks(
+    family: &Family,
+    partition: &Partition,
+    meetings: &[Meeting],
+    moving: &(Vec<Root>, Vec<Root>),
+) -> Vec<Landmark> {
     let mut all = landmarks::from_meetings(meetings);
     all.extend(landmarks::from_places(partition));
     if let Some((d, n)) = family.affine() {
@@ -150,7 +163,9 @@ fn notices(model: &Loop, family: &Family, partition: &Partition) -> Result<Vec<N
         notices.push(Notice { kind: NoticeKind::KnobWithoutEffect, text });
     }
     if let Some(factor) = &model.knob_factor {
-        let text = format!("where {factor} = 0 the loop as typed has no meaning; the ranges hold for all other values of {knob}");
+        let text = format!(
+            "where {factor} = 0 the loop as typed has no meaning; the ranges hold for all other values of {knob}"
+        );
         notices.push(Notice { kind: NoticeKind::AlgebraicLoop, text });
     }
     for place in &partition.places {
@@ -164,7 +179,10 @@ fn notices(model: &Loop, family: &Family, partition: &Partition) -> Result<Vec<N
         }
     }
     if !partition.with_meetings && model.notices.is_empty() {
-        notices.push(Notice { kind: NoticeKind::NotComputed, text: "the character of the ranges could not be told".to_string() });
+        notices.push(Notice {
+            kind: NoticeKind::NotComputed,
+            text: "the character of the ranges could not be told".to_string(),
+        });
     }
     Ok(notices)
 }
@@ -179,9 +197,15 @@ fn fixed_mode(factor: &IntPoly, knob: &str) -> Result<Notice, ExactError> {
     let (kind, rest) = if stable {
         (NoticeKind::CancelledFactor, format!("no value of {knob} moves it, and the ranges count it"))
     } else {
-        (NoticeKind::UnstableFixedMode, format!("it is not left of the imaginary axis, so that no value of {knob} is stable"))
+        (
+            NoticeKind::UnstableFixedMode,
+            format!("it is not left of the imaginary axis, so that no value of {knob} is stable"),
+        )
     };
-    Ok(Notice { kind, text: format!("the factor {name} cancels between numerator and denominator: a fixed mode at s = {at}; {rest}") })
+    Ok(Notice {
+        kind,
+        text: format!("the factor {name} cancels between numerator and denominator: a fixed mode at s = {at}; {rest}"),
+    })
 }
 
 /// A root in four digits, for a sentence.
@@ -213,6 +237,8 @@ fn lost_branches(sign: KnobSign) -> Notice {
         KnobSign::Positive => "positive",
         KnobSign::Negative => "negative",
     };
-    let text = format!("the branches of the {half} half of the locus could not be followed with certainty and are not drawn; the ranges are not touched by this");
+    let text = format!(
+        "the branches of the {half} half of the locus could not be followed with certainty and are not drawn; the ranges are not touched by this"
+    );
     Notice { kind: NoticeKind::NotComputed, text }
 }

@@ -105,19 +105,30 @@ impl Session {
                 let branches = self.last.as_ref().map_or(&[][..], |(_, analysis)| &analysis.branches);
                 Solved { answer, branches, analysis: self.analyses }
             }
-            Err(problems) => Solved { answer: Answer { reading, problems, record: None }, branches: &[], analysis: self.analyses },
+            Err(problems) => {
+                Solved { answer: Answer { reading, problems, record: None }, branches: &[], analysis: self.analyses }
+            }
         }
     }
 
-    fn record(&mut self, project: &Project, reading: &Reading, program_hash: Option<&str>) -> Result<Record, Vec<Problem>> {
+    fn record(
+        &mut self,
+        project: &Project,
+        reading: &Reading,
+        program_hash: Option<&str>,
+    ) -> Result<Record, Vec<Problem>> {
         let model = model::build(project)?;
         let setting = model.setting.clone();
         let analysis = self.analysis(project, model).map_err(|error| [too_hard(&error)])?;
-        let closed_loop = setting.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
+        let closed_loop =
+            setting.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
         let affine = analysis.affine();
         Ok(Record {
             format: RECORD_FORMAT.to_string(),
-            program: Program { version: env!("CARGO_PKG_VERSION").to_string(), hash: program_hash.map(ToString::to_string) },
+            program: Program {
+                version: env!("CARGO_PKG_VERSION").to_string(),
+                hash: program_hash.map(ToString::to_string),
+            },
             project: project.clone(),
             reading: reading.clone(),
             model: model::record(&analysis.model),
@@ -152,12 +163,15 @@ impl Session {
 
 /// Reads a project document; the message says what is wrong with it.
 fn read_project(json: &str) -> Result<Project, String> {
-    let project: Project = serde_json::from_str(json).map_err(|error| format!("this is no project that can be read: {error}"))?;
+    let project: Project =
+        serde_json::from_str(json).map_err(|error| format!("this is no project that can be read: {error}"))?;
     if project.format == PROJECT_FORMAT {
         return Ok(project);
     }
     Err(match project.format.strip_prefix("stayband-project/") {
-        Some(version) => format!("this project has version {version}; this Stayband reads version 1: open it with a newer Stayband"),
+        Some(version) => {
+            format!("this project has version {version}; this Stayband reads version 1: open it with a newer Stayband")
+        }
         None => format!("this is no Stayband project: its format is \"{}\", not \"{PROJECT_FORMAT}\"", project.format),
     })
 }

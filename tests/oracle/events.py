@@ -101,7 +101,7 @@ def as_rational(ball):
     scale = 1 << max(0, -exponent(middle))
     candidate = (middle * scale).limit_denominator(LARGEST_DENOMINATOR) / scale
     guess = fmpq(candidate.numerator, candidate.denominator)
-    return guess if ball.contains(arb(guess)) else None
+    return guess if (ball - arb(guess)).contains(0) else None
 
 
 def exponent(fraction):

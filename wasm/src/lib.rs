@@ -10,7 +10,6 @@
 
 mod message;
 mod server;
-mod session;
 
 use wasm_bindgen::prelude::{JsValue, wasm_bindgen};
 

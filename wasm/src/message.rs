@@ -25,9 +25,7 @@ impl Request {
         let project = Reflect::get(message, &"project".into())?.as_string();
         match (id, project) {
             (Some(id), Some(project)) => Ok(Self { id, project }),
-            _ => Err(JsValue::from_str(
-                "a request is { id: number, project: string }",
-            )),
+            _ => Err(JsValue::from_str("a request is { id: number, project: string }")),
         }
     }
 }
@@ -41,10 +39,7 @@ pub(crate) struct Reply {
 impl Reply {
     /// A reply without its contents yet.
     pub(crate) fn new(id: f64, analysis: u32) -> Result<Self, JsValue> {
-        let reply = Self {
-            message: Object::new(),
-            transfer: Array::new(),
-        };
+        let reply = Self { message: Object::new(), transfer: Array::new() };
         reply.put("id", &id.into())?;
         reply.put("analysis", &analysis.into())?;
         Ok(reply)
@@ -62,12 +57,7 @@ impl Reply {
         for branch in branches {
             numbers.clear();
             numbers.reserve(branch.points.len() * NUMBERS_PER_VERTEX);
-            numbers.extend(
-                branch
-                    .points
-                    .iter()
-                    .flat_map(|point| [point.re, point.im, point.knob]),
-            );
+            numbers.extend(branch.points.iter().flat_map(|point| [point.re, point.im, point.knob]));
             let points = Float64Array::from(numbers.as_slice());
             self.transfer.push(&points.buffer());
             let item = Object::new();
@@ -90,7 +80,5 @@ impl Reply {
 
 /// The value as JSON would have it, but as objects: numbers stay numbers, None is null.
 fn plain(value: &impl Serialize) -> Result<JsValue, JsValue> {
-    value
-        .serialize(&Serializer::json_compatible())
-        .map_err(JsValue::from)
+    value.serialize(&Serializer::json_compatible()).map_err(JsValue::from)
 }

@@ -24,7 +24,7 @@ export function headline(session: Session, onReason: (edge: Edge, from: Element)
     stale.hidden = !situation.stale;
     const pieces = good ? stabilitySentence(good.record) : [{ text: "Type a loop below: its stable ranges appear here." }];
     const words = good ? settingSentence(good.record) : "";
-    const key = `${good?.analysis ?? 0} ${plain(pieces)}`;
+    const key = `${good?.picture ?? ""} ${plain(pieces)}`;
     // The buttons of the sentence keep the focus while only the setting moves.
     if (key !== drawn) answer.replaceChildren(...pieces.map((piece) => pieceElement(piece, onReason)));
     drawn = key;

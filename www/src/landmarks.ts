@@ -68,7 +68,7 @@ export function landmarksTable(session: Session, plane: Plane): void {
     if (!good) return;
     const { record } = good;
     const signs = shownSigns(record, plane.half);
-    const key = `${good.analysis} ${signs.join()} ${record.project.knob} ${knobUnit(record)}`;
+    const key = `${good.picture} ${signs.join()} ${record.project.knob} ${knobUnit(record)}`;
     if (key === drawn) return;
     drawn = key;
     head.textContent = withUnit(record.project.knob, knobUnit(record) && `(${knobUnit(record)})`);

@@ -41,19 +41,19 @@ async function openFirst(session: Session, store: Store): Promise<void> {
   if (await openLink(session)) return;
   const kept = store.restore();
   if (kept !== null && (await openKept(session, kept))) return;
-  if (session.situation.answer === null) await openDocument("The demo", () => session.begin(DEMOS[0]?.document));
+  await openDocument("The demo", () => session.begin(DEMOS[0]?.document));
 }
 
 /** Opens the project kept in this browser. One that cannot be opened, say of a newer version, is handed to the user. */
 async function openKept(session: Session, kept: string): Promise<boolean> {
+  let reason = "something else came first";
   try {
-    await session.begin(kept);
-    return true;
+    if (await session.begin(kept)) return true;
   } catch (error) {
-    const reason = error instanceof Error ? error.message : String(error);
-    say(`The project kept in this browser was not opened: ${reason}. Copy it from here before you type:`, "trouble", kept);
-    return false;
+    reason = error instanceof Error ? error.message : String(error);
   }
+  say(`The project kept in this browser was not opened: ${reason}. Copy it from here before it is replaced:`, "trouble", kept);
+  return false;
 }
 
 /** Opens the project in the address, if there is one, and takes it out: what is typed from now on is newer. */

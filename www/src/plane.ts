@@ -51,6 +51,8 @@ export class Plane {
   #view = "";
   #transform: ZoomTransform = zoomIdentity;
   #size = { width: 0, height: 0 };
+  /** The point of the locus that is read now. */
+  #pointed: ReturnType<typeof nearestPoint> = null;
   /** Room for the figures of the imaginary axis, in pixels. */
   #margin = 46;
 
@@ -63,6 +65,7 @@ export class Plane {
       .scaleExtent(ZOOM)
       .on("zoom", (event: D3ZoomEvent<SVGSVGElement, unknown>) => {
         this.#transform = event.transform;
+        this.#leave();
         this.#redraw();
       });
     this.#selection().call(this.#zoom).on("dblclick.zoom", null);
@@ -92,7 +95,7 @@ export class Plane {
       return;
     }
     const signs = shownSigns(good.record, this.half);
-    const drawn = `${good.analysis} ${signs.join()} ${good.record.project.knob}`;
+    const drawn = `${good.picture} ${signs.join()} ${good.record.project.knob}`;
     if (drawn !== this.#drawn || !this.#picture) {
       this.#drawn = drawn;
       const branches = good.branches.filter((branch) => signs.includes(branch.sign));
@@ -126,7 +129,8 @@ export class Plane {
     this.#element.addEventListener("pointermove", (event) => this.#point(event));
     this.#element.addEventListener("pointerleave", () => this.#leave());
     this.#element.addEventListener("click", (event) => {
-      const found = this.#pick(event);
+      // Browsers round the place of a click: what was read at the pointer is what is meant.
+      const found = this.#pointed ?? this.#pick(event);
       if (!found || !Number.isFinite(found.point.knob)) return;
       const setting = typedText(roundDigits(fromNumber(found.point.knob), PICKED_DIGITS, "nearest"));
       this.#session.change(withSetting(this.#session.situation.project, setting), "setting");
@@ -237,6 +241,7 @@ export class Plane {
       this.#leave();
       return;
     }
+    this.#pointed = found;
     const { record } = this.#picture;
     const { re, im, knob } = found.point;
     const { x, y } = this.#scales(record);
@@ -253,6 +258,7 @@ export class Plane {
   }
 
   #leave(): void {
+    this.#pointed = null;
     this.#layers.hover.replaceChildren();
     this.#readout.hidden = true;
   }

@@ -68,7 +68,7 @@ export class Ruler {
     // The axis stands still while the pointer is dragged along it.
     if (!this.#dragging || !this.#axis) this.#axis = axisFor(subjectOf(record, setting), this.#choice.value as AxisChoice);
     const layout = layoutFor(this.#width);
-    const drawn = [good.analysis, knobUnit(record), record.project.knob, this.#width, layout.scale, JSON.stringify(this.#axis)].join();
+    const drawn = [good.picture, knobUnit(record), record.project.knob, this.#width, layout.scale, JSON.stringify(this.#axis)].join();
     if (drawn !== this.#drawn) {
       this.#drawBase(record, this.#axis, layout);
       this.#drawn = drawn;

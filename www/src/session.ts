@@ -5,14 +5,21 @@ import { completed, emptyProject } from "./project.ts";
 import type { Store } from "./store.ts";
 import type { Answer, Problem, Project, Record as Findings } from "./types.ts";
 
+/** A reply with a record. */
+export interface Good extends Reply {
+  readonly record: Findings;
+  /** Changes with everything but the setting; the same for no two pictures of this session. */
+  readonly picture: string;
+}
+
 /** What the views show. */
 export interface Situation {
   readonly project: Project;
   /** The answer to the newest project that was answered; null before the first. */
   readonly answer: Answer | null;
   /** The newest reply with a record; null before the first, and after another project was opened. */
-  readonly good: (Reply & { readonly record: Findings }) | null;
-  /** True where the record does not belong to the project, because that has problems. */
+  readonly good: Good | null;
+  /** True where the record does not belong to the project, because that has problems or was not answered. */
   readonly stale: boolean;
 }
 
@@ -22,6 +29,9 @@ export class Refusal extends Error {}
 /** How often opening a document is tried again when typing overtakes it. */
 const MOST_TRIES = 20;
 
+/** The project before the first one. */
+const NOTHING = emptyProject();
+
 /** One user at work on one project. */
 export class Session {
   readonly #engine: Engine;
@@ -29,9 +39,13 @@ export class Session {
   readonly #history = new History();
   readonly #listeners: ((situation: Situation) => void)[] = [];
   readonly #failures: ((message: string) => void)[] = [];
-  #project: Project = emptyProject();
+  #project: Project = NOTHING;
   #answer: Answer | null = null;
-  #good: Situation["good"] = null;
+  #good: Good | null = null;
+  /** True where the newest project got no answer, because it was stopped or the engine broke. */
+  #unanswered = false;
+  /** How often the engine was stopped or broke: a new one counts its analyses anew. */
+  #engines = 0;
   /** Documents are opened one after the other. */
   #opening: Promise<unknown> = Promise.resolve();
 
@@ -42,7 +56,8 @@ export class Session {
 
   /** What the views show now. */
   get situation(): Situation {
-    const stale = this.#good !== null && (this.#answer?.problems.length ?? 0) > 0;
+    const wrong = this.#unanswered || (this.#answer?.problems.length ?? 0) > 0;
+    const stale = this.#good !== null && wrong;
     return { project: this.#project, answer: this.#answer, good: this.#good, stale };
   }
 
@@ -99,30 +114,51 @@ export class Session {
    * Resolves to its answer, which may name problems in its fields. Rejects with a `Refusal`, and changes nothing, where
    * it is no project.
    */
-  open(document: unknown): Promise<Answer> {
-    const opened = this.#opening.then(() => this.#open(document));
-    this.#opening = opened.catch(() => undefined);
-    return opened.then((answer) => {
-      this.#store.keep(this.#project);
-      return answer;
+  async open(document: unknown): Promise<Answer> {
+    const answer = await this.#queue(() => this.#open(document, () => true));
+    this.#store.keep(this.#project);
+    return answer;
+  }
+
+  /**
+   * Opens a document to begin with. It is kept when the user changes something.
+   *
+   * Resolves to false where something else came first. Rejects like `open`.
+   */
+  async begin(document: unknown): Promise<boolean> {
+    const untouched = (): boolean => this.#project === NOTHING;
+    return this.#queue(async () => {
+      try {
+        await this.#open(document, untouched);
+        return true;
+      } catch (error) {
+        if (untouched()) throw error;
+        return false;
+      }
     });
   }
 
-  /** Opens a document to begin with; it is not kept before the user changes something. */
-  begin(document: unknown): Promise<Answer> {
-    return this.#open(document);
-  }
-
-  /** Gives up the running computation. */
+  /** Gives up the running computation; what is on the screen then belongs to an earlier project. */
   stop(): void {
+    this.#engines += 1;
+    this.#unanswered = true;
     this.#engine.stop();
+    this.#tell();
   }
 
-  async #open(document: unknown): Promise<Answer> {
+  /** Runs after everything that was queued before, whether that failed or not. */
+  #queue<Result>(run: () => Promise<Result>): Promise<Result> {
+    const result = this.#opening.then(run);
+    this.#opening = result.catch(() => undefined);
+    return result;
+  }
+
+  async #open(document: unknown, wanted: () => boolean): Promise<Answer> {
     const project = parsed(document);
-    for (let tries = 0; tries < MOST_TRIES; tries += 1) {
+    const engines = this.#engines;
+    for (let tries = 0; tries < MOST_TRIES && engines === this.#engines && wanted(); tries += 1) {
       const reply = await this.#engine.solve(project);
-      if (!reply) continue;
+      if (!reply || !wanted()) continue;
       const refused = reply.answer.problems.filter((problem) => problem.field === "document");
       if (refused.length > 0) throw new Refusal(problemText(refused));
       // Before the first answer there is nothing to come back to.
@@ -132,7 +168,7 @@ export class Session {
       this.#receive(reply);
       return reply.answer;
     }
-    throw new Refusal("opening was stopped");
+    throw new Refusal("it was stopped or overtaken by something newer");
   }
 
   #take(project: Project): void {
@@ -144,6 +180,9 @@ export class Session {
         if (reply) this.#receive(reply);
       },
       (error: unknown) => {
+        this.#engines += 1;
+        this.#unanswered = true;
+        this.#tell();
         for (const listener of this.#failures) listener(error instanceof Error ? error.message : String(error));
       },
     );
@@ -151,7 +190,9 @@ export class Session {
 
   #receive(reply: Reply): void {
     this.#answer = reply.answer;
-    if (reply.answer.record) this.#good = { ...reply, record: reply.answer.record };
+    this.#unanswered = false;
+    const { record } = reply.answer;
+    if (record) this.#good = { ...reply, record, picture: `${this.#engines}.${reply.analysis}` };
     this.#tell();
   }
 
@@ -167,17 +208,16 @@ export function problemText(problems: readonly Problem[]): string {
 }
 
 function parsed(document: unknown): Project {
-  let value = document;
-  if (typeof value === "string") {
-    try {
-      value = JSON.parse(value);
-    } catch {
-      throw new Refusal("it is no JSON text, so no Stayband project");
-    }
+  let value: unknown;
+  try {
+    // An object goes through text as well: what the caller does to it later is then of no effect.
+    value = JSON.parse(typeof document === "string" ? document : JSON.stringify(document));
+  } catch {
+    throw new Refusal("it is no JSON text, so no Stayband project");
   }
   if (typeof value !== "object" || value === null || Array.isArray(value)) {
     throw new Refusal("it is no JSON object, so no Stayband project");
   }
-  // What the object holds is checked by the core, which refuses a wrong document with a problem of the field `document`.
+  // What it holds is checked by the core, which refuses a wrong document with a problem of the field `document`.
   return value as Project;
 }

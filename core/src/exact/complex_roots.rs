@@ -49,7 +49,8 @@ impl ComplexDyadic {
         } else {
             re.exponent.min(im.exponent)
         };
-        let align = |d: &Dyadic| if d.signum() == 0 { IBig::ZERO } else { &d.mantissa << ((d.exponent - exponent) as usize) };
+        let align =
+            |d: &Dyadic| if d.signum() == 0 { IBig::ZERO } else { &d.mantissa << ((d.exponent - exponent) as usize) };
         Self { re: align(&re), im: align(&im), exponent }
     }
 
@@ -245,7 +246,9 @@ impl<'p> Search<'p> {
     fn new(p: &'p IntPoly) -> Result<Self, ExactError> {
         let discs: Option<Vec<Disc>> = approximate_roots(p)
             .into_iter()
-            .map(|z| Some(Disc { center: ComplexDyadic::from_f64(snapped(z))?, radius: f64::INFINITY, multiplicity: 1 }))
+            .map(|z| {
+                Some(Disc { center: ComplexDyadic::from_f64(snapped(z))?, radius: f64::INFINITY, multiplicity: 1 })
+            })
             .collect();
         discs.map(|discs| Self { p, discs }).ok_or(ExactError::RootsNotEnclosed { degree: p.degree() })
     }
@@ -329,7 +332,7 @@ impl<'p> Search<'p> {
                 settled.push(mirrored);
             }
         }
-        let consistent = settled.len() == self.discs.len() && (self.discs.len() - real) % 2 == 0;
+        let consistent = settled.len() == self.discs.len() && (self.discs.len() - real).is_multiple_of(2);
         if consistent {
             self.discs = settled;
         }

@@ -137,11 +137,7 @@ fn floor_divide(numerator: &IBig, denominator: &IBig) -> IBig {
 
 fn aligned(a: &Dyadic, b: &Dyadic) -> (IBig, IBig, i64) {
     let exponent = a.exponent.min(b.exponent);
-    (
-        &a.mantissa << ((a.exponent - exponent) as usize),
-        &b.mantissa << ((b.exponent - exponent) as usize),
-        exponent,
-    )
+    (&a.mantissa << ((a.exponent - exponent) as usize), &b.mantissa << ((b.exponent - exponent) as usize), exponent)
 }
 
 impl Add<&Dyadic> for &Dyadic {
@@ -279,12 +275,7 @@ impl Interval {
 
     /// Product.
     pub fn times(&self, other: &Self) -> Self {
-        let ends = [
-            &self.low * &other.low,
-            &self.low * &other.high,
-            &self.high * &other.low,
-            &self.high * &other.high,
-        ];
+        let ends = [&self.low * &other.low, &self.low * &other.high, &self.high * &other.low, &self.high * &other.high];
         let low = ends.iter().min().cloned().unwrap_or(Dyadic::ZERO);
         let high = ends.iter().max().cloned().unwrap_or(Dyadic::ZERO);
         Self { low, high }

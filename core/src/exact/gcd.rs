@@ -150,7 +150,7 @@ fn residue(value: &IBig, prime: u64) -> u64 {
     let magnitude = value.as_sign_words().1.iter().rev().fold(0u128, |rest, word| {
         // One machine word at a time; a word has 32 or 64 bits.
         let word_bits = 8 * core::mem::size_of_val(word) as u32;
-        ((rest << word_bits) | u128::from(*word as u64)) % u128::from(prime)
+        ((rest << word_bits) | u128::from(*word)) % u128::from(prime)
     }) as u64;
     if sign_of(value) < 0 && magnitude != 0 { prime - magnitude } else { magnitude }
 }
@@ -197,7 +197,7 @@ fn gcd_modulo(mut a: Vec<u64>, mut b: Vec<u64>, prime: u64) -> Vec<u64> {
 }
 
 fn previous_prime(prime: u64) -> u64 {
-    let is_prime = |n: u64| (3..).step_by(2).take_while(|d| d * d <= n).all(|d| n % d != 0);
+    let is_prime = |n: u64| (3..).step_by(2).take_while(|d| d * d <= n).all(|d| !n.is_multiple_of(d));
     (3..prime).rev().filter(|n| n % 2 == 1).find(|n| is_prime(*n)).unwrap_or(FIRST_PRIME)
 }
 

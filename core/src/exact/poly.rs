@@ -192,7 +192,12 @@ impl IntPoly {
     /// p(−x).
     pub fn mirrored(&self) -> Self {
         Self {
-            coefficients: self.coefficients.iter().enumerate().map(|(i, c)| if i % 2 == 1 { -c } else { c.clone() }).collect(),
+            coefficients: self
+                .coefficients
+                .iter()
+                .enumerate()
+                .map(|(i, c)| if i % 2 == 1 { -c } else { c.clone() })
+                .collect(),
         }
     }
 
@@ -293,7 +298,8 @@ mod tests {
         let x = Dyadic::new(IBig::from(3), -1);
         assert_eq!(p(&[1, 0, 4]).scaled_value(&x).to_f64().to_bits(), 10f64.to_bits());
         assert_eq!(p(&[-9, 0, 4]).sign_at(&x), 0);
-        let around = p(&[1, 0, 4]).over_interval(&Interval { low: Dyadic::new(IBig::from(1), 0), high: Dyadic::new(IBig::from(2), 0) });
+        let around = p(&[1, 0, 4])
+            .over_interval(&Interval { low: Dyadic::new(IBig::from(1), 0), high: Dyadic::new(IBig::from(2), 0) });
         assert!(around.low.to_f64() <= 5.0 && around.high.to_f64() >= 17.0);
     }
 }

@@ -142,7 +142,8 @@ pub fn positive_roots(p: &IntPoly) -> Result<Vec<RealRoot>, ExactError> {
             1 => {
                 let low = Dyadic::new(piece.position.clone(), exponent);
                 let high = Dyadic::new(piece.position + 1, exponent);
-                let mut root = RealRoot { bracket: Interval { low: low.shortened(), high: high.shortened() }, parts_log2: 1 };
+                let mut root =
+                    RealRoot { bracket: Interval { low: low.shortened(), high: high.shortened() }, parts_log2: 1 };
                 clear_ends(&mut root, p)?;
                 roots.push(root);
             }
@@ -350,7 +351,11 @@ mod tests {
     #[test]
     fn tells_roots_apart_that_differ_in_the_last_digit() {
         // (x² − 2)·((10^9·x)² − 2·10^18 − 1)
-        let p = IntPoly::from_i64(&[-2, 0, 1]).times(&IntPoly::from_i64(&[-2_000_000_000_000_000_001, 0, 1_000_000_000_000_000_000]));
+        let p = IntPoly::from_i64(&[-2, 0, 1]).times(&IntPoly::from_i64(&[
+            -2_000_000_000_000_000_001,
+            0,
+            1_000_000_000_000_000_000,
+        ]));
         assert_eq!(positive_roots(&p).expect("isolated").len(), 2);
         assert_eq!(count_real(&p).expect("counted"), 4);
     }

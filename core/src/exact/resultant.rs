@@ -143,7 +143,9 @@ mod tests {
     #[test]
     fn interpolation_finds_the_polynomial_again() {
         let p = IntPoly::from_i64(&[-7, 0, 3, 5]);
-        let found = interpolated(5, |q| (*q != IBig::from(1)).then(|| p.scaled_value(&super::super::Dyadic::new(q.clone(), 0)).mantissa));
+        let found = interpolated(5, |q| {
+            (*q != IBig::from(1)).then(|| p.scaled_value(&super::super::Dyadic::new(q.clone(), 0)).mantissa)
+        });
         assert_eq!(found, p);
     }
 

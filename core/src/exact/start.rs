@@ -5,8 +5,8 @@
 //! zeros of a polynomial simultaneously", Mathematics of Computation 27, 1973; L. W. Ehrlich, CACM 10, 1967).
 //! The start is complex on purpose: from real points the iteration never leaves the real axis.
 
-use super::dyadic::Dyadic;
 use super::IntPoly;
+use super::dyadic::Dyadic;
 use alloc::vec::Vec;
 use nalgebra::{Complex, ComplexField};
 
@@ -68,7 +68,8 @@ impl Scaled {
             let count = pair[1] - pair[0];
             let radius = libm::exp2((log(pair[0]) - log(pair[1])) / count as f64);
             for k in 0..count {
-                let turn = core::f64::consts::TAU * (k as f64 / count as f64 + pair[0] as f64 / self.mantissas.len() as f64);
+                let turn =
+                    core::f64::consts::TAU * (k as f64 / count as f64 + pair[0] as f64 / self.mantissas.len() as f64);
                 let angle = turn + START_ANGLE;
                 points.push(Complex::new(radius * libm::cos(angle), radius * libm::sin(angle)));
             }

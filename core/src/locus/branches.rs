@@ -52,7 +52,13 @@ pub fn branches(input: &LocusInput<'_>, sign: KnobSign) -> Option<Vec<Branch>> {
 }
 
 /// Follows one stretch: from f64 approximations, and where these are too poor from enclosed roots.
-fn followed(input: &LocusInput<'_>, system: &System, pixels: &Pixels, ends: (&End, &End), sign: KnobSign) -> Result<Track, Lost> {
+fn followed(
+    input: &LocusInput<'_>,
+    system: &System,
+    pixels: &Pixels,
+    ends: (&End, &End),
+    sign: KnobSign,
+) -> Result<Track, Lost> {
     let mut stretch = Stretch { inner: ends.0.clone(), outer: ends.1.clone(), real: 0, stops: Vec::new() };
     let knob = middle(system, &stretch);
     let signed = sign.factor() * knob;
@@ -87,7 +93,12 @@ fn ends(input: &LocusInput<'_>, sign: KnobSign) -> Vec<End> {
     };
     let (first, last) = (&family.parts[0], &family.parts[family.knob_degree()]);
     let mut ends = Vec::new();
-    let end = |knob: f64, clusters: Vec<Cluster>, at_infinity: usize, others_stay: bool| End { knob, clusters, others_stay, at_infinity };
+    let end = |knob: f64, clusters: Vec<Cluster>, at_infinity: usize, others_stay: bool| End {
+        knob,
+        clusters,
+        others_stay,
+        at_infinity,
+    };
     // F(s, 0) vanishes where the knob is a factor of the whole; the poles then come from infinity or nowhere.
     ends.push(end(0.0, of_roots(input.poles), at_infinity(first), false));
     let mut inner: Vec<End> = Vec::new();
@@ -137,7 +148,9 @@ impl Weaver<'_> {
         for (k, track) in self.tracks.iter().enumerate() {
             open = self.joined(k, track, open, &mut finished);
             for (strand, branch) in &mut open {
-                branch.points.extend(track.rows.iter().map(|row| self.point(row.poles[strand.carried].s, *strand, row.knob)));
+                branch
+                    .points
+                    .extend(track.rows.iter().map(|row| self.point(row.poles[strand.carried].s, *strand, row.knob)));
             }
         }
         let last = self.ends.len() - 1;
@@ -151,7 +164,13 @@ impl Weaver<'_> {
     }
 
     /// The branches that enter stretch k, each with its strand there and its vertex at the end between.
-    fn joined(&self, k: usize, track: &Track, mut open: Vec<(Strand, Branch)>, finished: &mut Vec<Branch>) -> Vec<(Strand, Branch)> {
+    fn joined(
+        &self,
+        k: usize,
+        track: &Track,
+        mut open: Vec<(Strand, Branch)>,
+        finished: &mut Vec<Branch>,
+    ) -> Vec<(Strand, Branch)> {
         let mut entering = Vec::new();
         for strand in strands(track) {
             let arrival = track.inner[strand.carried];
@@ -178,7 +197,9 @@ impl Weaver<'_> {
                     let on_axis = self.ends[k].clusters[a].s.im == 0.0;
                     (on_axis || other.mirrored == strand.mirrored).then_some((i, 0.0))
                 }
-                (Arrival::Place(a), Arrival::Place(b)) if other.mirrored == strand.mirrored => Some((i, (a - b).modulus())),
+                (Arrival::Place(a), Arrival::Place(b)) if other.mirrored == strand.mirrored => {
+                    Some((i, (a - b).modulus()))
+                }
                 _ => None,
             }
         };
@@ -196,7 +217,8 @@ impl Weaver<'_> {
 
     fn point(&self, s: Complex<f64>, strand: Strand, knob: f64) -> BranchPoint {
         let im = if strand.mirrored { -s.im } else { s.im };
-        BranchPoint { re: s.re, im, knob: self.sign.factor() * knob }
+        // Plus zero, so that the negative half begins at 0 and not at −0.
+        BranchPoint { re: s.re, im, knob: self.sign.factor() * knob + 0.0 }
     }
 }
 

@@ -11,7 +11,7 @@ const LARGE: f64 = 1e100;
 
 /// F(s, q) = 0 for q > 0, ready for f64 work. The negative half of the locus has the odd powers of q negated.
 #[derive(Clone, Debug)]
-pub enum System {
+pub(super) enum System {
     /// D + q·N by poles and zeros: no digits are lost to coefficients (measured: 2e-16 at order 20, where coefficients
     /// lose 1e-6).
     Factored {
@@ -33,18 +33,18 @@ pub enum System {
 
 /// What one evaluation yields.
 #[derive(Clone, Copy, Debug)]
-pub struct Newton {
+pub(super) struct Newton {
     /// Subtract this from s.
-    pub correction: Complex<f64>,
+    pub(super) correction: Complex<f64>,
     /// |correction| below this is rounding error.
-    pub floor: f64,
+    pub(super) floor: f64,
     /// q·ds/dq.
-    pub motion: Complex<f64>,
+    pub(super) motion: Complex<f64>,
 }
 
 impl System {
     /// The factored system of an affine family; `sign` is that of the knob.
-    pub fn factored(d: &IntPoly, n: &IntPoly, poles: &[Root], zeros: &[Root], sign: f64) -> Self {
+    pub(super) fn factored(d: &IntPoly, n: &IntPoly, poles: &[Root], zeros: &[Root], sign: f64) -> Self {
         let written_out = |roots: &[Root]| {
             roots.iter().flat_map(|r| core::iter::repeat_n(Complex::new(r.re, r.im), r.multiplicity)).collect()
         };
@@ -55,7 +55,7 @@ impl System {
     }
 
     /// The expanded system of any family. None where its coefficients do not fit into f64.
-    pub fn expanded(family: &Family, sign: f64) -> Option<Self> {
+    pub(super) fn expanded(family: &Family, sign: f64) -> Option<Self> {
         let order = family.moving_order();
         let size = |i: usize| {
             let magnitudes = family.parts.iter().filter_map(|part| Dyadic::new(part.coefficient(i), 0).magnitude());
@@ -79,16 +79,8 @@ impl System {
         coefficients.iter().flatten().all(|c| c.is_finite()).then_some(Self::Expanded { coefficients, scale })
     }
 
-    /// The number of moving poles.
-    pub fn order(&self) -> usize {
-        match self {
-            Self::Factored { poles, zeros, .. } => poles.len().max(zeros.len()),
-            Self::Expanded { coefficients, .. } => coefficients.len() - 1,
-        }
-    }
-
     /// One evaluation at s and q > 0. None where it is singular in f64.
-    pub fn newton(&self, s: Complex<f64>, q: f64) -> Option<Newton> {
+    pub(super) fn newton(&self, s: Complex<f64>, q: f64) -> Option<Newton> {
         let result = match self {
             Self::Factored { poles, zeros, gain } => factored_newton(poles, zeros, gain * q, s),
             Self::Expanded { coefficients, scale } => expanded_newton(coefficients, *scale, s, q),
@@ -98,7 +90,7 @@ impl System {
     }
 
     /// A knob value in the middle of the action: where |D| and |q·N| balance at the mean distance of poles and zeros.
-    pub fn typical_knob(&self) -> f64 {
+    pub(super) fn typical_knob(&self) -> f64 {
         match self {
             Self::Factored { poles, zeros, gain } => {
                 let logs = |roots: &[Complex<f64>]| -> (f64, usize) {

@@ -30,61 +30,61 @@ const LOG_CAP: f64 = 30.0;
 
 /// Where poles meet.
 #[derive(Clone, Copy, Debug)]
-pub struct Cluster {
+pub(super) struct Cluster {
     /// In the closed upper half plane; on the real axis with imaginary part exactly 0.
-    pub s: Complex<f64>,
+    pub(super) s: Complex<f64>,
     /// How many poles meet.
-    pub multiplicity: usize,
+    pub(super) multiplicity: usize,
 }
 
 /// One end of a stretch.
 #[derive(Clone, Debug)]
-pub struct End {
+pub(super) struct End {
     /// The knob: 0, a value where poles meet or vanish, or infinity.
-    pub knob: f64,
+    pub(super) knob: f64,
     /// Where poles meet; at 0 and infinity every pole's or zero's place, simple ones included.
-    pub clusters: Vec<Cluster>,
+    pub(super) clusters: Vec<Cluster>,
     /// True where poles without a cluster keep a finite place (not at 0 and infinity).
-    pub others_stay: bool,
+    pub(super) others_stay: bool,
     /// How many poles are at infinity there.
-    pub at_infinity: usize,
+    pub(super) at_infinity: usize,
 }
 
 /// A stretch of the knob between two ends, with the number of real poles in it.
 #[derive(Clone, Debug)]
-pub struct Stretch {
+pub(super) struct Stretch {
     /// The end nearer to zero.
-    pub inner: End,
+    pub(super) inner: End,
     /// The end farther from zero.
-    pub outer: End,
+    pub(super) outer: End,
     /// Moving poles on the real axis.
-    pub real: usize,
+    pub(super) real: usize,
     /// Knob values inside at which a row is wanted.
-    pub stops: Vec<f64>,
+    pub(super) stops: Vec<f64>,
 }
 
 /// One carried pole.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Carried {
+pub(super) struct Carried {
     /// Where it is; on the real axis or in the upper half plane.
-    pub s: Complex<f64>,
+    pub(super) s: Complex<f64>,
     /// ds/dv of the stretch's parameter v.
     velocity: Complex<f64>,
 }
 
 /// All carried poles at one knob value.
 #[derive(Clone, Debug)]
-pub struct Row {
+pub(super) struct Row {
     /// The knob.
-    pub knob: f64,
+    pub(super) knob: f64,
     v: f64,
     /// The poles, in an order kept along the stretch.
-    pub poles: Vec<Carried>,
+    pub(super) poles: Vec<Carried>,
 }
 
 /// Where a carried pole is at an end.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub enum Arrival {
+pub(super) enum Arrival {
     /// In the cluster of that number.
     Cluster(usize),
     /// At a simple place.
@@ -95,13 +95,13 @@ pub enum Arrival {
 
 /// A tracked stretch.
 #[derive(Clone, Debug)]
-pub struct Track {
+pub(super) struct Track {
     /// Rows with growing knob.
-    pub rows: Vec<Row>,
+    pub(super) rows: Vec<Row>,
     /// What each carried pole does at the inner end.
-    pub inner: Vec<Arrival>,
+    pub(super) inner: Vec<Arrival>,
     /// What each carried pole does at the outer end.
-    pub outer: Vec<Arrival>,
+    pub(super) outer: Vec<Arrival>,
 }
 
 /// Which way along a stretch.
@@ -113,13 +113,18 @@ enum Way {
 
 /// The tracking could not be finished within its caps.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub struct Lost;
+pub(super) struct Lost;
 
 /// Follows one stretch in both directions from its middle.
 ///
 /// # Errors
 /// [`Lost`] when a cap is met; nothing uncertain is returned.
-pub fn track(system: &System, stretch: &Stretch, pixels: &Pixels, first: &[Complex<f64>]) -> Result<Track, Lost> {
+pub(super) fn track(
+    system: &System,
+    stretch: &Stretch,
+    pixels: &Pixels,
+    first: &[Complex<f64>],
+) -> Result<Track, Lost> {
     let tracker = Tracker { system, stretch, pixels, typical: system.typical_knob() };
     let start = tracker.first_row(first)?;
     let (mut rows, inner) = tracker.run(&start, Way::Inward)?;
@@ -131,7 +136,7 @@ pub fn track(system: &System, stretch: &Stretch, pixels: &Pixels, first: &[Compl
 }
 
 /// The knob in the middle of a stretch, where the first row is taken.
-pub fn middle(system: &System, stretch: &Stretch) -> f64 {
+pub(super) fn middle(system: &System, stretch: &Stretch) -> f64 {
     Parameter { inner: stretch.inner.knob, outer: stretch.outer.knob, typical: system.typical_knob() }.knob(0.0)
 }
 
@@ -206,7 +211,11 @@ impl Tracker<'_> {
         if real + 2 * (carried.len() - real) != s.len() {
             return Err(Lost);
         }
-        let poles = carried.iter().map(|z| self.corrected(*z, *z, f64::INFINITY, 0.0)).collect::<Option<Vec<_>>>().ok_or(Lost)?;
+        let poles = carried
+            .iter()
+            .map(|z| self.corrected(*z, *z, f64::INFINITY, 0.0))
+            .collect::<Option<Vec<_>>>()
+            .ok_or(Lost)?;
         Ok(Row { knob, v: 0.0, poles })
     }
 
@@ -349,7 +358,14 @@ impl Tracker<'_> {
     }
 
     /// Assigns the poles nearest to a cluster to it, where their straight prediction hits it well enough.
-    fn gather(&self, row: &Row, way: Way, cluster: (usize, &Cluster), forced: bool, arrivals: &mut [Option<Arrival>]) -> Option<()> {
+    fn gather(
+        &self,
+        row: &Row,
+        way: Way,
+        cluster: (usize, &Cluster),
+        forced: bool,
+        arrivals: &mut [Option<Arrival>],
+    ) -> Option<()> {
         let (number, Cluster { s, multiplicity }) = cluster;
         let mut order: Vec<usize> = (0..row.poles.len()).filter(|k| arrivals[*k].is_none()).collect();
         let distance = |k: usize| (row.poles[k].s - s).modulus();
@@ -450,10 +466,8 @@ fn simultaneous(system: &System, knob: f64, s: &mut [Complex<f64>]) -> Result<()
                 settled = false;
                 continue;
             };
-            let repulsion: Complex<f64> = (0..s.len())
-                .filter(|j| *j != i && s[*j] != s[i])
-                .map(|j| Complex::new(1.0, 0.0) / (s[i] - s[j]))
-                .sum();
+            let repulsion: Complex<f64> =
+                (0..s.len()).filter(|j| *j != i && s[*j] != s[i]).map(|j| Complex::new(1.0, 0.0) / (s[i] - s[j])).sum();
             let step = newton.correction / (Complex::new(1.0, 0.0) - newton.correction * repulsion);
             if !(step.re.is_finite() && step.im.is_finite()) {
                 return Err(Lost);

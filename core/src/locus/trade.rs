@@ -74,14 +74,14 @@ pub fn real_axis(d: &IntPoly, n: &IntPoly, poles: &[Root], zeros: &[Root], sign:
 }
 
 /// The directions, in degrees, in which branches leave a pole, or, seen from a zero, arrive at it: near a root r of
-/// multiplicity m, (s − r)^m is a positive multiple of −sign·(rest), rest the other side's product over the own one's.
+/// multiplicity m, one of `own`, (s − r)^m is a positive multiple of −sign·(rest), rest the other side's product over the own one's.
 pub fn directions(at: &Root, own: &[Root], other: &[Root], gain_sign: f64) -> Vec<f64> {
     let place = Complex::new(at.re, at.im);
     let angle_to = |r: &Root| {
         let difference = place - Complex::new(r.re, r.im);
         r.multiplicity as f64 * difference.argument().to_degrees()
     };
-    let same = |r: &Root| r.re == at.re && r.im == at.im;
+    let same = |r: &Root| core::ptr::eq(r, at);
     let turn: f64 =
         other.iter().map(angle_to).sum::<f64>() - own.iter().filter(|r| !same(r)).map(angle_to).sum::<f64>();
     let first = if gain_sign > 0.0 { turn + 180.0 } else { turn };

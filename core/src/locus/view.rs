@@ -97,7 +97,12 @@ mod tests {
     fn a_parabola_bends_by_an_eighth_of_the_change_of_velocity() {
         let pixels = Pixels::new(View { re: [-500.0, 500.0], im: [-500.0, 500.0] });
         // s = t + j·4t(1 − t): from 0 to 1, highest point 1.
-        let bend = pixels.sagitta(Complex::new(0.0, 0.0), Complex::new(1.0, 0.0), Complex::new(1.0, 4.0), Complex::new(1.0, -4.0));
+        let bend = pixels.sagitta(
+            Complex::new(0.0, 0.0),
+            Complex::new(1.0, 0.0),
+            Complex::new(1.0, 4.0),
+            Complex::new(1.0, -4.0),
+        );
         assert!((bend - 1.0).abs() < 1e-12, "{bend}");
     }
 }

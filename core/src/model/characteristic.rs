@@ -23,10 +23,7 @@ pub(super) struct Characteristic {
 ///
 /// # Errors
 /// What the user must know about a loop that is too large or has no poles.
-pub(super) fn characteristic(
-    open_loop: &Ratio,
-    feedback: Feedback,
-) -> Result<Characteristic, String> {
+pub(super) fn characteristic(open_loop: &Ratio, feedback: Feedback) -> Result<Characteristic, String> {
     let sign = match feedback {
         Feedback::Negative => Sign::Plus,
         Feedback::Positive => Sign::Minus,
@@ -35,10 +32,7 @@ pub(super) fn characteristic(
     if expected > MAXIMUM_ORDER as u64 {
         return Err(too_large(Excess::Order(expected)));
     }
-    let (polynomial, _) = open_loop
-        .characteristic(sign)
-        .map_err(too_large)?
-        .primitive();
+    let (polynomial, _) = open_loop.characteristic(sign).map_err(too_large)?.primitive();
     if polynomial.is_zero() {
         return Err("the open loop is the constant that makes every s a closed-loop pole: change a block or the sign \
                     of the feedback"
@@ -46,9 +40,7 @@ pub(super) fn characteristic(
     }
     let content = polynomial.knob_content();
     let (polynomial, knob_factor) = match polynomial.over_knob_polynomial(&content) {
-        Some(rest) if content.degree() > 0 => {
-            (rest.primitive().0, Some(KnobPolynomial::in_knob(&content)))
-        }
+        Some(rest) if content.degree() > 0 => (rest.primitive().0, Some(KnobPolynomial::in_knob(&content))),
         _ => (polynomial, None),
     };
     if expected == 0 {
@@ -60,11 +52,7 @@ pub(super) fn characteristic(
             .to_string());
     }
     let loses_order = (polynomial.order() as u64) < expected;
-    Ok(Characteristic {
-        polynomial,
-        knob_factor,
-        loses_order,
-    })
+    Ok(Characteristic { polynomial, knob_factor, loses_order })
 }
 
 pub(super) fn too_large(excess: Excess) -> String {
@@ -73,13 +61,8 @@ pub(super) fn too_large(excess: Excess) -> String {
             format!("the loop has order {order}; Stayband treats up to {MAXIMUM_ORDER}")
         }
         Excess::KnobDegree(degree) => {
-            format!(
-                "the knob appears to the power {degree} in the loop; Stayband treats up to {MAXIMUM_KNOB_DEGREE}"
-            )
+            format!("the knob appears to the power {degree} in the loop; Stayband treats up to {MAXIMUM_KNOB_DEGREE}")
         }
-        Excess::Digits => {
-            "the numbers of the loop are out of range: type fewer digits or smaller powers"
-                .to_string()
-        }
+        Excess::Digits => "the numbers of the loop are out of range: type fewer digits or smaller powers".to_string(),
     }
 }

@@ -1,9 +1,7 @@
 //! The characteristic equation for display, collected by powers of s.
 
 use super::polynomial::KnobPolynomial;
-use crate::notation::{
-    Expression, Node, Number, Relation, Sign, Span, Term, equation_mathml, text,
-};
+use crate::notation::{Expression, Node, Number, Relation, Sign, Span, Term, equation_mathml, text};
 use alloc::boxed::Box;
 use alloc::format;
 use alloc::string::{String, ToString};
@@ -20,11 +18,7 @@ const ROUNDED_DIGITS: usize = 6;
 /// "F(s) = … = 0" as MathML; "≈" where coefficients are shown rounded.
 pub(super) fn equation(polynomial: &KnobPolynomial, knob: &str) -> String {
     let rounded = polynomial.coefficients().iter().flatten().any(is_long);
-    let relation = if rounded {
-        Relation::Rounded
-    } else {
-        Relation::Exact
-    };
+    let relation = if rounded { Relation::Rounded } else { Relation::Exact };
     equation_mathml(&expression(polynomial, knob), relation)
 }
 
@@ -43,57 +37,33 @@ pub fn formula(polynomial: &KnobPolynomial, knob: &str) -> String {
 
 fn expression(polynomial: &KnobPolynomial, knob: &str) -> Expression {
     let rows = polynomial.coefficients().iter().enumerate().rev();
-    sum(rows
-        .filter(|(_, row)| !row.is_empty())
-        .map(|(power, row)| coefficient_term(row, power, knob))
-        .collect())
+    sum(rows.filter(|(_, row)| !row.is_empty()).map(|(power, row)| coefficient_term(row, power, knob)).collect())
 }
 
 /// The term of s^power: one product, or a sum in the knob in brackets.
 fn coefficient_term(row: &[IBig], power: usize, knob: &str) -> Term {
-    let present: Vec<_> = row
-        .iter()
-        .enumerate()
-        .rev()
-        .filter(|(_, coefficient)| !coefficient.is_zero())
-        .collect();
+    let present: Vec<_> = row.iter().enumerate().rev().filter(|(_, coefficient)| !coefficient.is_zero()).collect();
     let laplace = (power > 0).then(|| raised(plain(Node::Laplace), power));
     if let [(knob_power, coefficient)] = present.as_slice() {
         return monomial(coefficient, *knob_power, knob, laplace);
     }
     // The sign of the highest power stands before the bracket.
-    let negative = present
-        .first()
-        .is_some_and(|(_, coefficient)| coefficient.sign() == IntegerSign::Negative);
+    let negative = present.first().is_some_and(|(_, coefficient)| coefficient.sign() == IntegerSign::Negative);
     let terms = present
         .into_iter()
         .map(|(knob_power, coefficient)| {
-            let coefficient = if negative {
-                -coefficient
-            } else {
-                coefficient.clone()
-            };
+            let coefficient = if negative { -coefficient } else { coefficient.clone() };
             monomial(&coefficient, knob_power, knob, None)
         })
         .collect();
-    let bracket = Expression {
-        bracketed: true,
-        ..sum(terms)
-    };
-    Term {
-        sign: sign(negative),
-        expression: product([Some(bracket), laplace].into_iter().flatten().collect()),
-    }
+    let bracket = Expression { bracketed: true, ..sum(terms) };
+    Term { sign: sign(negative), expression: product([Some(bracket), laplace].into_iter().flatten().collect()) }
 }
 
 /// coefficient · knob^power · rest; a coefficient of 1 is left out where something else stands.
 fn monomial(coefficient: &IBig, power: usize, knob: &str, rest: Option<Expression>) -> Term {
     let negative = coefficient.sign() == IntegerSign::Negative;
-    let size = if negative {
-        -coefficient
-    } else {
-        coefficient.clone()
-    };
+    let size = if negative { -coefficient } else { coefficient.clone() };
     let mut factors = Vec::new();
     if !size.is_one() || (power == 0 && rest.is_none()) {
         factors.extend(integer(&size));
@@ -102,10 +72,7 @@ fn monomial(coefficient: &IBig, power: usize, knob: &str, rest: Option<Expressio
         factors.push(raised(plain(Node::Name(knob.to_string())), power));
     }
     factors.extend(rest);
-    Term {
-        sign: sign(negative),
-        expression: product(factors),
-    }
+    Term { sign: sign(negative), expression: product(factors) }
 }
 
 fn sign(negative: bool) -> Sign {
@@ -130,20 +97,13 @@ fn integer(size: &IBig) -> Vec<Expression> {
     let exponent = digits.len() - ROUNDED_DIGITS + rounded.len() - 1;
     let (first, rest) = rounded.split_at(1);
     let rest = rest.trim_end_matches('0');
-    let mantissa = if rest.is_empty() {
-        first.to_string()
-    } else {
-        format!("{first}.{rest}")
-    };
+    let mantissa = if rest.is_empty() { first.to_string() } else { format!("{first}.{rest}") };
     [number(mantissa), raised(number("10".to_string()), exponent)].into()
 }
 
 fn number(text: String) -> Expression {
     // Display shows the text; the value of a rounded number is not used.
-    plain(Node::Number(Number {
-        value: RBig::ZERO,
-        text,
-    }))
+    plain(Node::Number(Number { value: RBig::ZERO, text }))
 }
 
 fn plain(node: Node) -> Expression {
@@ -169,10 +129,7 @@ fn product(mut factors: Vec<Expression>) -> Expression {
 
 fn sum(mut terms: Vec<Term>) -> Expression {
     match terms.pop() {
-        Some(Term {
-            sign: Sign::Plus,
-            expression,
-        }) if terms.is_empty() => expression,
+        Some(Term { sign: Sign::Plus, expression }) if terms.is_empty() => expression,
         last => {
             terms.extend(last);
             plain(Node::Sum(terms))

@@ -27,15 +27,8 @@ pub(super) struct Block<'a> {
 /// # Errors
 /// Everything that keeps it from being one; nothing where a name only lacks its value, which the table reports.
 pub(super) fn evaluate(block: &Block<'_>, quantities: &Quantities) -> Result<Ratio, Vec<Problem>> {
-    let mut evaluation = Evaluation {
-        block,
-        quantities,
-        changed: None,
-        problems: Vec::new(),
-    };
-    evaluation
-        .ratio(block.expression)
-        .ok_or(evaluation.problems)
+    let mut evaluation = Evaluation { block, quantities, changed: None, problems: Vec::new() };
+    evaluation.ratio(block.expression).ok_or(evaluation.problems)
 }
 
 /// One pass over a block. Parts that cannot be evaluated are None, and the pass goes on to find all problems at once.
@@ -55,10 +48,7 @@ impl Evaluation<'_> {
             Node::Name(name) => self.quantity(name),
             Node::Negation(inner) => Some(self.ratio(inner)?.negated()),
             Node::Sum(terms) => {
-                let parts: Vec<_> = terms
-                    .iter()
-                    .map(|term| (term.sign, self.ratio(&term.expression)))
-                    .collect();
+                let parts: Vec<_> = terms.iter().map(|term| (term.sign, self.ratio(&term.expression))).collect();
                 let mut sum = Ratio::constant(RBig::ZERO);
                 for (sign, part) in parts {
                     sum = self.within_limits(sum.plus(sign, &part?), expression.span)?;
@@ -100,37 +90,20 @@ impl Evaluation<'_> {
         }
         match self.changed {
             Some((changed, value)) if changed == name => Some(Ratio::constant(value.clone())),
-            _ => self
-                .quantities
-                .values
-                .get(name)
-                .map(|value| Ratio::constant(value.exact.clone())),
+            _ => self.quantities.values.get(name).map(|value| Ratio::constant(value.exact.clone())),
         }
     }
 
     fn report<T>(&mut self, span: Span, message: String) -> Option<T> {
-        self.problems.push(Problem {
-            field: self.block.field,
-            symbol: None,
-            span: Some(span.into()),
-            message,
-        });
+        self.problems.push(Problem { field: self.block.field, symbol: None, span: Some(span.into()), message });
         None
     }
 
     fn exponential<T>(&mut self, expression: &Expression, exponent: &Expression) -> Option<T> {
         let Span { start, end } = expression.span;
-        let typed: String = self
-            .block
-            .text
-            .chars()
-            .skip(start)
-            .take(end - start)
-            .collect();
+        let typed: String = self.block.text.chars().skip(start).take(end - start).collect();
         let message = if contains_laplace(exponent) {
-            format!(
-                "dead time is not treated in this version, only ratios of polynomials in s: remove {typed}"
-            )
+            format!("dead time is not treated in this version, only ratios of polynomials in s: remove {typed}")
         } else {
             format!("not a ratio of polynomials in s: type the value of {typed} as a decimal")
         };
@@ -146,13 +119,10 @@ impl Evaluation<'_> {
                         format!("this has order {order}; Stayband treats up to {MAXIMUM_ORDER}")
                     }
                     Excess::KnobDegree(degree) => {
-                        format!(
-                            "this has the knob to the power {degree}; Stayband treats up to {MAXIMUM_KNOB_DEGREE}"
-                        )
+                        format!("this has the knob to the power {degree}; Stayband treats up to {MAXIMUM_KNOB_DEGREE}")
                     }
                     Excess::Digits => {
-                        "the numbers here are out of range: type fewer digits or smaller powers"
-                            .to_string()
+                        "the numbers here are out of range: type fewer digits or smaller powers".to_string()
                     }
                 };
                 self.report(span, message)
@@ -163,11 +133,7 @@ impl Evaluation<'_> {
     /// Says whether the divisor is zero by itself or because of a quantity's value.
     fn division_by_zero<T>(&mut self, divisor: &Expression) -> Option<T> {
         // Inside a trial no message is read, and trials within trials would multiply.
-        let culprit = if self.changed.is_some() {
-            None
-        } else {
-            self.culprit(divisor)
-        };
+        let culprit = if self.changed.is_some() { None } else { self.culprit(divisor) };
         let message = match culprit {
             Some((name, value)) => {
                 format!("division by zero for {name} = {value}: change {name} or this denominator")
@@ -186,15 +152,9 @@ impl Evaluation<'_> {
             let value = self.quantities.values.get(&name)?.typed.clone();
             let revives = trials.iter().any(|trial| {
                 let changed = Some((name.as_str(), trial));
-                let mut evaluation = Evaluation {
-                    block: self.block,
-                    quantities: self.quantities,
-                    changed,
-                    problems: Vec::new(),
-                };
-                evaluation
-                    .ratio(divisor)
-                    .is_some_and(|ratio| !ratio.is_zero())
+                let mut evaluation =
+                    Evaluation { block: self.block, quantities: self.quantities, changed, problems: Vec::new() };
+                evaluation.ratio(divisor).is_some_and(|ratio| !ratio.is_zero())
             });
             revives.then_some((name, value))
         })

@@ -28,28 +28,19 @@ pub(super) enum Excess {
 
 /// The degree of the product in s.
 pub(super) fn order(factors: &[Factor]) -> u64 {
-    factors
-        .iter()
-        .map(|factor| factor.polynomial.order() as u64 * factor.exponent)
-        .sum()
+    factors.iter().map(|factor| factor.polynomial.order() as u64 * factor.exponent).sum()
 }
 
 /// The degree of the product in the knob.
 pub(super) fn knob_degree(factors: &[Factor]) -> u64 {
-    factors
-        .iter()
-        .map(|factor| factor.polynomial.knob_degree() as u64 * factor.exponent)
-        .sum()
+    factors.iter().map(|factor| factor.polynomial.knob_degree() as u64 * factor.exponent).sum()
 }
 
 /// The product of two lists.
 pub(super) fn merged(left: &[Factor], right: &[Factor]) -> Vec<Factor> {
     let mut factors = left.to_vec();
     for added in right {
-        match factors
-            .iter_mut()
-            .find(|factor| factor.polynomial == added.polynomial)
-        {
+        match factors.iter_mut().find(|factor| factor.polynomial == added.polynomial) {
             Some(factor) => factor.exponent += added.exponent,
             None => factors.push(added.clone()),
         }
@@ -59,16 +50,9 @@ pub(super) fn merged(left: &[Factor], right: &[Factor]) -> Vec<Factor> {
 
 /// The factors that stand as such in both lists.
 pub(super) fn shared(left: &[Factor], right: &[Factor]) -> Vec<Factor> {
-    let partner = |factor: &Factor| {
-        right
-            .iter()
-            .find(|other| other.polynomial == factor.polynomial)
-    };
+    let partner = |factor: &Factor| right.iter().find(|other| other.polynomial == factor.polynomial);
     let both = |factor: &Factor| {
-        Some(Factor {
-            exponent: factor.exponent.min(partner(factor)?.exponent),
-            polynomial: factor.polynomial.clone(),
-        })
+        Some(Factor { exponent: factor.exponent.min(partner(factor)?.exponent), polynomial: factor.polynomial.clone() })
     };
     left.iter().filter_map(both).collect()
 }
@@ -77,10 +61,7 @@ pub(super) fn shared(left: &[Factor], right: &[Factor]) -> Vec<Factor> {
 pub(super) fn without(factors: &[Factor], removed: &[Factor]) -> Vec<Factor> {
     let mut rest = factors.to_vec();
     for gone in removed {
-        if let Some(factor) = rest
-            .iter_mut()
-            .find(|factor| factor.polynomial == gone.polynomial)
-        {
+        if let Some(factor) = rest.iter_mut().find(|factor| factor.polynomial == gone.polynomial) {
             factor.exponent = factor.exponent.saturating_sub(gone.exponent);
         }
     }
@@ -96,14 +77,8 @@ pub(super) fn without_common(left: &[Factor], right: &[Factor]) -> (Vec<Factor>,
         let (a, b) = (left.swap_remove(i), right.swap_remove(j));
         let cancelled = a.exponent.min(b.exponent);
         for (list, factor, rest) in [(&mut left, a, parts.left), (&mut right, b, parts.right)] {
-            let remaining = [
-                (rest, factor.exponent),
-                (parts.divisor.clone(), factor.exponent - cancelled),
-            ]
-            .map(|(polynomial, exponent)| Factor {
-                polynomial,
-                exponent,
-            });
+            let remaining = [(rest, factor.exponent), (parts.divisor.clone(), factor.exponent - cancelled)]
+                .map(|(polynomial, exponent)| Factor { polynomial, exponent });
             let remaining: Vec<Factor> = remaining
                 .into_iter()
                 .filter(|factor| factor.exponent > 0 && !factor.polynomial.is_constant())
@@ -135,22 +110,14 @@ fn first_common(left: &[Factor], right: &[Factor]) -> Option<(usize, usize, Comm
 /// None where no common divisor is found.
 fn common_parts(a: &KnobPolynomial, b: &KnobPolynomial) -> Option<CommonParts> {
     if a == b {
-        return Some(CommonParts {
-            divisor: a.clone(),
-            left: KnobPolynomial::one(),
-            right: KnobPolynomial::one(),
-        });
+        return Some(CommonParts { divisor: a.clone(), left: KnobPolynomial::one(), right: KnobPolynomial::one() });
     }
     if a.order() == 0 && b.order() == 0 {
         let parts = common_parts(&a.transposed(), &b.transposed())?;
         // Signs are multiplicative, so that making every part's sign the usual one keeps the products.
         let [divisor, left, right] =
             [parts.divisor, parts.left, parts.right].map(|part| part.transposed().primitive().0);
-        return Some(CommonParts {
-            divisor,
-            left,
-            right,
-        });
+        return Some(CommonParts { divisor, left, right });
     }
     let (a, b) = (a.in_laplace()?, b.in_laplace()?);
     let divisor = gcd(&a, &b);
@@ -158,13 +125,8 @@ fn common_parts(a: &KnobPolynomial, b: &KnobPolynomial) -> Option<CommonParts> {
         return None;
     }
     let [left, right] = [a.exactly_over(&divisor)?, b.exactly_over(&divisor)?];
-    let [divisor, left, right] =
-        [divisor, left, right].map(|part| KnobPolynomial::in_knob(&part).transposed());
-    Some(CommonParts {
-        divisor,
-        left,
-        right,
-    })
+    let [divisor, left, right] = [divisor, left, right].map(|part| KnobPolynomial::in_knob(&part).transposed());
+    Some(CommonParts { divisor, left, right })
 }
 
 /// The factors of a polynomial: what depends on the knob alone, on s alone, and the rest; and the constant.
@@ -179,13 +141,7 @@ pub(super) fn split(polynomial: &KnobPolynomial) -> (Vec<Factor>, IBig) {
         let (polynomial, unit) = part.primitive();
         sign *= unit;
         if !polynomial.is_constant() {
-            factors = merged(
-                &factors,
-                &[Factor {
-                    polynomial,
-                    exponent: 1,
-                }],
-            );
+            factors = merged(&factors, &[Factor { polynomial, exponent: 1 }]);
         }
     }
     (factors, constant * sign)
@@ -208,10 +164,7 @@ pub(super) fn expanded(factors: &[Factor]) -> Result<KnobPolynomial, Excess> {
     if knob_degree(factors) > MAXIMUM_KNOB_DEGREE as u64 {
         return Err(Excess::KnobDegree(knob_degree(factors)));
     }
-    let size: u64 = factors
-        .iter()
-        .map(|factor| factor.polynomial.bits() as u64 * factor.exponent)
-        .sum();
+    let size: u64 = factors.iter().map(|factor| factor.polynomial.bits() as u64 * factor.exponent).sum();
     if size > MAXIMUM_BITS as u64 {
         return Err(Excess::Digits);
     }

@@ -74,12 +74,7 @@ pub fn reading(project: &Project) -> Reading {
     let read = blocks(project).map(|(_, _, text)| notation::read(text).ok());
     let names = names(read.iter().flatten());
     let [controller, plant, sensor] = read.map(|block| block.as_ref().map(notation::mathml));
-    Reading {
-        controller,
-        plant,
-        sensor,
-        names,
-    }
+    Reading { controller, plant, sensor, names }
 }
 
 /// The names in all blocks, in order of first appearance.
@@ -107,14 +102,7 @@ pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
     let mut ratios = Vec::new();
     for ((field, _, text), expression) in texts.iter().zip(&read) {
         let evaluated = match expression {
-            Ok(expression) => evaluate(
-                &Block {
-                    field: *field,
-                    text,
-                    expression,
-                },
-                &quantities,
-            ),
+            Ok(expression) => evaluate(&Block { field: *field, text, expression }, &quantities),
             Err(error) => Err([fault(*field, error)].into()),
         };
         match evaluated {
@@ -134,52 +122,23 @@ pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
         return Err(problems);
     }
 
-    let about_loop = |message| {
-        [Problem {
-            field: Field::Loop,
-            symbol: None,
-            span: None,
-            message,
-        }]
-        .to_vec()
-    };
+    let about_loop = |message| [Problem { field: Field::Loop, symbol: None, span: None, message }].to_vec();
     let open_loop = controller.times(plant).and_then(|path| path.times(sensor));
     let open_loop = open_loop.map_err(|excess| about_loop(characteristic::too_large(excess)))?;
-    let found =
-        characteristic::characteristic(&open_loop, project.blocks.feedback).map_err(about_loop)?;
-    let mut notices: Vec<Notice> = texts
-        .iter()
-        .zip(&ratios)
-        .filter_map(|((_, name, _), ratio)| improper(name, ratio))
-        .collect();
+    let found = characteristic::characteristic(&open_loop, project.blocks.feedback).map_err(about_loop)?;
+    let mut notices: Vec<Notice> =
+        texts.iter().zip(&ratios).filter_map(|((_, name, _), ratio)| improper(name, ratio)).collect();
     if found.loses_order {
         let text = "algebraic loop: at high frequencies the loop returns exactly its own signal at every setting; add a \
                     filter pole, such as 1/(0.01 s + 1)";
-        notices.push(Notice {
-            kind: NoticeKind::AlgebraicLoop,
-            text: text.to_string(),
-        });
+        notices.push(Notice { kind: NoticeKind::AlgebraicLoop, text: text.to_string() });
     }
-    let knob_factor = found
-        .knob_factor
-        .map(|factor| display::formula(&factor, &knob));
-    Ok(Loop {
-        knob,
-        setting,
-        open_loop,
-        characteristic: found.polynomial,
-        knob_factor,
-        notices,
-    })
+    let knob_factor = found.knob_factor.map(|factor| display::formula(&factor, &knob));
+    Ok(Loop { knob, setting, open_loop, characteristic: found.polynomial, knob_factor, notices })
 }
 
 fn fault(field: Field, error: &NotationError) -> Problem {
-    Problem {
-        field,
-        symbol: None,
-        span: Some(error.span().into()),
-        message: error.to_string(),
-    }
+    Problem { field, symbol: None, span: Some(error.span().into()), message: error.to_string() }
 }
 
 /// The typed setting; None where nothing is typed.
@@ -187,27 +146,21 @@ fn setting(text: &str) -> Result<Option<RBig>, Problem> {
     if text.trim().is_empty() {
         return Ok(None);
     }
-    notation::decimal(text)
-        .map(Some)
-        .map_err(|error| fault(Field::Setting, &error))
+    notation::decimal(text).map(Some).map_err(|error| fault(Field::Setting, &error))
 }
 
 /// A warning about a block with more zeros than poles.
 fn improper(name: &str, ratio: &Ratio) -> Option<Notice> {
     let (zeros, poles) = (ratio.zero_count(), ratio.pole_count());
     let missing = zeros.checked_sub(poles).filter(|missing| *missing > 0)?;
-    let counted =
-        |count: u64, one: &str| format!("{count} {one}{}", if count == 1 { "" } else { "s" });
+    let counted = |count: u64, one: &str| format!("{count} {one}{}", if count == 1 { "" } else { "s" });
     let text = format!(
         "the {name} is improper, with {} and {}: no device can be built like that; add {}, such as 1/(0.01 s + 1)",
         counted(zeros, "zero"),
         counted(poles, "pole"),
         counted(missing, "filter pole"),
     );
-    Some(Notice {
-        kind: NoticeKind::ImproperBlock,
-        text,
-    })
+    Some(Notice { kind: NoticeKind::ImproperBlock, text })
 }
 
 /// The characteristic polynomial for the record.

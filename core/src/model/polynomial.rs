@@ -32,25 +32,19 @@ impl KnobPolynomial {
     /// The constant 1.
     #[must_use]
     pub fn one() -> Self {
-        Self {
-            rows: vec![vec![IBig::ONE]],
-        }
+        Self { rows: vec![vec![IBig::ONE]] }
     }
 
     /// The Laplace variable s.
     #[must_use]
     pub fn laplace() -> Self {
-        Self {
-            rows: vec![Vec::new(), vec![IBig::ONE]],
-        }
+        Self { rows: vec![Vec::new(), vec![IBig::ONE]] }
     }
 
     /// The knob q.
     #[must_use]
     pub fn knob() -> Self {
-        Self {
-            rows: vec![vec![IBig::ZERO, IBig::ONE]],
-        }
+        Self { rows: vec![vec![IBig::ZERO, IBig::ONE]] }
     }
 
     /// The coefficients: `[i][k]` multiplies s^i q^k. A row ends with its last coefficient that is not zero.
@@ -80,22 +74,13 @@ impl KnobPolynomial {
     /// The degree in the knob; 0 for the zero polynomial.
     #[must_use]
     pub fn knob_degree(&self) -> usize {
-        self.rows
-            .iter()
-            .map(Vec::len)
-            .max()
-            .unwrap_or(0)
-            .saturating_sub(1)
+        self.rows.iter().map(Vec::len).max().unwrap_or(0).saturating_sub(1)
     }
 
     /// The factor of q^k: coefficients of s, lowest power first, without zeros on top.
     #[must_use]
     pub fn at_knob_power(&self, k: usize) -> Vec<IBig> {
-        let mut column: Vec<IBig> = self
-            .rows
-            .iter()
-            .map(|row| row.get(k).cloned().unwrap_or(IBig::ZERO))
-            .collect();
+        let mut column: Vec<IBig> = self.rows.iter().map(|row| row.get(k).cloned().unwrap_or(IBig::ZERO)).collect();
         while column.last().is_some_and(IBig::is_zero) {
             column.pop();
         }
@@ -104,12 +89,7 @@ impl KnobPolynomial {
 
     /// The bits of the largest coefficient.
     pub(super) fn bits(&self) -> usize {
-        self.rows
-            .iter()
-            .flatten()
-            .map(BitTest::bit_len)
-            .max()
-            .unwrap_or(0)
+        self.rows.iter().flatten().map(BitTest::bit_len).max().unwrap_or(0)
     }
 
     /// a·self + b·other.
@@ -154,17 +134,8 @@ impl KnobPolynomial {
     /// with the lowest power of the knob is positive. Zero gives zero and 1.
     pub(super) fn primitive(&self) -> (Self, IBig) {
         let mut content = IBig::ZERO;
-        for coefficient in self
-            .rows
-            .iter()
-            .flatten()
-            .filter(|coefficient| !coefficient.is_zero())
-        {
-            content = if content.is_zero() {
-                coefficient.clone()
-            } else {
-                (&content).gcd(coefficient).into()
-            };
+        for coefficient in self.rows.iter().flatten().filter(|coefficient| !coefficient.is_zero()) {
+            content = if content.is_zero() { coefficient.clone() } else { (&content).gcd(coefficient).into() };
             if content.is_one() {
                 break;
             }
@@ -172,22 +143,11 @@ impl KnobPolynomial {
         if content.is_zero() {
             return (Self::default(), IBig::ONE);
         }
-        let leading = self
-            .rows
-            .last()
-            .and_then(|row| row.iter().find(|coefficient| !coefficient.is_zero()));
+        let leading = self.rows.last().and_then(|row| row.iter().find(|coefficient| !coefficient.is_zero()));
         if leading.is_some_and(|leading| leading.sign() != content.sign()) {
             content = -content;
         }
-        let rows = self
-            .rows
-            .iter()
-            .map(|row| {
-                row.iter()
-                    .map(|coefficient| coefficient / &content)
-                    .collect()
-            })
-            .collect();
+        let rows = self.rows.iter().map(|row| row.iter().map(|coefficient| coefficient / &content).collect()).collect();
         (Self { rows }, content)
     }
 
@@ -205,26 +165,13 @@ impl KnobPolynomial {
 
     /// The quotient by a polynomial in the knob that divides exactly; None where it does not.
     pub(super) fn over_knob_polynomial(&self, divisor: &IntPoly) -> Option<Self> {
-        let quotient = |row: &Vec<IBig>| {
-            Some(
-                IntPoly::new(row.clone())
-                    .exactly_over(divisor)?
-                    .coefficients()
-                    .to_vec(),
-            )
-        };
-        Some(Self::new(
-            self.rows.iter().map(quotient).collect::<Option<_>>()?,
-        ))
+        let quotient = |row: &Vec<IBig>| Some(IntPoly::new(row.clone()).exactly_over(divisor)?.coefficients().to_vec());
+        Some(Self::new(self.rows.iter().map(quotient).collect::<Option<_>>()?))
     }
 
     /// The polynomial with s and the knob exchanged.
     pub(super) fn transposed(&self) -> Self {
-        Self::new(
-            (0..=self.knob_degree())
-                .map(|k| self.at_knob_power(k))
-                .collect(),
-        )
+        Self::new((0..=self.knob_degree()).map(|k| self.at_knob_power(k)).collect())
     }
 
     /// A polynomial in the knob alone.

@@ -46,11 +46,7 @@ pub(super) fn read(project: &Project, used: &[String]) -> (Quantities, Vec<Probl
                 free.insert(row);
             }
             Entry::Occupied(_) if repeated.insert(symbol.clone()) => {
-                problems.push(row_problem(
-                    &row.symbol,
-                    None,
-                    format!("{symbol} stands in two rows: keep one"),
-                ));
+                problems.push(row_problem(&row.symbol, None, format!("{symbol} stands in two rows: keep one")));
             }
             Entry::Occupied(_) => {}
         }
@@ -60,20 +56,10 @@ pub(super) fn read(project: &Project, used: &[String]) -> (Quantities, Vec<Probl
         match rows.get(name).filter(|row| !row.value.trim().is_empty()) {
             Some(row) => match notation::decimal(&row.value) {
                 Ok(exact) => {
-                    values.insert(
-                        name.clone(),
-                        Value {
-                            exact,
-                            typed: row.value.trim().to_string(),
-                        },
-                    );
+                    values.insert(name.clone(), Value { exact, typed: row.value.trim().to_string() });
                 }
                 Err(error) => {
-                    problems.push(row_problem(
-                        &row.symbol,
-                        Some(error.span().into()),
-                        error.to_string(),
-                    ));
+                    problems.push(row_problem(&row.symbol, Some(error.span().into()), error.to_string()));
                 }
             },
             // Without a knob the name may well be the one left to choose.
@@ -86,12 +72,7 @@ pub(super) fn read(project: &Project, used: &[String]) -> (Quantities, Vec<Probl
 }
 
 fn row_problem(symbol: &str, span: Option<[usize; 2]>, message: String) -> Problem {
-    Problem {
-        field: Field::Quantity,
-        symbol: Some(symbol.to_string()),
-        span,
-        message,
-    }
+    Problem { field: Field::Quantity, symbol: Some(symbol.to_string()), span, message }
 }
 
 /// `s2` is most likely a power that lost its sign on the way through the clipboard.
@@ -106,31 +87,14 @@ fn missing_value(name: &str) -> String {
 }
 
 fn knob(text: &str) -> (Option<String>, Option<Problem>) {
-    let problem = |message: &str| Problem {
-        field: Field::Knob,
-        symbol: None,
-        span: None,
-        message: message.to_string(),
-    };
+    let problem =
+        |message: &str| Problem { field: Field::Knob, symbol: None, span: None, message: message.to_string() };
     match text.trim() {
-        "" => (
-            None,
-            Some(problem("choose the knob: the quantity left to choose")),
-        ),
-        "s" => (
-            None,
-            Some(problem(
-                "s is the Laplace variable: choose a quantity as the knob",
-            )),
-        ),
+        "" => (None, Some(problem("choose the knob: the quantity left to choose"))),
+        "s" => (None, Some(problem("s is the Laplace variable: choose a quantity as the knob"))),
         name => match notation::symbol(name) {
             Ok(symbol) => (Some(symbol), None),
-            Err(error) => (
-                None,
-                Some(problem(&format!(
-                    "choose one quantity as the knob: {error}"
-                ))),
-            ),
+            Err(error) => (None, Some(problem(&format!("choose one quantity as the knob: {error}")))),
         },
     }
 }

@@ -8,9 +8,7 @@
 //! common divisor; factors that mix s and the knob are compared as wholes.
 
 use super::MAXIMUM_BITS;
-use super::factors::{
-    Excess, Factor, expanded, knob_degree, merged, order, shared, split, without, without_common,
-};
+use super::factors::{Excess, Factor, expanded, knob_degree, merged, order, shared, split, without, without_common};
 use super::polynomial::KnobPolynomial;
 use crate::notation::Sign;
 use alloc::vec;
@@ -38,23 +36,12 @@ impl Ratio {
     /// A number.
     #[must_use]
     pub fn constant(constant: RBig) -> Self {
-        Self {
-            constant,
-            numerator: Vec::new(),
-            denominator: Vec::new(),
-        }
+        Self { constant, numerator: Vec::new(), denominator: Vec::new() }
     }
 
     /// A polynomial that is not constant, primitive and of the right sign.
     pub(super) fn factor(polynomial: KnobPolynomial) -> Self {
-        Self {
-            constant: RBig::ONE,
-            numerator: vec![Factor {
-                polynomial,
-                exponent: 1,
-            }],
-            denominator: Vec::new(),
-        }
+        Self { constant: RBig::ONE, numerator: vec![Factor { polynomial, exponent: 1 }], denominator: Vec::new() }
     }
 
     /// True where the ratio is zero for every s and knob.
@@ -114,32 +101,17 @@ impl Ratio {
             return Some(Err(Excess::Digits));
         }
         let raised = |factors: &[Factor]| {
-            let raise = |factor: &Factor| Factor {
-                exponent: factor.exponent * u64::from(times),
-                ..factor.clone()
-            };
-            if times == 0 {
-                Vec::new()
-            } else {
-                factors.iter().map(raise).collect()
-            }
+            let raise = |factor: &Factor| Factor { exponent: factor.exponent * u64::from(times), ..factor.clone() };
+            if times == 0 { Vec::new() } else { factors.iter().map(raise).collect() }
         };
-        Some(Self::checked(
-            self.constant.pow(times as isize),
-            raised(&self.numerator),
-            raised(&self.denominator),
-        ))
+        Some(Self::checked(self.constant.pow(times as isize), raised(&self.numerator), raised(&self.denominator)))
     }
 
     /// self ± other over the least common denominator.
     pub(super) fn plus(&self, sign: Sign, other: &Self) -> Result<Self, Excess> {
         // Nothing plus something keeps its factors.
         if self.is_zero() && self.denominator.is_empty() {
-            return Ok(if sign == Sign::Minus {
-                other.clone().negated()
-            } else {
-                other.clone()
-            });
+            return Ok(if sign == Sign::Minus { other.clone().negated() } else { other.clone() });
         }
         let common = shared(&self.numerator, &other.numerator);
         let (lacking_there, lacking_here) = without_common(&self.denominator, &other.denominator);
@@ -147,16 +119,8 @@ impl Ratio {
         let there = expanded(&merged(&without(&other.numerator, &common), &lacking_there))?;
         let (sum, scale) = weighted_sum(&self.constant, &here, sign, &other.constant, &there);
         let (factors, content) = split(&sum);
-        let constant = if sum.is_zero() {
-            RBig::ZERO
-        } else {
-            RBig::from_parts(content, scale)
-        };
-        Self::checked(
-            constant,
-            merged(&common, &factors),
-            merged(&self.denominator, &lacking_here),
-        )
+        let constant = if sum.is_zero() { RBig::ZERO } else { RBig::from_parts(content, scale) };
+        Self::checked(constant, merged(&common, &factors), merged(&self.denominator, &lacking_here))
     }
 
     /// The polynomial denominator ± numerator over the integers, up to a positive factor.
@@ -164,19 +128,11 @@ impl Ratio {
         let below = expanded(&self.denominator)?;
         let above = expanded(&self.numerator)?;
         let (sum, _) = weighted_sum(&RBig::ONE, &below, sign, &self.constant, &above);
-        if sum.bits() > MAXIMUM_BITS {
-            Err(Excess::Digits)
-        } else {
-            Ok(sum)
-        }
+        if sum.bits() > MAXIMUM_BITS { Err(Excess::Digits) } else { Ok(sum) }
     }
 
     /// A ratio within the limits.
-    fn checked(
-        constant: RBig,
-        mut numerator: Vec<Factor>,
-        denominator: Vec<Factor>,
-    ) -> Result<Self, Excess> {
+    fn checked(constant: RBig, mut numerator: Vec<Factor>, denominator: Vec<Factor>) -> Result<Self, Excess> {
         if bits(&constant) > MAXIMUM_BITS {
             return Err(Excess::Digits);
         }
@@ -191,19 +147,12 @@ impl Ratio {
                 return Err(Excess::KnobDegree(knob_degree(factors)));
             }
         }
-        Ok(Self {
-            constant,
-            numerator,
-            denominator,
-        })
+        Ok(Self { constant, numerator, denominator })
     }
 }
 
 fn bits(constant: &RBig) -> usize {
-    constant
-        .numerator()
-        .bit_len()
-        .max(constant.denominator().bit_len())
+    constant.numerator().bit_len().max(constant.denominator().bit_len())
 }
 
 /// a·left ± b·right, multiplied by the second value to make the coefficients integers.
@@ -216,13 +165,6 @@ fn weighted_sum(
 ) -> (KnobPolynomial, UBig) {
     let scale_left = a.numerator() * IBig::from(b.denominator().clone());
     let scale_right = b.numerator() * IBig::from(a.denominator().clone());
-    let scale_right = if sign == Sign::Minus {
-        -scale_right
-    } else {
-        scale_right
-    };
-    (
-        left.combined(&scale_left, right, &scale_right),
-        a.denominator() * b.denominator(),
-    )
+    let scale_right = if sign == Sign::Minus { -scale_right } else { scale_right };
+    (left.combined(&scale_left, right, &scale_right), a.denominator() * b.denominator())
 }

@@ -10,27 +10,14 @@ use proptest::prelude::*;
 fn project(blocks: [&str; 3], rows: &str, knob: &str) -> Project {
     let row = |row: &str| {
         let (symbol, value) = row.split_once('=').unwrap();
-        Quantity {
-            symbol: symbol.trim().into(),
-            value: value.trim().into(),
-            ..Quantity::default()
-        }
+        Quantity { symbol: symbol.trim().into(), value: value.trim().into(), ..Quantity::default() }
     };
     let [controller, plant, sensor] = blocks.map(String::from);
     Project {
         format: PROJECT_FORMAT.into(),
         title: String::new(),
-        blocks: LoopText {
-            controller,
-            plant,
-            sensor,
-            feedback: Feedback::Negative,
-        },
-        quantities: rows
-            .split(';')
-            .filter(|row| row.contains('='))
-            .map(row)
-            .collect(),
+        blocks: LoopText { controller, plant, sensor, feedback: Feedback::Negative },
+        quantities: rows.split(';').filter(|row| row.contains('=')).map(row).collect(),
         knob: knob.into(),
         setting: Setting::default(),
     }
@@ -38,8 +25,7 @@ fn project(blocks: [&str; 3], rows: &str, knob: &str) -> Project {
 
 /// F of controller `K`-loops, as text.
 fn characteristic(blocks: [&str; 3], rows: &str) -> String {
-    let model = build(&project(blocks, rows, "K"))
-        .unwrap_or_else(|problems| panic!("{blocks:?}: {problems:?}"));
+    let model = build(&project(blocks, rows, "K")).unwrap_or_else(|problems| panic!("{blocks:?}: {problems:?}"));
     formula(&model.characteristic, "K")
 }
 
@@ -49,10 +35,7 @@ type Told = (Field, Option<String>, Option<[usize; 2]>, String);
 /// What is told about a project that cannot be built.
 fn problems(project: &Project) -> Vec<Told> {
     let found = build(project).expect_err("problems");
-    found
-        .into_iter()
-        .map(|problem| (problem.field, problem.symbol, problem.span, problem.message))
-        .collect()
+    found.into_iter().map(|problem| (problem.field, problem.symbol, problem.span, problem.message)).collect()
 }
 
 /// The one message of a project.
@@ -68,24 +51,11 @@ fn in_block(field: Field, start: usize, end: usize, message: &str) -> Told {
 
 #[test]
 fn the_characteristic_polynomial_is_denominator_plus_numerator() {
-    assert_eq!(
-        characteristic(["K", "1/(s(s+2))", "1"], ""),
-        "s^2 + 2 s + K"
-    );
-    assert_eq!(
-        characteristic(["K (0.5 s + 1)", "3/(s - 1)", "2"], ""),
-        "(3 K + 1) s + (6 K - 1)"
-    );
+    assert_eq!(characteristic(["K", "1/(s(s+2))", "1"], ""), "s^2 + 2 s + K");
+    assert_eq!(characteristic(["K (0.5 s + 1)", "3/(s - 1)", "2"], ""), "(3 K + 1) s + (6 K - 1)");
     // By hand: (3 s + 250)(s - 3)(s + 9)(s + 125) + 7·(30 s + 250)·125 K.
     assert_eq!(
-        characteristic(
-            [
-                "K (0.12 s + 1)/(0.012 s + 1)",
-                "14/((s - 3)(s + 9)(τ s + 1))",
-                "0.5"
-            ],
-            "tau = 0.008"
-        ),
+        characteristic(["K (0.12 s + 1)/(0.012 s + 1)", "14/((s - 3)(s + 9)(τ s + 1))", "0.5"], "tau = 0.008"),
         "3 s^4 + 643 s^3 + 34919 s^2 + (26250 K + 170625) s + (218750 K - 843750)"
     );
 }
@@ -94,107 +64,54 @@ fn the_characteristic_polynomial_is_denominator_plus_numerator() {
 fn positive_feedback_subtracts() {
     let mut positive = project(["K", "1/(s + 2)", "1"], "", "K");
     positive.blocks.feedback = Feedback::Positive;
-    assert_eq!(
-        formula(&build(&positive).unwrap().characteristic, "K"),
-        "s - (K - 2)"
-    );
+    assert_eq!(formula(&build(&positive).unwrap().characteristic, "K"), "s - (K - 2)");
 }
 
 #[test]
 fn the_knob_may_stand_anywhere() {
-    let ofn = |blocks, rows, knob| {
-        formula(
-            &build(&project(blocks, rows, knob)).unwrap().characteristic,
-            knob,
-        )
-    };
+    let ofn = |blocks, rows, knob| formula(&build(&project(blocks, rows, knob)).unwrap().characteristic, knob);
     let blocks = ["Kp (1 + 1/(T_i s))", "2/(tau s + 1)", "1"];
-    assert_eq!(
-        ofn(blocks, "Kp = 3; tau = 0.5", "T_i"),
-        "T_i s^2 + 14 T_i s + 12"
-    );
-    assert_eq!(
-        ofn(blocks, "Kp = 3; T_i = 4", "tau"),
-        "2 tau s^2 + 14 s + 3"
-    );
+    assert_eq!(ofn(blocks, "Kp = 3; tau = 0.5", "T_i"), "T_i s^2 + 14 T_i s + 12");
+    assert_eq!(ofn(blocks, "Kp = 3; T_i = 4", "tau"), "2 tau s^2 + 14 s + 3");
     assert_eq!(ofn(["K", "1/s", "1"], "K = 2", "other"), "s + 2");
     let squared = build(&project(["K (s + K)", "1/s^2", "1"], "", "K")).unwrap();
     assert_eq!(squared.characteristic.knob_degree(), 2);
     assert_eq!(squared.characteristic.at_knob_power(2), [IBig::from(1)]);
-    assert_eq!(
-        squared.characteristic.at_knob_power(1),
-        [IBig::from(0), IBig::from(1)]
-    );
+    assert_eq!(squared.characteristic.at_knob_power(1), [IBig::from(0), IBig::from(1)]);
 }
 
 #[test]
 fn a_greek_row_names_the_spelled_quantity() {
-    assert_eq!(
-        characteristic(["K", "1/(tau s + 1)", "1"], "τ = 2"),
-        "2 s + (K + 1)"
-    );
+    assert_eq!(characteristic(["K", "1/(tau s + 1)", "1"], "τ = 2"), "2 s + (K + 1)");
 }
 
 #[test]
 fn sums_get_no_second_pole_and_cancelled_factors_stay() {
-    assert_eq!(
-        characteristic(["K", "1/(s+1) + 1/(s+1)", "1"], ""),
-        "s + (2 K + 1)"
-    );
-    assert_eq!(
-        characteristic(["K", "1/(s+1) + 1/(2 s+2)", "1"], ""),
-        "2 s + (3 K + 2)"
-    );
-    assert_eq!(
-        characteristic(["K", "1/(s^2+3 s+2) + 1/(s+1)", "1"], ""),
-        "s^2 + (K + 3) s + (3 K + 2)"
-    );
-    assert_eq!(
-        characteristic(["K", "1/(K s+1) + 1/(K s+1)", "1"], ""),
-        "K s + (2 K + 1)"
-    );
-    assert_eq!(
-        characteristic(["K", "1/(K^2 - 1) + 1/(K - 1) + 1/(s (K + 1))", "1"], ""),
-        {
-            // K(1 + (K + 1))/(K² − 1) + K(K − 1)/(s(K² − 1)): (K² − 1)s + (K² + 2K)s + K² − K.
-            "-(2 K^2 + 2 K - 1) s - (K^2 - K)"
-        }
-    );
+    assert_eq!(characteristic(["K", "1/(s+1) + 1/(s+1)", "1"], ""), "s + (2 K + 1)");
+    assert_eq!(characteristic(["K", "1/(s+1) + 1/(2 s+2)", "1"], ""), "2 s + (3 K + 2)");
+    assert_eq!(characteristic(["K", "1/(s^2+3 s+2) + 1/(s+1)", "1"], ""), "s^2 + (K + 3) s + (3 K + 2)");
+    assert_eq!(characteristic(["K", "1/(K s+1) + 1/(K s+1)", "1"], ""), "K s + (2 K + 1)");
+    assert_eq!(characteristic(["K", "1/(K^2 - 1) + 1/(K - 1) + 1/(s (K + 1))", "1"], ""), {
+        // K(1 + (K + 1))/(K² − 1) + K(K − 1)/(s(K² − 1)): (K² − 1)s + (K² + 2K)s + K² − K.
+        "-(2 K^2 + 2 K - 1) s - (K^2 - K)"
+    });
     // The same factor above and below is a fixed mode.
-    assert_eq!(
-        characteristic(["K (s + 1)/(s + 1)", "1/s", "1"], ""),
-        "s^2 + (K + 1) s + K"
-    );
-    assert_eq!(
-        characteristic(["K (s + 1)", "1/(s^2 + s)", "1"], ""),
-        "s^2 + (K + 1) s + K"
-    );
+    assert_eq!(characteristic(["K (s + 1)/(s + 1)", "1/s", "1"], ""), "s^2 + (K + 1) s + K");
+    assert_eq!(characteristic(["K (s + 1)", "1/(s^2 + s)", "1"], ""), "s^2 + (K + 1) s + K");
     let fixed = build(&project(["K", "(s-1)/((s-1)(s+2))", "1"], "", "K")).unwrap();
-    assert_eq!(
-        (fixed.open_loop.zero_count(), fixed.open_loop.pole_count()),
-        (1, 2)
-    );
+    assert_eq!((fixed.open_loop.zero_count(), fixed.open_loop.pole_count()), (1, 2));
 }
 
 #[test]
 fn compound_fractions_are_cleared() {
     // An inner loop: G/(1 + G) with G = 1/(s + 1) has one pole, at −2.
-    assert_eq!(
-        characteristic(["K", "(1/(s+1))/(1 + 1/(s+1))", "1"], ""),
-        "s + (K + 2)"
-    );
-    assert_eq!(
-        characteristic(["K", "(1 + 1/s)^-1", "1"], ""),
-        "(K + 1) s + 1"
-    );
+    assert_eq!(characteristic(["K", "(1/(s+1))/(1 + 1/(s+1))", "1"], ""), "s + (K + 2)");
+    assert_eq!(characteristic(["K", "(1 + 1/s)^-1", "1"], ""), "(K + 1) s + 1");
 }
 
 #[test]
 fn a_zero_block_leaves_the_poles() {
-    assert_eq!(
-        characteristic(["K", "0/(s + 3)", "1/(s + 1)"], ""),
-        "s^2 + 4 s + 3"
-    );
+    assert_eq!(characteristic(["K", "0/(s + 3)", "1/(s + 1)"], ""), "s^2 + 4 s + 3");
     assert_eq!(characteristic(["K", "(0 s)/(s + 3)", "1"], ""), "s + 3");
 }
 
@@ -203,21 +120,13 @@ fn a_factor_in_the_knob_alone_is_divided_out_and_told() {
     let model = build(&project(["1/K", "K/(K s + K)", "1"], "", "K")).unwrap();
     assert_eq!(formula(&model.characteristic, "K"), "K s + (K + 1)");
     assert_eq!(model.knob_factor.as_deref(), Some("K"));
-    assert_eq!(
-        build(&project(["K", "1/s", "1"], "", "K"))
-            .unwrap()
-            .knob_factor,
-        None
-    );
+    assert_eq!(build(&project(["K", "1/s", "1"], "", "K")).unwrap().knob_factor, None);
 }
 
 #[test]
 fn the_sign_is_positive_where_highest_order_meets_lowest_knob_power() {
     assert_eq!(characteristic(["K", "1/(1 - s)", "1"], ""), "s - (K + 1)");
-    assert_eq!(
-        characteristic(["K s - 1", "1/(s + 2)", "-1"], ""),
-        "-(K - 1) s + 3"
-    );
+    assert_eq!(characteristic(["K s - 1", "1/(s + 2)", "-1"], ""), "-(K - 1) s + 3");
 }
 
 #[test]
@@ -226,19 +135,9 @@ fn every_fault_of_a_block_is_told_at_its_field() {
     assert_eq!(
         found,
         [
-            in_block(
-                Field::Controller,
-                2,
-                3,
-                "this bracket is not closed: type )"
-            ),
+            in_block(Field::Controller, 2, 3, "this bracket is not closed: type )"),
             in_block(Field::Plant, 0, 3, "use a decimal point: 0.5"),
-            in_block(
-                Field::Sensor,
-                0,
-                0,
-                "type a transfer function, such as 2/(s + 1)"
-            ),
+            in_block(Field::Sensor, 0, 0, "type a transfer function, such as 2/(s + 1)"),
         ]
     );
 }
@@ -246,106 +145,51 @@ fn every_fault_of_a_block_is_told_at_its_field() {
 #[test]
 fn division_by_zero_names_what_is_zero() {
     let zero = "division by zero: this is zero for every s; change it";
-    assert_eq!(
-        only_problem(["K", "1/(s - s)", "1"], "", "K"),
-        in_block(Field::Plant, 2, 9, zero)
-    );
-    assert_eq!(
-        only_problem(["K", "0^-1", "1"], "", "K"),
-        in_block(Field::Plant, 0, 1, zero)
-    );
+    assert_eq!(only_problem(["K", "1/(s - s)", "1"], "", "K"), in_block(Field::Plant, 2, 9, zero));
+    assert_eq!(only_problem(["K", "0^-1", "1"], "", "K"), in_block(Field::Plant, 0, 1, zero));
     assert_eq!(
         only_problem(["K", "1/(s (τ - 0.1))", "1"], "tau = 0.10", "K"),
-        in_block(
-            Field::Plant,
-            2,
-            15,
-            "division by zero for tau = 0.10: change tau or this denominator"
-        )
+        in_block(Field::Plant, 2, 15, "division by zero for tau = 0.10: change tau or this denominator")
     );
-    assert_eq!(
-        only_problem(["K", "1/(a - a)", "1"], "a = 3", "K"),
-        in_block(Field::Plant, 2, 9, zero)
-    );
+    assert_eq!(only_problem(["K", "1/(a - a)", "1"], "a = 3", "K"), in_block(Field::Plant, 2, 9, zero));
 }
 
 #[test]
 fn names_without_value_are_asked_for() {
-    let found = problems(&project(
-        ["K", "g/(tau s2 + 1)", "1"],
-        "g = ; tau = 0,8",
-        "K",
-    ));
-    let row = |symbol: &str, span, message: &str| {
-        (
-            Field::Quantity,
-            Some(symbol.to_string()),
-            span,
-            message.to_string(),
-        )
-    };
+    let found = problems(&project(["K", "g/(tau s2 + 1)", "1"], "g = ; tau = 0,8", "K"));
+    let row =
+        |symbol: &str, span, message: &str| (Field::Quantity, Some(symbol.to_string()), span, message.to_string());
     assert_eq!(
         found,
         [
-            row(
-                "g",
-                None,
-                "give a value for g: type a number in the quantities table"
-            ),
+            row("g", None, "give a value for g: type a number in the quantities table"),
             row("tau", Some([0, 3]), "use a decimal point: 0.8"),
-            row(
-                "s2",
-                None,
-                "give a value for s2: type a number in the quantities table, or s^2 for the power"
-            ),
+            row("s2", None, "give a value for s2: type a number in the quantities table, or s^2 for the power"),
         ]
     );
 }
 
 #[test]
 fn rows_are_checked() {
-    let row = |symbol: &str, message: &str| {
-        (
-            Field::Quantity,
-            Some(symbol.to_string()),
-            None,
-            message.to_string(),
-        )
-    };
+    let row = |symbol: &str, message: &str| (Field::Quantity, Some(symbol.to_string()), None, message.to_string());
     assert_eq!(
         only_problem(["K", "1/(tau s + 1)", "1"], "tau = 1; τ = 2; tau = 3", "K"),
         row("τ", "tau stands in two rows: keep one")
     );
     assert_eq!(
         only_problem(["K", "1/s", "1"], "s = 1", "K"),
-        row(
-            "s",
-            "s is the Laplace variable and has no value: remove this row"
-        )
+        row("s", "s is the Laplace variable and has no value: remove this row")
     );
     // Rows that no block uses may hold anything.
-    assert!(
-        build(&project(
-            ["K", "1/s", "1"],
-            "unused = 1,2; 5 % = 3; = 4",
-            "K"
-        ))
-        .is_ok()
-    );
+    assert!(build(&project(["K", "1/s", "1"], "unused = 1,2; 5 % = 3; = 4", "K")).is_ok());
 }
 
 #[test]
 fn the_knob_is_asked_for() {
     let knob = |message: &str| (Field::Knob, None, None, message.to_string());
     let blocks = ["K", "1/s", "1"];
-    assert_eq!(
-        only_problem(blocks, "", " "),
-        knob("choose the knob: the quantity left to choose")
-    );
-    assert_eq!(
-        only_problem(blocks, "K = 1", "s"),
-        knob("s is the Laplace variable: choose a quantity as the knob")
-    );
+    assert_eq!(only_problem(blocks, "", " "), knob("choose the knob: the quantity left to choose"));
+    assert_eq!(only_problem(blocks, "K = 1", "s"), knob("s is the Laplace variable: choose a quantity as the knob"));
     assert_eq!(
         only_problem(blocks, "K = 1", "2 K"),
         knob("choose one quantity as the knob: type one name, such as K or tau_m")
@@ -357,16 +201,10 @@ fn the_setting_is_an_exact_decimal() {
     let mut project = project(["K", "1/s", "1"], "", "K");
     assert_eq!(build(&project).unwrap().setting, None);
     project.setting.value = "−0.5".into();
-    assert_eq!(
-        build(&project).unwrap().setting,
-        Some(RBig::from_parts((-1).into(), 2u8.into()))
-    );
+    assert_eq!(build(&project).unwrap().setting, Some(RBig::from_parts((-1).into(), 2u8.into())));
     project.setting.value = "1e61".into();
     let message = "1e61 is out of range: type an exponent from -60 to 60";
-    assert_eq!(
-        problems(&project),
-        [in_block(Field::Setting, 0, 4, message)]
-    );
+    assert_eq!(problems(&project), [in_block(Field::Setting, 0, 4, message)]);
 }
 
 #[test]
@@ -382,12 +220,7 @@ fn blocks_that_are_no_ratio_of_polynomials_are_refused() {
     );
     assert_eq!(
         only_problem(["K exp(2)", "1/s", "1"], "", "K"),
-        in_block(
-            Field::Controller,
-            2,
-            8,
-            "not a ratio of polynomials in s: type the value of exp(2) as a decimal"
-        )
+        in_block(Field::Controller, 2, 8, "not a ratio of polynomials in s: type the value of exp(2) as a decimal")
     );
 }
 
@@ -404,21 +237,11 @@ fn loops_beyond_the_limits_are_refused_at_once() {
     );
     assert_eq!(
         only_problem(["K", "1/((((s+1)^40)^40)^40)^40", "1"], "", "K"),
-        in_block(
-            Field::Plant,
-            2,
-            25,
-            "this has order 2560000; Stayband treats up to 40"
-        )
+        in_block(Field::Plant, 2, 25, "this has order 2560000; Stayband treats up to 40")
     );
     assert_eq!(
         only_problem(["K", "1/((s+1)^40 (s+1) s^-1 + 1)", "1"], "", "K"),
-        in_block(
-            Field::Plant,
-            2,
-            27,
-            "this has order 41; Stayband treats up to 40"
-        )
+        in_block(Field::Plant, 2, 27, "this has order 41; Stayband treats up to 40")
     );
     assert_eq!(
         only_problem(["K^13", "1/s", "1"], "", "K"),
@@ -426,12 +249,7 @@ fn loops_beyond_the_limits_are_refused_at_once() {
     );
     assert_eq!(
         only_problem(["K", "((1e60^40)^40) s", "1"], "", "K"),
-        in_block(
-            Field::Plant,
-            0,
-            14,
-            "the numbers here are out of range: type fewer digits or smaller powers"
-        )
+        in_block(Field::Plant, 0, 14, "the numbers here are out of range: type fewer digits or smaller powers")
     );
     assert!(build(&project(["K", "1/(1e-9 s + 1)^40", "1"], "", "K")).is_ok());
 }
@@ -439,10 +257,7 @@ fn loops_beyond_the_limits_are_refused_at_once() {
 #[test]
 fn loops_without_poles_are_refused() {
     let about_loop = |message: &str| (Field::Loop, None, None, message.to_string());
-    assert_eq!(
-        only_problem(["K", "2", "1"], "", "K"),
-        about_loop("the loop has no poles: type a block with s in it")
-    );
+    assert_eq!(only_problem(["K", "2", "1"], "", "K"), about_loop("the loop has no poles: type a block with s in it"));
     let mut positive = project(["1", "(s + 1)/(s + 1)", "1"], "", "K");
     positive.blocks.feedback = Feedback::Positive;
     assert_eq!(
@@ -465,29 +280,16 @@ fn improper_blocks_are_noticed() {
     let model = build(&project(["K (1 + 0.1 s)", "2/(s + 1)^2", "1"], "", "K")).unwrap();
     let text = "the controller is improper, with 1 zero and 0 poles: no device can be built like that; add 1 filter pole, \
                 such as 1/(0.01 s + 1)";
-    assert_eq!(
-        model.notices,
-        [Notice {
-            kind: NoticeKind::ImproperBlock,
-            text: text.into()
-        }]
-    );
+    assert_eq!(model.notices, [Notice { kind: NoticeKind::ImproperBlock, text: text.into() }]);
     let mut algebraic = project(["1", "s^2/(s^2 + s + 1)", "1"], "", "K");
     algebraic.blocks.feedback = Feedback::Positive;
-    assert_eq!(
-        build(&algebraic).unwrap().notices[0].kind,
-        NoticeKind::AlgebraicLoop
-    );
+    assert_eq!(build(&algebraic).unwrap().notices[0].kind, NoticeKind::AlgebraicLoop);
 }
 
 #[test]
 fn what_can_be_read_is_shown_beside_faults() {
     let shown = reading(&project(["K (1 + 1/(T s))", "1/(", "τ"], "", ""));
-    assert!(
-        shown
-            .controller
-            .is_some_and(|text| text.contains("<mfrac>"))
-    );
+    assert!(shown.controller.is_some_and(|text| text.contains("<mfrac>")));
     assert_eq!(shown.plant, None);
     assert_eq!(shown.sensor.as_deref(), Some("<math><mi>τ</mi></math>"));
     assert_eq!(shown.names, ["K", "T", "tau"]);
@@ -500,21 +302,14 @@ fn the_record_holds_integers_and_the_equation() {
     assert_eq!((record.order, record.knob_degree), (1, 1));
     assert_eq!(record.coefficients, [vec!["-2", "1"], vec!["1"]]);
     let left = "<mi>F</mi><mo>\u{2061}</mo><mrow><mo>(</mo><mi>s</mi><mo>)</mo></mrow>";
-    let sum = "<mrow><mi>s</mi><mo>+</mo><mrow><mo>(</mo><mrow><mi>K</mi><mo>−</mo><mn>2</mn></mrow><mo>)</mo></mrow></mrow>";
-    assert_eq!(
-        record.mathml,
-        format!("<math>{left}<mo>=</mo>{sum}<mo>=</mo><mn>0</mn></math>")
-    );
+    let sum =
+        "<mrow><mi>s</mi><mo>+</mo><mrow><mo>(</mo><mrow><mi>K</mi><mo>−</mo><mn>2</mn></mrow><mo>)</mo></mrow></mrow>";
+    assert_eq!(record.mathml, format!("<math>{left}<mo>=</mo>{sum}<mo>=</mo><mn>0</mn></math>"));
 }
 
 #[test]
 fn long_integers_are_shown_rounded() {
-    let shown = |integer: &str| {
-        formula(
-            &KnobPolynomial::new(vec![vec![integer.parse().unwrap()]]),
-            "K",
-        )
-    };
+    let shown = |integer: &str| formula(&KnobPolynomial::new(vec![vec![integer.parse().unwrap()]]), "K");
     assert_eq!(shown("123456789012"), "123456789012");
     assert_eq!(shown("-1234567890123"), "-1.23457*10^12");
     assert_eq!(shown("9999999999999"), "1*10^13");
@@ -522,20 +317,17 @@ fn long_integers_are_shown_rounded() {
 
 /// Pieces of blocks that evaluate to something more often than not.
 fn block() -> impl Strategy<Value = String> {
-    let leaf = proptest::sample::select(&[
-        "s", "K", "tau", "a", "2", "0.5", "0", "1e3", "s", "(s + 1)", "(s - 1)",
-    ]);
-    leaf.prop_map(String::from)
-        .prop_recursive(5, 30, 3, |inner| {
-            let pair = (inner.clone(), inner.clone());
-            prop_oneof![
-                pair.clone().prop_map(|(a, b)| format!("({a} + {b})")),
-                pair.clone().prop_map(|(a, b)| format!("({a} - ({b}))")),
-                pair.clone().prop_map(|(a, b)| format!("({a})*({b})")),
-                pair.prop_map(|(a, b)| format!("({a})/({b})")),
-                (inner, -3i32..9).prop_map(|(a, n)| format!("({a})^{n}")),
-            ]
-        })
+    let leaf = proptest::sample::select(&["s", "K", "tau", "a", "2", "0.5", "0", "1e3", "s", "(s + 1)", "(s - 1)"]);
+    leaf.prop_map(String::from).prop_recursive(5, 30, 3, |inner| {
+        let pair = (inner.clone(), inner.clone());
+        prop_oneof![
+            pair.clone().prop_map(|(a, b)| format!("({a} + {b})")),
+            pair.clone().prop_map(|(a, b)| format!("({a} - ({b}))")),
+            pair.clone().prop_map(|(a, b)| format!("({a})*({b})")),
+            pair.prop_map(|(a, b)| format!("({a})/({b})")),
+            (inner, -3i32..9).prop_map(|(a, n)| format!("({a})^{n}")),
+        ]
+    })
 }
 
 fn any_block() -> impl Strategy<Value = String> {
@@ -559,15 +351,11 @@ fn value_at(expression: &Expression, x: &RBig, knob: &RBig, others: &RBig) -> Op
         Node::Negation(inner) => -part(inner)?,
         Node::Sum(terms) => terms.iter().try_fold(RBig::ZERO, |sum, term| {
             let value = part(&term.expression)?;
-            Some(if term.sign == Sign::Plus {
-                sum + value
-            } else {
-                sum - value
-            })
+            Some(if term.sign == Sign::Plus { sum + value } else { sum - value })
         })?,
-        Node::Product(factors) => factors
-            .iter()
-            .try_fold(RBig::ONE, |product, factor| Some(product * part(factor)?))?,
+        Node::Product(factors) => {
+            factors.iter().try_fold(RBig::ONE, |product, factor| Some(product * part(factor)?))?
+        }
         Node::Quotient(above, below) => {
             let (above, below) = (part(above)?, part(below)?);
             if below.is_zero() {
@@ -590,17 +378,14 @@ fn value_at(expression: &Expression, x: &RBig, knob: &RBig, others: &RBig) -> Op
 
 fn polynomial_at(rows: &[Vec<IBig>], x: &RBig, knob: &RBig) -> RBig {
     rows.iter().rev().fold(RBig::ZERO, |sum, row| {
-        let coefficient = row.iter().rev().fold(RBig::ZERO, |sum, value| {
-            sum * knob + RBig::from(value.clone())
-        });
+        let coefficient = row.iter().rev().fold(RBig::ZERO, |sum, value| sum * knob + RBig::from(value.clone()));
         sum * x + coefficient
     })
 }
 
 fn factors_at(factors: &[Factor], x: &RBig, knob: &RBig) -> RBig {
     factors.iter().fold(RBig::ONE, |product, factor| {
-        product
-            * polynomial_at(factor.polynomial.coefficients(), x, knob).pow(factor.exponent as isize)
+        product * polynomial_at(factor.polynomial.coefficients(), x, knob).pow(factor.exponent as isize)
     })
 }
 

@@ -24,37 +24,14 @@ pub fn decimal(text: &str) -> Result<RBig, NotationError> {
     let lexemes = lexemes(&characters)?;
     let (negative, rest) = match lexemes.as_slice() {
         [] => return Err(NotationError::EmptyNumber { span }),
-        [
-            Lexeme {
-                token: Token::Minus,
-                ..
-            },
-            rest @ ..,
-        ] => (true, rest),
-        [
-            Lexeme {
-                token: Token::Plus, ..
-            },
-            rest @ ..,
-        ] => (false, rest),
+        [Lexeme { token: Token::Minus, .. }, rest @ ..] => (true, rest),
+        [Lexeme { token: Token::Plus, .. }, rest @ ..] => (false, rest),
         rest => (false, rest),
     };
     match rest {
-        [
-            Lexeme {
-                token: Token::Number(number),
-                ..
-            },
-        ] if negative => Ok(-number.value.clone()),
-        [
-            Lexeme {
-                token: Token::Number(number),
-                ..
-            },
-        ] => Ok(number.value.clone()),
-        _ if lexemes.iter().any(|lexeme| lexeme.token == Token::Over) => {
-            Err(NotationError::FractionAsNumber { span })
-        }
+        [Lexeme { token: Token::Number(number), .. }] if negative => Ok(-number.value.clone()),
+        [Lexeme { token: Token::Number(number), .. }] => Ok(number.value.clone()),
+        _ if lexemes.iter().any(|lexeme| lexeme.token == Token::Over) => Err(NotationError::FractionAsNumber { span }),
         _ => Err(NotationError::NotANumber { span }),
     }
 }

@@ -1,9 +1,7 @@
 //! What can be wrong with a typed text; every message says what to type.
 
 use super::expression::Span;
-use super::{
-    MAXIMUM_DECIMAL_EXPONENT, MAXIMUM_DEPTH, MAXIMUM_DIGITS, MAXIMUM_LENGTH, MAXIMUM_POWER,
-};
+use super::{MAXIMUM_DECIMAL_EXPONENT, MAXIMUM_DEPTH, MAXIMUM_DIGITS, MAXIMUM_LENGTH, MAXIMUM_POWER};
 use alloc::string::String;
 use core::fmt;
 
@@ -258,9 +256,8 @@ impl fmt::Display for NotationError {
             }
             Self::MissingArgument { .. } => out.write_str("type the exponent in brackets: exp(-0.2 s)"),
             Self::OpenExponent { .. } => out.write_str("put the exponent in brackets: e^(-0.2 s)"),
-            Self::SampledVariable { .. } => {
-                out.write_str("z belongs to sampled controllers, which this version does not treat: write the loop in s")
-            }
+            Self::SampledVariable { .. } => out
+                .write_str("z belongs to sampled controllers, which this version does not treat: write the loop in s"),
             Self::AmbiguousName { product, name, .. } => {
                 write!(out, "a product or a name: type {product} for the product, {name} for the name")
             }
@@ -315,9 +312,7 @@ fn unknown_character(character: char, out: &mut fmt::Formatter<'_>) -> fmt::Resu
         '√' => "type a power with a whole exponent, or a decimal",
         '_' => "type a letter before it, such as T_i",
         '<' | '>' | '|' | '&' | '!' | '?' => "type one transfer function, such as 2/(s + 1)",
-        letter if letter.is_alphabetic() => {
-            "type names with the letters a to z, A to Z or Greek ones"
-        }
+        letter if letter.is_alphabetic() => "type names with the letters a to z, A to Z or Greek ones",
         control if control.is_control() => {
             return out.write_str("remove the character that cannot be shown");
         }

@@ -99,11 +99,7 @@ impl Expression {
     /// An expression without brackets of its own.
     #[must_use]
     pub const fn new(node: Node, span: Span) -> Self {
-        Self {
-            node,
-            span,
-            bracketed: false,
-        }
+        Self { node, span, bracketed: false }
     }
 
     /// The direct parts, from left to right.

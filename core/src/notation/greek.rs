@@ -2,16 +2,14 @@
 
 /// Spelled names of α to ω in the order of Unicode; the second sigma is the final form ς.
 const GREEK: [&str; 25] = [
-    "alpha", "beta", "gamma", "delta", "epsilon", "zeta", "eta", "theta", "iota", "kappa",
-    "lambda", "mu", "nu", "xi", "omicron", "pi", "rho", "sigma", "sigma", "tau", "upsilon", "phi",
-    "chi", "psi", "omega",
+    "alpha", "beta", "gamma", "delta", "epsilon", "zeta", "eta", "theta", "iota", "kappa", "lambda", "mu", "nu", "xi",
+    "omicron", "pi", "rho", "sigma", "sigma", "tau", "upsilon", "phi", "chi", "psi", "omega",
 ];
 
 /// The same with a capital.
 const GREEK_CAPITALS: [&str; 25] = [
-    "Alpha", "Beta", "Gamma", "Delta", "Epsilon", "Zeta", "Eta", "Theta", "Iota", "Kappa",
-    "Lambda", "Mu", "Nu", "Xi", "Omicron", "Pi", "Rho", "Sigma", "Sigma", "Tau", "Upsilon", "Phi",
-    "Chi", "Psi", "Omega",
+    "Alpha", "Beta", "Gamma", "Delta", "Epsilon", "Zeta", "Eta", "Theta", "Iota", "Kappa", "Lambda", "Mu", "Nu", "Xi",
+    "Omicron", "Pi", "Rho", "Sigma", "Sigma", "Tau", "Upsilon", "Phi", "Chi", "Psi", "Omega",
 ];
 
 const ALPHA: u32 = 0x3B1;
@@ -22,9 +20,7 @@ const FINAL_SIGMA: usize = 17;
 /// The spelled name of a Greek letter: `τ` is `tau`.
 pub(super) fn spelled(letter: char) -> Option<&'static str> {
     let code = u32::from(letter);
-    let at = |first: u32, table: &[&'static str; 25]| {
-        table.get(code.checked_sub(first)? as usize).copied()
-    };
+    let at = |first: u32, table: &[&'static str; 25]| table.get(code.checked_sub(first)? as usize).copied();
     at(ALPHA, &GREEK).or_else(|| at(CAPITAL_ALPHA, &GREEK_CAPITALS))
 }
 
@@ -32,14 +28,7 @@ pub(super) fn spelled(letter: char) -> Option<&'static str> {
 pub(super) fn letter(name: &str) -> Option<char> {
     let find = |table: &[&str; 25], first: u32| {
         let index = table.iter().position(|entry| *entry == name)?;
-        char::from_u32(
-            first
-                + if index == FINAL_SIGMA {
-                    index + 1
-                } else {
-                    index
-                } as u32,
-        )
+        char::from_u32(first + if index == FINAL_SIGMA { index + 1 } else { index } as u32)
     };
     find(&GREEK, ALPHA).or_else(|| find(&GREEK_CAPITALS, CAPITAL_ALPHA))
 }
@@ -66,9 +55,7 @@ pub(super) fn plain(character: char) -> char {
         'ϱ' => 'ρ',
         'ϖ' => 'π',
         // Full-width forms of ASCII.
-        '\u{FF01}'..='\u{FF5E}' => {
-            char::from_u32(u32::from(character) - 0xFEE0).unwrap_or(character)
-        }
+        '\u{FF01}'..='\u{FF5E}' => char::from_u32(u32::from(character) - 0xFEE0).unwrap_or(character),
         '\u{1D400}'..='\u{1D7FF}' => mathematical(u32::from(character)).unwrap_or(character),
         other => other,
     }
@@ -83,27 +70,17 @@ fn mathematical(code: u32) -> Option<char> {
     const DIGITS: u32 = 0x1D7CE;
     if code < LATIN + 13 * 52 {
         let index = (code - LATIN) % 52;
-        let first = if index < 26 {
-            u32::from('A')
-        } else {
-            u32::from('a') - 26
-        };
+        let first = if index < 26 { u32::from('A') } else { u32::from('a') - 26 };
         return char::from_u32(first + index);
     }
     if (DIGITS..DIGITS + 50).contains(&code) {
         return char::from_u32(u32::from('0') + (code - DIGITS) % 10);
     }
-    let index = code
-        .checked_sub(GREEK_STYLES)
-        .filter(|index| *index < 5 * 58)?
-        % 58;
+    let index = code.checked_sub(GREEK_STYLES).filter(|index| *index < 5 * 58)? % 58;
     match index {
-        0..=24 => char::from_u32(CAPITAL_ALPHA + index)
-            .map(|letter| if index == 17 { 'Θ' } else { letter }),
+        0..=24 => char::from_u32(CAPITAL_ALPHA + index).map(|letter| if index == 17 { 'Θ' } else { letter }),
         26..=50 => char::from_u32(ALPHA + index - 26),
-        52..=57 => ['ε', 'θ', 'κ', 'φ', 'ρ', 'π']
-            .get(index as usize - 52)
-            .copied(),
+        52..=57 => ['ε', 'θ', 'κ', 'φ', 'ρ', 'π'].get(index as usize - 52).copied(),
         _ => None,
     }
 }
@@ -146,10 +123,7 @@ pub(super) fn subscript(character: char) -> Option<char> {
     if ('₀'..='₉').contains(&character) {
         return char::from_u32(u32::from(character) - 0x2080 + u32::from('0'));
     }
-    SUBSCRIPTS
-        .iter()
-        .find(|(low, _)| *low == character)
-        .map(|(_, plain)| *plain)
+    SUBSCRIPTS.iter().find(|(low, _)| *low == character).map(|(_, plain)| *plain)
 }
 
 #[cfg(test)]
@@ -165,10 +139,7 @@ mod tests {
             let name = spelled(character).unwrap();
             let back = letter(name).unwrap();
             assert_eq!(spelled(back), Some(name));
-            assert!(
-                back == character || character == 'ς' || character == '\u{3A2}',
-                "{character} came back as {back}"
-            );
+            assert!(back == character || character == 'ς' || character == '\u{3A2}', "{character} came back as {back}");
         }
     }
 
@@ -181,17 +152,7 @@ mod tests {
 
     #[test]
     fn raised_and_lowered_digits_are_read() {
-        assert!(
-            "⁰¹²³⁴⁵⁶⁷⁸⁹⁻"
-                .chars()
-                .filter_map(superscript)
-                .eq("0123456789-".chars())
-        );
-        assert!(
-            "₀₁₂₃₄₅₆₇₈₉ᵢ"
-                .chars()
-                .filter_map(subscript)
-                .eq("0123456789i".chars())
-        );
+        assert!("⁰¹²³⁴⁵⁶⁷⁸⁹⁻".chars().filter_map(superscript).eq("0123456789-".chars()));
+        assert!("₀₁₂₃₄₅₆₇₈₉ᵢ".chars().filter_map(subscript).eq("0123456789i".chars()));
     }
 }

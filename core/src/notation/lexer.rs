@@ -54,16 +54,9 @@ pub(super) struct Lexeme {
 /// The first place that is no token.
 pub(super) fn lexemes(text: &[char]) -> Result<Vec<Lexeme>, NotationError> {
     if text.len() > MAXIMUM_LENGTH {
-        return Err(NotationError::TooLong {
-            span: Span::new(MAXIMUM_LENGTH, text.len()),
-            length: text.len(),
-        });
+        return Err(NotationError::TooLong { span: Span::new(MAXIMUM_LENGTH, text.len()), length: text.len() });
     }
-    let mut lexer = Lexer {
-        text,
-        plain: text.iter().copied().map(plain).collect(),
-        position: 0,
-    };
+    let mut lexer = Lexer { text, plain: text.iter().copied().map(plain).collect(), position: 0 };
     let mut found: Vec<Lexeme> = Vec::new();
     while let Some(character) = lexer.peek(0) {
         if character == ' ' {
@@ -73,20 +66,11 @@ pub(super) fn lexemes(text: &[char]) -> Result<Vec<Lexeme>, NotationError> {
         let start = lexer.position;
         let token = lexer.token(character)?;
         let span = Span::new(start, lexer.position);
-        if let (
-            Token::Number(second),
-            Some(Lexeme {
-                token: Token::Number(first),
-                span: before,
-            }),
-        ) = (&token, found.last())
+        if let (Token::Number(second), Some(Lexeme { token: Token::Number(first), span: before })) =
+            (&token, found.last())
         {
             let (first, second) = (first.text.clone(), second.text.clone());
-            return Err(NotationError::TwoNumbers {
-                span: before.to(span),
-                first,
-                second,
-            });
+            return Err(NotationError::TwoNumbers { span: before.to(span), first, second });
         }
         found.push(Lexeme { token, span });
     }
@@ -109,8 +93,7 @@ impl Lexer<'_> {
     }
 
     fn digit(&self, ahead: usize) -> bool {
-        self.peek(ahead)
-            .is_some_and(|character| character.is_ascii_digit())
+        self.peek(ahead).is_some_and(|character| character.is_ascii_digit())
     }
 
     fn since(&self, start: usize) -> Span {
@@ -134,9 +117,7 @@ impl Lexer<'_> {
             '+' => Token::Plus,
             '-' => Token::Minus,
             '*' if self.peek(0) == Some('*') => {
-                return Err(NotationError::DoubledStar {
-                    span: Span::new(start, start + 2),
-                });
+                return Err(NotationError::DoubledStar { span: Span::new(start, start + 2) });
             }
             '*' => Token::Times,
             '/' => Token::Over,
@@ -145,10 +126,7 @@ impl Lexer<'_> {
             ')' | ']' | '}' => Token::Close(character),
             _ => {
                 let character = self.text.get(start).copied().unwrap_or(character);
-                return Err(NotationError::UnknownCharacter {
-                    span: self.since(start),
-                    character,
-                });
+                return Err(NotationError::UnknownCharacter { span: self.since(start), character });
             }
         })
     }
@@ -190,37 +168,22 @@ impl Lexer<'_> {
         }
         let digits = whole.len() + fraction.len();
         if digits > MAXIMUM_DIGITS {
-            return Err(NotationError::TooManyDigits {
-                span: self.since(start),
-                digits,
-            });
+            return Err(NotationError::TooManyDigits { span: self.since(start), digits });
         }
-        let value = value(&whole, &fraction, exponent).ok_or(NotationError::NotANumber {
-            span: self.since(start),
-        })?;
-        Ok(Number {
-            value,
-            text: self.typed(start),
-        })
+        let value = value(&whole, &fraction, exponent).ok_or(NotationError::NotANumber { span: self.since(start) })?;
+        Ok(Number { value, text: self.typed(start) })
     }
 
     /// The characters since `start`, without decoration.
     fn typed(&self, start: usize) -> String {
-        self.plain
-            .get(start..self.position)
-            .unwrap_or_default()
-            .iter()
-            .collect()
+        self.plain.get(start..self.position).unwrap_or_default().iter().collect()
     }
 
     fn exponent(&mut self, start: usize, negative: bool) -> Result<i32, NotationError> {
         let digits = self.digits();
         match digits.parse::<i32>() {
             Ok(size) if size <= MAXIMUM_DECIMAL_EXPONENT => Ok(if negative { -size } else { size }),
-            _ => Err(NotationError::ExponentOutOfRange {
-                span: self.since(start),
-                number: self.typed(start),
-            }),
+            _ => Err(NotationError::ExponentOutOfRange { span: self.since(start), number: self.typed(start) }),
         }
     }
 
@@ -236,18 +199,13 @@ impl Lexer<'_> {
         let typed = self.typed(start);
         let single = typed.matches(',').count() == 1 && !typed.contains('.');
         let suggestion = typed.replace(',', if single { "." } else { "" });
-        Err(NotationError::DecimalComma {
-            span: self.since(start),
-            suggestion,
-        })
+        Err(NotationError::DecimalComma { span: self.since(start), suggestion })
     }
 
     /// A name with its subscripts, or one of the words with a meaning of their own.
     fn word(&mut self) -> Result<Token, NotationError> {
         let start = self.position;
-        let base = self.run(|character| {
-            (is_letter(character) || character.is_ascii_digit()).then_some(character)
-        });
+        let base = self.run(|character| (is_letter(character) || character.is_ascii_digit()).then_some(character));
         let mut name = self.canonical_base(start, &base)?;
         while let Some(part) = self.subscript(start)? {
             name.push('_');
@@ -257,47 +215,30 @@ impl Lexer<'_> {
             "s" => Ok(Token::Laplace),
             "e" => Ok(Token::Base),
             "exp" => Ok(Token::Exponential),
-            "z" => Err(NotationError::SampledVariable {
-                span: self.since(start),
-            }),
+            "z" => Err(NotationError::SampledVariable { span: self.since(start) }),
             _ => Ok(Token::Name(name)),
         }
     }
 
     /// Greek letters stand alone: beside another letter they make a product or a name, and only the user knows which.
     fn canonical_base(&self, start: usize, base: &str) -> Result<String, NotationError> {
-        let letters: Vec<char> = base
-            .chars()
-            .filter(|character| !character.is_ascii_digit())
-            .collect();
+        let letters: Vec<char> = base.chars().filter(|character| !character.is_ascii_digit()).collect();
         if letters.len() > 1 && letters.iter().any(|letter| spelled(*letter).is_some()) {
-            let cut = if letters
-                .first()
-                .is_some_and(|first| spelled(*first).is_some())
-            {
-                base.char_indices()
-                    .skip(1)
-                    .find(|(_, character)| is_letter(*character))
+            let cut = if letters.first().is_some_and(|first| spelled(*first).is_some()) {
+                base.char_indices().skip(1).find(|(_, character)| is_letter(*character))
             } else {
-                base.char_indices()
-                    .find(|(_, character)| spelled(*character).is_some())
+                base.char_indices().find(|(_, character)| spelled(*character).is_some())
             };
             let (left, right) = base.split_at(cut.map_or(base.len(), |(index, _)| index));
             let (product, name) = (format!("{left} {right}"), format!("{left}_{right}"));
-            return Err(NotationError::AmbiguousName {
-                span: self.since(start),
-                product,
-                name,
-            });
+            return Err(NotationError::AmbiguousName { span: self.since(start), product, name });
         }
         Ok(spell(base))
     }
 
     /// The next subscript of a name: `_i`, `_{i}`, `ᵢ`.
     fn subscript(&mut self, start: usize) -> Result<Option<String>, NotationError> {
-        let inside = |character: char| {
-            (is_letter(character) || character.is_ascii_digit()).then_some(character)
-        };
+        let inside = |character: char| (is_letter(character) || character.is_ascii_digit()).then_some(character);
         let lowered = self.run(subscript);
         if !lowered.is_empty() {
             return Ok(Some(lowered));
@@ -311,16 +252,11 @@ impl Lexer<'_> {
         let opening = self.position;
         let part = self.run(inside);
         if part.is_empty() {
-            return Err(NotationError::MissingSubscript {
-                span: self.since(start),
-            });
+            return Err(NotationError::MissingSubscript { span: self.since(start) });
         }
         if braced {
             if self.peek(0) != Some('}') {
-                return Err(NotationError::MissingClosing {
-                    span: Span::new(opening - 1, opening),
-                    closing: '}',
-                });
+                return Err(NotationError::MissingClosing { span: Span::new(opening - 1, opening), closing: '}' });
             }
             self.position += 1;
         }

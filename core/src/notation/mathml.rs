@@ -43,11 +43,7 @@ pub fn equation_mathml(expression: &Expression, relation: Relation) -> String {
 
 /// The expression with the brackets it was typed in.
 fn shown(expression: &Expression) -> String {
-    if expression.bracketed {
-        fenced(expression)
-    } else {
-        bare(expression)
-    }
+    if expression.bracketed { fenced(expression) } else { bare(expression) }
 }
 
 /// The expression in brackets.
@@ -61,10 +57,7 @@ fn bare(expression: &Expression) -> String {
         Node::Number(number) => format!("<mn>{}</mn>", escaped(&number.text)),
         Node::Name(name) => name_mathml(name),
         Node::Laplace => "<mi>s</mi>".to_string(),
-        Node::Sum(terms) => format!(
-            "<mrow>{}</mrow>",
-            terms.iter().enumerate().map(term).collect::<String>()
-        ),
+        Node::Sum(terms) => format!("<mrow>{}</mrow>", terms.iter().enumerate().map(term).collect::<String>()),
         Node::Negation(inner) => format!("<mrow><mo>−</mo>{}</mrow>", operand(inner)),
         Node::Product(factors) => format!("<mrow>{}</mrow>", product(factors)),
         Node::Quotient(numerator, denominator) => {
@@ -85,11 +78,7 @@ fn term((index, term): (usize, &Term)) -> String {
     };
     format!(
         "{sign}{}",
-        if index == 0 && term.sign == Sign::Plus {
-            shown(&term.expression)
-        } else {
-            operand(&term.expression)
-        }
+        if index == 0 && term.sign == Sign::Plus { shown(&term.expression) } else { operand(&term.expression) }
     )
 }
 
@@ -106,11 +95,7 @@ fn product(factors: &[Expression]) -> String {
     let mut found = String::new();
     for (index, factor) in factors.iter().enumerate() {
         if index > 0 {
-            found.push_str(if begins_with_digit(factor) {
-                "<mo>⋅</mo>"
-            } else {
-                "<mo>\u{2062}</mo>"
-            });
+            found.push_str(if begins_with_digit(factor) { "<mo>⋅</mo>" } else { "<mo>\u{2062}</mo>" });
         }
         found.push_str(&operand(factor));
     }
@@ -137,11 +122,7 @@ fn power_base(base: &Expression) -> String {
 
 fn whole(exponent: i32) -> String {
     let size = exponent.unsigned_abs();
-    if exponent < 0 {
-        format!("<mrow><mo>−</mo><mn>{size}</mn></mrow>")
-    } else {
-        format!("<mn>{size}</mn>")
-    }
+    if exponent < 0 { format!("<mrow><mo>−</mo><mn>{size}</mn></mrow>") } else { format!("<mn>{size}</mn>") }
 }
 
 /// A name with its subscripts lowered.
@@ -177,8 +158,5 @@ fn identifier(word: &str) -> String {
 
 /// Text that may stand in an element.
 fn escaped(text: &str) -> String {
-    text.replace('&', "&amp;")
-        .replace('<', "&lt;")
-        .replace('>', "&gt;")
-        .replace('"', "&quot;")
+    text.replace('&', "&amp;").replace('<', "&lt;").replace('>', "&gt;").replace('"', "&quot;")
 }

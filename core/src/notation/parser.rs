@@ -29,31 +29,17 @@ pub fn read(text: &str) -> Result<Expression, NotationError> {
     let characters: Vec<char> = text.chars().collect();
     let lexemes = lexemes(&characters)?;
     if lexemes.is_empty() {
-        return Err(NotationError::Empty {
-            span: Span::new(0, characters.len()),
-        });
+        return Err(NotationError::Empty { span: Span::new(0, characters.len()) });
     }
-    let mut parser = Parser {
-        text: &characters,
-        lexemes: &lexemes,
-        position: 0,
-        depth: 0,
-    };
+    let mut parser = Parser { text: &characters, lexemes: &lexemes, position: 0, depth: 0 };
     let (found, _) = parser.sum()?;
     match parser.peek() {
         None => Ok(found),
-        Some(Lexeme {
-            token: Token::Close(closing),
-            span,
-        }) => Err(NotationError::MissingOpening {
-            span: *span,
-            closing: *closing,
-        }),
+        Some(Lexeme { token: Token::Close(closing), span }) => {
+            Err(NotationError::MissingOpening { span: *span, closing: *closing })
+        }
         // Whatever else may follow a sum was read as part of it.
-        Some(Lexeme { span, .. }) => Err(NotationError::NothingBefore {
-            span: *span,
-            operator: parser.typed(*span),
-        }),
+        Some(Lexeme { span, .. }) => Err(NotationError::NothingBefore { span: *span, operator: parser.typed(*span) }),
     }
 }
 
@@ -64,15 +50,8 @@ pub fn read(text: &str) -> Result<Expression, NotationError> {
 pub fn symbol(text: &str) -> Result<String, NotationError> {
     let characters: Vec<char> = text.chars().collect();
     match lexemes(&characters)?.as_slice() {
-        [
-            Lexeme {
-                token: Token::Name(name),
-                ..
-            },
-        ] => Ok(name.clone()),
-        _ => Err(NotationError::NotASymbol {
-            span: Span::new(0, characters.len()),
-        }),
+        [Lexeme { token: Token::Name(name), .. }] => Ok(name.clone()),
+        _ => Err(NotationError::NotASymbol { span: Span::new(0, characters.len()) }),
     }
 }
 
@@ -97,11 +76,7 @@ impl<'a> Parser<'a> {
     }
 
     pub(super) fn typed(&self, span: Span) -> String {
-        self.text
-            .get(span.start..span.end)
-            .unwrap_or_default()
-            .iter()
-            .collect()
+        self.text.get(span.start..span.end).unwrap_or_default().iter().collect()
     }
 
     /// Takes a sign, if one comes next.
@@ -138,10 +113,7 @@ impl<'a> Parser<'a> {
         if let Some((_, before)) = leading {
             span = before.to(span);
         }
-        let mut terms = vec![Term {
-            sign: leading.map_or(Sign::Plus, |(sign, _)| sign),
-            expression: first,
-        }];
+        let mut terms = vec![Term { sign: leading.map_or(Sign::Plus, |(sign, _)| sign), expression: first }];
         while let Some((sign, _)) = self.sign() {
             let (expression, next) = self.product()?;
             span = span.to(expression.span);
@@ -152,10 +124,7 @@ impl<'a> Parser<'a> {
             return tall(Node::Sum(terms), span, height);
         }
         match terms.pop() {
-            Some(Term {
-                sign: Sign::Minus,
-                expression,
-            }) => tall(Node::Negation(Box::new(expression)), span, height),
+            Some(Term { sign: Sign::Minus, expression }) => tall(Node::Negation(Box::new(expression)), span, height),
             Some(Term { expression, .. }) => Ok((expression, height)),
             None => Err(NotationError::Empty { span }),
         }
@@ -187,9 +156,7 @@ impl<'a> Parser<'a> {
                 }
                 _ if begins_factor(&lexeme.token) => {
                     if let Some((over, denominator)) = slash {
-                        let start = factors
-                            .first()
-                            .map_or(over.start, |quotient| quotient.span.start);
+                        let start = factors.first().map_or(over.start, |quotient| quotient.span.start);
                         return Err(self.ambiguous(start, over, denominator));
                     }
                     let (factor, next) = self.power()?;
@@ -211,31 +178,20 @@ impl<'a> Parser<'a> {
         let span = slash.to(beside);
         if beside.end - start > LONGEST_ADVICE {
             let (below, beside) = ("a/(b c)".to_string(), "a/b*c with a sign".to_string());
-            return NotationError::AmbiguousSlash {
-                span,
-                below,
-                beside,
-            };
+            return NotationError::AmbiguousSlash { span, below, beside };
         }
         let over = self.typed(Span::new(start, slash.end));
         let gap = self.typed(Span::new(denominator.end, beside.start));
         let (under, factor) = (self.typed(denominator), self.typed(beside));
         let below = format!("{over}({under}{gap}{factor})");
         let beside = format!("{over}{under}*{factor}");
-        NotationError::AmbiguousSlash {
-            span,
-            below,
-            beside,
-        }
+        NotationError::AmbiguousSlash { span, below, beside }
     }
 
     /// The place of all factors from here on that follow without sign.
     fn factors_without_sign(&mut self) -> Result<Span, NotationError> {
         let mut place = self.power()?.0.span;
-        while self
-            .peek()
-            .is_some_and(|lexeme| begins_factor(&lexeme.token))
-        {
+        while self.peek().is_some_and(|lexeme| begins_factor(&lexeme.token)) {
             place = place.to(self.power()?.0.span);
         }
         Ok(place)
@@ -267,10 +223,7 @@ impl<'a> Parser<'a> {
             Token::Exponential => {
                 self.position += 1;
                 return match self.peek() {
-                    Some(Lexeme {
-                        token: Token::Open(_),
-                        ..
-                    }) => self.exponential(span),
+                    Some(Lexeme { token: Token::Open(_), .. }) => self.exponential(span),
                     _ => Err(NotationError::MissingArgument { span }),
                 };
             }
@@ -281,22 +234,12 @@ impl<'a> Parser<'a> {
     }
 
     pub(super) fn brackets(&mut self) -> Result<Tall, NotationError> {
-        let Some(Lexeme {
-            token: Token::Open(opening),
-            span,
-        }) = self.peek()
-        else {
+        let Some(Lexeme { token: Token::Open(opening), span }) = self.peek() else {
             return Err(self.nothing_here());
         };
         self.position += 1;
-        if let Some(Lexeme {
-            token: Token::Close(_),
-            span: end,
-        }) = self.peek()
-        {
-            return Err(NotationError::EmptyBrackets {
-                span: span.to(*end),
-            });
+        if let Some(Lexeme { token: Token::Close(_), span: end }) = self.peek() {
+            return Err(NotationError::EmptyBrackets { span: span.to(*end) });
         }
         let (mut inner, height) = self.deeper(*span, Self::sum)?;
         inner.span = span.to(self.close(*opening, *span)?);
@@ -308,73 +251,33 @@ impl<'a> Parser<'a> {
     pub(super) fn close(&mut self, opening: char, start: Span) -> Result<Span, NotationError> {
         let closing = closing(opening);
         match self.peek() {
-            Some(Lexeme {
-                token: Token::Close(found),
-                span,
-            }) if *found == closing => {
+            Some(Lexeme { token: Token::Close(found), span }) if *found == closing => {
                 self.position += 1;
                 Ok(*span)
             }
-            Some(Lexeme {
-                token: Token::Close(found),
-                span,
-            }) => Err(NotationError::MismatchedBrackets {
-                span: *span,
-                found: *found,
-                closing,
-            }),
-            _ => Err(NotationError::MissingClosing {
-                span: start,
-                closing,
-            }),
+            Some(Lexeme { token: Token::Close(found), span }) => {
+                Err(NotationError::MismatchedBrackets { span: *span, found: *found, closing })
+            }
+            _ => Err(NotationError::MissingClosing { span: start, closing }),
         }
     }
 
     /// Says what is missing where a number, a name or a bracket should come next.
     fn nothing_here(&self) -> NotationError {
-        let previous = self
-            .position
-            .checked_sub(1)
-            .and_then(|index| self.lexemes.get(index));
+        let previous = self.position.checked_sub(1).and_then(|index| self.lexemes.get(index));
         match (self.peek(), previous) {
             // Two operators in a row: the later one lacks what stands before it.
-            (
-                Some(Lexeme {
-                    token: Token::Times | Token::Over | Token::Power | Token::Superscript(_),
-                    span,
-                }),
-                _,
-            ) => NotationError::NothingBefore {
-                span: *span,
-                operator: self.typed(*span),
-            },
-            (
-                Some(Lexeme {
-                    token: Token::Close(closing),
-                    span,
-                }),
-                None,
-            ) => NotationError::MissingOpening {
-                span: *span,
-                closing: *closing,
-            },
-            (
-                _,
-                Some(Lexeme {
-                    token: Token::Open(opening),
-                    span,
-                }),
-            ) => NotationError::MissingClosing {
-                span: *span,
-                closing: closing(*opening),
-            },
-            (_, Some(Lexeme { span, .. })) => NotationError::NothingAfter {
-                span: *span,
-                operator: self.typed(*span),
-            },
-            (_, None) => NotationError::Empty {
-                span: Span::new(0, self.text.len()),
-            },
+            (Some(Lexeme { token: Token::Times | Token::Over | Token::Power | Token::Superscript(_), span }), _) => {
+                NotationError::NothingBefore { span: *span, operator: self.typed(*span) }
+            }
+            (Some(Lexeme { token: Token::Close(closing), span }), None) => {
+                NotationError::MissingOpening { span: *span, closing: *closing }
+            }
+            (_, Some(Lexeme { token: Token::Open(opening), span })) => {
+                NotationError::MissingClosing { span: *span, closing: closing(*opening) }
+            }
+            (_, Some(Lexeme { span, .. })) => NotationError::NothingAfter { span: *span, operator: self.typed(*span) },
+            (_, None) => NotationError::Empty { span: Span::new(0, self.text.len()) },
         }
     }
 }
@@ -390,12 +293,7 @@ pub(super) fn closing(opening: char) -> char {
 pub(super) fn begins_factor(token: &Token) -> bool {
     matches!(
         token,
-        Token::Number(_)
-            | Token::Name(_)
-            | Token::Laplace
-            | Token::Base
-            | Token::Exponential
-            | Token::Open(_)
+        Token::Number(_) | Token::Name(_) | Token::Laplace | Token::Base | Token::Exponential | Token::Open(_)
     )
 }
 
@@ -414,10 +312,6 @@ fn joined(mut factors: Vec<Expression>, height: usize) -> Result<Tall, NotationE
     {
         return Ok((single, height));
     }
-    let span = factors
-        .iter()
-        .map(|factor| factor.span)
-        .reduce(Span::to)
-        .unwrap_or_default();
+    let span = factors.iter().map(|factor| factor.span).reduce(Span::to).unwrap_or_default();
     tall(Node::Product(factors), span, height)
 }

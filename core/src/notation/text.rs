@@ -13,11 +13,7 @@ use alloc::string::{String, ToString};
 /// ```
 #[must_use]
 pub fn text(expression: &Expression) -> String {
-    if expression.bracketed {
-        fenced(expression)
-    } else {
-        bare(expression)
-    }
+    if expression.bracketed { fenced(expression) } else { bare(expression) }
 }
 
 fn fenced(expression: &Expression) -> String {
@@ -65,10 +61,7 @@ fn operand(expression: &Expression) -> String {
 /// A number behind another factor needs a star, or it would be read as a part of it.
 fn factor((index, factor): (usize, &Expression)) -> String {
     let shown = atom(factor);
-    let joint = match (
-        index,
-        shown.starts_with(|first: char| first.is_ascii_digit() || first == '.'),
-    ) {
+    let joint = match (index, shown.starts_with(|first: char| first.is_ascii_digit() || first == '.')) {
         (0, _) => "",
         (_, true) => "*",
         (_, false) => " ",
@@ -79,9 +72,7 @@ fn factor((index, factor): (usize, &Expression)) -> String {
 /// An expression that other factors may stand beside.
 fn atom(expression: &Expression) -> String {
     match expression.node {
-        Node::Sum(_) | Node::Negation(_) | Node::Product(_) | Node::Quotient(..) => {
-            fenced(expression)
-        }
+        Node::Sum(_) | Node::Negation(_) | Node::Product(_) | Node::Quotient(..) => fenced(expression),
         _ => text(expression),
     }
 }

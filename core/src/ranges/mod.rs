@@ -12,5 +12,5 @@ mod verdict;
 
 pub use family::Family;
 pub use partition::Partition;
-pub use verdict::{Verdict, verdict};
 pub use place::{Contact, EDGE_BITS, Place, merge, samples};
+pub use verdict::{Verdict, verdict};

@@ -185,7 +185,12 @@ fn between(family: &Family, place: &Place, below: &Verdict, above: &Verdict) -> 
         [Contact::Axis { .. }] if low.right.abs_diff(high.right) == 2 => {
             let half_plane = HalfPlaneCount { right: low.right.min(high.right), axis: low.axis + 2 };
             let fixed_on_axis = low.axis > 0;
-            Ok(Verdict { half_plane, real: below.real, pairs: below.pairs, name: name(half_plane, below.pairs, fixed_on_axis) })
+            Ok(Verdict {
+                half_plane,
+                real: below.real,
+                pairs: below.pairs,
+                name: name(half_plane, below.pairs, fixed_on_axis),
+            })
         }
         _ => looked_at(family, place),
     }
@@ -197,7 +202,9 @@ fn looked_at(family: &Family, place: &Place) -> Result<Verdict, ExactError> {
     let roots: Vec<(nalgebra::Complex<f64>, usize)> =
         enclose_all(&p, ROOT_BITS)?.iter().map(|disc: &Disc| (disc.center.to_f64(), disc.multiplicity)).collect();
     let on_axis = |z: &nalgebra::Complex<f64>| libm::fabs(z.re) <= ON_AXIS * z.modulus();
-    let sum = |wanted: &dyn Fn(&nalgebra::Complex<f64>) -> bool| roots.iter().filter(|(z, _)| wanted(z)).map(|(_, m)| m).sum::<usize>();
+    let sum = |wanted: &dyn Fn(&nalgebra::Complex<f64>) -> bool| {
+        roots.iter().filter(|(z, _)| wanted(z)).map(|(_, m)| m).sum::<usize>()
+    };
     let axis = sum(&|z| on_axis(z));
     let real = sum(&|z| libm::fabs(z.im) <= ON_AXIS * z.modulus());
     let half_plane = HalfPlaneCount { right: sum(&|z| !on_axis(z) && z.re > 0.0), axis };
@@ -305,18 +312,21 @@ mod tests {
         use CharacterName::{Overdamped, Underdamped, Unstable};
         assert_eq!(found, [(2, 0, Unstable), (2, 0, Overdamped), (0, 1, Underdamped)]);
         let edge = p.character()[1].to.clone().expect("an edge");
-        assert_eq!((edge.kind, edge.name, edge.exact.as_deref()), (EdgeKind::Breakaway, CharacterName::CriticallyDamped, Some("1")));
+        assert_eq!(
+            (edge.kind, edge.name, edge.exact.as_deref()),
+            (EdgeKind::Breakaway, CharacterName::CriticallyDamped, Some("1"))
+        );
     }
 
     #[test]
     fn a_quadratic_knob_has_the_same_edges_as_its_square() {
         // s³ + 18 s² + 77 s + q²: stable for 0 < q² < 1386, so for q in ±(0, √1386).
-        let family = Family::new(
-            [IntPoly::from_i64(&[0, 77, 18, 1]), IntPoly::default(), IntPoly::from_i64(&[1])].into(),
-        )
-        .expect("not zero");
+        let family =
+            Family::new([IntPoly::from_i64(&[0, 77, 18, 1]), IntPoly::default(), IntPoly::from_i64(&[1])].into())
+                .expect("not zero");
         let p = Partition::new(&family).expect("cut");
-        let values: Vec<_> = p.stability().iter().filter_map(|r| r.to.as_ref()).map(|e| libm::round(e.value * 1e6) / 1e6).collect();
+        let values: Vec<_> =
+            p.stability().iter().filter_map(|r| r.to.as_ref()).map(|e| libm::round(e.value * 1e6) / 1e6).collect();
         assert_eq!(values, [-37.229021, 0.0, 37.229021]);
         let counts: Vec<_> = p.stability().iter().map(|r| r.unstable_poles).collect();
         assert_eq!(counts, [2, 0, 0, 2]);

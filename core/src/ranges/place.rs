@@ -52,7 +52,11 @@ pub struct Place {
 impl Place {
     /// At a rational value of the knob.
     pub fn exactly(value: RBig, contact: Contact) -> Self {
-        Self { bracket: Interval::around(&value, EDGE_BITS as usize + 8), exact: Some(value), contacts: [contact].into() }
+        Self {
+            bracket: Interval::around(&value, EDGE_BITS as usize + 8),
+            exact: Some(value),
+            contacts: [contact].into(),
+        }
     }
 
     /// Inside of a bracket.
@@ -138,7 +142,11 @@ pub(super) struct Quotient<'a> {
 ///
 /// # Errors
 /// [`ExactError::EdgeNotNarrow`] when the cap on refinement is met.
-pub(super) fn knob_at(p: &IntPoly, root: &mut RealRoot, quotients: &[Quotient<'_>]) -> Result<(Interval, Option<RBig>), ExactError> {
+pub(super) fn knob_at(
+    p: &IntPoly,
+    root: &mut RealRoot,
+    quotients: &[Quotient<'_>],
+) -> Result<(Interval, Option<RBig>), ExactError> {
     if let Some(x) = rational_root(p, root)? {
         for quotient in quotients {
             let below = value_at(quotient.below, &x);

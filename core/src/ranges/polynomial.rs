@@ -57,7 +57,11 @@ pub fn stability_places(family: &Family) -> Result<Vec<Place>, ExactError> {
             continue;
         }
         let bracket = root.bracket.rounded(EDGE_BITS as usize + 8);
-        places.push(Place { bracket, exact, contacts: omegas.into_iter().map(|omega| Contact::Axis { omega }).collect() });
+        places.push(Place {
+            bracket,
+            exact,
+            contacts: omegas.into_iter().map(|omega| Contact::Axis { omega }).collect(),
+        });
     }
     Ok(places)
 }
