@@ -6,6 +6,7 @@ use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
 use crate::locus::{Branch, LocusInput, Meeting, branches, landmarks, meetings, view};
 use crate::model::{self, KnobPolynomial, Loop};
+use crate::ranges::permitted::short;
 use crate::ranges::{Contact, Family, Partition, verdict};
 use crate::record::{
     CharacterRange, ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Point, Root, StabilityRange, View,
@@ -211,21 +212,6 @@ fn fixed_mode(factor: &IntPoly, knob: &str) -> Result<Notice, ExactError> {
 /// A root in four digits, for a sentence.
 fn written(root: &Root) -> String {
     if root.im == 0.0 { short(root.re) } else { format!("{} ± {} j", short(root.re), short(root.im)) }
-}
-
-/// Four significant digits, for a sentence.
-fn short(value: f64) -> String {
-    let magnitude = libm::fabs(value);
-    let text = if magnitude == 0.0 {
-        "0".to_string()
-    } else if (1e-3..1e5).contains(&magnitude) {
-        let decimals = (3 - libm::floor(libm::log10(magnitude)) as i32).max(0) as usize;
-        let text = format!("{magnitude:.decimals$}");
-        if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_string() } else { text }
-    } else {
-        format!("{magnitude:.3e}")
-    };
-    if value < 0.0 { format!("−{text}") } else { text }
 }
 
 fn not_computed(what: &str, error: &ExactError) -> Notice {

@@ -54,8 +54,10 @@ pub enum Field {
     Quantity,
     /// The choice of the knob.
     Knob,
-    /// The setting.
+    /// The setting or its scale.
     Setting,
+    /// A requirement; the symbol is its kind.
+    Requirement,
     /// The loop as a whole.
     Loop,
     /// The project document itself.

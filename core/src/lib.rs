@@ -15,3 +15,5 @@ pub mod notation;
 pub mod project;
 pub mod ranges;
 pub mod record;
+pub mod response;
+pub mod setting;

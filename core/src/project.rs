@@ -25,9 +25,12 @@ pub struct Project {
     pub quantities: Vec<Quantity>,
     /// The symbol of the quantity left to choose.
     pub knob: String,
-    /// The chosen setting.
+    /// The chosen setting, in the controller's own scale.
     #[serde(default)]
     pub setting: Setting,
+    /// What the loop must do besides being stable.
+    #[serde(default)]
+    pub requirements: Vec<Requirement>,
 }
 
 /// The blocks as typed.
@@ -81,7 +84,7 @@ pub struct Quantity {
     pub meaning: String,
 }
 
-/// The chosen setting of the knob.
+/// The chosen setting, and the controller's scale on which it stands.
 #[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
 #[serde(rename_all = "camelCase", deny_unknown_fields)]
 #[cfg_attr(feature = "types", derive(ts_rs::TS))]
@@ -89,4 +92,101 @@ pub struct Setting {
     /// An exact decimal, as typed. Empty while not yet chosen.
     #[serde(default)]
     pub value: String,
+    /// What the controller calls it. Empty: the knob's own symbol.
+    #[serde(default)]
+    pub name: String,
+    /// The controller's unit, as a note to the reader.
+    #[serde(default)]
+    pub unit: String,
+    /// How the knob follows from the setting.
+    #[serde(default)]
+    pub direction: Direction,
+    /// Knob per setting, or knob times setting: an expression in numbers and quantities. Empty: 1.
+    #[serde(default)]
+    pub factor: String,
+    /// The smallest setting the controller takes, an exact decimal. Empty: none.
+    #[serde(default)]
+    pub minimum: String,
+    /// The largest setting the controller takes, an exact decimal. Empty: none.
+    #[serde(default)]
+    pub maximum: String,
+    /// The resolution: settings are whole multiples of it, an exact decimal. Empty: any number can be set.
+    #[serde(default)]
+    pub step: String,
+}
+
+/// How the knob follows from the setting.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub enum Direction {
+    /// knob = factor × setting, as for a gain.
+    #[default]
+    Proportional,
+    /// knob = factor / setting, as for a proportional band.
+    Reciprocal,
+}
+
+/// One requirement with its limit.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "camelCase", deny_unknown_fields)]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Requirement {
+    /// What is required.
+    pub kind: RequirementKind,
+    /// The limit, an exact decimal in the kind's unit, as typed.
+    pub limit: String,
+}
+
+/// What can be required. Speeds and times are those of the output for a unit step of the command.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub enum RequirementKind {
+    /// The damping ratio of every pole is at least the limit; dimensionless, 0 to 1.
+    DampingRatio,
+    /// Every pole lies at least this far left of the imaginary axis; 1/s.
+    DecayRate,
+    /// No pole is slower: every |s| is at least the limit; rad/s.
+    NaturalFrequencyMinimum,
+    /// Some pole is as slow: the smallest |s| is at most the limit; rad/s.
+    NaturalFrequencyMaximum,
+    /// The loop gain may rise by at least this factor; dB.
+    GainMarginUp,
+    /// The loop gain may fall by at least this factor; dB.
+    GainMarginDown,
+    /// The smallest phase turn that makes the loop marginal; degrees, at least.
+    PhaseMargin,
+    /// The smallest added dead time that makes the loop marginal; s, at least.
+    DelayMargin,
+    /// The largest |1/(1 + L(jω))|; dimensionless, at most.
+    PeakSensitivity,
+    /// The frequency at which the closed loop first falls 3 dB below its static gain; rad/s, at least.
+    Bandwidth,
+    /// Beyond the final value, in % of it, at most.
+    Overshoot,
+    /// Opposite to the final value, in % of it, at most.
+    Undershoot,
+    /// From 10 % to 90 % of the final value; s, at most.
+    RiseTime,
+    /// Until the output stays within 2 % of its final value; s, at most.
+    #[serde(rename = "settling-time-2")]
+    SettlingTime2,
+    /// Until the output stays within 5 % of its final value; s, at most.
+    #[serde(rename = "settling-time-5")]
+    SettlingTime5,
+    /// Until the highest point; s, at most.
+    PeakTime,
+    /// The static error after a step of the command; % of the step, at most.
+    StepError,
+    /// The static error on a unit ramp of the command; at most.
+    RampError,
+    /// The static error on a unit parabola t²/2 of the command; at most.
+    ParabolaError,
+    /// The largest deviation of the output after a unit step at the plant's input; at most.
+    LoadPeak,
+    /// The remaining deviation of the output after a unit step at the plant's input; at most.
+    LoadFinal,
+    /// The largest controller output after a unit step of the command; at most.
+    ControllerPeak,
 }

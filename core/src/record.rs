@@ -1,6 +1,6 @@
 //! The record: all that comes out. Angles in degrees, frequencies in rad/s, poles in 1/s.
 
-use crate::project::Project;
+use crate::project::{Direction, Project, RequirementKind};
 use alloc::string::String;
 use alloc::vec::Vec;
 use serde::Serialize;
@@ -39,6 +39,18 @@ pub struct Record {
     pub zeros: Vec<Root>,
     /// The closed loop at the chosen setting. None while no setting is given.
     pub closed_loop: Option<ClosedLoop>,
+    /// The controller's scale.
+    pub scale: Scale,
+    /// The requirements with the ranges in which they are met, in the project's order.
+    pub requirements: Vec<RequirementRecord>,
+    /// Where stability and all requirements agree.
+    pub permitted: Permitted,
+    /// Margins and frequency response at the chosen setting. None without a setting, or where the loop is unstable there.
+    pub margins: Option<Margins>,
+    /// The answer to a unit step of the command at the chosen setting. None likewise.
+    pub step: Option<StepRecord>,
+    /// The answer to a unit step at the plant's input at the chosen setting. None likewise.
+    pub load: Option<LoadRecord>,
     /// The part of the s-plane that shows what matters.
     pub view: View,
     /// Warnings about the loop, most serious first.
@@ -356,4 +368,262 @@ pub enum NoticeKind {
     AlgebraicLoop,
     /// Something could not be computed; the text says what.
     NotComputed,
+}
+
+/// The controller's scale: what setting belongs to what knob.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Scale {
+    /// What the controller calls the setting; the knob's symbol where it has no name of its own.
+    pub name: String,
+    /// The controller's unit; may be empty.
+    pub unit: String,
+    /// How the knob follows from the setting.
+    pub direction: Direction,
+    /// knob = factor × setting, or factor / setting.
+    pub factor: f64,
+    /// The smallest setting the controller takes.
+    pub minimum: Option<f64>,
+    /// The largest setting the controller takes.
+    pub maximum: Option<f64>,
+    /// The resolution.
+    pub step: Option<f64>,
+}
+
+/// An end of a requirement's or a permitted range.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct LimitEdge {
+    /// The knob.
+    pub knob: f64,
+    /// The setting; None where the scale has none for this knob.
+    pub setting: Option<f64>,
+    /// Decimal numbers between which the knob lies; for a computed edge the uncertainty of the computation.
+    pub bracket: [String; 2],
+    /// True where the bracket is proven.
+    pub proven: bool,
+    /// What fails behind the edge.
+    pub cause: Cause,
+}
+
+/// What fails behind an edge.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "kebab-case", tag = "kind", content = "requirement")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub enum Cause {
+    /// Stability.
+    Stability,
+    /// A requirement.
+    Requirement(RequirementKind),
+    /// The controller takes no such setting.
+    Controller,
+}
+
+/// A range of the knob in which a requirement is met. None is an infinite end.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct LimitRange {
+    /// The lower end.
+    pub from: Option<LimitEdge>,
+    /// The upper end.
+    pub to: Option<LimitEdge>,
+}
+
+/// A requirement, judged.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct RequirementRecord {
+    /// What is required.
+    pub kind: RequirementKind,
+    /// The limit, in `unit`.
+    pub limit: f64,
+    /// True where the figure must be at least the limit, false where at most.
+    pub at_least: bool,
+    /// The unit of limit and figure; may be empty.
+    pub unit: String,
+    /// Where the requirement and stability are met, ascending.
+    pub ranges: Vec<LimitRange>,
+    /// True where the ranges are proven, false where they are computed.
+    pub proven: bool,
+    /// The figure at the chosen setting. None where it is undefined, infinite, or there is no setting.
+    pub figure: Option<f64>,
+    /// Whether the requirement is met at the chosen setting. None without a setting.
+    pub met: Option<bool>,
+    /// In words: why no setting meets it, or why it is undefined for this loop.
+    pub remark: Option<String>,
+}
+
+/// Where stability and all requirements agree.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Permitted {
+    /// The permitted ranges of the knob, ascending.
+    pub knob: Vec<LimitRange>,
+    /// For each of them the smallest and the largest setting on the controller's grid, rounded inward, as exact
+    /// decimals; None where no setting of the grid lies inside, or the side is open.
+    pub setting: Vec<[Option<String>; 2]>,
+    /// True where every edge is proven.
+    pub proven: bool,
+    /// The suggestion.
+    pub suggested: Option<Suggestion>,
+    /// Which requirements exclude each other, where nothing is permitted.
+    pub conflict: Option<Conflict>,
+}
+
+/// A suggested setting.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Suggestion {
+    /// On the controller's grid, an exact decimal.
+    pub setting: String,
+    /// The knob there.
+    pub knob: f64,
+    /// How it was chosen, a sentence.
+    pub reason: String,
+}
+
+/// Requirements that exclude each other.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Conflict {
+    /// The smallest such set; empty where the loop is never stable, or the controller's limits exclude every setting.
+    pub requirements: Vec<RequirementKind>,
+    /// By how much, a sentence in the controller's scale.
+    pub text: String,
+}
+
+/// Margins of the open loop at one setting.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Margins {
+    /// The factor by which the loop gain may rise. None: without limit.
+    pub gain_up: Option<f64>,
+    /// The factor by which the loop gain may be divided. None: without limit.
+    pub gain_down: Option<f64>,
+    /// Degrees. None: no turn of the phase makes the loop marginal.
+    pub phase: Option<f64>,
+    /// s. None: no dead time makes the loop marginal.
+    pub delay: Option<f64>,
+    /// The largest |1/(1 + L(jω))|.
+    pub peak_sensitivity: f64,
+    /// rad/s, where the peak is.
+    pub peak_frequency: f64,
+    /// rad/s. None: the closed loop does not fall 3 dB below its static gain.
+    pub bandwidth: Option<f64>,
+    /// Every ω with |L(jω)| = 1.
+    pub gain_crossings: Vec<GainCrossing>,
+    /// Every ω ≥ 0 with L(jω) real and negative.
+    pub phase_crossings: Vec<PhaseCrossing>,
+    /// The open loop over frequency.
+    pub response: FrequencyResponse,
+}
+
+/// Where the open loop has magnitude 1.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct GainCrossing {
+    /// rad/s.
+    pub omega: f64,
+    /// Degrees above −180 (below where negative), in (−180, 180].
+    pub phase_margin: f64,
+    /// s.
+    pub delay_margin: f64,
+}
+
+/// Where the open loop is real and negative.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct PhaseCrossing {
+    /// rad/s.
+    pub omega: f64,
+    /// The factor of the loop gain at which −1 is met here.
+    pub factor: f64,
+}
+
+/// The open loop L(jω), the same number of entries in each.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct FrequencyResponse {
+    /// rad/s, ascending.
+    pub omega: Vec<f64>,
+    /// dB.
+    pub magnitude: Vec<f64>,
+    /// Degrees, continuous.
+    pub phase: Vec<f64>,
+}
+
+/// A curve over time.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct Curve {
+    /// s, ascending.
+    pub time: Vec<f64>,
+    /// The value at each time.
+    pub value: Vec<f64>,
+}
+
+/// A curve at another setting, for comparison.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct EdgeCurve {
+    /// The knob.
+    pub knob: f64,
+    /// The curve.
+    pub curve: Curve,
+}
+
+/// The answer of the output to a unit step of the command. The output is in the command's units: what the sensor shows
+/// of it at rest.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct StepRecord {
+    /// At the setting.
+    pub curve: Curve,
+    /// At the ends of the permitted range that holds the setting, or of the first one.
+    pub at_edges: Vec<EdgeCurve>,
+    /// The controller's output at the setting. None where the controller is improper.
+    pub controller: Option<Curve>,
+    /// The final value.
+    pub final_value: f64,
+    /// % of the final value. None where that is zero.
+    pub overshoot: Option<f64>,
+    /// % of the final value. None where that is zero.
+    pub undershoot: Option<f64>,
+    /// s, from 10 % to 90 %.
+    pub rise_time: Option<f64>,
+    /// s, to 2 %.
+    pub settling_time2: Option<f64>,
+    /// s, to 5 %.
+    pub settling_time5: Option<f64>,
+    /// s. None where the final value is never exceeded.
+    pub peak_time: Option<f64>,
+    /// The largest controller output. None where the controller is improper.
+    pub controller_peak: Option<f64>,
+}
+
+/// The answer of the output to a unit step at the plant's input, in the output's own units.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct LoadRecord {
+    /// At the setting.
+    pub curve: Curve,
+    /// The largest deviation.
+    pub peak: f64,
+    /// The remaining deviation.
+    pub final_value: f64,
 }

@@ -154,6 +154,36 @@ pub fn approximations(p: &IntPoly) -> Vec<Complex<f64>> {
     if p.degree() == 0 { Vec::new() } else { approximate_roots(p) }
 }
 
+/// All roots in f64, improved by one step with the exact residual, real ones exactly on the axis and complex ones in
+/// exact pairs. Good to about 1e-14 for well separated roots; nothing is certain about them.
+///
+/// # Errors
+/// As [`enclose`], which helps out where the approximations do not come in pairs.
+pub fn polished(p: &IntPoly) -> Result<Vec<Complex<f64>>, ExactError> {
+    let (stripped, zeros) = p.without_zero_roots();
+    let mut all = alloc::vec![Complex::new(0.0, 0.0); zeros];
+    for z in approximations(&stripped) {
+        let exact = ComplexDyadic::from_f64(snapped(z)).filter(|z| z.im >= IBig::ZERO);
+        let Some(exact) = exact else { continue };
+        let mut z = exact.to_f64();
+        if let Some(step) = exact_newton(&stripped, &exact)
+            && step.modulus() < 1e-3 * z.modulus()
+        {
+            z -= step;
+        }
+        all.push(z);
+        if z.im > 0.0 {
+            all.push(z.conj());
+        }
+    }
+    if all.len() == p.degree() {
+        return Ok(all);
+    }
+    let discs = enclose_all(p, ROOT_BITS)?;
+    let centers = discs.iter().flat_map(|disc| core::iter::repeat_n(disc.center.to_f64(), disc.multiplicity));
+    Ok(centers.collect())
+}
+
 /// (a/b)·2^scale for complex integers, in f64.
 fn quotient(a: (&IBig, &IBig), b: (&IBig, &IBig), scale: i64) -> Option<Complex<f64>> {
     let to_complex = |(re, im): (&IBig, &IBig)| {

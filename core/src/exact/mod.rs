@@ -9,6 +9,7 @@ pub mod half_plane;
 pub mod poly;
 pub mod real_roots;
 pub mod resultant;
+pub mod scaled;
 mod start;
 
 pub use dyadic::{Dyadic, Interval};

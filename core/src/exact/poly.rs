@@ -257,6 +257,37 @@ impl IntPoly {
         value
     }
 
+    /// c^degree·p(s − a/c), with degree at least that of p, as a polynomial in s.
+    pub fn shifted_right(&self, a: &IBig, c: &IBig, degree: usize) -> Self {
+        // Horner's scheme in (c·s − a).
+        let factor = Self::new(vec![-a, c.clone()]);
+        let mut power = IBig::ONE;
+        let mut sum = Self::default();
+        for i in (0..=degree).rev() {
+            let coefficient = Self::new(vec![self.coefficient(i) * &power]);
+            sum = sum.times(&factor).plus(&coefficient);
+            power *= c;
+        }
+        sum
+    }
+
+    /// c^degree·(1 − v)^degree·p(r·(1 + v)/(1 − v)), r = a/c: the circle |s| = r becomes the imaginary axis of v, its
+    /// inside the left half plane.
+    pub fn from_circle(&self, a: &IBig, c: &IBig, degree: usize) -> Self {
+        let (up, down) = (Self::from_i64(&[1, 1]), Self::from_i64(&[1, -1]));
+        let mut sum = Self::default();
+        let mut power = IBig::ONE;
+        let mut below = Self::from_i64(&[1]);
+        for i in (0..=degree).rev() {
+            // Σ c_i·a^i·c^(n−i)·(1 + v)^i·(1 − v)^(n−i), by Horner's scheme in a·(1 + v).
+            let term = below.times(&Self::new(vec![self.coefficient(i) * &power]));
+            sum = sum.times(&up).times(&Self::new(vec![a.clone()])).plus(&term);
+            power *= c;
+            below = below.times(&down);
+        }
+        sum
+    }
+
     /// A positive integer multiple of a + (n/d)·b, where n/d is the given rational.
     pub fn with_rational_multiple(&self, factor: &RBig, other: &Self) -> Self {
         self.combined(&factor.denominator().clone().into(), other, factor.numerator())

@@ -6,7 +6,7 @@
 //! The start is complex on purpose: from real points the iteration never leaves the real axis.
 
 use super::IntPoly;
-use super::dyadic::Dyadic;
+use super::scaled::Scaled;
 use alloc::vec::Vec;
 use nalgebra::{Complex, ComplexField};
 
@@ -17,39 +17,7 @@ const SWEEP_CAP: usize = 60;
 /// Turns the starting points off the axes of symmetry; any angle that is no simple fraction of a turn does.
 const START_ANGLE: f64 = 0.7;
 
-/// Coefficients as mantissas in ±[0.5, 1] with powers of two, so that no size overflows.
-pub(super) struct Scaled {
-    mantissas: Vec<f64>,
-    exponents: Vec<i64>,
-}
-
 impl Scaled {
-    pub(super) fn new(p: &IntPoly) -> Self {
-        let parts = p.coefficients().iter().map(|c| Dyadic::new(c.clone(), 0).to_f64_parts());
-        let (mantissas, exponents) = parts.unzip();
-        Self { mantissas, exponents }
-    }
-
-    /// p(z)/p'(z), and whether p(z) is beyond its rounding error. None where p' vanishes in f64.
-    fn newton(&self, z: Complex<f64>) -> Option<(Complex<f64>, bool)> {
-        let scale = binary_exponent(z.modulus());
-        let u = z * libm::ldexp(1.0, -scale as i32);
-        let size = |i: usize| self.exponents[i] + scale * i as i64;
-        let top = (0..self.mantissas.len()).filter(|i| self.mantissas[*i] != 0.0).map(size).max()?;
-        let (mut value, mut slope) = (Complex::new(0.0, 0.0), Complex::new(0.0, 0.0));
-        let mut magnitude = 0.0;
-        let modulus = u.modulus();
-        for i in (0..self.mantissas.len()).rev() {
-            let c = libm::ldexp(self.mantissas[i], (size(i) - top).max(-2000) as i32);
-            slope = slope * u + value;
-            value = value * u + c;
-            magnitude = magnitude * modulus + libm::fabs(c);
-        }
-        let ratio = value / slope * libm::ldexp(1.0, scale as i32);
-        let certain = value.modulus() > 4.0 * f64::EPSILON * self.mantissas.len() as f64 * magnitude;
-        (ratio.re.is_finite() && ratio.im.is_finite()).then_some((ratio, certain))
-    }
-
     /// Points on circles whose radii are the slopes of the upper convex hull of (i, log2 |a_i|).
     fn starting_points(&self) -> Vec<Complex<f64>> {
         let log = |i: usize| libm::log2(libm::fabs(self.mantissas[i])) + self.exponents[i] as f64;
@@ -76,11 +44,6 @@ impl Scaled {
         }
         points
     }
-}
-
-/// The power of two just below a positive number.
-fn binary_exponent(value: f64) -> i64 {
-    i64::from(libm::ilogb(value.max(f64::MIN_POSITIVE)))
 }
 
 /// Approximations of all roots of a polynomial without roots at zero; not certified, clusters are poor.

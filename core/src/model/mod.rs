@@ -18,17 +18,21 @@ mod tests;
 pub use display::formula;
 pub use factors::Factor;
 pub use polynomial::KnobPolynomial;
-pub use ratio::Ratio;
+pub use ratio::{BlockAt, Ratio};
 
 use crate::answer::{Field, Problem};
 use crate::notation::{self, Expression, NotationError};
-use crate::project::Project;
+use crate::project::{Direction, Feedback, Project};
 use crate::record::{ModelRecord, Notice, NoticeKind, Reading};
+use crate::setting::Scale;
+use crate::exact::IntPoly;
 use alloc::format;
 use alloc::string::{String, ToString};
 use alloc::vec::Vec;
+use dashu_int::IBig;
 use dashu_ratio::RBig;
 use evaluate::{Block, evaluate};
+use quantities::Quantities;
 
 /// The highest order of a loop. Up to here the exact methods are tried and fast.
 pub const MAXIMUM_ORDER: usize = 40;
@@ -46,10 +50,16 @@ pub const MAXIMUM_BITS: usize = 8192;
 pub struct Loop {
     /// The knob's canonical symbol.
     pub knob: String,
-    /// The chosen knob value, if one was typed.
+    /// The chosen setting, if one was typed, on the controller's scale.
     pub setting: Option<RBig>,
+    /// Controller, plant and sensor, in factors as typed.
+    pub blocks: [Ratio; 3],
     /// Controller times plant times sensor, in factors as typed.
     pub open_loop: Ratio,
+    /// The sign of the feedback.
+    pub feedback: Feedback,
+    /// The controller's scale.
+    pub scale: Scale,
     /// F(s, q), of order 1 or more. Normalised as the module's head says.
     pub characteristic: KnobPolynomial,
     /// A factor in the knob alone that was divided out of F, as text. Where it is zero, the loop as typed makes no
@@ -72,7 +82,8 @@ fn blocks(project: &Project) -> [(Field, &'static str, &str); 3] {
 #[must_use]
 pub fn reading(project: &Project) -> Reading {
     let read = blocks(project).map(|(_, _, text)| notation::read(text).ok());
-    let names = names(read.iter().flatten());
+    let factor = notation::read(&project.setting.factor).ok();
+    let names = names(read.iter().flatten().chain(&factor));
     let [controller, plant, sensor] = read.map(|block| block.as_ref().map(notation::mathml));
     Reading { controller, plant, sensor, names }
 }
@@ -95,7 +106,8 @@ fn names<'a>(expressions: impl Iterator<Item = &'a Expression>) -> Vec<String> {
 pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
     let texts = blocks(project);
     let read = texts.map(|(_, _, text)| notation::read(text));
-    let used = names(read.iter().flatten());
+    let factor_read = notation::read(&project.setting.factor).ok();
+    let used = names(read.iter().flatten().chain(&factor_read));
     let (quantities, table_problems) = quantities::read(project, &used);
 
     let mut problems = Vec::new();
@@ -111,11 +123,9 @@ pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
         }
     }
     problems.extend(table_problems);
-    let setting = setting(&project.setting.value).unwrap_or_else(|problem| {
-        problems.push(problem);
-        None
-    });
-    let ([controller, plant, sensor], Some(knob)) = (ratios.as_slice(), quantities.knob) else {
+    let scaled = setting(project, &quantities).map_err(|found| problems.extend(found));
+    let ([controller, plant, sensor], Some(knob), Ok((setting, scale))) = (ratios.as_slice(), quantities.knob, scaled)
+    else {
         return Err(problems);
     };
     if !problems.is_empty() {
@@ -134,19 +144,137 @@ pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
         notices.push(Notice { kind: NoticeKind::AlgebraicLoop, text: text.to_string() });
     }
     let knob_factor = found.knob_factor.map(|factor| display::formula(&factor, &knob));
-    Ok(Loop { knob, setting, open_loop, characteristic: found.polynomial, knob_factor, notices })
+    let blocks = [controller.clone(), plant.clone(), sensor.clone()];
+    let feedback = project.blocks.feedback;
+    Ok(Loop { knob, setting, blocks, open_loop, feedback, scale, characteristic: found.polynomial, knob_factor, notices })
+}
+
+/// A static figure as a function of the knob: |above(q)/below(q)|.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct StaticRatio {
+    /// The numerator, a polynomial in the knob.
+    pub above: IntPoly,
+    /// The denominator, a polynomial in the knob.
+    pub below: IntPoly,
+}
+
+impl Loop {
+    /// Whether the knob is a factor of the open loop and appears nowhere else, so that scaling it scales the loop gain.
+    #[must_use]
+    pub fn knob_is_loop_gain(&self) -> bool {
+        let is_knob = |factor: &Factor| factor.polynomial == KnobPolynomial::knob() && factor.exponent == 1;
+        let has_knob = |factor: &&Factor| factor.polynomial.knob_degree() > 0;
+        let mut with_knob = self.open_loop.numerator.iter().filter(has_knob);
+        with_knob.next().is_some_and(is_knob)
+            && with_knob.next().is_none()
+            && !self.open_loop.denominator.iter().any(|factor| has_knob(&factor))
+    }
+
+    /// The static error on the command 1/s^(order + 1). None where it is infinite for all but isolated knob values.
+    #[must_use]
+    pub fn static_error(&self, order: usize) -> Option<StaticRatio> {
+        let (above, below) = self.open_loop.polynomials().ok()?;
+        let finite = (0..order).all(|i| below.coefficient_of(i).is_zero());
+        let closed = below.coefficient_of(0).combined(&IBig::ONE, &above.coefficient_of(0), &self.feedback_sign());
+        finite.then(|| StaticRatio { above: below.coefficient_of(order), below: closed })
+    }
+
+    /// What remains at the output of a unit step at the plant's input.
+    #[must_use]
+    pub fn static_load(&self) -> StaticRatio {
+        let parts = self.blocks.each_ref().map(|block| {
+            let (above, below) = block.polynomials().unwrap_or_default();
+            (above.coefficient_of(0), below.coefficient_of(0))
+        });
+        let [controller, plant, sensor] = parts;
+        let product = |a: &IntPoly, b: &IntPoly, c: &IntPoly| a.times(b).times(c);
+        let open = product(&controller.0, &plant.0, &sensor.0);
+        let closed = product(&controller.1, &plant.1, &sensor.1).combined(&IBig::ONE, &open, &self.feedback_sign());
+        StaticRatio { above: product(&controller.1, &plant.0, &sensor.1), below: closed }
+    }
+
+    /// 1 for negative feedback, −1 for positive.
+    #[must_use]
+    pub fn feedback_sign(&self) -> IBig {
+        match self.feedback {
+            Feedback::Negative => IBig::ONE,
+            Feedback::Positive => IBig::NEG_ONE,
+        }
+    }
 }
 
 fn fault(field: Field, error: &NotationError) -> Problem {
     Problem { field, symbol: None, span: Some(error.span().into()), message: error.to_string() }
 }
 
-/// The typed setting; None where nothing is typed.
-fn setting(text: &str) -> Result<Option<RBig>, Problem> {
+/// A problem of one input of the setting; `part` is its name in the project document.
+fn setting_problem(part: &str, span: Option<[usize; 2]>, message: String) -> Problem {
+    Problem { field: Field::Setting, symbol: Some(part.to_string()), span, message }
+}
+
+/// A typed decimal of the setting; None where nothing is typed.
+fn typed(part: &str, text: &str) -> Result<Option<RBig>, Problem> {
     if text.trim().is_empty() {
         return Ok(None);
     }
-    notation::decimal(text).map(Some).map_err(|error| fault(Field::Setting, &error))
+    notation::decimal(text).map(Some).map_err(|error| setting_problem(part, Some(error.span().into()), error.to_string()))
+}
+
+/// The chosen setting and the controller's scale.
+fn setting(project: &Project, quantities: &Quantities) -> Result<(Option<RBig>, Scale), Vec<Problem>> {
+    let input = &project.setting;
+    let mut problems = Vec::new();
+    let mut decimal = |part: &str, text: &str| typed(part, text).unwrap_or_else(|problem| {
+        problems.push(problem);
+        None
+    });
+    let value = decimal("value", &input.value);
+    let minimum = decimal("minimum", &input.minimum);
+    let maximum = decimal("maximum", &input.maximum);
+    let step = decimal("step", &input.step);
+    let factor = factor(&input.factor, quantities).unwrap_or_else(|found| {
+        problems.extend(found);
+        RBig::ONE
+    });
+    let mut complain = |part: &str, message: &str| problems.push(setting_problem(part, None, message.to_string()));
+    if step.as_ref().is_some_and(|step| *step <= RBig::ZERO) {
+        complain("step", "the resolution must be above zero, such as 0.1; leave it empty where any number can be set");
+    }
+    if let (Some(low), Some(high)) = (&minimum, &maximum)
+        && low > high
+    {
+        complain("maximum", "the largest setting is below the smallest: exchange the two");
+    }
+    if value.as_ref().is_some_and(RBig::is_zero) && input.direction == Direction::Reciprocal {
+        complain("value", "a setting of 0 on a reciprocal scale means an infinite knob: type a number above zero");
+    }
+    if !problems.is_empty() {
+        return Err(problems);
+    }
+    let name = if input.name.trim().is_empty() { project.knob.trim() } else { input.name.trim() };
+    let (name, unit) = (name.to_string(), input.unit.trim().to_string());
+    Ok((value, Scale { name, unit, direction: input.direction, factor, minimum, maximum, step }))
+}
+
+/// The factor of the scale: a number other than zero.
+fn factor(text: &str, quantities: &Quantities) -> Result<RBig, Vec<Problem>> {
+    if text.trim().is_empty() {
+        return Ok(RBig::ONE);
+    }
+    let fail = |span: Option<[usize; 2]>, message: String| [setting_problem("factor", span, message)].to_vec();
+    let expression = notation::read(text).map_err(|error| fail(Some(error.span().into()), error.to_string()))?;
+    let block = Block { field: Field::Setting, text, expression: &expression };
+    let ratio = evaluate(&block, quantities).map_err(|mut found| {
+        found.iter_mut().for_each(|problem| problem.symbol = Some("factor".to_string()));
+        found
+    })?;
+    if !ratio.numerator.is_empty() || !ratio.denominator.is_empty() {
+        return Err(fail(None, "the factor must be a number: use quantities with values, neither s nor the knob".to_string()));
+    }
+    if ratio.is_zero() {
+        return Err(fail(None, "the factor must not be zero: type what one unit of the setting means for the knob".to_string()));
+    }
+    Ok(ratio.constant)
 }
 
 /// A warning about a block with more zeros than poles.

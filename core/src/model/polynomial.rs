@@ -6,6 +6,7 @@ use alloc::vec;
 use alloc::vec::Vec;
 use dashu_int::IBig;
 use dashu_int::ops::{BitTest, Gcd};
+use dashu_ratio::RBig;
 
 /// A polynomial in s whose coefficients are polynomials in the knob q.
 #[derive(Clone, Debug, Default, PartialEq, Eq)]
@@ -85,6 +86,21 @@ impl KnobPolynomial {
             column.pop();
         }
         column
+    }
+
+    /// The polynomial in s at a rational knob value, times the value's denominator to the power of the knob's degree.
+    pub(super) fn scaled_at(&self, knob: &RBig) -> IntPoly {
+        let (numerator, denominator) = (knob.numerator(), IBig::from(knob.denominator().clone()));
+        let degree = self.knob_degree();
+        let value = |row: &Vec<IBig>| {
+            row.iter().enumerate().map(|(k, c)| c * numerator.pow(k) * denominator.pow(degree - k)).sum()
+        };
+        IntPoly::new(self.rows.iter().map(value).collect())
+    }
+
+    /// The coefficient of s^i as a polynomial in the knob.
+    pub(super) fn coefficient_of(&self, i: usize) -> IntPoly {
+        IntPoly::new(self.rows.get(i).cloned().unwrap_or_default())
     }
 
     /// The bits of the largest coefficient.

@@ -10,6 +10,7 @@
 use super::MAXIMUM_BITS;
 use super::factors::{Excess, Factor, expanded, knob_degree, merged, order, shared, split, without, without_common};
 use super::polynomial::KnobPolynomial;
+use crate::exact::IntPoly;
 use crate::notation::Sign;
 use alloc::vec;
 use alloc::vec::Vec;
@@ -30,6 +31,15 @@ pub struct Ratio {
     pub numerator: Vec<Factor>,
     /// Factors of the denominator, all different. A ratio that is zero keeps them: they are poles of the machine.
     pub denominator: Vec<Factor>,
+}
+
+/// A block at one value of the knob.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct BlockAt {
+    /// The numerator.
+    pub above: IntPoly,
+    /// The denominator.
+    pub below: IntPoly,
 }
 
 impl Ratio {
@@ -123,12 +133,42 @@ impl Ratio {
         Self::checked(constant, merged(&common, &factors), merged(&self.denominator, &lacking_here))
     }
 
+    /// Numerator and denominator over the integers, multiplied out, common factors kept.
+    pub(super) fn polynomials(&self) -> Result<(KnobPolynomial, KnobPolynomial), Excess> {
+        let (above, below) = (expanded(&self.numerator)?, expanded(&self.denominator)?);
+        let scaled = |p: &KnobPolynomial, factor: &IBig| p.combined(factor, &KnobPolynomial::default(), &IBig::ZERO);
+        let denominator = IBig::from(self.constant.denominator().clone());
+        Ok((scaled(&above, self.constant.numerator()), scaled(&below, &denominator)))
+    }
+
     /// The polynomial denominator ± numerator over the integers, up to a positive factor.
     pub(super) fn characteristic(&self, sign: Sign) -> Result<KnobPolynomial, Excess> {
         let below = expanded(&self.denominator)?;
         let above = expanded(&self.numerator)?;
         let (sum, _) = weighted_sum(&RBig::ONE, &below, sign, &self.constant, &above);
         if sum.bits() > MAXIMUM_BITS { Err(Excess::Digits) } else { Ok(sum) }
+    }
+
+    /// Numerator and denominator as polynomials in s at one value of the knob, common factors kept.
+    #[must_use]
+    pub fn at(&self, knob: &RBig) -> BlockAt {
+        let scale = IBig::from(knob.denominator().clone());
+        let mut above = IntPoly::new(vec![self.constant.numerator().clone()]);
+        let mut below = IntPoly::new(vec![self.constant.denominator().clone().into()]);
+        let multiply = |factors: &[Factor], own: &mut IntPoly, other: &mut IntPoly| {
+            for factor in factors {
+                // A positive multiple of the factor's value; the other side gets the same multiple.
+                let value = factor.polynomial.scaled_at(knob);
+                let owed = IntPoly::new(vec![scale.pow(factor.polynomial.knob_degree())]);
+                for _ in 0..factor.exponent {
+                    *own = own.times(&value);
+                    *other = other.times(&owed);
+                }
+            }
+        };
+        multiply(&self.numerator, &mut above, &mut below);
+        multiply(&self.denominator, &mut below, &mut above);
+        BlockAt { above, below }
     }
 
     /// A ratio within the limits.

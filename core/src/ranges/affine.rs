@@ -22,26 +22,44 @@ pub fn stability_places(d: &IntPoly, n: &IntPoly) -> Result<Vec<Place>, ExactErr
     if order > 0 {
         places.extend(ratio_place(&d.coefficient(order), &n.coefficient(order), Contact::DegreeDrop));
     }
-    let ((d_even, d_odd), (n_even, n_odd)) = (d.axis_parts(), n.axis_parts());
-    let crossing = d_odd.times(&n_even).minus(&d_even.times(&n_odd));
-    if crossing.is_zero() {
+    let (d_parts, n_parts) = (d.axis_parts(), n.axis_parts());
+    match boundary_places(&d_parts, &n_parts, |x| Contact::Axis { omega: libm::sqrt(x) })? {
+        Some(found) => places.extend(found),
         // D and N depend on s² only: a pole on the axis stays there until it meets another one.
-        return even_places(&d_even, &n_even, places);
-    }
-    // Where N(jw) = 0 the knob is infinite; where D(jw) = 0 it is zero, and a relative bracket would never close.
-    let finite = without_common_roots(&squarefree_part(&crossing), &gcd(&n_even, &n_odd));
-    let at_zero = gcd(&finite, &gcd(&d_even, &d_odd));
-    for root in positive_roots(&at_zero)? {
-        places.push(zero_place(root, &at_zero)?);
-    }
-    let rest = without_common_roots(&finite, &at_zero);
-    let quotients = [Quotient { above: &d_even, below: &n_even }, Quotient { above: &d_odd, below: &n_odd }];
-    for mut root in positive_roots(&rest)? {
-        let (bracket, exact) = knob_at(&rest, &mut root, &quotients)?;
-        let omega = libm::sqrt(root.to_f64());
-        places.push(Place { bracket, exact, contacts: [Contact::Axis { omega }].into() });
+        None => return even_places(&d_parts.0, &n_parts.0, places),
     }
     Ok(places)
+}
+
+/// Where D + q·N vanishes on a line from the origin: D = D1(x) + i·D2(x) there, N alike, with real D1, D2 and x > 0 along
+/// the line; `contact` tells what happens at x. None where D/N is real on the whole line.
+///
+/// # Errors
+/// From the exact methods, when a cap is met.
+pub fn boundary_places(
+    (d1, d2): &(IntPoly, IntPoly),
+    (n1, n2): &(IntPoly, IntPoly),
+    contact: impl Fn(f64) -> Contact,
+) -> Result<Option<Vec<Place>>, ExactError> {
+    let crossing = d2.times(n1).minus(&d1.times(n2));
+    if crossing.is_zero() {
+        return Ok(None);
+    }
+    let mut places = Vec::new();
+    // Where N vanishes the knob is infinite; where D does it is zero, and a relative bracket would never close.
+    let finite = without_common_roots(&squarefree_part(&crossing), &gcd(n1, n2));
+    let at_zero = gcd(&finite, &gcd(d1, d2));
+    for mut root in positive_roots(&at_zero)? {
+        root.refine_to(&at_zero, super::EDGE_BITS)?;
+        places.push(Place::exactly(RBig::ZERO, contact(root.to_f64())));
+    }
+    let rest = without_common_roots(&finite, &at_zero);
+    let quotients = [Quotient { above: d1, below: n1 }, Quotient { above: d2, below: n2 }];
+    for mut root in positive_roots(&rest)? {
+        let (bracket, exact) = knob_at(&rest, &mut root, &quotients)?;
+        places.push(Place { bracket, exact, contacts: [contact(root.to_f64())].into() });
+    }
+    Ok(Some(places))
 }
 
 /// The place q = −d/n, if n is not zero.

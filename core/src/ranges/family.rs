@@ -63,6 +63,13 @@ impl Family {
         IntPoly::new(self.parts.iter().map(|part| part.coefficient(i)).collect())
     }
 
+    /// The family of p ↦ map(p, degree) for every part and the fixed factor, each with its common degree in s.
+    pub fn mapped(&self, map: impl Fn(&IntPoly, usize) -> IntPoly) -> Self {
+        let order = self.moving_order();
+        let parts = self.parts.iter().map(|part| map(part, order)).collect();
+        Self { fixed: map(&self.fixed, self.fixed.degree()), parts }
+    }
+
     /// D and N of the moving part D + q·N, in the affine case.
     pub fn affine(&self) -> Option<(&IntPoly, &IntPoly)> {
         match &self.parts[..] {

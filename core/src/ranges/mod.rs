@@ -6,8 +6,11 @@
 pub mod affine;
 mod family;
 mod partition;
+pub mod permitted;
+pub mod pieces;
 mod place;
 pub mod polynomial;
+pub mod requirements;
 mod verdict;
 
 pub use family::Family;

@@ -59,7 +59,7 @@ impl Partition {
 
     /// The ranges of constant counts of unstable poles.
     pub fn stability(&self) -> Vec<StabilityRange> {
-        let cuts = self.cuts(|i| self.is_stability_place(i));
+        let cuts = self.stability_places();
         ranges_between(&cuts, |from, to, first| StabilityRange {
             from: from.map(|i| self.edge(i)),
             to: to.map(|i| self.edge(i)),
@@ -86,6 +86,11 @@ impl Partition {
             pairs: self.ranges[first].pairs,
             name: self.ranges[first].name,
         })
+    }
+
+    /// Indices of the places where poles reach the axis, the origin or infinity.
+    pub fn stability_places(&self) -> Vec<usize> {
+        self.cuts(|i| self.is_stability_place(i))
     }
 
     fn cuts(&self, keep: impl Fn(usize) -> bool) -> Vec<usize> {

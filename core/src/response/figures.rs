@@ -1,0 +1,232 @@
+//! The figures that requirements speak of, at one value of the knob.
+
+use super::loop_at::LoopAt;
+use super::modes::{Modes, Peaks};
+use crate::exact::IntPoly;
+use crate::project::RequirementKind;
+use dashu_ratio::RBig;
+use nalgebra::ComplexField;
+
+/// A static gain below this part of the answer's largest mode is zero but for rounding.
+const NO_FINAL_VALUE: f64 = 1e-12;
+
+/// A figure.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Figure {
+    /// A finite number in the kind's unit.
+    Value(f64),
+    /// Infinite: no limit in this direction, or an error that grows without bound.
+    Infinite,
+    /// It has no meaning for this loop at this knob.
+    Undefined,
+}
+
+/// How near the output must stay.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum SettlingBand {
+    /// 2 % of the final value.
+    TwoPercent,
+    /// 5 % of the final value.
+    FivePercent,
+}
+
+impl SettlingBand {
+    fn part(self) -> f64 {
+        match self {
+            Self::TwoPercent => 0.02,
+            Self::FivePercent => 0.05,
+        }
+    }
+}
+
+impl From<Option<f64>> for Figure {
+    /// None is undefined, infinity is infinite.
+    fn from(value: Option<f64>) -> Self {
+        match value {
+            Some(v) if v.is_finite() => Self::Value(v),
+            Some(_) => Self::Infinite,
+            None => Self::Undefined,
+        }
+    }
+}
+
+impl Figure {
+    /// The number, where it is finite.
+    pub fn value(self) -> Option<f64> {
+        match self {
+            Self::Value(v) => Some(v),
+            _ => None,
+        }
+    }
+}
+
+impl LoopAt {
+    /// A requirement's figure; undefined where the loop is unstable.
+    pub fn figure(&self, kind: RequirementKind) -> Figure {
+        use RequirementKind as Kind;
+        if !self.is_stable() {
+            return Figure::Undefined;
+        }
+        let decibel = |factor: f64| 20.0 * libm::log10(factor);
+        let frequency = || self.frequency();
+        match kind {
+            Kind::DampingRatio => self.over_poles(|p| -p.re / p.modulus()),
+            Kind::DecayRate => self.over_poles(|p| -p.re),
+            Kind::NaturalFrequencyMinimum | Kind::NaturalFrequencyMaximum => self.over_poles(|p| p.modulus()),
+            Kind::GainMarginUp => frequency().map(|f| decibel(f.gain_up)).into(),
+            Kind::GainMarginDown => frequency().map(|f| decibel(f.gain_down)).into(),
+            Kind::PhaseMargin => frequency().map(|f| f.phase_margin()).into(),
+            Kind::DelayMargin => frequency().map(|f| f.delay_margin()).into(),
+            Kind::PeakSensitivity => frequency().map(|f| f.peak.1).into(),
+            Kind::Bandwidth => frequency().and_then(|f| f.bandwidth).into(),
+            Kind::Overshoot => self.output().and_then(|(m, p)| overshoot(m, p)).into(),
+            Kind::Undershoot => self.output().and_then(|(m, p)| undershoot(m, p)).into(),
+            Kind::RiseTime => self.output().and_then(|(m, _)| rise_time(m)).into(),
+            Kind::SettlingTime2 => self.settling_time(SettlingBand::TwoPercent).into(),
+            Kind::SettlingTime5 => self.settling_time(SettlingBand::FivePercent).into(),
+            Kind::PeakTime => self.peak_time().into(),
+            Kind::StepError => match self.static_error(0) {
+                Figure::Value(v) => Figure::Value(100.0 * v),
+                other => other,
+            },
+            Kind::RampError => self.static_error(1),
+            Kind::ParabolaError => self.static_error(2),
+            Kind::LoadPeak => self.load().map(|(_, p)| largest(p)).into(),
+            Kind::LoadFinal => self.load().map(|(m, _)| m.final_value.abs()).into(),
+            Kind::ControllerPeak => self.control().map(|(_, p)| largest(p)).into(),
+        }
+    }
+
+    /// The smallest value over all poles.
+    fn over_poles(&self, value: impl Fn(&nalgebra::Complex<f64>) -> f64) -> Figure {
+        Some(self.poles.iter().map(value).fold(f64::INFINITY, f64::min)).into()
+    }
+
+    /// s, until the output stays within the band.
+    pub fn settling_time(&self, band: SettlingBand) -> Option<f64> {
+        let (modes, peaks) = self.output()?;
+        has_final_value(modes, peaks).then(|| modes.last_outside(band.part() * modes.final_value.abs())).flatten()
+    }
+
+    /// s, until the highest point beyond the final value.
+    pub fn peak_time(&self) -> Option<f64> {
+        let (modes, peaks) = self.output()?;
+        let (_, time) = if modes.final_value > 0.0 { peaks.highest } else { peaks.lowest };
+        (has_final_value(modes, peaks) && time.is_finite() && time > 0.0).then_some(time)
+    }
+
+    /// The static error |lim s·E(s)| for the command 1/s^(order + 1), where E = (1 − T)/s^(order + 1) and 1 − T = D/F with
+    /// the sensor's static gain in T.
+    fn static_error(&self, order: usize) -> Figure {
+        match static_error(&self.open.below, &self.closed, order) {
+            Some(error) => Figure::Value(error.to_f64().value().abs()),
+            None => Figure::Infinite,
+        }
+    }
+}
+
+/// D/(F·s^order) at s = 0, exactly; None where it is infinite.
+pub fn static_error(below: &IntPoly, closed: &IntPoly, order: usize) -> Option<RBig> {
+    let at = |p: &IntPoly, i: usize| p.coefficient(i);
+    // A factor s common to both is a fixed mode at the origin: the loop is then not stable, and nobody asks.
+    if (0..order).any(|i| !at(below, i).is_zero()) || at(closed, 0).is_zero() {
+        return None;
+    }
+    Some(RBig::from_parts_signed(at(below, order), at(closed, 0)))
+}
+
+fn has_final_value(modes: &Modes, peaks: &Peaks) -> bool {
+    modes.final_value.abs() > NO_FINAL_VALUE * largest(peaks)
+}
+
+fn largest(peaks: &Peaks) -> f64 {
+    peaks.highest.0.abs().max(peaks.lowest.0.abs())
+}
+
+/// % of the final value beyond it.
+pub fn overshoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
+    let end = modes.final_value;
+    let beyond = if end > 0.0 { peaks.highest.0 - end } else { end - peaks.lowest.0 };
+    has_final_value(modes, peaks).then(|| 100.0 * beyond.max(0.0) / end.abs())
+}
+
+/// % of the final value on the other side of zero.
+pub fn undershoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
+    let end = modes.final_value;
+    let opposite = if end > 0.0 { -peaks.lowest.0 } else { peaks.highest.0 };
+    has_final_value(modes, peaks).then(|| 100.0 * opposite.max(0.0) / end.abs())
+}
+
+/// s, from 10 % to 90 % of the final value.
+pub fn rise_time(modes: &Modes) -> Option<f64> {
+    let end = modes.final_value;
+    if end == 0.0 {
+        return None;
+    }
+    Some((modes.first_reach(0.9 * end)? - modes.first_reach(0.1 * end)?).max(0.0))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::model::BlockAt;
+    use nalgebra::Complex;
+
+    /// ωn²/(s² + 2ζωn s + ωn²), ωn = 1.
+    fn second_order(damping: f64) -> Modes {
+        let tenths = libm::round(10.0 * damping) as i64;
+        let transfer = BlockAt { above: IntPoly::from_i64(&[5]), below: IntPoly::from_i64(&[5, tenths, 5]) };
+        let zeta = tenths as f64 / 10.0;
+        let im = libm::sqrt(1.0 - zeta * zeta);
+        Modes::of_step(&transfer, &[Complex::new(-zeta, im), Complex::new(-zeta, -im)]).expect("proper")
+    }
+
+    #[test]
+    fn second_order_figures_follow_the_formulas() {
+        for zeta in [0.1, 0.3, 0.5, 0.7, 0.9] {
+            let modes = second_order(zeta);
+            let peaks = modes.peaks();
+            let root = libm::sqrt(1.0 - zeta * zeta);
+            let expected = 100.0 * libm::exp(-core::f64::consts::PI * zeta / root);
+            assert!((overshoot(&modes, &peaks).expect("defined") - expected).abs() < 1e-8, "{zeta}");
+            assert!((peaks.highest.1 - core::f64::consts::PI / root).abs() < 1e-6, "{zeta}");
+            assert!(undershoot(&modes, &peaks).expect("defined") < 1e-9);
+        }
+    }
+
+    #[test]
+    fn rise_times_agree_with_the_table() {
+        // N. S. Nise, Control Systems Engineering, table of normalised rise time; as in shared/checks T02, to the
+        // digits computed there.
+        for (zeta, expected) in [(0.3, 1.321_339_979), (0.5, 1.637_572_947), (0.9, 2.882_955_406)] {
+            let found = rise_time(&second_order(zeta)).expect("defined");
+            assert!((found - expected).abs() < 1e-8, "{zeta}: {found}");
+        }
+    }
+
+    #[test]
+    fn a_double_pole_is_as_good_as_two() {
+        // 1/(s + 1)²: y = 1 − (1 + t)·e^−t
+        let transfer = BlockAt { above: IntPoly::from_i64(&[1]), below: IntPoly::from_i64(&[1, 2, 1]) };
+        let modes = Modes::of_step(&transfer, &[Complex::new(-1.0, 0.0); 2]).expect("proper");
+        for t in [0.0, 0.3, 1.0, 4.0] {
+            let expected = 1.0 - (1.0 + t) * libm::exp(-t);
+            assert!((modes.value(t) - expected).abs() < 1e-9, "{t}: {} {expected}", modes.value(t));
+        }
+        let settled = modes.last_outside(0.02).expect("settles");
+        assert!(((1.0 + settled) * libm::exp(-settled) - 0.02).abs() < 1e-9);
+    }
+
+    #[test]
+    fn a_triple_pair_keeps_eight_digits() {
+        // 1/(s² + s + 1)³ against its own value from a slightly different spreading: the step's integral identity
+        // y(0) = 0, y′(0) = 0 must hold.
+        let base = IntPoly::from_i64(&[1, 1, 1]);
+        let transfer = BlockAt { above: IntPoly::from_i64(&[1]), below: base.times(&base).times(&base) };
+        let p = Complex::new(-0.5, libm::sqrt(0.75));
+        let modes = Modes::of_step(&transfer, &[p, p, p, p.conj(), p.conj(), p.conj()]).expect("proper");
+        assert!(modes.value(0.0).abs() < 1e-7, "{}", modes.value(0.0));
+        assert!(modes.value(1e-3).abs() < 1e-7);
+        assert!((modes.value(80.0) - 1.0).abs() < 1e-7);
+    }
+}

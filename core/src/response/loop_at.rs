@@ -1,0 +1,116 @@
+//! The loop at one value of the knob, with what is computed of it kept for the next question.
+
+use super::frequency::Frequency;
+use super::modes::{Modes, Peaks};
+use crate::exact::complex_roots::polished;
+use crate::exact::half_plane::count;
+use crate::exact::{ExactError, IntPoly};
+use crate::model::{BlockAt, Loop};
+use alloc::vec::Vec;
+use core::cell::OnceCell;
+use dashu_int::IBig;
+use dashu_ratio::RBig;
+use nalgebra::Complex;
+
+/// The loop at one value of the knob.
+#[derive(Debug)]
+pub struct LoopAt {
+    /// The knob.
+    pub knob: RBig,
+    controller: BlockAt,
+    plant: BlockAt,
+    sensor: BlockAt,
+    /// N and D of the open loop.
+    pub(super) open: BlockAt,
+    /// D ± N; not reduced.
+    pub(super) closed: IntPoly,
+    pub(super) poles: Vec<Complex<f64>>,
+    stable: OnceCell<bool>,
+    output: OnceCell<Option<(Modes, Peaks)>>,
+    load: OnceCell<Option<(Modes, Peaks)>>,
+    control: OnceCell<Option<(Modes, Peaks)>>,
+    frequency: OnceCell<Option<Frequency>>,
+}
+
+impl LoopAt {
+    /// The loop at a knob value.
+    ///
+    /// # Errors
+    /// From the exact methods, where the poles cannot be found.
+    pub fn new(model: &Loop, knob: RBig) -> Result<Self, ExactError> {
+        let [controller, plant, sensor] = [0, 1, 2].map(|i| model.blocks[i].at(&knob));
+        let product = |parts: [&IntPoly; 3]| parts[0].times(parts[1]).times(parts[2]);
+        let open = BlockAt {
+            above: product([&controller.above, &plant.above, &sensor.above]),
+            below: product([&controller.below, &plant.below, &sensor.below]),
+        };
+        let sign = model.feedback_sign();
+        let closed = open.below.combined(&IBig::ONE, &open.above, &sign);
+        // For positive feedback L below is −(controller·plant·sensor), so that 1 + L stays the denominator.
+        let open = BlockAt { above: IntPoly::new(open.above.coefficients().iter().map(|c| c * &sign).collect()), ..open };
+        let poles = polished(&closed)?;
+        Ok(Self {
+            knob,
+            controller,
+            plant,
+            sensor,
+            open,
+            closed,
+            poles,
+            stable: OnceCell::new(),
+            output: OnceCell::new(),
+            load: OnceCell::new(),
+            control: OnceCell::new(),
+            frequency: OnceCell::new(),
+        })
+    }
+
+    /// Whether every pole lies left of the axis; exact.
+    pub fn is_stable(&self) -> bool {
+        *self.stable.get_or_init(|| count(&self.closed).is_ok_and(|count| count.is_stable()))
+    }
+
+    /// The answer of the output, in the command's units, to a unit step of the command. None where the loop is unstable or
+    /// the answer contains an impulse.
+    pub fn output(&self) -> Option<&(Modes, Peaks)> {
+        self.output.get_or_init(|| self.answer(&self.output_transfer())).as_ref()
+    }
+
+    /// The answer of the output to a unit step at the plant's input.
+    pub fn load(&self) -> Option<&(Modes, Peaks)> {
+        let above = || self.plant.above.times(&self.controller.below).times(&self.sensor.below);
+        self.load.get_or_init(|| self.answer(&BlockAt { above: above(), below: self.closed.clone() })).as_ref()
+    }
+
+    /// The controller's output after a unit step of the command.
+    pub fn control(&self) -> Option<&(Modes, Peaks)> {
+        let above = || self.controller.above.times(&self.plant.below).times(&self.sensor.below);
+        self.control.get_or_init(|| self.answer(&BlockAt { above: above(), below: self.closed.clone() })).as_ref()
+    }
+
+    /// The open loop over frequency. None where the closed loop is unstable.
+    pub fn frequency(&self) -> Option<&Frequency> {
+        self.frequency.get_or_init(|| self.is_stable().then(|| Frequency::new(self).ok()).flatten()).as_ref()
+    }
+
+    fn answer(&self, transfer: &BlockAt) -> Option<(Modes, Peaks)> {
+        if !self.is_stable() {
+            return None;
+        }
+        let modes = Modes::of_step(transfer, &self.poles)?;
+        let peaks = modes.peaks();
+        Some((modes, peaks))
+    }
+
+    /// N·h and F·g of command to output: the output is scaled by the sensor's static gain h/g where it has one, so that
+    /// 1 means no error.
+    pub(super) fn output_transfer(&self) -> BlockAt {
+        let above = self.controller.above.times(&self.plant.above).times(&self.sensor.below);
+        let (gain, scale) = (self.sensor.above.coefficient(0), self.sensor.below.coefficient(0));
+        if gain.is_zero() || scale.is_zero() {
+            return BlockAt { above, below: self.closed.clone() };
+        }
+        let times = |p: &IntPoly, factor: &IBig| IntPoly::new(p.coefficients().iter().map(|c| c * factor).collect());
+        BlockAt { above: times(&above, &gain), below: times(&self.closed, &scale) }
+    }
+}

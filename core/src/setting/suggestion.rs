@@ -1,0 +1,163 @@
+//! From permitted knob ranges to settings: the grid's settings just inside, and one to begin with.
+
+use super::{Rounding, Scale};
+use crate::exact::Dyadic;
+use crate::project::Direction;
+use crate::ranges::pieces::Piece;
+use alloc::vec::Vec;
+use dashu_int::IBig;
+use dashu_ratio::RBig;
+
+/// Digits to which ends are rounded where the controller has no resolution of its own.
+const END_DIGITS: i32 = 4;
+
+/// Digits to which the suggestion is rounded there; more are tried where these do not fit in.
+const SUGGESTED_DIGITS: core::ops::RangeInclusive<i32> = 2..=6;
+
+/// Steps of the grid tried from a rounded end inward. The rounding itself is off by less than one; an open end that lies
+/// on the grid needs one more.
+const STEPS_INWARD: usize = 3;
+
+/// What to do with the permitted ranges.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Advice {
+    /// For each range the smallest and the largest setting inside, ascending; None where there is none, or the side is
+    /// open.
+    pub ends: Vec<[Option<RBig>; 2]>,
+    /// The suggestion, and why.
+    pub suggested: Option<Suggested>,
+}
+
+/// A suggested setting.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Suggested {
+    /// The setting.
+    pub setting: RBig,
+    /// The knob there.
+    pub knob: RBig,
+    /// How it was chosen.
+    pub reason: &'static str,
+}
+
+/// Rounds permitted ranges inward and suggests a setting in the widest of them.
+pub fn suggest(scale: &Scale, pieces: &[Piece]) -> Advice {
+    let ends: Vec<[Option<RBig>; 2]> = pieces.iter().map(|piece| ends(scale, piece)).collect();
+    let mut order: Vec<usize> = (0..pieces.len()).collect();
+    order.sort_by(|a, b| width(&pieces[*b]).total_cmp(&width(&pieces[*a])));
+    let suggested = order.into_iter().find_map(|i| within(scale, &pieces[i], &ends[i]));
+    Advice { ends, suggested }
+}
+
+/// The settings of the grid just inside of a range, ascending.
+fn ends(scale: &Scale, piece: &Piece) -> [Option<RBig>; 2] {
+    let (low, high) = if scale.rises() { (&piece.from, &piece.to) } else { (&piece.to, &piece.from) };
+    let inner = |border: &Option<crate::ranges::pieces::Border>, rounding: Rounding| {
+        let border = border.as_ref()?;
+        // Start at the safe side of the bracket.
+        let knob = if (rounding == Rounding::Up) == scale.rises() { &border.bracket.high } else { &border.bracket.low };
+        let start = scale.setting(&knob.to_rational())?;
+        let step = step_near(scale, &start, END_DIGITS);
+        let mut setting = with_step(scale, &step).rounded(&start, rounding);
+        for _ in 0..STEPS_INWARD {
+            if scale.knob(&setting).is_some_and(|knob| piece.surely_holds(&knob)) {
+                return Some(setting);
+            }
+            setting = if rounding == Rounding::Up { setting + &step } else { setting - &step };
+        }
+        None
+    };
+    [inner(low, Rounding::Up), inner(high, Rounding::Down)]
+}
+
+/// The scale's step, or that of so many digits of a number where it has none.
+fn step_near(scale: &Scale, setting: &RBig, digits: i32) -> RBig {
+    if let Some(step) = &scale.step {
+        return step.clone();
+    }
+    let size = setting.to_f64().value().abs();
+    let exponent = if size > 0.0 && size.is_finite() { libm::floor(libm::log10(size)) as i32 } else { 0 };
+    let power = exponent - digits + 1;
+    let ten = RBig::from(IBig::from(10).pow(power.unsigned_abs() as usize));
+    if power >= 0 { ten } else { RBig::ONE / ten }
+}
+
+fn with_step(scale: &Scale, step: &RBig) -> Scale {
+    Scale { step: Some(step.clone()), ..scale.clone() }
+}
+
+/// The width of a range as a ratio of its ends; infinite where an end is 0, infinite, or of the other sign.
+fn width(piece: &Piece) -> f64 {
+    match (&piece.from, &piece.to) {
+        (Some(a), Some(b)) if a.value() * b.value() > 0.0 => libm::fabs(libm::log(b.value() / a.value())),
+        _ => f64::INFINITY,
+    }
+}
+
+/// A setting inside of one range.
+fn within(scale: &Scale, piece: &Piece, ends: &[Option<RBig>; 2]) -> Option<Suggested> {
+    let (target, reason) = target(piece);
+    let wanted = scale.setting_f64(target).and_then(Dyadic::from_f64)?.to_rational();
+    let holds = |setting: &RBig| {
+        scale.takes(setting) && scale.knob(setting).is_some_and(|knob| piece.surely_holds(&knob))
+    };
+    let digits = if scale.step.is_some() { END_DIGITS..=END_DIGITS } else { SUGGESTED_DIGITS };
+    for count in digits {
+        let grid = with_step(scale, &step_near(scale, &wanted, count));
+        let below = grid.rounded(&wanted, Rounding::Down);
+        let above = grid.rounded(&wanted, Rounding::Up);
+        let nearer_below = &wanted - &below <= &above - &wanted;
+        let order = if nearer_below { [below, above] } else { [above, below] };
+        if let Some(setting) = order.into_iter().find(holds) {
+            let knob = scale.knob(&setting)?;
+            return Some(Suggested { setting, knob, reason });
+        }
+    }
+    let setting = ends.iter().flatten().find(|setting| holds(setting))?.clone();
+    let knob = scale.knob(&setting)?;
+    Some(Suggested { setting, knob, reason: "the only setting of the controller's grid in the widest permitted range" })
+}
+
+/// The knob to aim at, and why.
+fn target(piece: &Piece) -> (f64, &'static str) {
+    const HALF: &str = "half of the limit: 6 dB away from it (common practice, no source)";
+    const DOUBLE: &str = "twice the limit: 6 dB away from it (common practice, no source)";
+    let value = |b: &crate::ranges::pieces::Border| b.value();
+    match (piece.from.as_ref().map(value), piece.to.as_ref().map(value)) {
+        (Some(a), Some(b)) if a * b > 0.0 => {
+            let middle = libm::copysign(libm::sqrt(a) * libm::sqrt(b), b);
+            let middle = if b < 0.0 { -libm::sqrt(-a) * libm::sqrt(-b) } else { middle };
+            (middle, "midway, on a logarithmic scale, between the ends of the widest permitted range")
+        }
+        (Some(a), Some(b)) if b >= -a => (0.5 * b, HALF),
+        (Some(a), Some(_)) => (0.5 * a, HALF),
+        (Some(a), None) if a > 0.0 => (2.0 * a, DOUBLE),
+        (None, Some(b)) if b < 0.0 => (2.0 * b, DOUBLE),
+        (None, Some(b)) if b > 0.0 => (0.5 * b, HALF),
+        _ => (1.0, "any setting above zero is permitted"),
+    }
+}
+
+/// The knob values that the controller can set, as a range of its own; None where it excludes none.
+pub fn controller_range(scale: &Scale) -> Option<Piece> {
+    use crate::exact::Interval;
+    use crate::ranges::pieces::Border;
+    use crate::record::Cause;
+    let border = |knob: RBig| Border { bracket: Interval::around(&knob, 64), proven: true, cause: Cause::Controller };
+    let (minimum, maximum) = match scale.direction {
+        Direction::Proportional => (scale.minimum.clone(), scale.maximum.clone()),
+        // A band of 0 or less has no meaning.
+        Direction::Reciprocal => (Some(scale.minimum.clone().unwrap_or(RBig::ZERO).max(RBig::ZERO)), scale.maximum.clone()),
+    };
+    if minimum.is_none() && maximum.is_none() {
+        return None;
+    }
+    let at = |setting: Option<RBig>| setting.and_then(|s| scale.knob(&s));
+    // On a reciprocal scale an open upper end is knob 0, and setting 0 the infinite knob.
+    let high_end = match (scale.direction, &maximum) {
+        (Direction::Reciprocal, None) => Some(RBig::ZERO),
+        _ => at(maximum),
+    };
+    let low_end = at(minimum);
+    let (from, to) = if scale.rises() { (low_end, high_end) } else { (high_end, low_end) };
+    Some(Piece { from: from.map(border), to: to.map(border) })
+}
