@@ -149,8 +149,7 @@ impl Session {
 
     /// The analysis of this project, kept or new.
     fn analysis(&mut self, project: &Project, model: model::Loop) -> Result<&Analysis, ExactError> {
-        let mut key = project.clone();
-        key.setting.value.clear();
+        let key = without_notes(project);
         let kept = self.last.take().filter(|(last, _)| *last == key);
         let entry = match kept {
             Some(entry) => entry,
@@ -161,6 +160,21 @@ impl Session {
         };
         Ok(&self.last.insert(entry).1)
     }
+}
+
+/// The project without what has no part in the analysis: setting, title, and notes to the reader.
+fn without_notes(project: &Project) -> Project {
+    let mut key = project.clone();
+    key.setting.value.clear();
+    key.title.clear();
+    for row in &mut key.quantities {
+        row.unit.clear();
+        row.meaning.clear();
+        if row.symbol == key.knob {
+            row.value.clear();
+        }
+    }
+    key
 }
 
 /// Reads a project document; the message says what is wrong with it.

@@ -107,7 +107,8 @@ pub struct Edge {
     pub value: f64,
     /// Decimal numbers between which the edge lies, no wider than 1e-15 of its value.
     pub bracket: [String; 2],
-    /// The edge itself where it is a rational number: "1386" or "-2/15".
+    /// The edge itself where it is a rational number: a decimal such as "0.5" where one of 20 digits is exact, otherwise a
+    /// fraction such as "-2/15".
     pub exact: Option<String>,
     /// True where bracket and counts are proven by exact arithmetic.
     pub proven: bool,

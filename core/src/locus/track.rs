@@ -22,11 +22,18 @@ const DRIFT: f64 = 0.15;
 /// Chord to curve, in pixels of the default view; a quarter is promised.
 const SAGITTA: f64 = 0.1;
 
-/// The largest step in ln τ: keeps the knob readable by interpolation between two rows.
+/// The largest step in ln τ while a pole is in the picture: keeps the knob readable by interpolation between two rows.
 const LARGEST_STEP: f64 = 0.7;
 
-/// Beyond this |ln τ| an end is joined even where the prediction is poor: f64 cannot tell the knob from the end's.
+/// The largest step once every moving pole is out of it, or at its end.
+const LARGEST_STEP_OUTSIDE: f64 = 3.0;
+
+/// Beyond this |ln τ| an end at a finite knob is joined even where the prediction is poor: f64 cannot tell the knob from
+/// the end's.
 const LOG_CAP: f64 = 30.0;
+
+/// Likewise towards infinity, where the knob itself leaves the range of f64.
+const LOG_CAP_AT_INFINITY: f64 = 600.0;
 
 /// Where poles meet.
 #[derive(Clone, Copy, Debug)]
@@ -279,7 +286,7 @@ impl Tracker<'_> {
                         stops.pop();
                     }
                     rows.push(row);
-                    step = (step * ease).min(LARGEST_STEP);
+                    step = (step * ease).min(self.largest_step(rows.last().unwrap_or(start)));
                 }
                 None => step *= 0.4,
             }
@@ -288,6 +295,13 @@ impl Tracker<'_> {
             }
         }
         Err(Lost)
+    }
+
+    /// How far the next step may go at the most.
+    fn largest_step(&self, row: &Row) -> f64 {
+        let moving = |pole: &Carried| pole.velocity.modulus() > 1e-3 * pole.s.modulus();
+        let seen = |pole: &Carried| moving(pole) && self.pixels.remoteness(pole.s) == 0.0;
+        if row.poles.iter().any(seen) { LARGEST_STEP } else { LARGEST_STEP_OUTSIDE }
     }
 
     /// One step to v: the new row and by how much the next step may grow. None where the step was too bold.
@@ -319,7 +333,8 @@ impl Tracker<'_> {
     /// Whether the end can be joined to this row by straight chords; then how.
     fn arrivals(&self, row: &Row, way: Way) -> Option<Vec<Arrival>> {
         let end = if way == Way::Inward { &self.stretch.inner } else { &self.stretch.outer };
-        let forced = row.v.abs() > LOG_CAP;
+        let at_infinity = way == Way::Outward && self.stretch.outer.knob.is_infinite();
+        let forced = row.v.abs() > if at_infinity { LOG_CAP_AT_INFINITY } else { LOG_CAP };
         let mut arrivals: Vec<Option<Arrival>> = alloc::vec![None; row.poles.len()];
         self.send_to_infinity(row, end, forced, &mut arrivals)?;
         for (number, cluster) in end.clusters.iter().enumerate() {

@@ -13,7 +13,7 @@ const MARGIN: f64 = 0.15;
 const SLIMMEST: f64 = 0.6;
 
 /// Branches are followed this many view sizes out of the picture, so that there is something to zoom out to.
-const FAR: f64 = 12.0;
+const FAR: f64 = 6.0;
 
 /// The rectangle around the given points, symmetric to the real axis, with the origin in it.
 pub fn frame(points: impl IntoIterator<Item = Point>) -> View {
