@@ -7,6 +7,8 @@ use crate::exact::{ExactError, IntPoly};
 use crate::locus::{Branch, LocusInput, Meeting, branches, landmarks, meetings, view};
 use crate::model::{self, KnobPolynomial, Loop};
 use crate::ranges::permitted::short;
+use crate::ranges::pieces::Piece;
+use crate::ranges::requirements::{Ground, Lane, Limit, Samples, lane, stable_pieces};
 use crate::ranges::{Contact, Family, Partition, verdict};
 use crate::record::{
     CharacterRange, ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Point, Root, StabilityRange, View,
@@ -14,10 +16,10 @@ use crate::record::{
 use alloc::format;
 use alloc::string::{String, ToString};
 use alloc::vec::Vec;
+use core::cell::{OnceCell, RefCell};
 use dashu_ratio::RBig;
 
 /// A loop, analysed.
-#[derive(Clone, Debug)]
 pub struct Analysis {
     /// The loop as built from the project.
     pub model: Loop,
@@ -40,7 +42,16 @@ pub struct Analysis {
     pub notices: Vec<Notice>,
     /// Both halves of the locus.
     pub branches: Vec<Branch>,
+    /// The stable ranges.
+    pub stable: Vec<Piece>,
+    /// The loop at many settings, computed when the first requirement asks.
+    samples: OnceCell<Samples>,
+    /// Lanes computed so far.
+    lanes: RefCell<Vec<(Limit, Lane)>>,
 }
+
+/// Lanes kept; more than there are kinds, so that a limit may be changed back and forth.
+const LANES_KEPT: usize = 64;
 
 impl Analysis {
     /// Analyses a loop.
@@ -80,14 +91,40 @@ impl Analysis {
             }
         }
         let (stability, character) = (partition.stability(), partition.character());
+        let stable = stable_pieces(&partition);
         notices.sort_by_key(|notice| notice.kind);
-        Ok(Self { model, family, stability, character, landmarks, poles, zeros, moving, view, notices, branches: all })
+        Ok(Self { model, family, stability, character, landmarks, poles, zeros, moving, view, notices, branches: all, stable, samples: OnceCell::new(), lanes: RefCell::default() })
     }
 
     /// D and N of the moving part with their roots, where the loop is affine in the knob.
     pub fn affine(&self) -> Option<AffineParts<'_>> {
         let (d, n) = self.family.affine()?;
         Some(AffineParts { d, n, poles: &self.moving.0, zeros: &self.moving.1 })
+    }
+
+    /// Where a requirement is met; kept for the next time.
+    ///
+    /// # Errors
+    /// From the exact methods, when a cap is met.
+    pub fn lane(&self, limit: &Limit) -> Result<Lane, ExactError> {
+        if let Some((_, lane)) = self.lanes.borrow().iter().find(|(known, _)| known == limit) {
+            return Ok(lane.clone());
+        }
+        let samples = match self.samples.get() {
+            Some(samples) => samples,
+            None => {
+                let samples = Samples::new(&self.model, &self.stable)?;
+                self.samples.get_or_init(|| samples)
+            }
+        };
+        let ground = Ground { model: &self.model, family: &self.family, stable: &self.stable, samples };
+        let found = lane(&ground, limit)?;
+        let mut lanes = self.lanes.borrow_mut();
+        if lanes.len() >= LANES_KEPT {
+            lanes.remove(0);
+        }
+        lanes.push((limit.clone(), found.clone()));
+        Ok(found)
     }
 
     /// The closed loop at a value of the knob.

@@ -4,7 +4,8 @@ use crate::analysis::Analysis;
 use crate::exact::ExactError;
 use crate::locus::{Branch, trade};
 use crate::model;
-use crate::project::{PROJECT_FORMAT, Project};
+use crate::judgement::{judge, limits};
+use crate::project::{PROJECT_FORMAT, Project, Setting};
 use crate::record::{Program, RECORD_FORMAT, Reading, Record};
 use alloc::format;
 use alloc::string::{String, ToString};
@@ -119,11 +120,18 @@ impl Session {
         reading: &Reading,
         program_hash: Option<&str>,
     ) -> Result<Record, Vec<Problem>> {
-        let model = model::build(project)?;
-        let setting = model.setting.clone();
+        let limits = limits(project);
+        let model = model::build(project).map_err(|mut problems| {
+            problems.extend(limits.clone().err().unwrap_or_default());
+            problems
+        })?;
+        let limits = limits?;
+        let (setting, scale) = (model.setting.clone(), model.scale.clone());
         let analysis = self.analysis(project, model).map_err(|error| [too_hard(&error)])?;
+        let knob = setting.as_ref().and_then(|setting| scale.knob(setting));
         let closed_loop =
-            setting.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
+            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
+        let judged = judge(analysis, &limits, &scale, setting.as_ref()).map_err(|error| [too_hard(&error)])?;
         let affine = analysis.affine();
         Ok(Record {
             format: RECORD_FORMAT.to_string(),
@@ -142,6 +150,12 @@ impl Session {
             poles: analysis.poles.clone(),
             zeros: analysis.zeros.clone(),
             closed_loop,
+            scale: scale.record(),
+            requirements: judged.requirements,
+            permitted: judged.permitted,
+            margins: judged.margins,
+            step: judged.step,
+            load: judged.load,
             view: analysis.view,
             notices: analysis.notices.clone(),
         })
@@ -162,10 +176,11 @@ impl Session {
     }
 }
 
-/// The project without what has no part in the analysis: setting, title, and notes to the reader.
+/// The project without what has no part in the analysis: setting, requirements, title, and notes to the reader.
 fn without_notes(project: &Project) -> Project {
     let mut key = project.clone();
-    key.setting.value.clear();
+    key.setting = Setting::default();
+    key.requirements.clear();
     key.title.clear();
     for row in &mut key.quantities {
         row.unit.clear();

@@ -9,6 +9,7 @@ extern crate alloc;
 pub mod analysis;
 pub mod answer;
 pub mod exact;
+pub mod judgement;
 pub mod locus;
 pub mod model;
 pub mod notation;

@@ -26,7 +26,8 @@ pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactErro
     };
     // A percentage is a hundredth.
     let hundred = if limit.kind == RequirementKind::StepError { 100 } else { 1 };
-    let (top, bottom) = (limit.value.numerator().clone(), IBig::from(limit.value.denominator().clone()) * hundred);
+    let top = limit.value.numerator().clone();
+    let bottom: IBig = IBig::from(limit.value.denominator().clone()) * IBig::from(hundred);
     // (top·below)² − (bottom·above)² ≥ 0
     let difference = below.times(&below).combined(&(&top * &top), &above.times(&above), &-bottom.pow(2));
     let mut places = Vec::new();

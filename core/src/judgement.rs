@@ -1,0 +1,196 @@
+//! What the requirements and the controller's scale make of an analysed loop: lanes, permitted settings, and everything
+//! at the chosen setting.
+
+use crate::analysis::Analysis;
+use crate::answer::{Field, Problem};
+use crate::exact::ExactError;
+use crate::notation;
+use crate::project::{Project, RequirementKind};
+use crate::ranges::permitted::{conflict, permitted};
+use crate::ranges::pieces::{Border, Piece};
+use crate::ranges::requirements::{Lane, Limit, at_least, check_limit, describe, unit};
+use crate::record::{
+    Conflict, EdgeCurve, GainCrossing, LimitEdge, LimitRange, LoadRecord, Margins, PhaseCrossing, Permitted,
+    RequirementRecord, StepRecord, Suggestion,
+};
+use crate::response::{Figure, LoopAt, SettlingBand, overshoot, rise_time, undershoot};
+use crate::setting::{Scale, controller_range, suggest, typed};
+use alloc::format;
+use alloc::string::{String, ToString};
+use alloc::vec::Vec;
+use dashu_ratio::RBig;
+
+/// Digits of a bracket's decimals.
+const BRACKET_DIGITS: u32 = 19;
+
+/// Curves at the edges of the permitted range are drawn for at most this many times the horizon of the one at the setting.
+const LONGEST: f64 = 2.5;
+
+/// The parts of the record that depend on requirements, scale and setting.
+pub struct Judgement {
+    /// One for each requirement, in the project's order.
+    pub requirements: Vec<RequirementRecord>,
+    /// Where all agree.
+    pub permitted: Permitted,
+    /// At the setting.
+    pub margins: Option<Margins>,
+    /// At the setting.
+    pub step: Option<StepRecord>,
+    /// At the setting.
+    pub load: Option<LoadRecord>,
+}
+
+/// Reads the requirements of a project.
+///
+/// # Errors
+/// All limits that must be put right.
+pub fn limits(project: &Project) -> Result<Vec<Limit>, Vec<Problem>> {
+    let mut limits: Vec<Limit> = Vec::new();
+    let mut problems = Vec::new();
+    for requirement in &project.requirements {
+        let kind = requirement.kind;
+        let mut complain = |span: Option<[usize; 2]>, message: String| {
+            problems.push(Problem { field: Field::Requirement, symbol: Some(name_of(kind)), span, message });
+        };
+        if limits.iter().any(|limit| limit.kind == kind) {
+            complain(None, format!("the requirement on {} stands twice: keep one", describe(kind)));
+            continue;
+        }
+        match notation::decimal(&requirement.limit) {
+            Err(error) => complain(Some(error.span().into()), error.to_string()),
+            Ok(value) => match check_limit(kind, &value) {
+                Some(message) => complain(None, message.to_string()),
+                None => limits.push(Limit { kind, value }),
+            },
+        }
+    }
+    if problems.is_empty() { Ok(limits) } else { Err(problems) }
+}
+
+/// A kind as it stands in the project document.
+fn name_of(kind: RequirementKind) -> String {
+    serde_json::to_string(&kind).map(|text| text.trim_matches('"').to_string()).unwrap_or_default()
+}
+
+/// Judges an analysed loop.
+///
+/// # Errors
+/// From the exact methods, when a cap is met.
+pub fn judge(analysis: &Analysis, limits: &[Limit], scale: &Scale, setting: Option<&RBig>) -> Result<Judgement, ExactError> {
+    let lanes = limits.iter().map(|limit| analysis.lane(limit)).collect::<Result<Vec<_>, _>>()?;
+    let knob = setting.and_then(|setting| scale.knob(setting));
+    let here = knob.map(|knob| LoopAt::new(&analysis.model, knob)).transpose()?;
+    let requirements = limits.iter().zip(&lanes).map(|(limit, lane)| requirement(limit, lane, scale, here.as_ref())).collect();
+    let stable = &analysis.stable;
+    let controller = controller_range(scale);
+    let pieces = permitted(stable, controller.as_ref(), &lanes);
+    let advice = suggest(scale, &pieces);
+    let conflict = pieces.is_empty().then(|| {
+        let found = conflict(stable, controller.as_ref(), limits, &lanes, scale);
+        Conflict { requirements: found.kinds, text: found.text }
+    });
+    let edges = || pieces.iter().flat_map(|piece| [&piece.from, &piece.to]).flatten();
+    let permitted = Permitted {
+        knob: pieces.iter().map(|piece| range(piece, scale)).collect(),
+        setting: advice.ends.iter().map(|ends| ends.each_ref().map(|end| end.as_ref().map(typed))).collect(),
+        proven: edges().all(|border| border.proven) && lanes.iter().all(|lane| lane.proven),
+        suggested: advice.suggested.map(|s| Suggestion {
+            setting: typed(&s.setting),
+            knob: s.knob.to_f64().value(),
+            reason: s.reason.to_string(),
+        }),
+        conflict,
+    };
+    let step = here.as_ref().and_then(|here| step(analysis, here, &pieces));
+    let (margins, load) = (here.as_ref().and_then(margins), here.as_ref().and_then(load));
+    Ok(Judgement { requirements, permitted, margins, step, load })
+}
+
+fn requirement(limit: &Limit, lane: &Lane, scale: &Scale, here: Option<&LoopAt>) -> RequirementRecord {
+    let value = limit.value.to_f64().value();
+    let figure = here.map(|here| here.figure(limit.kind));
+    let met = here.map(|here| here.is_stable() && here.knob_within(&lane.pieces));
+    RequirementRecord {
+        kind: limit.kind,
+        limit: value,
+        at_least: at_least(limit.kind),
+        unit: unit(limit.kind).to_string(),
+        ranges: lane.pieces.iter().map(|piece| range(piece, scale)).collect(),
+        proven: lane.proven,
+        figure: figure.and_then(Figure::value),
+        met,
+        remark: lane.remark.clone(),
+    }
+}
+
+impl LoopAt {
+    fn knob_within(&self, pieces: &[Piece]) -> bool {
+        pieces.iter().any(|piece| piece.surely_holds(&self.knob))
+    }
+}
+
+fn range(piece: &Piece, scale: &Scale) -> LimitRange {
+    let edge = |border: &Border| LimitEdge {
+        knob: border.value(),
+        setting: scale.setting_f64(border.value()),
+        bracket: border.bracket.decimal_bracket(BRACKET_DIGITS),
+        proven: border.proven,
+        cause: border.cause,
+    };
+    LimitRange { from: piece.from.as_ref().map(edge), to: piece.to.as_ref().map(edge) }
+}
+
+fn margins(here: &LoopAt) -> Option<Margins> {
+    let found = here.frequency()?;
+    let finite = |value: f64| value.is_finite().then_some(value);
+    let at_finite = |c: &&PhaseCrossing| c.omega.is_finite();
+    Some(Margins {
+        gain_up: finite(found.gain_up),
+        gain_down: finite(found.gain_down),
+        phase: finite(found.phase_margin()),
+        delay: finite(found.delay_margin()),
+        peak_sensitivity: found.peak.1,
+        peak_frequency: found.peak.0,
+        bandwidth: found.bandwidth.and_then(finite),
+        gain_crossings: found.gain_crossings.iter().copied().collect::<Vec<GainCrossing>>(),
+        phase_crossings: found.phase_crossings.iter().filter(at_finite).copied().collect(),
+        response: found.response(here.poles()),
+    })
+}
+
+fn step(analysis: &Analysis, here: &LoopAt, pieces: &[Piece]) -> Option<StepRecord> {
+    let (modes, peaks) = here.output()?;
+    let own = modes.horizon();
+    let knob = here.knob.to_f64().value();
+    let chosen = pieces.iter().find(|piece| piece.holds(knob)).or(pieces.first());
+    let borders = chosen.into_iter().flat_map(|piece| [&piece.from, &piece.to]).flatten();
+    let at_edges: Vec<LoopAt> = borders
+        .filter(|border| border.cause != crate::record::Cause::Stability)
+        .filter_map(|border| LoopAt::new(&analysis.model, border.bracket.midpoint().to_rational()).ok())
+        .collect();
+    let horizons = at_edges.iter().filter_map(LoopAt::output).map(|(modes, _)| modes.horizon());
+    let end = horizons.fold(own, f64::max).min(LONGEST * own);
+    let edge_curve = |at: &LoopAt| {
+        let (modes, _) = at.output()?;
+        Some(EdgeCurve { knob: at.knob.to_f64().value(), curve: modes.curve(end) })
+    };
+    Some(StepRecord {
+        curve: modes.curve(end),
+        at_edges: at_edges.iter().filter_map(edge_curve).collect(),
+        controller: here.control().map(|(modes, _)| modes.curve(end)),
+        final_value: modes.final_value,
+        overshoot: overshoot(modes, peaks),
+        undershoot: undershoot(modes, peaks),
+        rise_time: rise_time(modes),
+        settling_time2: here.settling_time(SettlingBand::TwoPercent),
+        settling_time5: here.settling_time(SettlingBand::FivePercent),
+        peak_time: here.peak_time(),
+        controller_peak: here.figure(RequirementKind::ControllerPeak).value(),
+    })
+}
+
+fn load(here: &LoopAt) -> Option<LoadRecord> {
+    let (modes, _) = here.load()?;
+    let peak = here.figure(RequirementKind::LoadPeak).value()?;
+    Some(LoadRecord { curve: modes.curve(modes.horizon()), peak, final_value: modes.final_value })
+}
