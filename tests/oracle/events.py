@@ -21,8 +21,10 @@ from polynomials import at_knob, fraction_of
 EVENT_BITS = 900
 #: A pair (root, knob) solves a system if its residual is below 2^-RESIDUAL_BITS of its terms.
 RESIDUAL_BITS = 300
-#: Denominator below which an event is recognised as a rational number; a chance hit needs 2^-700.
-LARGEST_DENOMINATOR = 1 << 100
+#: Denominator up to which an event is recognised as a rational number.
+LARGEST_DENOMINATOR = 1 << 300
+#: A rational of denominator d counts only in a ball narrower than 2^-CHANCE_BITS / d², where hardly any lies by chance.
+CHANCE_BITS = 100
 #: At an irrational event the knob is rounded to this many bits, so an m-fold root is off by 2^-(bits / m) relative.
 ROUNDED_BITS = 480
 #: Two roots nearer than this relative distance are one at the event: between 2^-(ROUNDED_BITS / 4) and any true distance.
@@ -101,7 +103,8 @@ def as_rational(ball):
     scale = 1 << max(0, -exponent(middle))
     candidate = (middle * scale).limit_denominator(LARGEST_DENOMINATOR) / scale
     guess = fmpq(candidate.numerator, candidate.denominator)
-    return guess if (ball - arb(guess)).contains(0) else None
+    by_chance = ball.rad() * scale * (candidate * scale).denominator ** 2 * 2**CHANCE_BITS > 1
+    return guess if (ball - arb(guess)).contains(0) and not by_chance else None
 
 
 def exponent(fraction):

@@ -126,10 +126,11 @@ def directions(loop, kind, home, other):
 
 
 def fan(loop, kind, place, m, half, angles, at):
-    """One mark for every direction. A simple real pole leaves along the axis, which a record need not say."""
+    """One mark for every direction. A record need not say that a simple real pole leaves along the axis, nor how poles leave where
+    the knob does not enter once."""
     counts = {m, m + fixed_at(loop, place)}
     plain = is_real(place) and m == 1
-    return [Mark({kind}, place, at, counts, {half}, angle, not plain) for angle in angles]
+    return [Mark({kind}, place, at, counts, {half}, angle, loop.affine and not plain) for angle in angles]
 
 
 def measured(loop):

@@ -6,10 +6,11 @@ in one such disc with m = 1 are the same root. `fast` does this in f64 for all s
 `Follower` does it in ball arithmetic for the ones that remain, in steps as small as they must be.
 """
 
+from dataclasses import dataclass, fields
 from math import comb
 
 import numpy as np
-from flint import acb, acb_poly, arb, fmpq
+from flint import acb, acb_poly, arb, arb_poly, fmpq
 
 from certified import precision, roots
 
@@ -22,7 +23,9 @@ SMALLEST_STEP = 160
 #: Newton steps towards a root that is known to be near.
 NEWTON_STEPS = 60
 #: Radii tried for a disc, in distances between its vertices.
-FAST_RADII = (1.0, 1.6, 2.6, 4.5)
+FAST_RADII = (1.2, 2.0, 3.2, 5.5)
+#: Halvings of a segment in f64 before it goes to the slow follower.
+HALVINGS = 16
 #: f64 rounding of a product of n factors, in units of n·EPSILON: each factor and each addition rounds once.
 ROUNDINGS = 4
 
@@ -62,6 +65,9 @@ class Fast:
         size, worst = self.sizes(center, middle, half)
         radius = np.zeros(len(center))
         powers = np.arange(self.order + 1)
+        with np.errstate(all="ignore"):
+            # A root that comes back moves farther than its ends are apart.
+            apart = apart / 2 + np.where(size[:, 1] > 0, worst[:, 0] / size[:, 1], 0) / 2
         for factor in FAST_RADII:
             trial = apart * factor
             with np.errstate(all="ignore"):
@@ -73,13 +79,19 @@ class Fast:
         return center, radius
 
     def sizes(self, center, middle, half):
-        """|a_k| at the middle of the knob's interval, and how much less or more it may be."""
-        total = np.zeros((len(center), self.order + 1), dtype=complex)
+        """|a_k| at the middle of the knob's interval, and how much less or more it may be: a Taylor sum in the knob."""
+        around = self.taylor(center)
         worst = np.zeros((len(center), self.order + 1))
-        for k, (plain, bound) in enumerate(self.taylor(center)):
-            total += plain * (middle**k)[:, None]
-            reach = (abs(middle) + half) ** k - abs(middle) ** k
-            worst += abs(plain) * reach[:, None] + bound * (self.noise * (abs(middle) + half) ** k)[:, None]
+        for j in range(len(around)):
+            slope = np.zeros((len(center), self.order + 1), dtype=complex)
+            for k in range(j, len(around)):
+                slope += around[k][0] * (comb(k, j) * middle ** (k - j))[:, None]
+            if j == 0:
+                total = slope
+            else:
+                worst += abs(slope) * (half**j)[:, None]
+        for k, (_, bound) in enumerate(around):
+            worst += bound * (self.noise * (abs(middle) + half) ** k)[:, None]
         return abs(total), worst
 
     def value_and_slope(self, s, q):
@@ -109,6 +121,61 @@ class Fast:
             return self.order * (abs(value) + noise) / abs(slope)
 
 
+    def turning(self, s, q0, q1):
+        """A knob between q0 and q1 at which the root is about at s: −D/N for a knob that enters once, else the middle."""
+        middle = (q0 + q1) / 2
+        if len(self.parts) > 2:
+            return middle
+        with np.errstate(all="ignore"):
+            d, n = (lead * np.prod(s[:, None] - listed[None, :], axis=1) for lead, listed in self.parts)
+            q = np.real(-d / n)
+        return np.where((q - q0) * (q - q1) < 0, q, middle)
+
+    def pieces(self, s, q):
+        """Pieces of a polyline with one root in a disc all along each; longer segments are halved up to HALVINGS times."""
+        work = Pieces(np.arange(len(s) - 1), s[:-1], s[1:], q[:-1], q[1:])
+        done = []
+        for _ in range(HALVINGS):
+            work.center, work.radius = self.discs(work.s0, work.s1, work.q0, work.q1)
+            off = np.maximum(self.root_distance(work.s0, work.q0), self.root_distance(work.s1, work.q1))
+            sure = (work.radius > 0) & (abs(work.s1 - work.s0) / 2 + off <= work.radius)
+            done.append(work.where(sure))
+            work = work.where(~sure)
+            if not len(work.segment):
+                break
+            knob = self.turning((work.s0 + work.s1) / 2, work.q0, work.q1)
+            work = work.halved(knob, self.newton((work.s0 + work.s1) / 2, knob))
+        return Pieces.joined(done), np.unique(work.segment)
+
+
+@dataclass
+class Pieces:
+    """Arrays, one entry a piece of a segment."""
+
+    segment: np.ndarray
+    s0: np.ndarray
+    s1: np.ndarray
+    q0: np.ndarray
+    q1: np.ndarray
+    center: np.ndarray | None = None
+    radius: np.ndarray | None = None
+
+    def where(self, mask):
+        return Pieces(*(getattr(self, f.name)[mask] for f in fields(self)))
+
+    def halved(self, knob, s):
+        first = (self.segment, self.s0, s, self.q0, knob)
+        second = (self.segment, s, self.s1, knob, self.q1)
+        return Pieces(*(np.concatenate(pair) for pair in zip(first, second)))
+
+    @staticmethod
+    def joined(parts):
+        """All pieces in the order of |knob|."""
+        whole = [np.concatenate([getattr(p, f.name) for p in parts]) for f in fields(Pieces)]
+        order = np.argsort(abs(whole[3]), kind="stable")
+        return Pieces(*(a[order] for a in whole))
+
+
 class Lost(ArithmeticError):
     """A root could not be told from its neighbours: at or next to a multiple point."""
 
@@ -122,18 +189,21 @@ class Follower:
         self.order = max(p.degree() for p in moving)
 
     def coefficients(self, center, middle, half):
-        """(size, worst) of the coefficients around a centre for a knob within half of middle, as exact f64-free balls."""
-        shifted = [p(acb_poly([center, 1])) for p in self.polys]
-        q, h = arb(middle), arb(abs(half))
-        found = []
-        for k in range(self.order + 1):
-            total, spread = acb(0), arb(0)
-            for power, p in enumerate(shifted):
-                c = p[k] if k <= p.degree() else acb(0)
-                total += c * q**power
-                spread += abs(c) * ((abs(q) + h) ** power - abs(q) ** power)
-            found.append((abs(total), spread))
-        return found
+        """(size, worst) of the coefficients around a centre for a knob within half of middle."""
+        shift, q, h = acb_poly([center, 1]), arb(middle), arb(abs(half))
+        around = [p(shift) for p in self.polys]
+        spread = [arb(0)] * (self.order + 1)
+        for j in range(len(around)):
+            slope = acb_poly([])
+            for k in range(j, len(around)):
+                slope += around[k] * acb(comb(k, j) * q ** (k - j))
+            if j == 0:
+                total = slope
+            else:
+                for k, c in enumerate(slope.coeffs()):
+                    spread[k] += abs(c) * h**j
+        size = [abs(c) for c in total.coeffs()]
+        return size + [arb(0)] * (self.order + 1 - len(size)), spread
 
     def holds(self, center, q0, q1, count, radius):
         """True if the disc surely has `count` roots for every knob between q0 and q1."""
@@ -143,14 +213,10 @@ class Follower:
 
     @staticmethod
     def pellet(listed, count, radius):
-        most, power, lead = arb(0), arb(1), arb(0)
-        for k, (size, spread) in enumerate(listed):
-            if k == count:
-                lead = (size - spread) * power
-            else:
-                most += (size + spread) * power
-            power *= radius
-        return bool(lead > most)
+        size, spread = listed
+        most = [a + b for a, b in zip(size, spread)]
+        most[count] = arb(0)
+        return bool((size[count] - spread[count]) * radius**count > arb_poly(most)(radius))
 
     def newton(self, s, q):
         """The root near s at a knob, to some FOLLOW_BITS / 2 bits, without proof."""
@@ -201,11 +267,12 @@ class Follower:
             ahead = self.newton(s, q1)
         except Lost:
             return None
-        apart = abs(ahead - s)
-        if apart.contains(0) or apart < abs(s) * arb(2) ** -200:
-            apart = abs(s) * arb(2) ** -200 + arb(2) ** -FOLLOW_BITS
         listed = self.coefficients(s, (q0 + q1) / 2, (q1 - q0) / 2)
-        return ahead if any(self.pellet(listed, 1, apart * factor) for factor in (1.5, 3, 8)) else None
+        if listed[0][1].contains(0):
+            return None
+        # A root that comes back moves farther than its ends are apart.
+        apart = abs(ahead - s) + listed[1][0] / listed[0][1] + abs(s) * arb(2) ** -200 + arb(2) ** -FOLLOW_BITS
+        return ahead if any(self.pellet(listed, 1, apart * factor) for factor in (1.2, 2.5, 6)) else None
 
 
 def float_of(value):

@@ -1,4 +1,4 @@
-/** The answer in words: where the loop is stable, and what it is at the chosen setting. */
+// The answer in words: where the loop is stable, and what it is at the chosen setting.
 import { printedText } from "./decimal.ts";
 import { counted, figure, listed, withUnit } from "./format.ts";
 import { printedEnds, stableSpans, type PrintedEnd, type StableSpan } from "./ranges.ts";
@@ -22,7 +22,8 @@ export function stabilitySentence(record: Findings): Piece[] {
   const edges = record.stability.flatMap((range) => (range.to ? [range.to] : []));
   const proof = edges.every((edge) => edge.proven) ? "proven" : "not proven";
   if (spans.length === 0) {
-    const reason = record.notices.some((notice) => notice.kind === "unstable-fixed-mode") ? ": a fixed mode lies on or right of the imaginary axis" : "";
+    const fixed = record.notices.some((notice) => notice.kind === "unstable-fixed-mode");
+    const reason = fixed ? ": a fixed mode lies on or right of the imaginary axis" : "";
     return [{ text: `No value of ${knob} makes this loop stable (${proof})${reason}.` }];
   }
   const exceptions = exceptionPhrase(spans);

@@ -1,7 +1,5 @@
-/**
- * The axis of settings under which the lanes are drawn: which part of the knob's line it shows, on which scale, with
- * which ticks, and how far one step of the pointer goes.
- */
+// The axis of settings under which the lanes are drawn: which part of the knob's line it shows, on which scale, with
+// which ticks, and how far one step of the pointer goes.
 import { scaleLinear, scaleLog, scaleSymlog, type ScaleContinuousNumeric } from "d3-scale";
 import { fromNumber, readDecimal, roundPlace, superscript, toNumber, type Decimal } from "./decimal.ts";
 import { figure } from "./format.ts";
@@ -45,8 +43,9 @@ const MARGIN_DECADES = 0.35;
 const MARGIN_PART = 0.12;
 /** Where edges lie on both sides of zero, sizes further apart than this ratio need logarithms. */
 const LINEAR_RATIO = 30;
-/** Decades shown around a loop without any edge. */
+/** Decades shown on each side of the setting of a loop without any edge, and the ends of its linear axis. */
 const EMPTY_DECADES = 2;
+const EMPTY_END = 10;
 /** Steps of the pointer from one end of the axis to the other. */
 const STEPS = 200;
 /** Ticks closer together than this, in pixels, are left out. */
@@ -116,7 +115,7 @@ export function ticksOn(axis: Axis, length: number, room: number): Tick[] {
   const position = positionOn(axis, length);
   if (axis.scale === "linear") {
     const scale = scaleLinear([...axis.domain], [0, length]);
-    return scale.ticks(Math.max(2, Math.floor(length / (1.6 * room)))).map((value) => ({ value, label: tickText(value) }));
+    return scale.ticks(Math.max(2, Math.floor(length / (2 * room)))).map((value) => ({ value, label: tickText(value) }));
   }
   const taken: number[] = [];
   const ticks: Tick[] = [];
@@ -185,8 +184,8 @@ function linearAxis(subject: Subject): Axis {
   const frame = framed(subject);
   const low = Math.min(0, ...frame);
   const high = Math.max(0, ...frame);
-  const margin = (high - low || 2) * MARGIN_PART;
-  const [from = -1, to = 1] = scaleLinear([low - margin, high + margin], [0, 1]).nice(20).domain();
+  const margin = (high - low) * MARGIN_PART || EMPTY_END;
+  const [from = -EMPTY_END, to = EMPTY_END] = scaleLinear([low - margin, high + margin], [0, 1]).nice(20).domain();
   return { scale: "linear", domain: [from, to], linearWithin: 0 };
 }
 

@@ -1,8 +1,6 @@
-/**
- * Exact decimal numbers as text, so that a rounded figure can be proven to lie on the safe side.
- *
- * A number is `digits × 10^exponent` with an integer of any size; nothing passes through floating point.
- */
+// Exact decimal numbers as text, so that a rounded figure can be proven to lie on the safe side.
+//
+// A number is `digits × 10^exponent` with an integer of any size; nothing passes through floating point.
 
 /** `digits × 10^exponent`. */
 export interface Decimal {
@@ -40,12 +38,12 @@ export function fromNumber(value: number): Decimal {
   return decimal;
 }
 
-/** The decimal equal to a fraction such as `-2/15` or an integer; null where it does not end within a few places. */
-export function fromFraction(text: string): Decimal | null {
-  const match = /^(-?\d+)(?:\/(\d+))?$/.exec(text);
-  if (!match?.[1]) return null;
+/** The decimal equal to a rational number such as `0.5` or `-1/8`; null where it does not end within a few places. */
+export function fromRational(text: string): Decimal | null {
+  const match = /^(-?\d+)\/(\d+)$/.exec(text);
+  if (!match?.[1] || !match[2]) return readDecimal(text);
   const numerator = BigInt(match[1]);
-  const denominator = BigInt(match[2] ?? "1");
+  const denominator = BigInt(match[2]);
   if (denominator === 0n) return null;
   for (let places = 0; places <= FRACTION_PLACES; places += 1) {
     const scaled = numerator * 10n ** BigInt(places);

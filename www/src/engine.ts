@@ -149,7 +149,7 @@ export class Engine {
     // A worker that broke before it was ready would break again: then the next request starts one, not this failure.
     if (this.#ready) void this.#start();
     else this.#end();
-    const error = new Error(`The engine stopped unexpectedly (${reason}). Nothing you typed is lost; change it and try again.`);
+    const error = new Error(`The engine stopped unexpectedly (${reason}). Nothing you typed is lost; change it and try again`);
     for (const request of dropped) request.reject(error);
   }
 

@@ -1,4 +1,4 @@
-/** Figures as an engineer writes them: as many digits as are known, a true minus sign, a thin space before the unit. */
+// Figures as an engineer writes them: as many digits as are known, a true minus sign, a thin space before the unit.
 import { fromNumber, printedText, roundDigits } from "./decimal.ts";
 
 /** A narrow space at which no line breaks. */

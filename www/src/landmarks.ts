@@ -22,8 +22,27 @@ export function notable(landmarks: readonly Landmark[], signs: readonly KnobSign
     .sort((left, right) => size(left) - size(right) || 0);
 }
 
-/** A landmark in words. */
-export function landmarkWords({ kind, s, angle, multiplicity }: Landmark): string {
+/** A row of the table: a landmark, or all branches that leave one pole or arrive at one zero. */
+export interface LandmarkRow extends Landmark {
+  /** Degrees, for departures and arrivals. */
+  readonly angles: readonly number[];
+}
+
+/** The landmarks as rows, in the same order. */
+export function grouped(landmarks: readonly Landmark[]): LandmarkRow[] {
+  const rows: (Landmark & { angles: number[] })[] = [];
+  for (const landmark of landmarks) {
+    const { kind, s, sign, angle } = landmark;
+    const row = rows.find((other) => other.kind === kind && other.s.re === s.re && other.s.im === s.im && other.sign === sign);
+    if (angle !== null && row) row.angles.push(angle);
+    else rows.push({ ...landmark, angles: angle === null ? [] : [angle] });
+  }
+  for (const row of rows) row.angles.sort((left, right) => left - right);
+  return rows;
+}
+
+/** A row in words. */
+export function landmarkWords({ kind, s, angles, multiplicity }: LandmarkRow): string {
   const together = multiplicity > 2 ? ` (${multiplicity} poles)` : "";
   switch (kind) {
     case "breakaway":
@@ -35,10 +54,17 @@ export function landmarkWords({ kind, s, angle, multiplicity }: Landmark): strin
     case "origin crossing":
       return "passes the origin";
     case "departure":
-      return `leaves the pole at ${angleText(angle ?? 0)}`;
+      return `leaves the pole at ${anglesText(angles)}`;
     case "arrival":
-      return `arrives at the zero at ${angleText(angle ?? 0)}`;
+      return `arrives at the zero at ${anglesText(angles)}`;
   }
+}
+
+/** Angles as a phrase; two opposite ones as one with both signs. */
+function anglesText(angles: readonly number[]): string {
+  const [first = 0, second = 0] = angles;
+  if (angles.length === 2 && angleText(-first) === angleText(second)) return `±${angleText(second)}`;
+  return listed(angles.map(angleText));
 }
 
 /** The asymptotes of one half in words; null where the half has none. */
@@ -72,7 +98,7 @@ export function landmarksTable(session: Session, plane: Plane): void {
     if (key === drawn) return;
     drawn = key;
     head.textContent = withUnit(record.project.knob, knobUnit(record) && `(${knobUnit(record)})`);
-    const rows = notable(record.landmarks, signs);
+    const rows = grouped(notable(record.landmarks, signs));
     body.replaceChildren(...rows.map((landmark) => tableRow(landmark, session)));
     none.hidden = rows.length > 0;
     more.replaceChildren(...signs.flatMap((sign) => summary(record, sign, signs.length > 1)));
@@ -84,7 +110,7 @@ export function landmarksTable(session: Session, plane: Plane): void {
   });
 }
 
-function tableRow(landmark: Landmark, session: Session): HTMLTableRowElement {
+function tableRow(landmark: LandmarkRow, session: Session): HTMLTableRowElement {
   const { knob, s } = landmark;
   const words = landmarkWords(landmark);
   const choose = (): void => {
@@ -104,7 +130,7 @@ function tableRow(landmark: Landmark, session: Session): HTMLTableRowElement {
 }
 
 function summary(record: Findings, sign: KnobSign, named: boolean): HTMLElement[] {
-  const side = named ? `, ${sign} knob` : "";
+  const side = named ? `, ${record.project.knob} ${sign === "positive" ? ">" : "<"} 0` : "";
   const lines = [
     { term: `asymptotes${side}`, text: asymptoteWords(record, sign) },
     { term: `real axis${side}`, text: realAxisWords(record, sign) },

@@ -1,4 +1,4 @@
-/** What stands in the lanes under the ruler: segments with their words, longest first, and the edges between them. */
+// What stands in the lanes under the ruler: segments with their words, longest first, and the edges between them.
 import { counted } from "./format.ts";
 import { verdictOf } from "./ranges.ts";
 import type { CharacterRange, Edge, Record as Findings, StabilityRange } from "./types.ts";

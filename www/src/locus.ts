@@ -1,4 +1,4 @@
-/** Geometry of the locus in the s-plane: pieces by verdict, the nearest point, what the picture frames. No DOM. */
+// Geometry of the locus in the s-plane: pieces by verdict, the nearest point, what the picture frames. No DOM.
 import { rangeAt, verdictOf, type Verdict } from "./ranges.ts";
 import type { KnobSign, StabilityRange, View } from "./types.ts";
 

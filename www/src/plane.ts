@@ -5,6 +5,7 @@ import { pointer, select, type Selection } from "d3-selection";
 import { line } from "d3-shape";
 import { zoom, zoomIdentity, type D3ZoomEvent, type ZoomBehavior, type ZoomTransform } from "d3-zoom";
 import { knobUnit } from "./answer.ts";
+import { tickText } from "./axis.ts";
 import { fromNumber, roundDigits, typedText } from "./decimal.ts";
 import { byId, html, letterScale, oncePerFrame, setAttributes, svg, watchSize } from "./dom.ts";
 import { dampingOf, figure, pairText, THIN_SPACE, withUnit } from "./format.ts";
@@ -267,10 +268,6 @@ export class Plane {
 /** So many ticks fit on an axis. */
 function tickCount(length: number): number {
   return Math.max(2, Math.round(length / (SIZES.tick * letterScale())));
-}
-
-function tickText(value: number): string {
-  return figure(value, 6);
 }
 
 /** The picture in words, for those who cannot see it; the tables beside it hold the figures. */

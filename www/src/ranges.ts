@@ -1,8 +1,8 @@
-/** The stable ranges of a record, joined and rounded so that every printed figure lies on the safe side. */
+// The stable ranges of a record, joined and rounded so that every printed figure lies on the safe side.
 import {
   add,
   compare,
-  fromFraction,
+  fromRational,
   leadingExponent,
   readDecimal,
   roundDigits,
@@ -65,7 +65,7 @@ export function printedEnds(span: StableSpan): { from: PrintedEnd | null; to: Pr
 
 /** An edge as a short decimal: exact where that is possible, otherwise rounded up or down past its bracket. */
 export function printedEnd(edge: Edge, direction: "up" | "down", digits: number = END_DIGITS): PrintedEnd {
-  const exact = edge.exact === null ? null : fromFraction(edge.exact);
+  const exact = edge.exact === null ? null : fromRational(edge.exact);
   if (exact && significantDigits(exact) <= EXACT_DIGITS) return { edge, decimal: exact, exact: true };
   const bound = readDecimal(edge.bracket[direction === "up" ? 1 : 0]);
   if (!bound) throw new RangeError(`a bracket that is no decimal: ${edge.bracket.join(", ")}`);

@@ -1,5 +1,5 @@
-/** Why an edge is an edge, in words. */
-import { fromFraction, printedText, readDecimal } from "./decimal.ts";
+// Why an edge is an edge, in words.
+import { fromRational, printedText, readDecimal } from "./decimal.ts";
 import { counted, figure, listed, THIN_SPACE } from "./format.ts";
 import { kindWords, stabilityWords } from "./lanes.ts";
 import type { CharacterRange, Edge, Record as Findings } from "./types.ts";
@@ -69,7 +69,7 @@ function characterText(range: CharacterRange): string {
 }
 
 function exactText(knob: string, exact: string): string {
-  const decimal = fromFraction(exact);
+  const decimal = fromRational(exact);
   const fraction = exact.replace("-", "−");
   const same = decimal && exact.includes("/") ? ` = ${printedText(decimal)}` : "";
   return `${knob} = ${fraction}${same}`;

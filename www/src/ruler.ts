@@ -39,8 +39,9 @@ export class Ruler {
   readonly #picture = byId("ruler", SVGSVGElement);
   readonly #choice = byId("axis", HTMLSelectElement);
   readonly #base = svg("g");
-  readonly #pointer = svg("g", { class: "pointer", role: "slider", tabindex: 0, "aria-label": "Setting", "aria-orientation": "horizontal" });
-  readonly #hint = svg("text", { class: "outside" });
+  readonly #pointer = svg("g", { class: "pointer", role: "slider", tabindex: 0, "aria-label": "Setting" });
+  /** They stay while the pointer moves: a finger on a part that is replaced would lose it. */
+  readonly #parts = { halo: svg("rect", { class: "halo" }), stem: svg("line"), head: svg("path"), words: svg("text") };
   #width = 0;
   #axis: Axis | null = null;
   #dragging = false;
@@ -49,7 +50,8 @@ export class Ruler {
   constructor(session: Session, onReason: (edge: Edge, from: Element) => void) {
     this.#session = session;
     this.#onReason = onReason;
-    this.#picture.append(this.#base, this.#hint, this.#pointer);
+    this.#pointer.append(...Object.values(this.#parts));
+    this.#picture.append(this.#base, this.#pointer);
     this.#choice.addEventListener("change", () => this.show(session.situation));
     this.#pointer.addEventListener("keydown", (event) => this.#press(event));
     this.#makeDraggable();
@@ -94,18 +96,22 @@ export class Ruler {
         laneText(index === 0 ? stableText(record) : "", layout),
       );
     });
-    const edges = lanes.map((lane, index) => this.#edgeMarks(lane, axis, position, layout, SIZES.axis * scale + index * pitch, record));
+    const edges = lanes.map((lane, index) => {
+      const top = SIZES.axis * scale + (index + 1) * pitch - (SIZES.lane + SIZES.gap) * scale;
+      return this.#edgeMarks(lane, axis, layout, top, record);
+    });
     this.#base.replaceChildren(ticks, ...rows, catcher, ...edges);
   }
 
-  #edgeMarks(lane: Lane, axis: Axis, position: Position, layout: Layout, y: number, record: Findings): SVGGElement {
+  #edgeMarks(lane: Lane, axis: Axis, layout: Layout, top: number, record: Findings): SVGGElement {
     const height = SIZES.lane * layout.scale;
-    const top = y + layout.pitch - height - SIZES.gap * layout.scale;
+    const position = positionOn(axis, layout.length);
+    const lead = `Edge of ${lane.name.toLowerCase()} at ${record.project.knob} =`;
     const marks = lane.edges
       .filter((edge) => onAxis(axis, edge.value))
       .map((edge) => {
         const x = layout.left + position(edge.value);
-        const name = `Edge of ${lane.name.toLowerCase()} at ${record.project.knob} = ${figure(edge.value)}: ${happening(edge)} Open the reason.`;
+        const name = `${lead} ${figure(edge.value)}: ${happening(edge)} Open the reason.`;
         const mark = svg(
           "g",
           { class: "edge", role: "button", tabindex: 0, "aria-label": name, transform: `translate(${x} ${top})` },
@@ -143,13 +149,14 @@ export class Ruler {
     const bottom = SIZES.axis * scale + 2 * layout.pitch;
     const label = `setting ${shown || setting === null ? words : `${words} lies outside this axis`}`;
     const half = (label.length * SIZES.letter * scale) / 2;
-    const text = svg("text", { x: Math.min(layout.width - half, Math.max(half, x)) - x, y: bottom + 16 * scale }, label);
-    this.#pointer.replaceChildren(
-      svg("rect", { class: "halo", x: -12 * scale, y: SIZES.axis * scale - 30 * scale, width: 24 * scale, height: bottom - 2 * scale, rx: 4 }),
-      svg("line", { y1: SIZES.axis * scale - 10 * scale, y2: bottom }),
-      svg("path", { d: headPath(scale), transform: `translate(0 ${SIZES.axis * scale - 8 * scale})` }),
-      text,
-    );
+    const inside = Math.min(layout.width - half, Math.max(half, x)) - x;
+    const { halo, stem, head, words: name } = this.#parts;
+    const top = SIZES.axis * scale;
+    setAttributes(halo, { x: -12 * scale, y: top - 30 * scale, width: 24 * scale, height: bottom - 2 * scale, rx: 4 });
+    setAttributes(stem, { y1: top - 10 * scale, y2: bottom });
+    setAttributes(head, { d: headPath(scale), transform: `translate(0 ${top - 8 * scale})` });
+    setAttributes(name, { x: inside, y: bottom + 16 * scale });
+    name.textContent = label;
     setAttributes(this.#pointer, { transform: `translate(${x} 0)` });
   }
 
@@ -282,7 +289,8 @@ function stableText(record: Findings): string {
   const [only] = spans;
   if (spans.length !== 1 || !only) return spans.length === 0 ? "never stable" : `${spans.length} stable ranges`;
   const { from, to } = printedEnds(only);
-  if (from && to) return `${printedText(from.decimal)} … ${printedText(to.decimal)}`;
+  const both = from && to ? `${printedText(from.decimal)} … ${printedText(to.decimal)}` : "";
+  if (both) return both.length * SIZES.letter <= SIZES.texts ? both : "1 stable range";
   if (from) return `above ${printedText(from.decimal)}`;
   return to ? `below ${printedText(to.decimal)}` : "always stable";
 }

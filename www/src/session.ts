@@ -132,6 +132,8 @@ export class Session {
         await this.#open(document, untouched);
         return true;
       } catch (error) {
+        // The form is there to be used all the same.
+        this.#tell();
         if (untouched()) throw error;
         return false;
       }

@@ -34,7 +34,7 @@ export async function openDocument(source: string, open: () => Promise<unknown>)
     return true;
   } catch (error) {
     const reason = error instanceof Error ? error.message : String(error);
-    say(`${source} was not opened, and nothing was changed: ${reason}.`, "trouble");
+    say(`${source} was not opened, and nothing was changed: ${reason.replace(/\.$/, "")}.`, "trouble");
     return false;
   }
 }

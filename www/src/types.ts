@@ -115,7 +115,8 @@ value: number,
  */
 bracket: [string, string],
 /**
- * The edge itself where it is a rational number: "1386" or "-2/15".
+ * The edge itself where it is a rational number: a decimal such as "0.5" where one of 20 digits is exact, otherwise a
+ * fraction such as "-2/15".
  */
 exact: string | null,
 /**

@@ -3,7 +3,7 @@ import test from "node:test";
 import {
   add,
   compare,
-  fromFraction,
+  fromRational,
   fromNumber,
   printedText,
   readDecimal,
@@ -61,11 +61,12 @@ test("Rounding to a place keeps multiples of it", () => {
   assert.equal(typedText(roundPlace(read("-0.04"), 0, "nearest")), "0");
 });
 
-test("A fraction becomes a decimal only where that ends", () => {
-  assert.equal(typedText(fromFraction("63/5") ?? read("0")), "12.6");
-  assert.equal(typedText(fromFraction("-1386") ?? read("0")), "-1386");
-  assert.equal(fromFraction("-2/15"), null);
-  assert.equal(fromFraction("1/0"), null);
+test("A rational number becomes a decimal only where that ends", () => {
+  assert.equal(typedText(fromRational("0.5") ?? read("0")), "0.5");
+  assert.equal(typedText(fromRational("63/5") ?? read("0")), "12.6");
+  assert.equal(typedText(fromRational("-1386") ?? read("0")), "-1386");
+  assert.equal(fromRational("-2/15"), null);
+  assert.equal(fromRational("1/0"), null);
 });
 
 test("Numbers are printed with a true minus sign and powers of ten only far from one", () => {

@@ -2,7 +2,7 @@ import assert from "node:assert/strict";
 import test from "node:test";
 import { poleRows } from "../src/figures.ts";
 import { shownSigns } from "../src/halves.ts";
-import { asymptoteWords, landmarkWords, notable, realAxisWords } from "../src/landmarks.ts";
+import { asymptoteWords, grouped, landmarkWords, notable, realAxisWords } from "../src/landmarks.ts";
 import type { ClosedLoop, Landmark } from "../src/types.ts";
 import { edge, record, stability } from "./record.ts";
 
@@ -39,10 +39,17 @@ test("Branches of simple real poles and zeros get no row, others do", () => {
 });
 
 test("Landmarks are told in the trade's words", () => {
-  assert.equal(landmarkWords(landmark({})), "leaves the real axis");
-  assert.equal(landmarkWords(landmark({ multiplicity: 3 })), "leaves the real axis (3 poles)");
-  assert.equal(landmarkWords(landmark({ s: { re: -2, im: 1 } })), "branches meet");
-  assert.equal(landmarkWords(landmark({ kind: "departure", angle: 104.04 })), "leaves the pole at 104°");
+  const words = (parts: Partial<Landmark>): string[] => grouped([landmark(parts)]).map(landmarkWords);
+  assert.deepEqual(words({}), ["leaves the real axis"]);
+  assert.deepEqual(words({ multiplicity: 3 }), ["leaves the real axis (3 poles)"]);
+  assert.deepEqual(words({ s: { re: -2, im: 1 } }), ["branches meet"]);
+  assert.deepEqual(words({ kind: "departure", angle: 104.04 }), ["leaves the pole at 104°"]);
+});
+
+test("Branches that leave one repeated pole share a row", () => {
+  const leaving = (angle: number, re: number): Landmark => landmark({ kind: "departure", angle, s: { re, im: 0 }, knob: 0 });
+  const rows = grouped([leaving(90, -20), leaving(-90, -20), leaving(60, -3), landmark({})]);
+  assert.deepEqual(rows.map(landmarkWords), ["leaves the pole at ±90°", "leaves the pole at 60°", "leaves the real axis"]);
 });
 
 test("Asymptotes and the parts of the real axis are told in one line", () => {

@@ -22,39 +22,26 @@ pub(crate) struct Scripts {
 pub(crate) fn install(places: &Places) -> Result<()> {
     // Said here in plain words, since the packages' own programs would say it in theirs.
     read(Command::new("node").arg("--version"))?;
-    let time = |path: &str| -> Option<SystemTime> {
-        fs::metadata(places.www.join(path)).ok()?.modified().ok()
-    };
+    let time = |path: &str| -> Option<SystemTime> { fs::metadata(places.www.join(path)).ok()?.modified().ok() };
     let installed = time("node_modules/.package-lock.json");
     if installed.is_some() && installed >= time("package-lock.json") {
         return Ok(());
     }
     let npm = if cfg!(windows) { "npm.cmd" } else { "npm" };
-    run(Command::new(npm)
-        .current_dir(&places.www)
-        .args(["ci", "--no-audit", "--no-fund"]))
+    run(Command::new(npm).current_dir(&places.www).args(["ci", "--no-audit", "--no-fund"]))
 }
 
 /// Checks the types and bundles both scripts.
 pub(crate) fn build(places: &Places) -> Result<Scripts> {
     run(node_program(&places.www, "tsc").arg("--noEmit"))?;
-    Ok(Scripts {
-        page: bundle(places, "main.ts")?,
-        worker: bundle(places, "worker.ts")?,
-    })
+    Ok(Scripts { page: bundle(places, "main.ts")?, worker: bundle(places, "worker.ts")? })
 }
 
 fn bundle(places: &Places, entry: &str) -> Result<String> {
     read(
         node_program(&places.www, "esbuild")
             .arg(format!("src/{entry}"))
-            .args([
-                "--bundle",
-                "--minify",
-                "--format=iife",
-                "--charset=utf8",
-                "--log-level=warning",
-            ])
+            .args(["--bundle", "--minify", "--format=iife", "--charset=utf8", "--log-level=warning"])
             .args(["--legal-comments=none", BROWSERS]),
     )
 }

@@ -38,12 +38,7 @@ fn main() -> ExitCode {
 
 fn read_task() -> Result<Task> {
     let arguments: Vec<String> = std::env::args().skip(1).collect();
-    match arguments
-        .iter()
-        .map(String::as_str)
-        .collect::<Vec<_>>()
-        .as_slice()
-    {
+    match arguments.iter().map(String::as_str).collect::<Vec<_>>().as_slice() {
         [] => Ok(Task::Build),
         ["--check-types"] => Ok(Task::CheckTypes),
         other => {
@@ -72,14 +67,8 @@ fn build(places: &Places) -> Result<()> {
     fs::write(&path, &page.html)?;
     report(&format!("page     {}", path.display()));
     report(&format!("size     {} bytes", page.html.len()));
-    report(&format!(
-        "SHA-256  {}",
-        hexadecimal(&Sha256::digest(&page.html))
-    ));
-    report(&format!(
-        "program  {} (SHA-256 of the page without this number, as records name it)",
-        page.program_hash
-    ));
+    report(&format!("SHA-256  {}", hexadecimal(&Sha256::digest(&page.html))));
+    report(&format!("program  {} (SHA-256 of the page without this number, as records name it)", page.program_hash));
     Ok(())
 }
 

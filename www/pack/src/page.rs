@@ -48,30 +48,17 @@ pub(crate) fn assemble(places: &Places, parts: &Parts) -> Result<Page> {
     let mut html = read("index.html")?;
     html = fill(&html, "__STYLE_HASH__", &policy_hash(&style))?;
     html = fill(&html, "__SCRIPT_HASH__", &policy_hash(&script))?;
-    html = fill(
-        &html,
-        "<!-- pack:style -->",
-        &format!("<style>{style}</style>"),
-    )?;
-    html = fill(
-        &html,
-        "<!-- pack:script -->",
-        &format!("<script>{script}</script>"),
-    )?;
+    html = fill(&html, "<!-- pack:style -->", &format!("<style>{style}</style>"))?;
+    html = fill(&html, "<!-- pack:script -->", &format!("<script>{script}</script>"))?;
     let worker = format!("<script type=\"text/plain\" id=\"worker-source\">{worker}</script>");
     html = fill(&html, "<!-- pack:worker -->", &worker)?;
-    let wasm = format!(
-        "<script type=\"application/octet-stream;base64\" id=\"engine-wasm\">{wasm}</script>"
-    );
+    let wasm = format!("<script type=\"application/octet-stream;base64\" id=\"engine-wasm\">{wasm}</script>");
     html = fill(&html, "<!-- pack:wasm -->", &wasm)?;
 
     let program_hash = hexadecimal(&Sha256::digest(fill(&html, PROGRAM_HASH, "")?));
     let html = fill(&html, PROGRAM_HASH, &program_hash)?;
     if html.len() >= MOST_BYTES {
-        bail!(
-            "the page has {} bytes; it must stay below {MOST_BYTES}",
-            html.len()
-        );
+        bail!("the page has {} bytes; it must stay below {MOST_BYTES}", html.len());
     }
     Ok(Page { html, program_hash })
 }
@@ -88,9 +75,7 @@ fn fill(html: &str, mark: &str, value: &str) -> Result<String> {
 /// A script as it may stand between script tags: it cannot end the element or open a comment in it. Both texts occur
 /// in a minified script only inside strings and patterns, where the backslash changes nothing.
 fn inline(script: &str) -> String {
-    script
-        .replace("</script", "<\\/script")
-        .replace("<!--", "<\\!--")
+    script.replace("</script", "<\\/script").replace("<!--", "<\\!--")
 }
 
 /// A style sheet as it may stand between style tags.
@@ -139,9 +124,6 @@ mod tests {
     /// SHA-256 of the empty text (e3b0c442 ... b855, from memory), in base64.
     #[test]
     fn the_policy_names_a_hash_in_base64() {
-        assert_eq!(
-            policy_hash(""),
-            "sha256-47DEQpj8HBSa+/TImW+5JCeuQeRkm5NMpJWZG3hSuFU="
-        );
+        assert_eq!(policy_hash(""), "sha256-47DEQpj8HBSa+/TImW+5JCeuQeRkm5NMpJWZG3hSuFU=");
     }
 }

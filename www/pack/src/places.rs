@@ -19,8 +19,7 @@ pub(crate) struct Places {
 impl Places {
     /// Finds them from what Cargo tells the programs it runs.
     pub(crate) fn find() -> Result<Self> {
-        let package =
-            env::var_os("CARGO_MANIFEST_DIR").context("start this program by `cargo page`")?;
+        let package = env::var_os("CARGO_MANIFEST_DIR").context("start this program by `cargo page`")?;
         let root = Path::new(&package)
             .ancestors()
             .nth(2)
@@ -30,11 +29,6 @@ impl Places {
             Some(folder) => env::current_dir()?.join(folder),
             None => root.join("target"),
         };
-        Ok(Self {
-            www: root.join("www"),
-            output: target.join("page"),
-            root,
-            target,
-        })
+        Ok(Self { www: root.join("www"), output: target.join("page"), root, target })
     }
 }

@@ -6,16 +6,13 @@ use std::path::Path;
 use std::process::{Command, Stdio};
 
 /// What to say where Node is missing.
-const NODE_ADVICE: &str =
-    "it comes with Node.js 18 or later; on Debian: apt-get install nodejs npm";
+const NODE_ADVICE: &str = "it comes with Node.js 18 or later; on Debian: apt-get install nodejs npm";
 /// What to say where Rust's tools are missing.
 const RUST_ADVICE: &str = "it comes with Rust (rustup)";
 
 /// Runs the command to its end, its output shown as it comes; an error where it fails.
 pub(crate) fn run(command: &mut Command) -> Result<()> {
-    let status = command
-        .status()
-        .map_err(|error| cannot_start(command, error))?;
+    let status = command.status().map_err(|error| cannot_start(command, error))?;
     if !status.success() {
         bail!("{} ended with {status}", words(command));
     }
@@ -24,10 +21,7 @@ pub(crate) fn run(command: &mut Command) -> Result<()> {
 
 /// Runs the command and returns what it printed, without the spaces around it.
 pub(crate) fn read(command: &mut Command) -> Result<String> {
-    let output = command
-        .stderr(Stdio::inherit())
-        .output()
-        .map_err(|error| cannot_start(command, error))?;
+    let output = command.stderr(Stdio::inherit()).output().map_err(|error| cannot_start(command, error))?;
     if !output.status.success() {
         bail!("{} ended with {}", words(command), output.status);
     }
@@ -38,11 +32,7 @@ pub(crate) fn read(command: &mut Command) -> Result<String> {
 
 /// A program of an npm package, started in `www`.
 pub(crate) fn node_program(www: &Path, name: &str) -> Command {
-    let file = if cfg!(windows) {
-        format!("{name}.cmd")
-    } else {
-        name.to_owned()
-    };
+    let file = if cfg!(windows) { format!("{name}.cmd") } else { name.to_owned() };
     let mut command = Command::new(www.join("node_modules").join(".bin").join(file));
     command.current_dir(www);
     command
@@ -63,10 +53,6 @@ fn cannot_start(command: &Command, error: std::io::Error) -> anyhow::Error {
 
 fn words(command: &Command) -> String {
     let mut words = vec![command.get_program().to_string_lossy()];
-    words.extend(
-        command
-            .get_args()
-            .map(|argument| argument.to_string_lossy()),
-    );
+    words.extend(command.get_args().map(|argument| argument.to_string_lossy()));
     words.join(" ")
 }

@@ -15,7 +15,8 @@ use std::path::PathBuf;
 use ts_rs::{Config, TS, TypeVisitor};
 
 /// The head of the generated file.
-const HEAD: &str = "// Made by `cargo page` from the types of the core (core/src/project.rs, record.rs, answer.rs). Do not edit.\n";
+const HEAD: &str =
+    "// Made by `cargo page` from the types of the core (core/src/project.rs, record.rs, answer.rs). Do not edit.\n";
 
 /// Writes the types, where they are not already there.
 pub(crate) fn write(places: &Places) -> Result<()> {
@@ -31,13 +32,9 @@ pub(crate) fn write(places: &Places) -> Result<()> {
 /// An error where the committed types are not what the generator makes.
 pub(crate) fn check(places: &Places) -> Result<()> {
     let path = path(places);
-    let committed =
-        fs::read_to_string(&path).with_context(|| format!("cannot read {}", path.display()))?;
+    let committed = fs::read_to_string(&path).with_context(|| format!("cannot read {}", path.display()))?;
     if committed != generate() {
-        bail!(
-            "{} is not what the core's types say; type `cargo page` and commit it",
-            path.display()
-        );
+        bail!("{} is not what the core's types say; type `cargo page` and commit it", path.display());
     }
     crate::report("www/src/types.ts is what the core's types say");
     Ok(())
@@ -59,9 +56,7 @@ fn generate() -> String {
         let _ = write!(text, "\n{declaration}\n");
     }
     // The generator leaves spaces at the ends of lines.
-    text.lines()
-        .map(|line| format!("{}\n", line.trim_end()))
-        .collect()
+    text.lines().map(|line| format!("{}\n", line.trim_end())).collect()
 }
 
 /// The declarations of all types that were visited, and of those they are made of.
