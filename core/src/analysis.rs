@@ -93,7 +93,22 @@ impl Analysis {
         let (stability, character) = (partition.stability(), partition.character());
         let stable = stable_pieces(&partition);
         notices.sort_by_key(|notice| notice.kind);
-        Ok(Self { model, family, stability, character, landmarks, poles, zeros, moving, view, notices, branches: all, stable, samples: OnceCell::new(), lanes: RefCell::default() })
+        Ok(Self {
+            model,
+            family,
+            stability,
+            character,
+            landmarks,
+            poles,
+            zeros,
+            moving,
+            view,
+            notices,
+            branches: all,
+            stable,
+            samples: OnceCell::new(),
+            lanes: RefCell::default(),
+        })
     }
 
     /// D and N of the moving part with their roots, where the loop is affine in the knob.

@@ -2,9 +2,9 @@
 
 use crate::analysis::Analysis;
 use crate::exact::ExactError;
+use crate::judgement::{judge, limits};
 use crate::locus::{Branch, trade};
 use crate::model;
-use crate::judgement::{judge, limits};
 use crate::project::{PROJECT_FORMAT, Project, Setting};
 use crate::record::{Program, RECORD_FORMAT, Reading, Record};
 use alloc::format;

@@ -10,8 +10,8 @@ use crate::ranges::permitted::{conflict, permitted};
 use crate::ranges::pieces::{Border, Piece};
 use crate::ranges::requirements::{Lane, Limit, at_least, check_limit, describe, unit};
 use crate::record::{
-    Conflict, EdgeCurve, GainCrossing, LimitEdge, LimitRange, LoadRecord, Margins, PhaseCrossing, Permitted,
-    RequirementRecord, StepRecord, Suggestion,
+    Conflict, EdgeCurve, LimitEdge, LimitRange, LoadRecord, Margins, Permitted, PhaseCrossing, RequirementRecord,
+    StepRecord, Suggestion,
 };
 use crate::response::{Figure, LoopAt, SettlingBand, overshoot, rise_time, undershoot};
 use crate::setting::{Scale, controller_range, suggest, typed};
@@ -76,11 +76,17 @@ fn name_of(kind: RequirementKind) -> String {
 ///
 /// # Errors
 /// From the exact methods, when a cap is met.
-pub fn judge(analysis: &Analysis, limits: &[Limit], scale: &Scale, setting: Option<&RBig>) -> Result<Judgement, ExactError> {
+pub fn judge(
+    analysis: &Analysis,
+    limits: &[Limit],
+    scale: &Scale,
+    setting: Option<&RBig>,
+) -> Result<Judgement, ExactError> {
     let lanes = limits.iter().map(|limit| analysis.lane(limit)).collect::<Result<Vec<_>, _>>()?;
     let knob = setting.and_then(|setting| scale.knob(setting));
     let here = knob.map(|knob| LoopAt::new(&analysis.model, knob)).transpose()?;
-    let requirements = limits.iter().zip(&lanes).map(|(limit, lane)| requirement(limit, lane, scale, here.as_ref())).collect();
+    let requirements =
+        limits.iter().zip(&lanes).map(|(limit, lane)| requirement(limit, lane, scale, here.as_ref())).collect();
     let stable = &analysis.stable;
     let controller = controller_range(scale);
     let pieces = permitted(stable, controller.as_ref(), &lanes);
@@ -102,7 +108,8 @@ pub fn judge(analysis: &Analysis, limits: &[Limit], scale: &Scale, setting: Opti
         conflict,
     };
     let step = here.as_ref().and_then(|here| step(analysis, here, &pieces));
-    let (margins, load) = (here.as_ref().and_then(margins), here.as_ref().and_then(load));
+    let margins = here.as_ref().map(margins).transpose()?.flatten();
+    let load = here.as_ref().and_then(load);
     Ok(Judgement { requirements, permitted, margins, step, load })
 }
 
@@ -140,22 +147,22 @@ fn range(piece: &Piece, scale: &Scale) -> LimitRange {
     LimitRange { from: piece.from.as_ref().map(edge), to: piece.to.as_ref().map(edge) }
 }
 
-fn margins(here: &LoopAt) -> Option<Margins> {
-    let found = here.frequency()?;
+fn margins(here: &LoopAt) -> Result<Option<Margins>, ExactError> {
+    let Some(found) = here.frequency() else { return Ok(None) };
     let finite = |value: f64| value.is_finite().then_some(value);
     let at_finite = |c: &&PhaseCrossing| c.omega.is_finite();
-    Some(Margins {
-        gain_up: finite(found.gain_up),
-        gain_down: finite(found.gain_down),
-        phase: finite(found.phase_margin()),
-        delay: finite(found.delay_margin()),
-        peak_sensitivity: found.peak.1,
-        peak_frequency: found.peak.0,
-        bandwidth: found.bandwidth.and_then(finite),
-        gain_crossings: found.gain_crossings.iter().copied().collect::<Vec<GainCrossing>>(),
-        phase_crossings: found.phase_crossings.iter().filter(at_finite).copied().collect(),
-        response: found.response(here.poles()),
-    })
+    Ok(Some(Margins {
+        gain_up: finite(found.gain_up()?),
+        gain_down: finite(found.gain_down()?),
+        phase: finite(found.phase_margin()?),
+        delay: finite(found.delay_margin()?),
+        peak_sensitivity: found.peak().1,
+        peak_frequency: found.peak().0,
+        bandwidth: found.bandwidth()?.and_then(finite),
+        gain_crossings: found.gain_crossings()?.to_vec(),
+        phase_crossings: found.phase_crossings()?.iter().filter(at_finite).copied().collect(),
+        response: found.response()?,
+    }))
 }
 
 fn step(analysis: &Analysis, here: &LoopAt, pieces: &[Piece]) -> Option<StepRecord> {

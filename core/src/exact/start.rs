@@ -18,8 +18,8 @@ const SWEEP_CAP: usize = 60;
 const START_ANGLE: f64 = 0.7;
 
 impl Scaled {
-    /// Points on circles whose radii are the slopes of the upper convex hull of (i, log2 |a_i|).
-    fn starting_points(&self) -> Vec<Complex<f64>> {
+    /// The upper convex hull of (i, log2 |a_i|): index pairs with the radius of the circle that their slope gives.
+    fn circles(&self) -> Vec<(usize, usize, f64)> {
         let log = |i: usize| libm::log2(libm::fabs(self.mantissas[i])) + self.exponents[i] as f64;
         let mut hull: Vec<usize> = Vec::new();
         for i in (0..self.mantissas.len()).filter(|i| self.mantissas[*i] != 0.0) {
@@ -31,13 +31,23 @@ impl Scaled {
             }
             hull.push(i);
         }
+        let radius = |a: usize, b: usize| libm::exp2((log(a) - log(b)) / (b - a) as f64);
+        hull.windows(2).map(|pair| (pair[0], pair[1], radius(pair[0], pair[1]))).collect()
+    }
+
+    /// About the magnitudes of the roots, ascending; each within a factor of twice the degree.
+    pub fn radii(&self) -> impl Iterator<Item = f64> {
+        self.circles().into_iter().map(|(_, _, radius)| radius)
+    }
+
+    /// Points on those circles.
+    fn starting_points(&self) -> Vec<Complex<f64>> {
         let mut points = Vec::with_capacity(self.mantissas.len());
-        for pair in hull.windows(2) {
-            let count = pair[1] - pair[0];
-            let radius = libm::exp2((log(pair[0]) - log(pair[1])) / count as f64);
+        for (from, to, radius) in self.circles() {
+            let count = to - from;
             for k in 0..count {
                 let turn =
-                    core::f64::consts::TAU * (k as f64 / count as f64 + pair[0] as f64 / self.mantissas.len() as f64);
+                    core::f64::consts::TAU * (k as f64 / count as f64 + from as f64 / self.mantissas.len() as f64);
                 let angle = turn + START_ANGLE;
                 points.push(Complex::new(radius * libm::cos(angle), radius * libm::sin(angle)));
             }

@@ -21,11 +21,11 @@ pub use polynomial::KnobPolynomial;
 pub use ratio::{BlockAt, Ratio};
 
 use crate::answer::{Field, Problem};
+use crate::exact::IntPoly;
 use crate::notation::{self, Expression, NotationError};
 use crate::project::{Direction, Feedback, Project};
 use crate::record::{ModelRecord, Notice, NoticeKind, Reading};
 use crate::setting::Scale;
-use crate::exact::IntPoly;
 use alloc::format;
 use alloc::string::{String, ToString};
 use alloc::vec::Vec;
@@ -146,7 +146,17 @@ pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
     let knob_factor = found.knob_factor.map(|factor| display::formula(&factor, &knob));
     let blocks = [controller.clone(), plant.clone(), sensor.clone()];
     let feedback = project.blocks.feedback;
-    Ok(Loop { knob, setting, blocks, open_loop, feedback, scale, characteristic: found.polynomial, knob_factor, notices })
+    Ok(Loop {
+        knob,
+        setting,
+        blocks,
+        open_loop,
+        feedback,
+        scale,
+        characteristic: found.polynomial,
+        knob_factor,
+        notices,
+    })
 }
 
 /// A static figure as a function of the knob: |above(q)/below(q)|.
@@ -217,17 +227,21 @@ fn typed(part: &str, text: &str) -> Result<Option<RBig>, Problem> {
     if text.trim().is_empty() {
         return Ok(None);
     }
-    notation::decimal(text).map(Some).map_err(|error| setting_problem(part, Some(error.span().into()), error.to_string()))
+    notation::decimal(text)
+        .map(Some)
+        .map_err(|error| setting_problem(part, Some(error.span().into()), error.to_string()))
 }
 
 /// The chosen setting and the controller's scale.
 fn setting(project: &Project, quantities: &Quantities) -> Result<(Option<RBig>, Scale), Vec<Problem>> {
     let input = &project.setting;
     let mut problems = Vec::new();
-    let mut decimal = |part: &str, text: &str| typed(part, text).unwrap_or_else(|problem| {
-        problems.push(problem);
-        None
-    });
+    let mut decimal = |part: &str, text: &str| {
+        typed(part, text).unwrap_or_else(|problem| {
+            problems.push(problem);
+            None
+        })
+    };
     let value = decimal("value", &input.value);
     let minimum = decimal("minimum", &input.minimum);
     let maximum = decimal("maximum", &input.maximum);
@@ -269,10 +283,16 @@ fn factor(text: &str, quantities: &Quantities) -> Result<RBig, Vec<Problem>> {
         found
     })?;
     if !ratio.numerator.is_empty() || !ratio.denominator.is_empty() {
-        return Err(fail(None, "the factor must be a number: use quantities with values, neither s nor the knob".to_string()));
+        return Err(fail(
+            None,
+            "the factor must be a number: use quantities with values, neither s nor the knob".to_string(),
+        ));
     }
     if ratio.is_zero() {
-        return Err(fail(None, "the factor must not be zero: type what one unit of the setting means for the knob".to_string()));
+        return Err(fail(
+            None,
+            "the factor must not be zero: type what one unit of the setting means for the knob".to_string(),
+        ));
     }
     Ok(ratio.constant)
 }

@@ -20,6 +20,7 @@ fn project(blocks: [&str; 3], rows: &str, knob: &str) -> Project {
         quantities: rows.split(';').filter(|row| row.contains('=')).map(row).collect(),
         knob: knob.into(),
         setting: Setting::default(),
+        requirements: Vec::new(),
     }
 }
 
@@ -204,7 +205,7 @@ fn the_setting_is_an_exact_decimal() {
     assert_eq!(build(&project).unwrap().setting, Some(RBig::from_parts((-1).into(), 2u8.into())));
     project.setting.value = "1e61".into();
     let message = "1e61 is out of range: type an exponent from -60 to 60";
-    assert_eq!(problems(&project), [in_block(Field::Setting, 0, 4, message)]);
+    assert_eq!(problems(&project), [(Field::Setting, Some("value".into()), Some([0, 4]), message.into())]);
 }
 
 #[test]

@@ -30,7 +30,13 @@ pub fn permitted(stable: &[Piece], controller: Option<&Piece>, lanes: &[Lane]) -
 }
 
 /// Why nothing is permitted.
-pub fn conflict(stable: &[Piece], controller: Option<&Piece>, limits: &[Limit], lanes: &[Lane], scale: &Scale) -> Conflict {
+pub fn conflict(
+    stable: &[Piece],
+    controller: Option<&Piece>,
+    limits: &[Limit],
+    lanes: &[Lane],
+    scale: &Scale,
+) -> Conflict {
     let of = |kinds: Vec<RequirementKind>, text: String| Conflict { kinds, text };
     if stable.is_empty() {
         return of(Vec::new(), "no setting is stable".to_string());

@@ -45,8 +45,10 @@ impl Piece {
     /// and is no edge of stability belongs to the piece.
     pub fn surely_holds(&self, knob: &RBig) -> bool {
         let closed = |b: &Border| b.cause != Cause::Stability && b.bracket.low == b.bracket.high;
-        let above = |b: &Border| b.bracket.high.to_rational() < *knob || (closed(b) && b.bracket.high.to_rational() == *knob);
-        let below = |b: &Border| *knob < b.bracket.low.to_rational() || (closed(b) && b.bracket.low.to_rational() == *knob);
+        let above =
+            |b: &Border| b.bracket.high.to_rational() < *knob || (closed(b) && b.bracket.high.to_rational() == *knob);
+        let below =
+            |b: &Border| *knob < b.bracket.low.to_rational() || (closed(b) && b.bracket.low.to_rational() == *knob);
         self.from.as_ref().is_none_or(above) && self.to.as_ref().is_none_or(below)
     }
 

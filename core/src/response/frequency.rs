@@ -9,14 +9,16 @@ use crate::exact::gcd::squarefree_part;
 use crate::exact::real_roots::positive_roots;
 use crate::exact::scaled::Scaled;
 use crate::exact::{ExactError, IntPoly};
+use crate::model::BlockAt;
 use crate::record::{FrequencyResponse, GainCrossing, PhaseCrossing};
 use alloc::vec::Vec;
+use core::cell::OnceCell;
 use dashu_int::IBig;
 use dashu_ratio::RBig;
 use nalgebra::{Complex, ComplexField};
 
 /// Frequencies are refined to this many bits.
-const OMEGA_BITS: i64 = 48;
+const OMEGA_BITS: i64 = 40;
 
 /// Points of a curve for drawing, without those added at poles and crossings.
 const CURVE_POINTS: usize = 240;
@@ -27,67 +29,129 @@ const SEARCH_POINTS: usize = 24;
 /// Decades searched and drawn below the slowest and above the fastest pole, zero or crossing.
 const DECADES_BEYOND: f64 = 1.0;
 
-/// The open loop over frequency.
-#[derive(Clone, Debug)]
+/// The open loop over frequency; each part is computed when first asked for.
+#[derive(Debug)]
 pub struct Frequency {
+    /// N and D of the open loop.
+    open: BlockAt,
+    /// Command to output.
+    transfer: BlockAt,
+    poles: Vec<Complex<f64>>,
     above: Scaled,
     below: Scaled,
     closed: Scaled,
-    /// Where |L| = 1, ascending.
-    pub gain_crossings: Vec<GainCrossing>,
-    /// Where L is real and negative, ascending.
-    pub phase_crossings: Vec<PhaseCrossing>,
-    /// The factor by which the gain may rise; infinite without limit.
-    pub gain_up: f64,
-    /// The divisor by which the gain may fall; infinite without limit.
-    pub gain_down: f64,
-    /// Where the sensitivity peaks, rad/s, and its peak.
-    pub peak: (f64, f64),
-    /// rad/s; infinite where the closed loop never falls 3 dB, None where its static gain is zero.
-    pub bandwidth: Option<f64>,
-    /// The range of frequencies that matters, rad/s.
-    range: (f64, f64),
+    gain_crossings: OnceCell<Vec<GainCrossing>>,
+    phase_crossings: OnceCell<Vec<PhaseCrossing>>,
+    peak: OnceCell<(f64, f64)>,
+    bandwidth: OnceCell<Option<f64>>,
 }
 
 impl Frequency {
     /// Of a loop whose closed loop is stable.
+    pub(super) fn new(at: &LoopAt) -> Self {
+        Self {
+            open: at.open.clone(),
+            transfer: at.output_transfer(),
+            poles: at.poles.clone(),
+            above: Scaled::new(&at.open.above),
+            below: Scaled::new(&at.open.below),
+            closed: Scaled::new(&at.closed),
+            gain_crossings: OnceCell::new(),
+            phase_crossings: OnceCell::new(),
+            peak: OnceCell::new(),
+            bandwidth: OnceCell::new(),
+        }
+    }
+
+    /// Where |L| = 1, ascending.
     ///
     /// # Errors
     /// From the exact methods, when a cap is met.
-    pub(super) fn new(at: &LoopAt) -> Result<Self, ExactError> {
-        let (n, d) = (&at.open.above, &at.open.below);
-        let (above, below, closed) = (Scaled::new(n), Scaled::new(d), Scaled::new(&at.closed));
-        let gain_crossings = gain_crossings(n, d, &above, &below)?;
-        let phase_crossings = phase_crossings(n, d)?;
-        let factors = || phase_crossings.iter().map(|c| c.factor);
-        let gain_up = factors().filter(|f| *f > 1.0).fold(f64::INFINITY, f64::min);
-        let gain_down = factors().filter(|f| *f < 1.0).map(|f| 1.0 / f).fold(f64::INFINITY, f64::min);
-        let range = range(at, &gain_crossings, &phase_crossings);
-        let bandwidth = bandwidth(at)?;
-        let mut found = Self {
-            above,
-            below,
-            closed,
-            gain_crossings,
-            phase_crossings,
-            gain_up,
-            gain_down,
-            peak: (0.0, 0.0),
-            bandwidth,
-            range,
-        };
-        found.peak = found.peak_sensitivity(&at.poles);
-        Ok(found)
+    pub fn gain_crossings(&self) -> Result<&[GainCrossing], ExactError> {
+        if self.gain_crossings.get().is_none() {
+            let found = gain_crossings(&self.open, &self.above, &self.below)?;
+            self.gain_crossings.get_or_init(|| found);
+        }
+        Ok(self.gain_crossings.get().map_or(&[], Vec::as_slice))
+    }
+
+    /// Where L is real and negative, ascending.
+    ///
+    /// # Errors
+    /// From the exact methods, when a cap is met.
+    pub fn phase_crossings(&self) -> Result<&[PhaseCrossing], ExactError> {
+        if self.phase_crossings.get().is_none() {
+            let found = phase_crossings(&self.open)?;
+            self.phase_crossings.get_or_init(|| found);
+        }
+        Ok(self.phase_crossings.get().map_or(&[], Vec::as_slice))
+    }
+
+    /// The factor by which the gain may rise; infinite without limit.
+    ///
+    /// # Errors
+    /// As [`Self::phase_crossings`].
+    pub fn gain_up(&self) -> Result<f64, ExactError> {
+        let factors = self.phase_crossings()?.iter().map(|c| c.factor);
+        Ok(factors.filter(|f| *f > 1.0).fold(f64::INFINITY, f64::min))
+    }
+
+    /// The divisor by which the gain may fall; infinite without limit.
+    ///
+    /// # Errors
+    /// As [`Self::phase_crossings`].
+    pub fn gain_down(&self) -> Result<f64, ExactError> {
+        let factors = self.phase_crossings()?.iter().map(|c| c.factor);
+        Ok(factors.filter(|f| *f < 1.0).map(|f| 1.0 / f).fold(f64::INFINITY, f64::min))
     }
 
     /// Degrees: the smallest turn of the phase, in either direction, that makes the loop marginal; infinite without one.
-    pub fn phase_margin(&self) -> f64 {
-        self.gain_crossings.iter().map(|c| c.phase_margin.abs()).fold(f64::INFINITY, f64::min)
+    ///
+    /// # Errors
+    /// As [`Self::gain_crossings`].
+    pub fn phase_margin(&self) -> Result<f64, ExactError> {
+        Ok(self.gain_crossings()?.iter().map(|c| c.phase_margin.abs()).fold(f64::INFINITY, f64::min))
     }
 
     /// s: the smallest added dead time that makes the loop marginal; infinite without one.
-    pub fn delay_margin(&self) -> f64 {
-        self.gain_crossings.iter().map(|c| c.delay_margin).fold(f64::INFINITY, f64::min)
+    ///
+    /// # Errors
+    /// As [`Self::gain_crossings`].
+    pub fn delay_margin(&self) -> Result<f64, ExactError> {
+        Ok(self.gain_crossings()?.iter().map(|c| c.delay_margin).fold(f64::INFINITY, f64::min))
+    }
+
+    /// Where the sensitivity peaks, rad/s, and its peak.
+    pub fn peak(&self) -> (f64, f64) {
+        *self.peak.get_or_init(|| self.peak_sensitivity())
+    }
+
+    /// rad/s; infinite where the closed loop never falls 3 dB, None where its static gain is zero.
+    ///
+    /// # Errors
+    /// From the exact methods, when a cap is met.
+    pub fn bandwidth(&self) -> Result<Option<f64>, ExactError> {
+        if self.bandwidth.get().is_none() {
+            let found = bandwidth(&self.transfer)?;
+            self.bandwidth.get_or_init(|| found);
+        }
+        Ok(self.bandwidth.get().copied().flatten())
+    }
+
+    /// The frequencies between which something happens, a decade beyond on both sides.
+    fn range(&self) -> (f64, f64) {
+        let (mut low, mut high) = (f64::INFINITY, 0.0_f64);
+        for scaled in [&self.above, &self.below, &self.closed] {
+            for radius in scaled.radii() {
+                low = low.min(radius);
+                high = high.max(radius);
+            }
+        }
+        if high == 0.0 {
+            (low, high) = (1.0, 1.0);
+        }
+        let beyond = libm::pow(10.0, DECADES_BEYOND);
+        (low / beyond, high * beyond)
     }
 
     fn sensitivity(&self, omega: f64) -> f64 {
@@ -96,9 +160,10 @@ impl Frequency {
     }
 
     /// The peak of |D/F| over ω ≥ 0, and where.
-    fn peak_sensitivity(&self, poles: &[Complex<f64>]) -> (f64, f64) {
-        let mut omegas = self.grid(SEARCH_POINTS);
-        for p in poles.iter().filter(|p| p.im > 0.0) {
+    fn peak_sensitivity(&self) -> (f64, f64) {
+        let range = self.range();
+        let mut omegas = grid(range, SEARCH_POINTS);
+        for p in self.poles.iter().filter(|p| p.im > 0.0) {
             // A lightly damped pair makes a peak as narrow as its decay rate.
             for k in -6..=6 {
                 omegas.push((p.im + f64::from(k) * 0.5 * p.re).max(0.0));
@@ -108,10 +173,11 @@ impl Frequency {
         omegas.sort_by(f64::total_cmp);
         let values: Vec<f64> = omegas.iter().map(|w| self.sensitivity(*w)).collect();
         // At infinite frequency |S| is the ratio of the leading coefficients.
-        let far = self.sensitivity(1e6 * self.range.1);
-        let mut best = (self.range.1, far);
+        let far = self.sensitivity(1e6 * range.1);
+        let mut best = (range.1, far);
         for k in 0..omegas.len() {
-            let is_top = (k == 0 || values[k - 1] <= values[k]) && (k + 1 == omegas.len() || values[k + 1] <= values[k]);
+            let is_top =
+                (k == 0 || values[k - 1] <= values[k]) && (k + 1 == omegas.len() || values[k + 1] <= values[k]);
             if is_top {
                 let (low, high) = (omegas[k.saturating_sub(1)], omegas[(k + 1).min(omegas.len() - 1)]);
                 let peak = self.refined_peak(low, high);
@@ -134,20 +200,17 @@ impl Frequency {
         (omega, self.sensitivity(omega))
     }
 
-    /// Frequencies evenly spaced on a logarithmic scale over the range that matters.
-    fn grid(&self, per_decade: usize) -> Vec<f64> {
-        let decades = libm::log10(self.range.1 / self.range.0);
-        let count = (decades * per_decade as f64) as usize + 1;
-        (0..=count).map(|k| self.range.0 * libm::pow(10.0, decades * k as f64 / count as f64)).collect()
-    }
-
     /// The open loop for drawing.
-    pub fn response(&self, poles: &[Complex<f64>]) -> FrequencyResponse {
-        let decades = libm::log10(self.range.1 / self.range.0);
-        let mut omegas = self.grid((CURVE_POINTS as f64 / decades) as usize + 1);
-        omegas.extend(self.gain_crossings.iter().map(|c| c.omega));
-        omegas.extend(self.phase_crossings.iter().map(|c| c.omega).filter(|w| *w > 0.0));
-        omegas.extend(poles.iter().map(|p| p.im).filter(|w| *w > self.range.0));
+    ///
+    /// # Errors
+    /// As [`Self::gain_crossings`].
+    pub fn response(&self) -> Result<FrequencyResponse, ExactError> {
+        let range = self.range();
+        let mut omegas = grid(range, (CURVE_POINTS as f64 / libm::log10(range.1 / range.0)) as usize + 1);
+        let crossings =
+            self.gain_crossings()?.iter().map(|c| c.omega).chain(self.phase_crossings()?.iter().map(|c| c.omega));
+        let resonances = self.poles.iter().map(|p| p.im);
+        omegas.extend(crossings.chain(resonances).filter(|w| *w > range.0 && w.is_finite()));
         omegas.sort_by(f64::total_cmp);
         omegas.dedup();
         let mut response = FrequencyResponse::default();
@@ -171,8 +234,15 @@ impl Frequency {
             response.magnitude.push(magnitude);
             response.phase.push(phase);
         }
-        response
+        Ok(response)
     }
+}
+
+/// Frequencies evenly spaced on a logarithmic scale.
+fn grid(range: (f64, f64), per_decade: usize) -> Vec<f64> {
+    let decades = libm::log10(range.1 / range.0);
+    let count = (decades * per_decade as f64) as usize + 1;
+    (0..=count).map(|k| range.0 * libm::pow(10.0, decades * k as f64 / count as f64)).collect()
 }
 
 /// |p(jω)|² as a polynomial in x = ω².
@@ -195,7 +265,7 @@ fn frequencies(p: &IntPoly) -> Result<Vec<f64>, ExactError> {
     Ok(found)
 }
 
-fn gain_crossings(n: &IntPoly, d: &IntPoly, above: &Scaled, below: &Scaled) -> Result<Vec<GainCrossing>, ExactError> {
+fn gain_crossings(open: &BlockAt, above: &Scaled, below: &Scaled) -> Result<Vec<GainCrossing>, ExactError> {
     let crossing = |omega: f64| {
         let s = Complex::new(0.0, omega);
         let l = above.value(s).over(below.value(s)).to_complex();
@@ -204,17 +274,19 @@ fn gain_crossings(n: &IntPoly, d: &IntPoly, above: &Scaled, below: &Scaled) -> R
         let lag = if margin > 0.0 { margin } else { margin + 360.0 };
         GainCrossing { omega, phase_margin: margin, delay_margin: lag.to_radians() / omega }
     };
-    Ok(frequencies(&squared(n).minus(&squared(d)))?.into_iter().map(crossing).collect())
+    Ok(frequencies(&squared(&open.above).minus(&squared(&open.below)))?.into_iter().map(crossing).collect())
 }
 
-fn phase_crossings(n: &IntPoly, d: &IntPoly) -> Result<Vec<PhaseCrossing>, ExactError> {
+fn phase_crossings(open: &BlockAt) -> Result<Vec<PhaseCrossing>, ExactError> {
+    let (n, d) = (&open.above, &open.below);
     let ((n_even, n_odd), (d_even, d_odd)) = (n.axis_parts(), d.axis_parts());
     let mut found = Vec::new();
-    let ratio = |above: &IBig, below: &IBig| (!below.is_zero()).then(|| -RBig::from_parts_signed(above.clone(), below.clone()).to_f64().value());
+    let ratio = |above: &IBig, below: &IBig| {
+        (!below.is_zero()).then(|| -RBig::from_parts_signed(above.clone(), below.clone()).to_f64().value())
+    };
     if let Some(factor) = ratio(&d.coefficient(0), &n.coefficient(0)) {
         found.push(PhaseCrossing { omega: 0.0, factor });
     }
-    let (n_even, n_odd, d_even, d_odd) = (n_even, n_odd, d_even, d_odd);
     let crossing = d_odd.times(&n_even).minus(&d_even.times(&n_odd));
     let parts = [&n_even, &n_odd, &d_even, &d_odd].map(Scaled::new);
     for omega in frequencies(&crossing)? {
@@ -241,8 +313,7 @@ fn phase_crossings(n: &IntPoly, d: &IntPoly) -> Result<Vec<PhaseCrossing>, Exact
 }
 
 /// The first ω at which |T|² falls below half of |T(0)|².
-fn bandwidth(at: &LoopAt) -> Result<Option<f64>, ExactError> {
-    let transfer = at.output_transfer();
+fn bandwidth(transfer: &BlockAt) -> Result<Option<f64>, ExactError> {
     let (n0, d0) = (transfer.above.coefficient(0), transfer.below.coefficient(0));
     if n0.is_zero() || d0.is_zero() {
         return Ok(None);
@@ -252,22 +323,4 @@ fn bandwidth(at: &LoopAt) -> Result<Option<f64>, ExactError> {
     let below = squared(&transfer.below);
     let difference = above.combined(&(IBig::from(2) * &d0 * &d0), &below, &-(&n0 * &n0));
     Ok(Some(frequencies(&difference)?.first().copied().unwrap_or(f64::INFINITY)))
-}
-
-/// The frequencies between which something happens, a decade beyond on both sides.
-fn range(at: &LoopAt, gain: &[GainCrossing], phase: &[PhaseCrossing]) -> (f64, f64) {
-    let roots = [&at.open.above, &at.open.below].map(crate::exact::complex_roots::polished);
-    let open = roots.into_iter().flatten().flatten();
-    let sizes = open.chain(at.poles.iter().copied()).map(|z| z.modulus());
-    let omegas = gain.iter().map(|c| c.omega).chain(phase.iter().map(|c| c.omega)).chain(sizes);
-    let (mut low, mut high) = (f64::INFINITY, 0.0_f64);
-    for omega in omegas.filter(|w| *w > 0.0 && w.is_finite()) {
-        low = low.min(omega);
-        high = high.max(omega);
-    }
-    if high == 0.0 {
-        (low, high) = (1.0, 1.0);
-    }
-    let beyond = libm::pow(10.0, DECADES_BEYOND);
-    (low / beyond, high * beyond)
 }

@@ -29,10 +29,20 @@ pub struct LoopAt {
     output: OnceCell<Option<(Modes, Peaks)>>,
     load: OnceCell<Option<(Modes, Peaks)>>,
     control: OnceCell<Option<(Modes, Peaks)>>,
-    frequency: OnceCell<Option<Frequency>>,
+    frequency: OnceCell<Frequency>,
 }
 
 impl LoopAt {
+    /// The loop at a knob value that is known to be stable.
+    ///
+    /// # Errors
+    /// As [`Self::new`].
+    pub fn known_stable(model: &Loop, knob: RBig) -> Result<Self, ExactError> {
+        let at = Self::new(model, knob)?;
+        at.stable.get_or_init(|| true);
+        Ok(at)
+    }
+
     /// The loop at a knob value.
     ///
     /// # Errors
@@ -47,7 +57,8 @@ impl LoopAt {
         let sign = model.feedback_sign();
         let closed = open.below.combined(&IBig::ONE, &open.above, &sign);
         // For positive feedback L below is −(controller·plant·sensor), so that 1 + L stays the denominator.
-        let open = BlockAt { above: IntPoly::new(open.above.coefficients().iter().map(|c| c * &sign).collect()), ..open };
+        let open =
+            BlockAt { above: IntPoly::new(open.above.coefficients().iter().map(|c| c * &sign).collect()), ..open };
         let poles = polished(&closed)?;
         Ok(Self {
             knob,
@@ -63,11 +74,6 @@ impl LoopAt {
             control: OnceCell::new(),
             frequency: OnceCell::new(),
         })
-    }
-
-    /// Poles of the closed loop.
-    pub fn poles(&self) -> &[Complex<f64>] {
-        &self.poles
     }
 
     /// Whether every pole lies left of the axis; exact.
@@ -95,7 +101,7 @@ impl LoopAt {
 
     /// The open loop over frequency. None where the closed loop is unstable.
     pub fn frequency(&self) -> Option<&Frequency> {
-        self.frequency.get_or_init(|| self.is_stable().then(|| Frequency::new(self).ok()).flatten()).as_ref()
+        self.is_stable().then(|| self.frequency.get_or_init(|| Frequency::new(self)))
     }
 
     fn answer(&self, transfer: &BlockAt) -> Option<(Modes, Peaks)> {

@@ -97,7 +97,8 @@ impl Modes {
     fn step_at(&self, t: f64) -> f64 {
         let size = |mode: &Mode| mode.coefficient.modulus() * libm::exp(mode.pole.re * t);
         let largest = self.modes.iter().map(size).fold(0.0, f64::max).max(ACTIVE * self.final_value.abs());
-        let fastest = self.modes.iter().filter(|m| size(m) > ACTIVE * largest).map(|m| m.pole.modulus()).fold(0.0, f64::max);
+        let fastest =
+            self.modes.iter().filter(|m| size(m) > ACTIVE * largest).map(|m| m.pole.modulus()).fold(0.0, f64::max);
         if fastest > 0.0 { STEP / fastest } else { f64::INFINITY }
     }
 
@@ -252,7 +253,15 @@ const CHECK_EVERY: usize = 16;
 
 impl<'a> Walk<'a> {
     fn new(modes: &'a Modes) -> Self {
-        Self { modes, t: 0.0, step: 0.0, state: Vec::new(), factors: Vec::new(), until_check: 0, envelope: f64::INFINITY }
+        Self {
+            modes,
+            t: 0.0,
+            step: 0.0,
+            state: Vec::new(),
+            factors: Vec::new(),
+            until_check: 0,
+            envelope: f64::INFINITY,
+        }
     }
 
     /// The next time and value.

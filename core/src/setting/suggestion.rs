@@ -97,9 +97,8 @@ fn width(piece: &Piece) -> f64 {
 fn within(scale: &Scale, piece: &Piece, ends: &[Option<RBig>; 2]) -> Option<Suggested> {
     let (target, reason) = target(piece);
     let wanted = scale.setting_f64(target).and_then(Dyadic::from_f64)?.to_rational();
-    let holds = |setting: &RBig| {
-        scale.takes(setting) && scale.knob(setting).is_some_and(|knob| piece.surely_holds(&knob))
-    };
+    let holds =
+        |setting: &RBig| scale.takes(setting) && scale.knob(setting).is_some_and(|knob| piece.surely_holds(&knob));
     let digits = if scale.step.is_some() { END_DIGITS..=END_DIGITS } else { SUGGESTED_DIGITS };
     for count in digits {
         let grid = with_step(scale, &step_near(scale, &wanted, count));
@@ -146,7 +145,9 @@ pub fn controller_range(scale: &Scale) -> Option<Piece> {
     let (minimum, maximum) = match scale.direction {
         Direction::Proportional => (scale.minimum.clone(), scale.maximum.clone()),
         // A band of 0 or less has no meaning.
-        Direction::Reciprocal => (Some(scale.minimum.clone().unwrap_or(RBig::ZERO).max(RBig::ZERO)), scale.maximum.clone()),
+        Direction::Reciprocal => {
+            (Some(scale.minimum.clone().unwrap_or(RBig::ZERO).max(RBig::ZERO)), scale.maximum.clone())
+        }
     };
     if minimum.is_none() && maximum.is_none() {
         return None;

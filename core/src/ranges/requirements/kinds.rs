@@ -64,7 +64,9 @@ pub fn describe(kind: Kind) -> &'static str {
 pub fn check_limit(kind: Kind, limit: &RBig) -> Option<&'static str> {
     let (zero, one) = (RBig::ZERO, RBig::ONE);
     match kind {
-        Kind::DampingRatio if *limit <= zero || *limit >= one => Some("type a damping ratio between 0 and 1, such as 0.5"),
+        Kind::DampingRatio if *limit <= zero || *limit >= one => {
+            Some("type a damping ratio between 0 and 1, such as 0.5")
+        }
         Kind::PeakSensitivity if *limit <= one => Some("peak sensitivity is never below 1: type a limit such as 2"),
         Kind::PhaseMargin if *limit <= zero || *limit >= RBig::from(180) => {
             Some("type a phase margin between 0 and 180 degrees, such as 45")

@@ -59,11 +59,8 @@ pub struct Ground<'a> {
 
 /// The stable ranges of a partition.
 pub fn stable_pieces(partition: &Partition) -> Vec<Piece> {
-    let border = |i: usize| Border {
-        bracket: partition.places[i].bracket.clone(),
-        proven: true,
-        cause: Cause::Stability,
-    };
+    let border =
+        |i: usize| Border { bracket: partition.places[i].bracket.clone(), proven: true, cause: Cause::Stability };
     let cuts = partition.stability_places();
     let mut pieces = Vec::new();
     for k in 0..=cuts.len() {
@@ -86,7 +83,9 @@ pub fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactError> {
         Kind::DecayRate => decay_rate::lane(ground, limit)?,
         Kind::NaturalFrequencyMinimum | Kind::NaturalFrequencyMaximum => natural_frequency::lane(ground, limit)?,
         Kind::GainMarginUp | Kind::GainMarginDown => gain_margin::lane(ground, limit)?,
-        Kind::StepError | Kind::RampError | Kind::ParabolaError | Kind::LoadFinal => static_figures::lane(ground, limit)?,
+        Kind::StepError | Kind::RampError | Kind::ParabolaError | Kind::LoadFinal => {
+            static_figures::lane(ground, limit)?
+        }
         _ => sampled::lane(ground, limit)?,
     };
     if lane.pieces.is_empty() && lane.remark.is_none() {
@@ -108,11 +107,8 @@ fn judged(
     met: impl Fn(&RBig) -> Result<bool, ExactError>,
 ) -> Result<Lane, ExactError> {
     let places = merge(places);
-    let border = |place: &Place| Border {
-        bracket: place.bracket.clone(),
-        proven: true,
-        cause: Cause::Requirement(kind),
-    };
+    let border =
+        |place: &Place| Border { bracket: place.bracket.clone(), proven: true, cause: Cause::Requirement(kind) };
     let mut pieces: Vec<Piece> = Vec::new();
     let mut open: Option<Piece> = None;
     for (k, sample) in samples(&places).iter().enumerate() {

@@ -19,6 +19,9 @@ const NEAR_ENDS: [f64; 2] = [13.0, 20.0];
 /// Edges are refined to this relative width; a tenth of what is promised.
 const EDGE_WIDTH: f64 = 1e-7;
 
+/// Knob values are rounded to this many bits, far below [`EDGE_WIDTH`]: short numbers keep the exact polynomials short.
+const KNOB_BITS: usize = 36;
+
 /// Refinement steps of one edge; bisection alone needs 27.
 const REFINEMENT_CAP: usize = 60;
 
@@ -55,14 +58,15 @@ impl Samples {
 }
 
 /// A stable range run through by v = ln τ, τ = (q − a)/(b − q); τ = (q − a)/|a| where b is infinite, and alike.
-struct Course {
+struct Course<'a> {
+    piece: &'a Piece,
     from: Option<f64>,
     to: Option<f64>,
 }
 
-impl Course {
-    fn new(piece: &Piece) -> Self {
-        Self { from: piece.from.as_ref().map(Border::value), to: piece.to.as_ref().map(Border::value) }
+impl<'a> Course<'a> {
+    fn new(piece: &'a Piece) -> Self {
+        Self { piece, from: piece.from.as_ref().map(Border::value), to: piece.to.as_ref().map(Border::value) }
     }
 
     fn knob(&self, v: f64) -> f64 {
@@ -80,8 +84,11 @@ impl Course {
     /// The loop at v. None where it is not stable in spite of all: so near to the end that f64 rounds the knob past it.
     fn loop_at(&self, model: &Loop, v: f64) -> Result<Option<LoopAt>, ExactError> {
         let Some(knob) = Dyadic::from_f64(self.knob(v)) else { return Ok(None) };
-        let at = LoopAt::new(model, knob.to_rational())?;
-        Ok(at.is_stable().then_some(at))
+        let knob = knob.round_down(KNOB_BITS).to_rational();
+        if !self.piece.surely_holds(&knob) {
+            return Ok(None);
+        }
+        LoopAt::known_stable(model, knob).map(Some)
     }
 }
 
@@ -149,12 +156,17 @@ impl Judge<'_> {
         }
     }
 
-    fn room_at(&self, model: &Loop, course: &Course, v: f64) -> Result<Room, ExactError> {
+    fn room_at(&self, model: &Loop, course: &Course<'_>, v: f64) -> Result<Room, ExactError> {
         Ok(course.loop_at(model, v)?.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind))))
     }
 
     /// Where three neighbours turn towards the limit without reaching it, looks at the vertex of their parabola.
-    fn look_into_turns(&self, model: &Loop, course: &Course, points: &mut Vec<(f64, Room)>) -> Result<(), ExactError> {
+    fn look_into_turns(
+        &self,
+        model: &Loop,
+        course: &Course<'_>,
+        points: &mut Vec<(f64, Room)>,
+    ) -> Result<(), ExactError> {
         let mut found = Vec::new();
         for triple in points.windows(3) {
             let [(v0, Room::By(a)), (v1, Room::By(b)), (v2, Room::By(c))] = triple else { continue };
@@ -175,13 +187,21 @@ impl Judge<'_> {
     }
 
     /// The pieces of one stable range.
-    fn pieces(&self, model: &Loop, course: &Course, range: &Piece, points: &[(f64, Room)]) -> Result<Vec<Piece>, ExactError> {
+    fn pieces(
+        &self,
+        model: &Loop,
+        course: &Course<'_>,
+        range: &Piece,
+        points: &[(f64, Room)],
+    ) -> Result<Vec<Piece>, ExactError> {
         let mut pieces = Vec::new();
         // At the range's own ends the sample next to them decides.
         let mut open = points.first().filter(|p| p.1.is_met()).map(|_| Piece { from: range.from.clone(), to: None });
         for pair in points.windows(2) {
             match (pair[0].1.is_met(), pair[1].1.is_met()) {
-                (false, true) => open = Some(Piece { from: Some(self.edge(model, course, pair[0], pair[1])?), to: None }),
+                (false, true) => {
+                    open = Some(Piece { from: Some(self.edge(model, course, pair[0], pair[1])?), to: None })
+                }
                 (true, false) => {
                     let to = Some(self.edge(model, course, pair[0], pair[1])?);
                     pieces.extend(open.take().map(|piece| Piece { to, ..piece }));
@@ -195,7 +215,13 @@ impl Judge<'_> {
 
     /// The edge between a met and an unmet sample: chord steps where both rooms are finite, halving otherwise and whenever
     /// a chord step did not halve.
-    fn edge(&self, model: &Loop, course: &Course, mut low: (f64, Room), mut high: (f64, Room)) -> Result<Border, ExactError> {
+    fn edge(
+        &self,
+        model: &Loop,
+        course: &Course<'_>,
+        mut low: (f64, Room),
+        mut high: (f64, Room),
+    ) -> Result<Border, ExactError> {
         let low_met = low.1.is_met();
         let mut halve = false;
         for _ in 0..REFINEMENT_CAP {
@@ -212,7 +238,11 @@ impl Judge<'_> {
                 _ => 0.5 * (low.0 + high.0),
             };
             let room = self.room_at(model, course, v)?;
-            if room.is_met() == low_met { low = (v, room) } else { high = (v, room) }
+            if room.is_met() == low_met {
+                low = (v, room)
+            } else {
+                high = (v, room)
+            }
             halve = high.0 - low.0 > 0.5 * width;
         }
         let (a, b) = (course.knob(low.0), course.knob(high.0));

@@ -1,8 +1,8 @@
 //! Static figures: errors on a step, a ramp and a parabola, and what a load leaves. Each is a ratio of two polynomials in
 //! the knob, |above(q)| ≤ limit·|below(q)|, so that the edges are exact.
 
-use super::super::place::{Contact, Place, rational_root};
 use super::super::EDGE_BITS;
+use super::super::place::{Contact, Place, rational_root};
 use super::{Ground, Lane, Limit, judged};
 use crate::exact::gcd::squarefree_part;
 use crate::exact::real_roots::real_roots;
