@@ -2,6 +2,7 @@
 
     run.py --binary target/release/records              everything
     run.py --binary … --only 117                        the random loop of seed 117
+    run.py --binary … --only requirements-12            the random loop with requirements of seed 12
     run.py --binary … --only "touching edge"            a nasty one by name
     run.py --binary … --self-test                       shows that the checks can fail
 
@@ -20,7 +21,10 @@ sys.path.insert(0, str(Path(__file__).parent))
 sys.path.insert(0, str(Path(__file__).parent.parent / "published"))
 
 import published
+import requirement_cases
+import requirement_checks
 import selftest
+import selftest_requirements
 from binary import Records
 from checks import check_case
 from generator import random_case
@@ -39,7 +43,9 @@ def main():
     passed, failed = 0, 0
     with multiprocessing.Pool(arguments.workers, initializer=start_worker, initargs=(arguments.binary,)) as pool:
         if arguments.self_test or not arguments.only:
-            passed, failed = show(pool.apply(run_self_test))
+            for test in (selftest, selftest_requirements):
+                counts = show(pool.apply(run_self_test, (test.__name__,)))
+                passed, failed = passed + counts[0], failed + counts[1]
         if not arguments.self_test:
             for result in pool.imap_unordered(run_job, jobs, chunksize=1):
                 counts = show(result)
@@ -64,6 +70,7 @@ def every_job(seeds):
     nasty = sorted(all_cases(), key=lambda case: -case.loop.order)
     return (
         [("nasty", case.name) for case in nasty]
+        + [("requirements", f"requirements-{seed}") for seed in range(requirement_cases.SEEDS)]
         + [("random", seed) for seed in sorted(range(seeds), key=lambda seed: -(seed % 19))]
         + [("published", figure["id"]) for figure in published.figures()]
     )
@@ -88,8 +95,8 @@ def start_worker(path):
     RECORDS = Records(path)
 
 
-def run_self_test():
-    return selftest.run(RECORDS)
+def run_self_test(name):
+    return sys.modules[name].run(RECORDS)
 
 
 def run_job(job):
@@ -97,6 +104,10 @@ def run_job(job):
     kind, key = job
     if kind == "published":
         return published.check(key, RECORDS)
+    if kind == "requirements":
+        case = requirement_cases.requirement_case(int(key.removeprefix("requirements-")))
+        report = requirement_checks.check_case(case, RECORDS)
+        return case.name, case.text, report.passed, report.failures
     case = random_case(key) if kind == "random" else next(c for c in all_cases() if c.name == key)
     report = check_case(case, RECORDS)
     return case.name, case.text, report.passed, report.failures

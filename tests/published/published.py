@@ -1,6 +1,6 @@
 """Published figures, and facts of the trade, read from Stayband's records.
 
-`figures.json` holds figures from textbooks and test sets with their sources; where a source was not at hand it says "from memory".
+`figures.json` and `figures_of_responses.json` hold figures from textbooks and test sets with their sources; where a source was not at hand it says "from memory".
 Each is compared twice: the record with the independently computed value, to `COMPUTED`, and with the figure as printed, to the
 precision it is printed with. Where the printed figure DIFFERS from the computed one its note says why, and only the computed one
 counts. `read` says where in the record the figure is found.
@@ -11,6 +11,7 @@ from decimal import Decimal
 from fractions import Fraction
 from pathlib import Path
 
+import of_responses
 from binary import NoAnswer
 from report import Report
 from trade import FACTS, SOURCE
@@ -23,7 +24,8 @@ ROUNDED, LOOSE = 0.5, 2.0
 
 def figures():
     """All figures and facts, as objects with an `id`."""
-    listed = json.loads((Path(__file__).parent / "figures.json").read_text(encoding="utf-8"))
+    files = ("figures.json", "figures_of_responses.json")
+    listed = [figure for name in files for figure in json.loads((Path(__file__).parent / name).read_text(encoding="utf-8"))]
     return listed + [{"id": name} for name in FACTS]
 
 
@@ -54,8 +56,10 @@ def check(key, records):
 def project_of(figure):
     """The project of a figure: the plant as it is, or for a polynomial p the plant 1/p at zero gain."""
     system = figure["system"]
+    if figure["read"] in of_responses.READ:
+        return of_responses.project_of(figure, quotient)
     if system["form"] == "num/den":
-        plant = f"({polynomial(system['num'])})/({polynomial(system['den'])})"
+        plant = quotient(system["num"], system["den"])
     else:
         plant = f"1/({polynomial(system['coeffs'])})"
     return {
@@ -66,6 +70,11 @@ def project_of(figure):
         "knob": "K",
         "setting": {"value": "0"},
     }
+
+
+def quotient(above, below):
+    """A ratio of polynomials as typed."""
+    return f"({polynomial(above)})/({polynomial(below)})"
 
 
 def polynomial(coefficients):
@@ -85,11 +94,12 @@ def decimal(value):
 def check_figure(figure, record, report):
     """The figure as read from the record against the computed and the printed one."""
     found = READ[figure["read"]](record, figure)
+    allowed = of_responses.COMPUTED.get(figure["read"], COMPUTED)
     computed, printed = numbers(figure["computed"]), numbers(figure["expected"])
     if figure["read"] == "deviation from the unit circle":
         report.check(abs(found[0]) <= COMPUTED, "computed", computed, found)
         return
-    near = len(found) == len(computed) and all(close(a, b, COMPUTED * max(abs(b), tiny(computed))) for a, b in zip(found, computed))
+    near = len(found) == len(computed) and all(close(a, b, allowed * max(abs(b), tiny(computed))) for a, b in zip(found, computed))
     report.check(near, "computed", computed, found)
     if figure["expected"] is None or figure["agreement"] == "DIFFERS":
         return
@@ -219,4 +229,4 @@ READ = {
     "imaginary parts on the axis": lambda record, figure: sorted(im for re, im in all_roots(record) if re == 0),
     "largest root": lambda record, figure: [max(re for re, im in all_roots(record) if im == 0)],
     "deviation from the unit circle": lambda record, figure: [max(abs(abs(complex(*p)) - 1) for p in all_roots(record))],
-}
+} | of_responses.READ

@@ -73,12 +73,6 @@ export function roundPlace(value: Decimal, place: number, direction: Direction):
   return trim({ digits: upwards ? floor + 1n : floor, exponent: place });
 }
 
-/** The sum of two decimals. */
-export function add(left: Decimal, right: Decimal): Decimal {
-  const exponent = Math.min(left.exponent, right.exponent);
-  return trim({ digits: lift(left, exponent) + lift(right, exponent), exponent });
-}
-
 /** Negative, zero or positive, as `left` is less than, equal to or greater than `right`. */
 export function compare(left: Decimal, right: Decimal): number {
   const exponent = Math.min(left.exponent, right.exponent);
@@ -92,7 +86,7 @@ export function toNumber(value: Decimal): number {
 }
 
 /** The exponent of the leading digit: 2 for 236.8. */
-export function leadingExponent(value: Decimal): number {
+function leadingExponent(value: Decimal): number {
   return value.exponent + significantDigits(value) - 1;
 }
 

@@ -1,9 +1,13 @@
-// The loop form: the blocks as text, the feedback sign, the quantities, the knob and its setting.
+// The loop form: the blocks as text, the feedback sign, the quantities, the knob; its setting and the requirements.
+import { fromNumber, roundDigits, typedText } from "./decimal.ts";
 import { byId, html, setValue } from "./dom.ts";
 import { mathElement } from "./mathml.ts";
 import { showProblems } from "./problem.ts";
-import { BLOCKS, withBlock, withFeedback, withKnob, withSetting, withTitle } from "./project.ts";
+import { BLOCKS, withBlock, withFeedback, withKnob, withTitle } from "./project.ts";
 import { quantitiesTable } from "./quantities.ts";
+import { requirementPanel } from "./requirementsform.ts";
+import { isPlain } from "./scale.ts";
+import { scaleForm } from "./scaleform.ts";
 import type { Session, Situation } from "./session.ts";
 import type { Field, Problem, Project, Reading } from "./types.ts";
 
@@ -15,7 +19,8 @@ export function loopForm(session: Session): void {
     feedbackField(session),
     quantitiesTable(byId("quantities", HTMLTableSectionElement), session),
     knobField(session),
-    settingField(session),
+    scaleForm(session),
+    requirementPanel(session),
     loopProblems(),
   ];
   session.onChange((situation) => {
@@ -63,7 +68,10 @@ function feedbackField(session: Session): Show {
 function knobField(session: Session): Show {
   const select = byId("knob", HTMLSelectElement);
   const problems = byId("knob-problem", HTMLElement);
-  select.addEventListener("change", () => session.change(withKnob(session.situation.project, select.value), "knob"));
+  select.addEventListener("change", () => {
+    const { project } = session.situation;
+    session.change(withKnob(project, select.value, knobText(session.situation)), "knob");
+  });
   let listed = "";
   return ({ project, answer }) => {
     const names = answer?.reading.names ?? [];
@@ -93,16 +101,14 @@ function amendKnob(session: Session, names: readonly string[]): void {
   if (first !== undefined) session.amend({ ...project, knob: first });
 }
 
-function settingField(session: Session): Show {
-  const input = byId("setting", HTMLInputElement);
-  const unit = byId("setting-unit", HTMLElement);
-  const problems = byId("setting-problem", HTMLElement);
-  input.addEventListener("input", () => session.change(withSetting(session.situation.project, input.value), "setting"));
-  return ({ project, answer }) => {
-    setValue(input, project.setting.value);
-    unit.textContent = project.quantities.find((row) => row.symbol === project.knob)?.unit ?? "";
-    showProblems(input, problems, project.setting.value, problemsOf(answer?.problems, "setting"));
-  };
+/** Digits of a knob value that is taken over from a setting on another scale. */
+const KNOB_DIGITS = 12;
+
+/** The knob's present value as it is typed into the table. */
+function knobText({ project, good }: Situation): string {
+  const knob = good?.record.closedLoop?.knob;
+  if (knob === undefined || good === null || isPlain(good.record.scale)) return project.setting.value;
+  return typedText(roundDigits(fromNumber(knob), KNOB_DIGITS, "nearest"));
 }
 
 /** Problems of the loop as a whole, and of the document, which have no field of their own; and rows that have none. */

@@ -50,9 +50,9 @@ export function counted(count: number, noun: string): string {
 }
 
 /** Items as a phrase: "a", "a and b", "a, b and c". */
-export function listed(items: readonly string[]): string {
+export function listed(items: readonly string[], conjunction: "and" | "or" = "and"): string {
   const last = items.at(-1) ?? "";
-  return items.length < 2 ? last : `${items.slice(0, -1).join(", ")} and ${last}`;
+  return items.length < 2 ? last : `${items.slice(0, -1).join(", ")} ${conjunction} ${last}`;
 }
 
 /** Damping ratio and natural frequency of the pole at re + j im; the ratio is null at the origin. */

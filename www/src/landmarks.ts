@@ -1,11 +1,11 @@
 // The landmarks of the locus in words and as a table; a row sets the pointer to its place.
-import { knobUnit } from "./answer.ts";
 import { fromNumber, roundDigits, typedText } from "./decimal.ts";
 import { byId, button, html } from "./dom.ts";
 import { angleText, counted, figure, listed, pairText, withUnit } from "./format.ts";
 import { shownSigns } from "./halves.ts";
 import type { Plane } from "./plane.ts";
 import { withSetting } from "./project.ts";
+import { settingName, settingUnit, toSetting } from "./scale.ts";
 import type { Session, Situation } from "./session.ts";
 import type { KnobSign, Landmark, Record as Findings, Segment } from "./types.ts";
 
@@ -94,12 +94,13 @@ export function landmarksTable(session: Session, plane: Plane): void {
     if (!good) return;
     const { record } = good;
     const signs = shownSigns(record, plane.half);
-    const key = `${good.picture} ${signs.join()} ${record.project.knob} ${knobUnit(record)}`;
+    const unit = settingUnit(record);
+    const key = [good.picture, signs.join(), JSON.stringify(record.scale), record.project.knob, unit].join(" ");
     if (key === drawn) return;
     drawn = key;
-    head.textContent = withUnit(record.project.knob, knobUnit(record) && `(${knobUnit(record)})`);
+    head.textContent = withUnit(settingName(record), unit && `(${unit})`);
     const rows = grouped(notable(record.landmarks, signs));
-    body.replaceChildren(...rows.map((landmark) => tableRow(landmark, session)));
+    body.replaceChildren(...rows.map((landmark) => tableRow(landmark, record, session)));
     none.hidden = rows.length > 0;
     more.replaceChildren(...signs.flatMap((sign) => summary(record, sign, signs.length > 1)));
   };
@@ -110,16 +111,17 @@ export function landmarksTable(session: Session, plane: Plane): void {
   });
 }
 
-function tableRow(landmark: LandmarkRow, session: Session): HTMLTableRowElement {
-  const { knob, s } = landmark;
+function tableRow(landmark: LandmarkRow, record: Findings, session: Session): HTMLTableRowElement {
+  const { knob, s, sign } = landmark;
   const words = landmarkWords(landmark);
+  const setting = toSetting(record.scale, knob ?? (sign === "positive" ? Infinity : -Infinity));
   const choose = (): void => {
-    if (knob === null) return;
-    const setting = typedText(roundDigits(fromNumber(knob), PICKED_DIGITS, "nearest"));
-    session.change(withSetting(session.situation.project, setting), "setting");
+    const text = typedText(roundDigits(fromNumber(setting), PICKED_DIGITS, "nearest"));
+    session.change(withSetting(session.situation.project, text), "setting");
   };
-  const text = knob === null ? "∞" : figure(knob);
-  const value = knob === null ? text : button(text, choose, { class: "figure", title: `Set the pointer here: ${words}` });
+  const text = figure(setting);
+  const value =
+    knob === null || !Number.isFinite(setting) ? text : button(text, choose, { class: "figure", title: `Set the pointer here: ${words}` });
   return html(
     "tr",
     {},

@@ -1,6 +1,6 @@
 // Geometry of the locus in the s-plane: pieces by verdict, the nearest point, what the picture frames. No DOM.
 import { rangeAt, verdictOf, type Verdict } from "./ranges.ts";
-import type { KnobSign, StabilityRange, View } from "./types.ts";
+import type { KnobSign, LimitRange, StabilityRange, View } from "./types.ts";
 
 /** A branch as the engine delivers it: `re, im, knob` for every vertex, |knob| growing. */
 export interface BranchLine {
@@ -8,9 +8,12 @@ export interface BranchLine {
   readonly points: Float64Array;
 }
 
+/** What the lanes say to a point of a branch. */
+export type Standing = "permitted" | Verdict;
+
 /** A piece of a branch with one verdict: `re, im` for every vertex. */
 export interface Piece {
-  readonly verdict: Verdict;
+  readonly verdict: Standing;
   readonly points: readonly number[];
 }
 
@@ -27,13 +30,14 @@ export interface Window {
   readonly im: readonly [number, number];
 }
 
-/** Cuts a branch at the edges of the stability ranges. */
-export function piecesOf(branch: BranchLine, ranges: readonly StabilityRange[]): Piece[] {
-  const edges = ranges.flatMap((range) => (range.to ? [range.to.value] : []));
-  const pieces: { verdict: Verdict; points: number[] }[] = [];
+/** Cuts a branch at the edges of the stability ranges and of the permitted ranges of the knob. */
+export function piecesOf(branch: BranchLine, ranges: readonly StabilityRange[], permitted: readonly LimitRange[] = []): Piece[] {
+  const stability = ranges.flatMap((range) => (range.to ? [range.to.value] : []));
+  const limits = permitted.flatMap(({ from, to }) => [from, to].flatMap((edge) => (edge ? [edge.knob] : [])));
+  const edges = [...new Set([...stability, ...limits])].sort((left, right) => left - right);
+  const pieces: { verdict: Standing; points: number[] }[] = [];
   const draw = (from: LocusPoint, to: LocusPoint): void => {
-    const range = rangeAt(ranges, Number.isFinite(to.knob) ? (from.knob + to.knob) / 2 : to.knob);
-    const verdict = range ? verdictOf(range) : "unstable";
+    const verdict = standing(Number.isFinite(to.knob) ? (from.knob + to.knob) / 2 : to.knob, ranges, permitted);
     const last = pieces.at(-1);
     if (last?.verdict === verdict) last.points.push(to.re, to.im);
     else pieces.push({ verdict, points: [from.re, from.im, to.re, to.im] });
@@ -49,6 +53,13 @@ export function piecesOf(branch: BranchLine, ranges: readonly StabilityRange[]):
     draw(from, to);
   }
   return pieces;
+}
+
+function standing(knob: number, ranges: readonly StabilityRange[], permitted: readonly LimitRange[]): Standing {
+  const inside = ({ from, to }: LimitRange): boolean => (from?.knob ?? -Infinity) <= knob && knob <= (to?.knob ?? Infinity);
+  if (permitted.some(inside)) return "permitted";
+  const range = rangeAt(ranges, knob);
+  return range ? verdictOf(range) : "unstable";
 }
 
 /** The point of the branches nearest to a place, with distances measured after scaling by `scale` pixels per unit. */

@@ -1,5 +1,5 @@
 // The page: connects the session with its views and opens the first project.
-import { byId } from "./dom.ts";
+import { byId, watchSize } from "./dom.ts";
 import { DEMOS } from "./demos.ts";
 import { Engine } from "./engine.ts";
 import { figuresTable } from "./figures.ts";
@@ -9,6 +9,7 @@ import { landmarksTable } from "./landmarks.ts";
 import { carriesProject, projectText } from "./link.ts";
 import { messageBar, say } from "./message.ts";
 import { Plane } from "./plane.ts";
+import { Responses } from "./responses.ts";
 import { Ruler } from "./ruler.ts";
 import { offerScripting } from "./script.ts";
 import { Session } from "./session.ts";
@@ -26,7 +27,9 @@ function start(): void {
   loopForm(session);
   new Ruler(session, why);
   landmarksTable(session, new Plane(session));
+  new Responses(session);
   figuresTable(session);
+  roomForPictures();
   tools(session);
   busySign(engine, session);
   session.onFailure((message) => say(message, "trouble"));
@@ -70,6 +73,16 @@ function busySign(engine: Engine, session: Session): void {
     sign.hidden = !busy;
   });
   byId("stop", HTMLButtonElement).addEventListener("click", () => session.stop());
+}
+
+/** Tells the style sheet how much of the window the answer and the ruler take, so that the pictures fill the rest. */
+function roomForPictures(): void {
+  const ruler = byId("ruler-place", HTMLElement);
+  const tell = (): void => {
+    const above = ruler.getBoundingClientRect().bottom + window.scrollY;
+    document.documentElement.style.setProperty("--above", `${Math.round(above)}px`);
+  };
+  for (const element of [ruler, byId("headline", HTMLElement), byId("head", HTMLElement)]) watchSize(element, tell);
 }
 
 /** Shows which build this page is. */

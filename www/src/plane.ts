@@ -4,19 +4,21 @@ import { scaleLinear, type ScaleLinear } from "d3-scale";
 import { pointer, select, type Selection } from "d3-selection";
 import { line } from "d3-shape";
 import { zoom, zoomIdentity, type D3ZoomEvent, type ZoomBehavior, type ZoomTransform } from "d3-zoom";
-import { knobUnit } from "./answer.ts";
 import { tickText } from "./axis.ts";
 import { fromNumber, roundDigits, typedText } from "./decimal.ts";
 import { byId, html, letterScale, oncePerFrame, setAttributes, svg, watchSize } from "./dom.ts";
 import { dampingOf, figure, pairText, THIN_SPACE, withUnit } from "./format.ts";
 import { clipLine, frameOf, nearestPoint, piecesOf, type BranchLine, type Piece, type Window } from "./locus.ts";
+import { forbiddenOf, type Forbidden } from "./forbidden.ts";
+import { gridOf, onGrid } from "./grid.ts";
 import { withSetting } from "./project.ts";
+import { settingName, settingUnit, toSetting } from "./scale.ts";
 import type { Session, Situation } from "./session.ts";
 import { shownSigns, type HalfChoice } from "./halves.ts";
 import type { KnobSign, Record as Findings, Root } from "./types.ts";
 
 /** Sizes in pixels at the usual letter size. */
-const SIZES = { name: 20, letter: 7.4, right: 10, top: 8, bottom: 42, mark: 5, tick: 84 };
+const SIZES = { name: 20, letter: 7.4, right: 10, top: 6, bottom: 40, mark: 5, tick: 84 };
 /** A branch farther from the pointer than this, in pixels, is not meant. */
 const REACH = 24;
 /** How far out and in one can zoom from the first view. */
@@ -43,12 +45,14 @@ export class Plane {
   readonly #element = byId("plane", SVGSVGElement);
   readonly #half = byId("half", HTMLSelectElement);
   readonly #readout = byId("plane-readout", HTMLElement);
-  readonly #layers = { back: svg("g"), axes: svg("g"), locus: svg("g"), marks: svg("g"), poles: svg("g"), hover: svg("g") };
+  readonly #layers = { limits: svg("g"), back: svg("g"), axes: svg("g"), locus: svg("g"), marks: svg("g"), poles: svg("g"), hover: svg("g") };
   readonly #clip = svg("rect");
   readonly #zoom: ZoomBehavior<SVGSVGElement, unknown>;
   readonly #redraw = oncePerFrame(() => this.#draw());
   #picture: Picture | null = null;
   #drawn = "";
+  /** What stands on the picture besides the poles at the setting. */
+  #still = "";
   #view = "";
   #transform: ZoomTransform = zoomIdentity;
   #size = { width: 0, height: 0 };
@@ -59,8 +63,8 @@ export class Plane {
 
   constructor(session: Session) {
     this.#session = session;
-    const { back, axes, locus, marks, poles, hover } = this.#layers;
-    const clipped = svg("g", { "clip-path": "url(#plane-clip)" }, back, locus, marks, poles, hover);
+    const { limits, back, axes, locus, marks, poles, hover } = this.#layers;
+    const clipped = svg("g", { "clip-path": "url(#plane-clip)" }, limits, back, locus, marks, poles, hover);
     this.#element.append(svg("clipPath", { id: "plane-clip" }, this.#clip), axes, clipped);
     this.#zoom = zoom<SVGSVGElement, unknown>()
       .scaleExtent(ZOOM)
@@ -96,11 +100,11 @@ export class Plane {
       return;
     }
     const signs = shownSigns(good.record, this.half);
-    const drawn = `${good.picture} ${signs.join()} ${good.record.project.knob}`;
+    const drawn = `${good.picture} ${signs.join()} ${good.record.project.knob} ${JSON.stringify(good.record.permitted.knob)}`;
     if (drawn !== this.#drawn || !this.#picture) {
       this.#drawn = drawn;
       const branches = good.branches.filter((branch) => signs.includes(branch.sign));
-      const pieces = branches.flatMap((branch) => piecesOf(branch, good.record.stability));
+      const pieces = branches.flatMap((branch) => piecesOf(branch, good.record.stability, good.record.permitted.knob));
       this.#picture = { record: good.record, branches, pieces, signs };
       const view = JSON.stringify(good.record.view);
       if (view !== this.#view) this.#reset();
@@ -132,9 +136,11 @@ export class Plane {
     this.#element.addEventListener("click", (event) => {
       // Browsers round the place of a click: what was read at the pointer is what is meant.
       const found = this.#pointed ?? this.#pick(event);
-      if (!found || !Number.isFinite(found.point.knob)) return;
-      const setting = typedText(roundDigits(fromNumber(found.point.knob), PICKED_DIGITS, "nearest"));
-      this.#session.change(withSetting(this.#session.situation.project, setting), "setting");
+      const setting = found && this.#picture ? toSetting(this.#picture.record.scale, found.point.knob) : NaN;
+      if (!Number.isFinite(setting)) return;
+      const { project } = this.#session.situation;
+      const typed = onGrid(gridOf(project.setting), roundDigits(fromNumber(setting), PICKED_DIGITS, "nearest"));
+      this.#session.change(withSetting(project, typedText(typed)), "setting");
     });
   }
 
@@ -190,9 +196,16 @@ export class Plane {
       [right, bottom],
     ]);
     const { x, y } = this.#scales(picture.record);
-    this.#drawAxes(x, y);
-    this.#layers.locus.replaceChildren(...asymptoteLines(picture, x, y), ...pieceLines(picture.pieces, x, y));
-    this.#layers.marks.replaceChildren(...rootMarks(picture, x, y), ...meetingMarks(picture, x, y));
+    const limits = forbiddenOf(picture.record);
+    const still = JSON.stringify([this.#drawn, x.domain(), x.range(), y.domain(), y.range(), letterScale(), limits]);
+    // Only the poles at the setting move with the pointer.
+    if (still !== this.#still) {
+      this.#still = still;
+      this.#drawAxes(x, y);
+      this.#layers.limits.replaceChildren(...limits.map((limit) => forbiddenPart(limit, x, y)));
+      this.#layers.locus.replaceChildren(...asymptoteLines(picture, x, y), ...pieceLines(picture.pieces, x, y));
+      this.#layers.marks.replaceChildren(...rootMarks(picture, x, y), ...meetingMarks(picture, x, y));
+    }
     this.#layers.poles.replaceChildren(...settingMarks(picture.record, x, y));
   }
 
@@ -250,7 +263,7 @@ export class Plane {
     const { ratio, frequency } = dampingOf(re, im);
     const parts = [
       `s = ${pairText(roundTo(re, frequency), roundTo(im, frequency))}`,
-      `${record.project.knob} = ${withUnit(figure(knob), knobUnit(record))}`,
+      `${settingName(record)} = ${withUnit(figure(toSetting(record.scale, knob)), settingUnit(record))}`,
       ratio === null ? "" : `damping ratio ${figure(ratio, 3)}`,
       `natural frequency ${figure(frequency, 3)}${THIN_SPACE}rad/s`,
     ];
@@ -274,8 +287,12 @@ function tickCount(length: number): number {
 function describe({ record, signs, pieces }: Picture): string {
   const halves = signs.map((sign) => `${sign} ${record.project.knob}`).join(" and ");
   const some = (verdict: Piece["verdict"]): boolean => pieces.some((piece) => piece.verdict === verdict);
-  const verdicts = some("stable") ? (some("unstable") ? "stable in part" : "stable throughout") : "nowhere stable";
-  return `Root locus for ${halves}: ${verdicts}. Landmarks and poles are listed in the tables.`;
+  const good = some("stable") || some("permitted");
+  const verdicts = good ? (some("unstable") ? "stable in part" : "stable throughout") : "nowhere stable";
+  const permitted = some("permitted") ? ", permitted in part" : "";
+  const limits = forbiddenOf(record).map(({ words }) => words);
+  const drawn = limits.length > 0 ? ` Limits drawn: ${limits.join(", ")}.` : "";
+  return `Root locus for ${halves}: ${verdicts}${permitted}.${drawn} Landmarks and poles are listed in the tables.`;
 }
 
 /** Leaves out the digits of a part that are too small to be seen beside the whole. */
@@ -295,9 +312,36 @@ function clipBox(x: Scale, y: Scale): [number, number, number, number] {
   return [left - 20, top - 20, right + 20, bottom + 20];
 }
 
+/** A limit of a requirement: its area, as large as the picture, and its border. */
+function forbiddenPart(limit: Forbidden, x: Scale, y: Scale): SVGElement {
+  const [left, top, right, bottom] = clipBox(x, y);
+  const [ox, oy] = [x(0), y(0)];
+  const title = svg("title", {}, limit.words);
+  switch (limit.shape) {
+    case "ray": {
+      const far = 2 * Math.hypot(right - left, bottom - top) + Math.hypot(ox - left, oy - top) + Math.hypot(ox - right, oy - bottom);
+      const [dx, dy] = [far * limit.ratio, far * Math.sqrt(1 - limit.ratio ** 2)];
+      const rays = `M${ox - dx} ${oy - dy}L${ox} ${oy}L${ox - dx} ${oy + dy}`;
+      return svg("g", { class: "forbidden" }, title, svg("path", { class: "area", d: `${rays}L${ox + far} ${oy + dy}V${oy - dy}Z` }), svg("path", { class: "border", d: rays }));
+    }
+    case "line": {
+      const at = x(-limit.rate);
+      const from = Math.max(left, Math.min(right, at));
+      const area = svg("rect", { class: "area", x: from, y: top, width: right - from, height: bottom - top });
+      return svg("g", { class: "forbidden" }, title, area, svg("path", { class: "border", d: `M${at} ${top}V${bottom}` }));
+    }
+    case "circle": {
+      const circle = { cx: ox, cy: oy, r: Math.abs(x(limit.radius) - ox) };
+      const area = limit.inside ? svg("circle", { class: "area", ...circle }) : null;
+      return svg("g", { class: "forbidden" }, title, area, svg("circle", { class: "border", ...circle }));
+    }
+  }
+}
+
 function pieceLines(pieces: readonly Piece[], x: Scale, y: Scale): SVGPathElement[] {
   const box = clipBox(x, y);
-  return pieces.map(({ verdict, points }) => {
+  const order = [...pieces].sort((left, right) => Number(left.verdict === "permitted") - Number(right.verdict === "permitted"));
+  return order.map(({ verdict, points }) => {
     const pixels = points.map((value, index) => (index % 2 === 0 ? x(value) : y(value)));
     return svg("path", { class: `branch ${verdict}`, d: clipLine(pixels, box).map(pathOf).join("") });
   });
@@ -356,7 +400,7 @@ function meetingMarks({ record, signs }: Picture, x: Scale, y: Scale): SVGElemen
 }
 
 function settingMarks(record: Findings, x: Scale, y: Scale): SVGElement[] {
-  const size = 7 * letterScale();
+  const size = 5.5 * letterScale();
   const diamond = `M0 ${-size}L${size} 0L0 ${size}L${-size} 0Z`;
   const poles = record.closedLoop?.poles ?? [];
   return poles.map((root) => mark(root, "closed", svg("path", { d: diamond }), "pole of the closed loop at the setting", x, y));

@@ -1,5 +1,5 @@
 // Changes of the project. Each returns a new project and leaves the old one as it was, so that it can be undone.
-import type { Feedback, LoopText, Project, Quantity } from "./types.ts";
+import type { Feedback, LoopText, Project, Quantity, Requirement, RequirementKind, Setting } from "./types.ts";
 
 /** The blocks that are typed. */
 export type BlockName = "controller" | "plant" | "sensor";
@@ -10,6 +10,18 @@ export const BLOCKS: readonly BlockName[] = ["controller", "plant", "sensor"];
 /** The name and version of the project document. */
 export const PROJECT_FORMAT = "stayband-project/1";
 
+/** A setting nobody has chosen, on a scale where it is the knob itself. */
+const PLAIN_SETTING: Setting = {
+  value: "",
+  name: "",
+  unit: "",
+  direction: "proportional",
+  factor: "",
+  minimum: "",
+  maximum: "",
+  step: "",
+};
+
 /** A project nobody has typed anything into. */
 export function emptyProject(): Project {
   return {
@@ -18,7 +30,8 @@ export function emptyProject(): Project {
     loop: { controller: "", plant: "", sensor: "1", feedback: "negative" },
     quantities: [],
     knob: "",
-    setting: { value: "" },
+    setting: PLAIN_SETTING,
+    requirements: [],
   };
 }
 
@@ -42,6 +55,30 @@ export function withSetting(project: Project, value: string): Project {
   return { ...project, setting: { ...project.setting, value } };
 }
 
+/** With another scale of the controller. */
+export function withScale(project: Project, part: Partial<Setting>): Project {
+  return { ...project, setting: { ...project.setting, ...part } };
+}
+
+/** With a requirement, new or with another limit. */
+export function withRequirement(project: Project, kind: RequirementKind, limit: string): Project {
+  const known = project.requirements.some((requirement) => requirement.kind === kind);
+  const requirements = known
+    ? project.requirements.map((requirement) => (requirement.kind === kind ? { kind, limit } : requirement))
+    : [...project.requirements, { kind, limit }];
+  return { ...project, requirements };
+}
+
+/** With several requirements at once. */
+export function withRequirements(project: Project, requirements: readonly Requirement[]): Project {
+  return requirements.reduce((changed, { kind, limit }) => withRequirement(changed, kind, limit), project);
+}
+
+/** Without a requirement. */
+export function withoutRequirement(project: Project, kind: RequirementKind): Project {
+  return { ...project, requirements: project.requirements.filter((requirement) => requirement.kind !== kind) };
+}
+
 /** With another value, unit or meaning for a quantity; a row is made where there is none. */
 export function withQuantity(project: Project, symbol: string, part: Partial<Omit<Quantity, "symbol">>): Project {
   const known = project.quantities.some((row) => row.symbol === symbol);
@@ -55,15 +92,15 @@ export function withoutQuantity(project: Project, symbol: string): Project {
 }
 
 /**
- * With another knob. The value the old knob was set to becomes its value in the table, and the value of the new one
- * becomes the setting: the loop stays the same loop, seen from another knob.
+ * With another knob. `present`, the value the old knob was set to, becomes its value in the table, and the value of the
+ * new one becomes the setting, on a plain scale: the loop stays the same loop, seen from another knob.
  */
-export function withKnob(project: Project, knob: string): Project {
+export function withKnob(project: Project, knob: string, present: string = project.setting.value): Project {
   if (knob === project.knob) return project;
   const value = project.quantities.find((row) => row.symbol === knob)?.value ?? "";
-  const kept = project.knob === "" ? project : withQuantity(project, project.knob, { value: project.setting.value });
+  const kept = project.knob === "" ? project : withQuantity(project, project.knob, { value: present });
   const moved = value === "" ? kept : withQuantity(kept, knob, { value: "" });
-  return withSetting({ ...moved, knob }, value);
+  return { ...moved, knob, setting: { ...PLAIN_SETTING, value } };
 }
 
 /** The names of the loop that have no row yet get one in the table; rows of names that are gone stay while they hold something. */
@@ -85,6 +122,7 @@ export function completed(given: Project): Project {
     quantities: (given.quantities ?? []).map((row) => ({ ...quantity, ...row })),
     knob: given.knob,
     setting: { ...empty.setting, ...given.setting },
+    requirements: given.requirements ?? empty.requirements,
   };
 }
 

@@ -1,9 +1,7 @@
 // The stable ranges of a record, joined and rounded so that every printed figure lies on the safe side.
 import {
-  add,
   compare,
   fromRational,
-  leadingExponent,
   readDecimal,
   roundDigits,
   significantDigits,
@@ -70,15 +68,6 @@ export function printedEnd(edge: Edge, direction: "up" | "down", digits: number 
   const bound = readDecimal(edge.bracket[direction === "up" ? 1 : 0]);
   if (!bound) throw new RangeError(`a bracket that is no decimal: ${edge.bracket.join(", ")}`);
   return { edge, decimal: roundDigits(bound, digits, direction), exact: false };
-}
-
-/** A setting just inside an end: the printed end, or one unit of the fourth digit beyond an end that is exact. */
-export function justInside(edge: Edge, direction: "up" | "down"): Decimal | null {
-  const end = printedEnd(edge, direction);
-  if (!end.exact) return end.decimal;
-  if (end.decimal.digits === 0n) return null;
-  const unit = { digits: direction === "up" ? 1n : -1n, exponent: leadingExponent(end.decimal) - END_DIGITS + 1 };
-  return add(end.decimal, unit);
 }
 
 /** The verdict on a range of the knob. */

@@ -1,8 +1,11 @@
 // Why an edge is an edge, in words.
 import { fromRational, printedText, readDecimal } from "./decimal.ts";
-import { counted, figure, listed, THIN_SPACE } from "./format.ts";
+import type { AnyEdge } from "./answer.ts";
+import { counted, figure, listed, THIN_SPACE, withUnit } from "./format.ts";
 import { kindWords, stabilityWords } from "./lanes.ts";
-import type { CharacterRange, Edge, Record as Findings } from "./types.ts";
+import { kindOf, nameInSentence } from "./requirements.ts";
+import { isPlain, originOf, settingName, settingUnit, toSetting } from "./scale.ts";
+import type { CharacterRange, Edge, LimitEdge, Record as Findings } from "./types.ts";
 
 /** A line of the explanation. */
 export interface ReasonLine {
@@ -33,16 +36,75 @@ export function happening(edge: Edge): string {
   }
 }
 
+/** True for an edge of a requirement or of the permitted range. */
+export function isLimit(edge: AnyEdge): edge is LimitEdge {
+  return "cause" in edge;
+}
+
+/** "Edge at setting 29.62": the heading of the explanation. */
+export function reasonHeading(record: Findings, edge: AnyEdge): string {
+  const knob = isLimit(edge) ? edge.knob : originOf(edge).value;
+  const setting = isPlain(record.scale) ? knob : toSetting(record.scale, knob);
+  return `Edge at ${settingName(record)} = ${withUnit(figure(setting, 6), settingUnit(record))}`;
+}
+
+/** What fails behind an edge, in one sentence. */
+export function failing(record: Findings, { cause }: LimitEdge): string {
+  if (cause.kind === "stability") return "Behind it the loop is no longer stable.";
+  if (cause.kind === "controller") return "Behind it the controller takes no such setting.";
+  const judged = record.requirements.find((requirement) => requirement.kind === cause.requirement);
+  const name = nameInSentence(cause.requirement);
+  return judged ? `Behind it the requirement on ${name}, ${limitWords(judged)}, is not met.` : `Behind it the requirement on ${name} is not met.`;
+}
+
+/** "at least 0.5", "at most 15 %". */
+export function limitWords({ kind, limit, atLeast }: Pick<Findings["requirements"][number], "kind" | "limit" | "atLeast">): string {
+  return `${atLeast ? "at least" : "at most"} ${quantity(limit, kindOf(kind).unit)}`;
+}
+
+/** A figure with its unit; degrees stand close. */
+export function quantity(value: number, unit: string, digits = 4): string {
+  return unit === "°" ? `${figure(value, digits)}°` : withUnit(figure(value, digits), unit);
+}
+
 /** All that is known about an edge. */
-export function reasonLines(record: Findings, edge: Edge): ReasonLine[] {
+export function reasonLines(record: Findings, asked: AnyEdge): ReasonLine[] {
+  return isLimit(asked) ? limitLines(record, asked) : edgeLines(record, originOf(asked));
+}
+
+function limitLines(record: Findings, edge: LimitEdge): ReasonLine[] {
+  const { cause, bracket, proven } = edge;
+  const stability = cause.kind === "stability" ? stabilityEdge(record, edge.knob) : undefined;
+  if (stability) return [{ term: "condition", text: failing(record, edge) }, ...edgeLines(record, stability)];
+  const knob = withUnit(figure(edge.knob, 6), knobUnitOf(record));
+  return [
+    { term: "condition", text: failing(record, edge) },
+    ...(isPlain(record.scale) ? [] : [{ term: "knob there", text: `${record.project.knob} = ${knob}` }]),
+    { term: isPlain(record.scale) ? "lies between" : "knob between", text: bracket.map(bracketText).join(" and ") },
+    { term: "proof", text: proven ? "proven by exact arithmetic" : "computed from the true response, refined in floating point" },
+  ];
+}
+
+function knobUnitOf({ project }: Findings): string {
+  return project.quantities.find((row) => row.symbol === project.knob)?.unit ?? "";
+}
+
+/** The edge of the stability lane at a knob. */
+function stabilityEdge(record: Findings, knob: number): Edge | undefined {
+  const near = (edge: Edge): boolean => Math.abs(edge.value - knob) <= Math.abs(knob) * 1e-12;
+  return record.stability.flatMap(({ to }) => (to ? [to] : [])).find(near);
+}
+
+function edgeLines(record: Findings, edge: Edge): ReasonLine[] {
   const knob = record.project.knob;
   const exactly = `${edge.name}; ${counted(edge.unstablePoles, "unstable pole")}, ${edge.axisPoles} on the imaginary axis`;
   return [
     { term: "what happens", text: happening(edge) },
     ...neighbours(record, edge),
     { term: "exactly there", text: exactly },
+    ...(isPlain(record.scale) ? [] : [{ term: "knob there", text: `${knob} = ${withUnit(figure(edge.value, 6), knobUnitOf(record))}` }]),
     ...(edge.exact === null ? [] : [{ term: "exact value", text: exactText(knob, edge.exact) }]),
-    { term: "lies between", text: edge.bracket.map(bracketText).join(" and ") },
+    { term: isPlain(record.scale) ? "lies between" : "knob between", text: edge.bracket.map(bracketText).join(" and ") },
     { term: "proof", text: edge.proven ? "proven by exact arithmetic" : "not proven; computed in floating point" },
   ];
 }

@@ -2,24 +2,25 @@
 import { axisTop } from "d3-axis";
 import { drag } from "d3-drag";
 import { select } from "d3-selection";
-import { settingText, knobUnit } from "./answer.ts";
+import { settingText, type AnyEdge } from "./answer.ts";
 import { axisFor, onAxis, positionOn, settingAt, stepFrom, ticksOn, type Axis, type AxisChoice, type Position } from "./axis.ts";
-import { fromNumber, printedText, toNumber, typedText, type Decimal } from "./decimal.ts";
+import { fromNumber, fromRational, typedText, type Decimal } from "./decimal.ts";
 import { byId, letterScale, oncePerFrame, setAttributes, svg, watchSize } from "./dom.ts";
 import { figure, withUnit } from "./format.ts";
-import { characterLane, stabilityLane, type Lane, type Segment } from "./lanes.ts";
+import { gridOf, onGrid, stepOnGrid } from "./grid.ts";
+import { lanesOf, type Lane, type Segment } from "./lanes.ts";
 import { settingNumber, withSetting } from "./project.ts";
-import { justInside, printedEnds, stableSpans, type StableSpan } from "./ranges.ts";
-import { happening } from "./reason.ts";
+import { stableSpans } from "./ranges.ts";
+import { limitSpan, onScale, settingName, settingUnit } from "./scale.ts";
 import type { Session, Situation } from "./session.ts";
 import type { Edge, Record as Findings } from "./types.ts";
 
 /** Sizes in pixels at the usual letter size. */
-const SIZES = { inset: 14, lane: 24, gap: 4, axis: 34, foot: 24, names: 96, texts: 124, letter: 7.2, edge: 24, minorTick: 5, majorTick: 9 };
+const SIZES = { inset: 14, lane: 20, gap: 4, axis: 34, foot: 22, names: 164, texts: 124, letter: 7.2, edge: 24, minorTick: 5, majorTick: 9 };
+/** Where the letters of a lane stand, as a part of its height. */
+const BASELINE = 0.72;
 /** Below this width the names of the lanes stand above them and the texts at their right end are left out. */
 const NARROW = 700;
-/** Where a setting has to be chosen between two ends too close for the usual digits, the middle of them is taken. */
-const HALF = 0.5;
 
 /** Where things are on the picture. */
 interface Layout {
@@ -35,7 +36,7 @@ interface Layout {
 /** Connects the ruler with the session; `onReason` is asked to explain an edge. */
 export class Ruler {
   readonly #session: Session;
-  readonly #onReason: (edge: Edge, from: Element) => void;
+  readonly #onReason: (edge: AnyEdge, from: Element) => void;
   readonly #picture = byId("ruler", SVGSVGElement);
   readonly #choice = byId("axis", HTMLSelectElement);
   readonly #base = svg("g");
@@ -46,8 +47,9 @@ export class Ruler {
   #axis: Axis | null = null;
   #dragging = false;
   #drawn = "";
+  #lanes: readonly Lane[] = [];
 
-  constructor(session: Session, onReason: (edge: Edge, from: Element) => void) {
+  constructor(session: Session, onReason: (edge: AnyEdge, from: Element) => void) {
     this.#session = session;
     this.#onReason = onReason;
     this.#pointer.append(...Object.values(this.#parts));
@@ -70,8 +72,12 @@ export class Ruler {
     // The axis stands still while the pointer is dragged along it.
     if (!this.#dragging || !this.#axis) this.#axis = axisFor(subjectOf(record, setting), this.#choice.value as AxisChoice);
     const layout = layoutFor(this.#width);
-    const drawn = [good.picture, knobUnit(record), record.project.knob, this.#width, layout.scale, JSON.stringify(this.#axis)].join();
+    // The figures at the setting change with every step of the pointer, the lanes do not.
+    const required = record.requirements.map(({ kind, limit, ranges }) => [kind, limit, ranges]);
+    const judged = JSON.stringify([record.scale, required, record.permitted, this.#axis]);
+    const drawn = [good.picture, settingUnit(record), settingName(record), this.#width, layout.scale, judged].join();
     if (drawn !== this.#drawn) {
+      this.#lanes = lanesOf(record);
       this.#drawBase(record, this.#axis, layout);
       this.#drawn = drawn;
     }
@@ -81,9 +87,11 @@ export class Ruler {
   #drawBase(record: Findings, axis: Axis, layout: Layout): void {
     const { left, length, scale, pitch } = layout;
     const position = positionOn(axis, length);
-    const lanes = [stabilityLane(record), characterLane(record)];
+    const lanes = this.#lanes;
     const height = SIZES.axis * scale + lanes.length * pitch + SIZES.foot * scale;
+    const names = lanes.map(({ name }) => name).join(", ");
     setAttributes(this.#picture, { viewBox: `0 0 ${layout.width} ${height}`, width: layout.width, height });
+    setAttributes(this.#picture, { "aria-label": `Axis of settings with the lanes ${names}` });
     const ticks = svg("g", { class: "ticks", transform: `translate(${left} ${SIZES.axis * scale - 4})` });
     drawTicks(ticks, axis, position, layout);
     const catcher = svg("rect", { class: "catcher", x: left, y: 0, width: length, height });
@@ -93,7 +101,7 @@ export class Ruler {
         "g",
         { transform: `translate(0 ${y})` },
         ...laneParts(lane, axis, position, layout),
-        laneText(index === 0 ? stableText(record) : "", layout),
+        laneText(lane.text, layout),
       );
     });
     const edges = lanes.map((lane, index) => {
@@ -106,12 +114,12 @@ export class Ruler {
   #edgeMarks(lane: Lane, axis: Axis, layout: Layout, top: number, record: Findings): SVGGElement {
     const height = SIZES.lane * layout.scale;
     const position = positionOn(axis, layout.length);
-    const lead = `Edge of ${lane.name.toLowerCase()} at ${record.project.knob} =`;
+    const lead = `Edge of ${lane.name.toLowerCase()} at ${settingName(record)} =`;
     const marks = lane.edges
-      .filter((edge) => onAxis(axis, edge.value))
-      .map((edge) => {
-        const x = layout.left + position(edge.value);
-        const name = `${lead} ${figure(edge.value)}: ${happening(edge)} Open the reason.`;
+      .filter(({ place }) => onAxis(axis, place))
+      .map(({ place, edge, words }) => {
+        const x = layout.left + position(place);
+        const name = `${lead} ${figure(place)}: ${words} Open the reason.`;
         const mark = svg(
           "g",
           { class: "edge", role: "button", tabindex: 0, "aria-label": name, transform: `translate(${x} ${top})` },
@@ -136,17 +144,17 @@ export class Ruler {
     if (!axis) return;
     const shown = setting !== null && onAxis(axis, setting);
     const value = setting ?? axis.domain[0];
-    const words = setting === null ? "not chosen" : withUnit(settingWords(record, this.#session), knobUnit(record));
+    const words = setting === null ? "not chosen" : withUnit(settingWords(record, this.#session), settingUnit(record));
     setAttributes(this.#pointer, {
       "aria-valuemin": axis.domain[0],
       "aria-valuemax": axis.domain[1],
       "aria-valuenow": value,
-      "aria-valuetext": `${record.project.knob} ${words}`,
+      "aria-valuetext": `${settingName(record)} ${words}`,
       class: shown ? "pointer" : "pointer away",
     });
     const { scale, left, length } = layout;
     const x = left + (shown ? positionOn(axis, length)(value) : value > axis.domain[1] ? length : 0);
-    const bottom = SIZES.axis * scale + 2 * layout.pitch;
+    const bottom = SIZES.axis * scale + this.#lanes.length * layout.pitch;
     const label = `setting ${shown || setting === null ? words : `${words} lies outside this axis`}`;
     const half = (label.length * SIZES.letter * scale) / 2;
     const inside = Math.min(layout.width - half, Math.max(half, x)) - x;
@@ -155,7 +163,7 @@ export class Ruler {
     setAttributes(halo, { x: -12 * scale, y: top - 30 * scale, width: 24 * scale, height: bottom - 2 * scale, rx: 4 });
     setAttributes(stem, { y1: top - 10 * scale, y2: bottom });
     setAttributes(head, { d: headPath(scale), transform: `translate(0 ${top - 8 * scale})` });
-    setAttributes(name, { x: inside, y: bottom + 16 * scale });
+    setAttributes(name, { x: inside, y: bottom + 14 * scale });
     name.textContent = label;
     setAttributes(this.#pointer, { transform: `translate(${x} 0)` });
   }
@@ -164,7 +172,7 @@ export class Ruler {
     const move = oncePerFrame((x: number) => {
       const layout = layoutFor(this.#width);
       if (!this.#axis) return;
-      this.#set(settingAt(this.#axis, (x - layout.left) / layout.length, layout.length));
+      this.#set(this.#onGrid(settingAt(this.#axis, (x - layout.left) / layout.length, layout.length)));
     });
     const behaviour = drag<SVGSVGElement, unknown>()
       .filter((event: MouseEvent) => !event.button && !(event.target as Element).closest(".edge"))
@@ -186,25 +194,35 @@ export class Ruler {
     const setting = settingNumber(this.#session.situation.project) ?? axis.domain[0];
     const many = event.shiftKey || event.key.startsWith("Page") ? 10 : 1;
     const steps = { ArrowRight: many, ArrowUp: many, PageUp: many, ArrowLeft: -many, ArrowDown: -many, PageDown: -many }[event.key];
-    if (steps !== undefined) this.#set(stepFrom(axis, setting, steps));
-    else if (event.key === "Home") this.#set(this.#rangeEnd(axis, setting, "from"));
-    else if (event.key === "End") this.#set(this.#rangeEnd(axis, setting, "to"));
+    if (steps !== undefined) this.#set(this.#stepped(axis, setting, steps));
+    else if (event.key === "Home") this.#set(this.#rangeEnd(axis, setting, 0));
+    else if (event.key === "End") this.#set(this.#rangeEnd(axis, setting, 1));
     else return;
     event.preventDefault();
   }
 
-  /** The setting just inside an end of the stable range that holds the setting, or the next one; else the axis' end. */
-  #rangeEnd(axis: Axis, setting: number, end: "from" | "to"): Decimal {
+  #onGrid(setting: Decimal): Decimal {
+    return onGrid(gridOf(this.#session.situation.project.setting), setting);
+  }
+
+  /** Steps of the controller's resolution; without one, parts of the axis. */
+  #stepped(axis: Axis, setting: number, steps: number): Decimal {
+    const grid = gridOf(this.#session.situation.project.setting);
+    return stepOnGrid(grid, fromNumber(setting), steps) ?? onGrid(grid, stepFrom(axis, setting, steps));
+  }
+
+  /** The first or last setting of the permitted range that holds the setting, or the next one; else the axis' end. */
+  #rangeEnd(axis: Axis, setting: number, end: 0 | 1): Decimal {
+    const axisEnd = (): Decimal => this.#onGrid(settingAt(axis, end, this.#width));
     const record = this.#session.situation.good?.record;
-    const span = record ? nearestSpan(stableSpans(record.stability), setting) : null;
-    const edge = span?.[end];
-    const axisEnd = settingAt(axis, end === "from" ? 0 : 1, this.#width);
-    if (!span || !edge) return axisEnd;
-    const found = justInside(edge, end === "from" ? "up" : "down") ?? axisEnd;
-    const value = toNumber(found);
-    if (value > (span.from?.value ?? -Infinity) && value < (span.to?.value ?? Infinity)) return found;
-    const other = span[end === "from" ? "to" : "from"];
-    return fromNumber(edge.value + ((other?.value ?? edge.value) - edge.value) * HALF);
+    if (!record) return axisEnd();
+    const distances = record.permitted.knob.map((range) => {
+      const span = limitSpan(record.scale, range);
+      return span ? Math.max(span.low - setting, setting - span.high, 0) : Infinity;
+    });
+    const nearest = distances.indexOf(Math.min(...distances));
+    const text = record.permitted.setting[nearest]?.[end] ?? null;
+    return (text === null ? null : fromRational(text)) ?? axisEnd();
   }
 
   #set(setting: Decimal): void {
@@ -215,11 +233,13 @@ export class Ruler {
 
 /** What the axis has to show for a record. */
 function subjectOf(record: Findings, setting: number | null): Parameters<typeof axisFor>[0] {
+  const { stability, character } = onScale(record);
+  const open = record.scale.direction === "reciprocal" ? 0 : -Infinity;
   const ends = (ranges: readonly { to: Edge | null }[]): number[] => ranges.flatMap(({ to }) => (to ? [to.value] : []));
   return {
-    stability: ends(record.stability),
-    character: ends(record.character),
-    stable: stableSpans(record.stability).map(({ from, to }) => [from?.value ?? -Infinity, to?.value ?? Infinity]),
+    stability: ends(stability),
+    character: ends(character),
+    stable: stableSpans(stability).map(({ from, to }) => [from?.value ?? open, to?.value ?? Infinity]),
     setting,
   };
 }
@@ -256,9 +276,20 @@ function laneParts(lane: Lane, axis: Axis, position: Position, layout: Layout): 
   const top = pitch - height - SIZES.gap * scale;
   const name = narrow
     ? svg("text", { class: "lane-name", x: 0, y: 12 * scale }, lane.name)
-    : svg("text", { class: "lane-name", x: left - 8 * scale, y: top + height * 0.68, "text-anchor": "end" }, lane.name);
+    : svg("text", { class: "lane-name", x: left - 8 * scale, y: top + height * BASELINE, "text-anchor": "end" }, lane.name);
+  const track = svg("rect", { class: "track", x: left, y: top, width: layout.length, height });
   const segments = lane.segments.flatMap((segment) => segmentParts(segment, axis, position, layout, top, height));
-  return [name, ...segments];
+  const shown = lane.segments.some(({ from, to }) => from < axis.domain[1] && to > axis.domain[0]);
+  const empty = shown ? null : emptyWords(lane, layout, top + height * BASELINE);
+  return [name, track, ...segments, ...(empty ? [empty] : [])];
+}
+
+/** What a lane without a segment on the axis says: why there is none, or where they are. */
+function emptyWords(lane: Lane, { left, length, scale }: Layout, y: number): SVGTextElement {
+  const text = lane.segments.length > 0 ? "outside this axis" : lane.empty;
+  const letters = Math.max(4, Math.floor((length - 12) / (SIZES.letter * scale)));
+  const shown = text.length > letters ? `${text.slice(0, letters - 1)}…` : text;
+  return svg("text", { class: "words quiet", x: left + length / 2, y }, svg("title", {}, text), shown);
 }
 
 function segmentParts(segment: Segment, axis: Axis, position: Position, layout: Layout, y: number, height: number): SVGElement[] {
@@ -273,34 +304,16 @@ function segmentParts(segment: Segment, axis: Axis, position: Position, layout: 
   const hatch = hatched ? svg("rect", { class: "hatch", x, y, width, height, fill: `url(#hatch-${segment.look})` }) : null;
   const words = segment.words.find((text) => text.length * SIZES.letter * layout.scale + 10 <= width);
   const label = words
-    ? svg("text", { class: hatched ? "words on-hatch" : "words", x: x + width / 2, y: y + height * 0.68 }, words)
+    ? svg("text", { class: hatched ? "words on-hatch" : `words on-${segment.look}`, x: x + width / 2, y: y + height * BASELINE }, words)
     : null;
   return [box, hatch, label].filter((part) => part !== null);
 }
 
+/** The short words at the right end of a lane; above it where the window is narrow. */
 function laneText(text: string, { narrow, left, length, scale, pitch }: Layout): SVGElement | null {
-  if (narrow || text === "") return null;
-  return svg("text", { class: "lane-text", x: left + length + 10 * scale, y: pitch - (SIZES.lane * 0.32 + SIZES.gap) * scale }, text);
-}
-
-/** "3.858 … 236.7" for the text at the right end of the stability lane. */
-function stableText(record: Findings): string {
-  const spans = stableSpans(record.stability);
-  const [only] = spans;
-  if (spans.length !== 1 || !only) return spans.length === 0 ? "never stable" : `${spans.length} stable ranges`;
-  const { from, to } = printedEnds(only);
-  const both = from && to ? `${printedText(from.decimal)} … ${printedText(to.decimal)}` : "";
-  if (both) return both.length * SIZES.letter <= SIZES.texts ? both : "1 stable range";
-  if (from) return `above ${printedText(from.decimal)}`;
-  return to ? `below ${printedText(to.decimal)}` : "always stable";
-}
-
-/** The stable span that holds a setting, or the one whose end is nearest. */
-function nearestSpan(spans: readonly StableSpan[], setting: number): StableSpan | null {
-  const distance = ({ from, to }: StableSpan): number =>
-    Math.max((from?.value ?? -Infinity) - setting, setting - (to?.value ?? Infinity), 0);
-  const byDistance = [...spans].sort((left, right) => distance(left) - distance(right));
-  return byDistance[0] ?? null;
+  if (text === "") return null;
+  if (narrow) return svg("text", { class: "lane-text", x: left + length, y: 12 * scale, "text-anchor": "end" }, text);
+  return svg("text", { class: "lane-text", x: left + length + 10 * scale, y: pitch - (SIZES.lane * (1 - BASELINE) + SIZES.gap) * scale }, text);
 }
 
 /** The setting as the project holds it, which may be newer than the record. */

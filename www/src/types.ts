@@ -48,6 +48,11 @@ positive: T,
 negative: T, };
 
 /**
+ * What fails behind an edge.
+ */
+export type Cause = { "kind": "stability" } | { "kind": "requirement", "requirement": RequirementKind } | { "kind": "controller" };
+
+/**
  * The trade's word for the kinds of poles.
  */
 export type CharacterName = "overdamped" | "critically damped" | "underdamped" | "marginally stable" | "unstable";
@@ -103,6 +108,37 @@ axisPoles: number,
 name: CharacterName, };
 
 /**
+ * Requirements that exclude each other.
+ */
+export type Conflict = {
+/**
+ * The smallest such set; empty where the loop is never stable, or the controller's limits exclude every setting.
+ */
+requirements: Array<RequirementKind>,
+/**
+ * By how much, a sentence in the controller's scale.
+ */
+text: string, };
+
+/**
+ * A curve over time.
+ */
+export type Curve = {
+/**
+ * s, ascending.
+ */
+time: Array<number>,
+/**
+ * The value at each time.
+ */
+value: Array<number>, };
+
+/**
+ * How the knob follows from the setting.
+ */
+export type Direction = "proportional" | "reciprocal";
+
+/**
  * An end of a range.
  */
 export type Edge = {
@@ -153,6 +189,19 @@ axisPoles: number,
 name: CharacterName, };
 
 /**
+ * A curve at another setting, for comparison.
+ */
+export type EdgeCurve = {
+/**
+ * The knob.
+ */
+knob: number,
+/**
+ * The curve.
+ */
+curve: Curve, };
+
+/**
  * What happens at an edge.
  */
 export type EdgeKind = "axis crossing" | "origin crossing" | "degree drop" | "breakaway" | "break-in" | "repeated pole";
@@ -165,7 +214,41 @@ export type Feedback = "negative" | "positive";
 /**
  * A field of the form.
  */
-export type Field = "controller" | "plant" | "sensor" | "quantity" | "knob" | "setting" | "loop" | "document";
+export type Field = "controller" | "plant" | "sensor" | "quantity" | "knob" | "setting" | "requirement" | "loop" | "document";
+
+/**
+ * The open loop L(jω), the same number of entries in each.
+ */
+export type FrequencyResponse = {
+/**
+ * rad/s, ascending.
+ */
+omega: Array<number>,
+/**
+ * dB.
+ */
+magnitude: Array<number>,
+/**
+ * Degrees, continuous.
+ */
+phase: Array<number>, };
+
+/**
+ * Where the open loop has magnitude 1.
+ */
+export type GainCrossing = {
+/**
+ * rad/s.
+ */
+omega: number,
+/**
+ * Degrees above −180 (below where negative), in (−180, 180].
+ */
+phaseMargin: number,
+/**
+ * s.
+ */
+delayMargin: number, };
 
 /**
  * Which half of the locus.
@@ -208,6 +291,61 @@ sign: KnobSign, };
 export type LandmarkKind = "breakaway" | "break-in" | "departure" | "arrival" | "axis crossing" | "origin crossing";
 
 /**
+ * An end of a requirement's or a permitted range.
+ */
+export type LimitEdge = {
+/**
+ * The knob.
+ */
+knob: number,
+/**
+ * The setting; None where the scale has none for this knob.
+ */
+setting: number | null,
+/**
+ * Decimal numbers between which the knob lies; for a computed edge the uncertainty of the computation.
+ */
+bracket: [string, string],
+/**
+ * True where the bracket is proven.
+ */
+proven: boolean,
+/**
+ * What fails behind the edge.
+ */
+cause: Cause, };
+
+/**
+ * A range of the knob in which a requirement is met. None is an infinite end.
+ */
+export type LimitRange = {
+/**
+ * The lower end.
+ */
+from: LimitEdge | null,
+/**
+ * The upper end.
+ */
+to: LimitEdge | null, };
+
+/**
+ * The answer of the output to a unit step at the plant's input, in the output's own units.
+ */
+export type LoadRecord = {
+/**
+ * At the setting.
+ */
+curve: Curve,
+/**
+ * The largest deviation.
+ */
+peak: number,
+/**
+ * The remaining deviation.
+ */
+finalValue: number, };
+
+/**
  * The blocks as typed.
  */
 export type LoopText = {
@@ -227,6 +365,51 @@ sensor: string,
  * The sign with which the sensor's signal enters the comparison.
  */
 feedback: Feedback, };
+
+/**
+ * Margins of the open loop at one setting.
+ */
+export type Margins = {
+/**
+ * The factor by which the loop gain may rise. None: without limit.
+ */
+gainUp: number | null,
+/**
+ * The factor by which the loop gain may be divided. None: without limit.
+ */
+gainDown: number | null,
+/**
+ * Degrees. None: no turn of the phase makes the loop marginal.
+ */
+phase: number | null,
+/**
+ * s. None: no dead time makes the loop marginal.
+ */
+delay: number | null,
+/**
+ * The largest |1/(1 + L(jω))|.
+ */
+peakSensitivity: number,
+/**
+ * rad/s, where the peak is.
+ */
+peakFrequency: number,
+/**
+ * rad/s. None: the closed loop does not fall 3 dB below its static gain.
+ */
+bandwidth: number | null,
+/**
+ * Every ω with |L(jω)| = 1.
+ */
+gainCrossings: Array<GainCrossing>,
+/**
+ * Every ω ≥ 0 with L(jω) real and negative.
+ */
+phaseCrossings: Array<PhaseCrossing>,
+/**
+ * The open loop over frequency.
+ */
+response: FrequencyResponse, };
 
 /**
  * The characteristic polynomial F(s, q) of the loop, in exact integers; q is the knob.
@@ -266,6 +449,45 @@ text: string, };
  * What a notice is about.
  */
 export type NoticeKind = "unstable-fixed-mode" | "cancelled-factor" | "knob-without-effect" | "improper-block" | "algebraic-loop" | "not-computed";
+
+/**
+ * Where stability and all requirements agree.
+ */
+export type Permitted = {
+/**
+ * The permitted ranges of the knob, ascending.
+ */
+knob: Array<LimitRange>,
+/**
+ * For each of them the smallest and the largest setting on the controller's grid, rounded inward, as exact
+ * decimals; None where no setting of the grid lies inside, or the side is open.
+ */
+setting: Array<[string | null, string | null]>,
+/**
+ * True where every edge is proven.
+ */
+proven: boolean,
+/**
+ * The suggestion.
+ */
+suggested: Suggestion | null,
+/**
+ * Which requirements exclude each other, where nothing is permitted.
+ */
+conflict: Conflict | null, };
+
+/**
+ * Where the open loop is real and negative.
+ */
+export type PhaseCrossing = {
+/**
+ * rad/s.
+ */
+omega: number,
+/**
+ * The factor of the loop gain at which −1 is met here.
+ */
+factor: number, };
 
 /**
  * A point of the s-plane, 1/s.
@@ -339,9 +561,13 @@ quantities: Array<Quantity>,
  */
 knob: string,
 /**
- * The chosen setting.
+ * The chosen setting, in the controller's own scale.
  */
-setting: Setting, };
+setting: Setting,
+/**
+ * What the loop must do besides being stable.
+ */
+requirements: Array<Requirement>, };
 
 /**
  * A named quantity of the loop.
@@ -442,6 +668,30 @@ zeros: Array<Root>,
  */
 closedLoop: ClosedLoop | null,
 /**
+ * The controller's scale.
+ */
+scale: Scale,
+/**
+ * The requirements with the ranges in which they are met, in the project's order.
+ */
+requirements: Array<RequirementRecord>,
+/**
+ * Where stability and all requirements agree.
+ */
+permitted: Permitted,
+/**
+ * Margins and frequency response at the chosen setting. None without a setting, or where the loop is unstable there.
+ */
+margins: Margins | null,
+/**
+ * The answer to a unit step of the command at the chosen setting. None likewise.
+ */
+step: StepRecord | null,
+/**
+ * The answer to a unit step at the plant's input at the chosen setting. None likewise.
+ */
+load: LoadRecord | null,
+/**
  * The part of the s-plane that shows what matters.
  */
 view: View,
@@ -449,6 +699,65 @@ view: View,
  * Warnings about the loop, most serious first.
  */
 notices: Array<Notice>, };
+
+/**
+ * One requirement with its limit.
+ */
+export type Requirement = {
+/**
+ * What is required.
+ */
+kind: RequirementKind,
+/**
+ * The limit, an exact decimal in the kind's unit, as typed.
+ */
+limit: string, };
+
+/**
+ * What can be required. Speeds and times are those of the output for a unit step of the command.
+ */
+export type RequirementKind = "damping-ratio" | "decay-rate" | "natural-frequency-minimum" | "natural-frequency-maximum" | "gain-margin-up" | "gain-margin-down" | "phase-margin" | "delay-margin" | "peak-sensitivity" | "bandwidth" | "overshoot" | "undershoot" | "rise-time" | "settling-time-2" | "settling-time-5" | "peak-time" | "step-error" | "ramp-error" | "parabola-error" | "load-peak" | "load-final" | "controller-peak";
+
+/**
+ * A requirement, judged.
+ */
+export type RequirementRecord = {
+/**
+ * What is required.
+ */
+kind: RequirementKind,
+/**
+ * The limit, in `unit`.
+ */
+limit: number,
+/**
+ * True where the figure must be at least the limit, false where at most.
+ */
+atLeast: boolean,
+/**
+ * The unit of limit and figure; may be empty.
+ */
+unit: string,
+/**
+ * Where the requirement and stability are met, ascending.
+ */
+ranges: Array<LimitRange>,
+/**
+ * True where the ranges are proven, false where they are computed.
+ */
+proven: boolean,
+/**
+ * The figure at the chosen setting. None where it is undefined, infinite, or there is no setting.
+ */
+figure: number | null,
+/**
+ * Whether the requirement is met at the chosen setting. None without a setting.
+ */
+met: boolean | null,
+/**
+ * In words: why no setting meets it, or why it is undefined for this loop.
+ */
+remark: string | null, };
 
 /**
  * A root with the radius of a disc that surely holds it.
@@ -472,18 +781,79 @@ radius: number,
 multiplicity: number, };
 
 /**
+ * The controller's scale: what setting belongs to what knob.
+ */
+export type Scale = {
+/**
+ * What the controller calls the setting; the knob's symbol where it has no name of its own.
+ */
+name: string,
+/**
+ * The controller's unit; may be empty.
+ */
+unit: string,
+/**
+ * How the knob follows from the setting.
+ */
+direction: Direction,
+/**
+ * knob = factor × setting, or factor / setting.
+ */
+factor: number,
+/**
+ * The smallest setting the controller takes.
+ */
+minimum: number | null,
+/**
+ * The largest setting the controller takes.
+ */
+maximum: number | null,
+/**
+ * The resolution.
+ */
+step: number | null, };
+
+/**
  * A part of the real axis; None is an infinite end.
  */
 export type Segment = [number | null, number | null];
 
 /**
- * The chosen setting of the knob.
+ * The chosen setting, and the controller's scale on which it stands.
  */
 export type Setting = {
 /**
  * An exact decimal, as typed. Empty while not yet chosen.
  */
-value: string, };
+value: string,
+/**
+ * What the controller calls it. Empty: the knob's own symbol.
+ */
+name: string,
+/**
+ * The controller's unit, as a note to the reader.
+ */
+unit: string,
+/**
+ * How the knob follows from the setting.
+ */
+direction: Direction,
+/**
+ * Knob per setting, or knob times setting: an expression in numbers and quantities. Empty: 1.
+ */
+factor: string,
+/**
+ * The smallest setting the controller takes, an exact decimal. Empty: none.
+ */
+minimum: string,
+/**
+ * The largest setting the controller takes, an exact decimal. Empty: none.
+ */
+maximum: string,
+/**
+ * The resolution: settings are whole multiples of it, an exact decimal. Empty: any number can be set.
+ */
+step: string, };
 
 /**
  * A range of the knob with a constant count of unstable poles. Its ends do not belong to it.
@@ -509,6 +879,73 @@ axisPoles: number,
  * True where both counts are zero.
  */
 stable: boolean, };
+
+/**
+ * The answer of the output to a unit step of the command. The output is in the command's units: what the sensor shows
+ * of it at rest.
+ */
+export type StepRecord = {
+/**
+ * At the setting.
+ */
+curve: Curve,
+/**
+ * At the ends of the permitted range that holds the setting, or of the first one.
+ */
+atEdges: Array<EdgeCurve>,
+/**
+ * The controller's output at the setting. None where the controller is improper.
+ */
+controller: Curve | null,
+/**
+ * The final value.
+ */
+finalValue: number,
+/**
+ * % of the final value. None where that is zero.
+ */
+overshoot: number | null,
+/**
+ * % of the final value. None where that is zero.
+ */
+undershoot: number | null,
+/**
+ * s, from 10 % to 90 %.
+ */
+riseTime: number | null,
+/**
+ * s, to 2 %.
+ */
+settlingTime2: number | null,
+/**
+ * s, to 5 %.
+ */
+settlingTime5: number | null,
+/**
+ * s. None where the final value is never exceeded.
+ */
+peakTime: number | null,
+/**
+ * The largest controller output. None where the controller is improper.
+ */
+controllerPeak: number | null, };
+
+/**
+ * A suggested setting.
+ */
+export type Suggestion = {
+/**
+ * On the controller's grid, an exact decimal.
+ */
+setting: string,
+/**
+ * The knob there.
+ */
+knob: number,
+/**
+ * How it was chosen, a sentence.
+ */
+reason: string, };
 
 /**
  * A rectangle of the s-plane, 1/s.

@@ -1,12 +1,11 @@
 // The panel that explains an edge.
 import { byId, html } from "./dom.ts";
-import { figure } from "./format.ts";
-import { reasonLines } from "./reason.ts";
+import type { AnyEdge } from "./answer.ts";
+import { reasonHeading, reasonLines } from "./reason.ts";
 import type { Session } from "./session.ts";
-import type { Edge } from "./types.ts";
 
 /** Opens the explanation of an edge; closing it gives the focus back. */
-export function reasonPanel(session: Session): (edge: Edge, from: Element) => void {
+export function reasonPanel(session: Session): (edge: AnyEdge, from: Element) => void {
   const panel = byId("why", HTMLDialogElement);
   const heading = byId("why-heading", HTMLElement);
   const lines = byId("why-lines", HTMLElement);
@@ -27,7 +26,7 @@ export function reasonPanel(session: Session): (edge: Edge, from: Element) => vo
     const record = session.situation.good?.record;
     if (!record) return;
     opener = from;
-    heading.textContent = `Edge at ${record.project.knob} = ${figure(edge.value, 6)}`;
+    heading.textContent = reasonHeading(record, edge);
     lines.replaceChildren(...reasonLines(record, edge).flatMap(({ term, text }) => [html("dt", {}, term), html("dd", {}, text)]));
     if (!panel.open) panel.show();
     const place = from.getBoundingClientRect();

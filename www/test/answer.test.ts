@@ -1,8 +1,8 @@
 import assert from "node:assert/strict";
 import test from "node:test";
-import { plain, settingSentence, stabilitySentence } from "../src/answer.ts";
-import type { ClosedLoop } from "../src/types.ts";
-import { edge, record, stability } from "./record.ts";
+import { answerSentence, plain, settingSentence, stabilitySentence, suggestionReason } from "../src/answer.ts";
+import type { ClosedLoop, Permitted } from "../src/types.ts";
+import { BAND, edge, limitRange, record, requirement, stability } from "./record.ts";
 
 const exact = (value: number, text: string): ReturnType<typeof edge> => edge(value, { exact: text });
 const say = (...input: Parameters<typeof record>): string => plain(stabilitySentence(record(...input)));
@@ -51,7 +51,7 @@ test("What is not proven is not called proven", () => {
 test("Every edge in the sentence can be asked for its reason", () => {
   const pieces = stabilitySentence(record(stability([exact(2, "2"), exact(9, "9")], [1, 0, 2])));
   assert.deepEqual(
-    pieces.flatMap((piece) => (piece.edge ? [piece.edge.value] : [])),
+    pieces.flatMap(({ edge: asked }) => (asked && "value" in asked ? [asked.value] : [])),
     [2, 9],
   );
 });
@@ -69,4 +69,48 @@ test("The setting is judged in the words of the trade", () => {
   );
   assert.match(loop({ name: "unstable", axisPoles: 2 }), /some repeated/);
   assert.match(settingSentence(record([])), /No setting/);
+});
+
+const permitted = (parts: Partial<Permitted>): Permitted => ({ knob: [], setting: [], proven: false, suggested: null, conflict: null, ...parts });
+const use = (parts: Partial<Permitted>, others: Parameters<typeof record>[1] = {}): string =>
+  plain(answerSentence(record([], { permitted: permitted(parts), requirements: [requirement()], ...others })));
+
+test("The permitted settings come first, with the word for their proof", () => {
+  assert.equal(use({ knob: [limitRange(29.6, 44.8)], setting: [["30", "44"]] }), "Use 30 to 44\u202fV (permitted, computed).");
+  assert.equal(use({ knob: [limitRange(29.6, null)], setting: [["30", null]], proven: true }), "Use 30\u202fV and more (permitted, proven).");
+  const two = { knob: [limitRange(1, 2), limitRange(5, 9)], setting: [["1", "2"], ["5", "9"]] as [string, string][] };
+  assert.equal(use(two), "Use 1 to 2 or 5 to 9\u202fV (permitted, computed).");
+  assert.equal(use({ knob: [limitRange(4.6, 5.4)], setting: [["5", "5"]] }), "Use only 5\u202fV (permitted, computed).");
+});
+
+test("Where nothing is permitted the conflict is told; where the grid leaves nothing, that", () => {
+  const conflict = { requirements: [], text: "damping ratio allows 1 to 12.1; static error on a step allows 29.6 to 90" };
+  assert.equal(use({ conflict }), `No setting is permitted (computed): ${conflict.text}.`);
+  assert.match(use({ knob: [limitRange(4.1, 4.2)], setting: [[null, null]] }), /resolution leaves none/);
+});
+
+test("On a reciprocal scale the answer is in the controller's units, lower setting first", () => {
+  const knob = [{ from: limitRange(1, 1).from, to: limitRange(5, 5).from }];
+  assert.equal(use({ knob, setting: [["20", "100"]] }, { scale: BAND }), "Use 20 to 100\u202f% (permitted, computed).");
+  const stable = plain(stabilitySentence(record(stability([exact(1, "1"), edge(3)], [1, 0, 2]), { scale: BAND })));
+  assert.equal(stable, "Stable for band from 33.34 to 100\u202f% (proven; ends rounded to the safe side).");
+});
+
+test("Without requirements the answer is the stable range", () => {
+  assert.match(plain(answerSentence(record(stability([edge(1), edge(5)], [1, 0, 2])))), /^Stable for K/);
+});
+
+test("The suggestion says how it was chosen", () => {
+  const suggested = { setting: "36", knob: 36, reason: "midway between the ends" };
+  assert.equal(suggestionReason(record([], { permitted: permitted({ suggested }) })), "36\u202fV is midway between the ends.");
+});
+
+test("What is not met at the setting is named", () => {
+  const closedLoop: ClosedLoop = { knob: 37, poles: [], unstablePoles: 0, axisPoles: 0, name: "underdamped" };
+  const at = (...met: (boolean | null)[]): string =>
+    settingSentence(record([], { closedLoop, requirements: met.map((one, index) => requirement({ met: one, kind: index === 0 ? "damping-ratio" : "overshoot" })) }));
+  assert.match(at(true), /The requirement is met\.$/);
+  assert.match(at(true, true), /All 2 requirements are met\.$/);
+  assert.match(at(false, false), /Not met: damping ratio and overshoot\.$/);
+  assert.match(at(true, null), /underdamped\.$/);
 });

@@ -1,7 +1,7 @@
 import assert from "node:assert/strict";
 import test from "node:test";
 import { clipLine, frameOf, nearestPoint, piecesOf } from "../src/locus.ts";
-import { edge, stability } from "./record.ts";
+import { edge, limitRange, stability } from "./record.ts";
 
 /** A branch along the real axis from −4 to 4 while the knob goes from 0 to 8. */
 const straight = { sign: "positive" as const, points: new Float64Array([-4, 0, 0, 0, 0, 4, 4, 0, 8]) };
@@ -14,6 +14,20 @@ test("A branch is cut exactly where the verdict changes, also between its vertic
       ["unstable", -4, 0, -3, 0],
       ["stable", -3, 0, 0, 0, 2, 0],
       ["unstable", 2, 0, 4, 0],
+    ],
+  );
+});
+
+test("The permitted part of a branch stands out from what is only stable", () => {
+  const pieces = piecesOf(straight, stability([edge(1), edge(6)], [1, 0, 2]), [limitRange(2, 3)]);
+  assert.deepEqual(
+    pieces.map(({ verdict, points }) => [verdict, points[0], points.at(-2)]),
+    [
+      ["unstable", -4, -3],
+      ["stable", -3, -2],
+      ["permitted", -2, -1],
+      ["stable", -1, 2],
+      ["unstable", 2, 4],
     ],
   );
 });

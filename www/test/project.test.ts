@@ -5,7 +5,19 @@ import { fileName } from "../src/file.ts";
 import { History } from "../src/history.ts";
 import { carriesProject, linkPart, projectText } from "../src/link.ts";
 import { cutOut } from "../src/problem.ts";
-import { completed, emptyProject, PROJECT_FORMAT, rowsOf, withBlock, withKnob, withQuantity, withSetting } from "../src/project.ts";
+import {
+  completed,
+  emptyProject,
+  PROJECT_FORMAT,
+  rowsOf,
+  withBlock,
+  withKnob,
+  withoutRequirement,
+  withQuantity,
+  withRequirement,
+  withScale,
+  withSetting,
+} from "../src/project.ts";
 import type { Project } from "../src/types.ts";
 
 const titled = (title: string): Project => ({ ...emptyProject(), title });
@@ -77,6 +89,34 @@ test("Another knob takes its value along as the setting and leaves the old one i
   const back = withKnob(moved, "K");
   assert.equal(back.setting.value, "37");
   assert.equal(back.quantities.find((row) => row.symbol === "tau")?.value, "0.008");
+});
+
+test("Another knob leaves the old one's scale behind", () => {
+  const banded = withScale(withSetting({ ...withQuantity(emptyProject(), "tau", { value: "0.008" }), knob: "K" }, "25"), {
+    direction: "reciprocal",
+    factor: "100",
+    unit: "%",
+  });
+  const moved = withKnob(banded, "tau", "4");
+  assert.equal(moved.quantities.find((row) => row.symbol === "K")?.value, "4");
+  assert.deepEqual([moved.setting.value, moved.setting.direction, moved.setting.factor], ["0.008", "proportional", ""]);
+});
+
+test("A requirement is added once, changed in its place, and taken away", () => {
+  const two = withRequirement(withRequirement(emptyProject(), "damping-ratio", "0.5"), "overshoot", "20");
+  const changed = withRequirement(two, "damping-ratio", "0.7");
+  assert.deepEqual(changed.requirements, [
+    { kind: "damping-ratio", limit: "0.7" },
+    { kind: "overshoot", limit: "20" },
+  ]);
+  assert.deepEqual(withoutRequirement(changed, "damping-ratio").requirements, [{ kind: "overshoot", limit: "20" }]);
+});
+
+test("A project saved before requirements and scales opens with none", () => {
+  const old = { ...emptyProject(), setting: { value: "37" }, requirements: undefined } as unknown as Project;
+  const project = completed(old);
+  assert.deepEqual(project.requirements, []);
+  assert.deepEqual([project.setting.value, project.setting.direction, project.setting.step], ["37", "proportional", ""]);
 });
 
 test("Every name has a row; rows of names that are gone stay only while they hold something", () => {

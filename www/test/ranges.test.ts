@@ -1,7 +1,7 @@
 import assert from "node:assert/strict";
 import test from "node:test";
 import { compare, readDecimal, typedText } from "../src/decimal.ts";
-import { justInside, printedEnd, printedEnds, rangeAt, stableSpans } from "../src/ranges.ts";
+import { printedEnd, printedEnds, rangeAt, stableSpans } from "../src/ranges.ts";
 import { edge, stability } from "./record.ts";
 
 test("Stable ranges that only touch the axis between them are one span", () => {
@@ -44,12 +44,6 @@ test("A narrow range gets as many digits as it takes to tell its ends apart", ()
   assert.ok(low && high && compare(low.decimal, high.decimal) < 0);
   assert.ok(compare(low.decimal, readDecimal("1.000000112") ?? low.decimal) >= 0);
   assert.ok(compare(high.decimal, readDecimal("1.000000222") ?? high.decimal) <= 0);
-});
-
-test("Just inside an exact end is one unit of the fourth digit away, and undecided at zero", () => {
-  const exact = justInside(edge(12.6, { exact: "63/5" }), "down");
-  assert.equal(exact && typedText(exact), "12.59");
-  assert.equal(justInside(edge(0, { exact: "0" }), "up"), null);
 });
 
 test("A range is found by a value of the knob", () => {

@@ -1,5 +1,5 @@
 // Records for the tests: small, invented, with only what a test needs spelled out.
-import type { CharacterRange, Edge, Record as Findings, StabilityRange } from "../src/types.ts";
+import type { CharacterRange, Edge, LimitEdge, LimitRange, Record as Findings, RequirementRecord, Scale, StabilityRange } from "../src/types.ts";
 
 /** An edge at a value; parts may be given otherwise. */
 export function edge(value: number, parts: Partial<Edge> = {}): Edge {
@@ -42,7 +42,8 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
       loop: { controller: "K", plant: "1/s", sensor: "1", feedback: "negative" },
       quantities: [{ symbol: "K", value: "", unit: "V", meaning: "" }],
       knob: "K",
-      setting: { value: "" },
+      setting: { value: "", name: "", unit: "", direction: "proportional", factor: "", minimum: "", maximum: "", step: "" },
+      requirements: [],
     },
     reading: { controller: null, plant: null, sensor: null, names: ["K"] },
     model: { order: 3, knobDegree: 1, coefficients: [], mathml: "" },
@@ -54,8 +55,33 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
     poles: [],
     zeros: [],
     closedLoop: null,
+    scale: { name: "K", unit: "", direction: "proportional", factor: 1, minimum: null, maximum: null, step: null },
+    requirements: [],
+    permitted: { knob: [], setting: [], proven: true, suggested: null, conflict: null },
+    margins: null,
+    step: null,
+    load: null,
     view: { re: [-1, 1], im: [-1, 1] },
     notices: [],
     ...parts,
   };
+}
+
+/** A proportional band in %: knob = 100 ÷ setting. */
+export const BAND: Scale = { name: "band", unit: "%", direction: "reciprocal", factor: 100, minimum: null, maximum: null, step: 1 };
+
+/** An end of a limit's range on a scale. */
+export function limitEdge(knob: number, parts: Partial<LimitEdge> = {}): LimitEdge {
+  const cause = { kind: "requirement", requirement: "damping-ratio" } as const;
+  return { knob, setting: knob, bracket: [String(knob), String(knob)], proven: true, cause, ...parts };
+}
+
+/** A limit's range between two knobs; null is open. */
+export function limitRange(from: number | null, to: number | null): LimitRange {
+  return { from: from === null ? null : limitEdge(from), to: to === null ? null : limitEdge(to) };
+}
+
+/** A requirement on the damping ratio, met at the setting. */
+export function requirement(parts: Partial<RequirementRecord> = {}): RequirementRecord {
+  return { kind: "damping-ratio", limit: 0.5, atLeast: true, unit: "", ranges: [], proven: true, figure: 0.6, met: true, remark: null, ...parts };
 }

@@ -1,10 +1,10 @@
 import assert from "node:assert/strict";
 import test from "node:test";
-import { poleRows } from "../src/figures.ts";
+import { figureRows, poleRows } from "../src/figures.ts";
 import { shownSigns } from "../src/halves.ts";
 import { asymptoteWords, grouped, landmarkWords, notable, realAxisWords } from "../src/landmarks.ts";
 import type { ClosedLoop, Landmark } from "../src/types.ts";
-import { edge, record, stability } from "./record.ts";
+import { edge, record, requirement, stability } from "./record.ts";
 
 const landmark = (parts: Partial<Landmark>): Landmark => ({
   kind: "breakaway",
@@ -95,4 +95,11 @@ test("The half that is shown is the one of the setting, else the one with stable
   assert.deepEqual(shownSigns(record(stability([edge(-1), edge(5)], [1, 0, 2])), "automatic"), ["positive"]);
   assert.deepEqual(shownSigns(record(stability([], [1])), "automatic"), ["positive"]);
   assert.deepEqual(shownSigns(negative, "both"), ["positive", "negative"]);
+});
+
+test("Figures with a limit come first, with their verdict; others follow without", () => {
+  const closedLoop = { ...loop([{ re: -3, im: 4, radius: 1e-12, multiplicity: 1 }]), name: "underdamped" as const };
+  const rows = figureRows(record([], { closedLoop, requirements: [requirement({ kind: "phase-margin", limit: 45, figure: 41.26, unit: "°", met: false })] }));
+  assert.deepEqual(rows[0], { name: "Phase margin", here: "41.3°", limit: "at least 45°", met: false });
+  assert.deepEqual(rows.find(({ name }) => name === "Damping ratio"), { name: "Damping ratio", here: "0.6", limit: "", met: null });
 });

@@ -1,0 +1,182 @@
+// The kinds of requirements as the page offers them: their names, units, the usual limit, and the figure they limit.
+import { fromNumber, roundDigits, typedText } from "./decimal.ts";
+import type { Record as Findings, Requirement, RequirementKind } from "./types.ts";
+
+/** How the kinds are grouped. */
+export type Group = "Poles" | "Margins" | "Answer to a step" | "Static" | "Load and effort";
+
+/** A kind of requirement. */
+export interface Kind {
+  readonly kind: RequirementKind;
+  readonly group: Group;
+  /** As it stands in a lane, a row and a table. */
+  readonly name: string;
+  readonly unit: string;
+  readonly atLeast: boolean;
+  /** A limit in common use. Where there is none, the figure of the present loop makes the offer. */
+  readonly usual?: string;
+}
+
+/** All kinds, in the order in which they are listed. */
+export const KINDS: readonly Kind[] = [
+  { kind: "damping-ratio", group: "Poles", name: "Damping ratio", unit: "", atLeast: true, usual: "0.5" },
+  { kind: "decay-rate", group: "Poles", name: "Decay rate", unit: "1/s", atLeast: true },
+  { kind: "natural-frequency-minimum", group: "Poles", name: "Natural frequency, lower limit", unit: "rad/s", atLeast: true },
+  { kind: "natural-frequency-maximum", group: "Poles", name: "Natural frequency, upper limit", unit: "rad/s", atLeast: false },
+  { kind: "gain-margin-up", group: "Margins", name: "Gain margin upward", unit: "dB", atLeast: true, usual: "6" },
+  { kind: "gain-margin-down", group: "Margins", name: "Gain margin downward", unit: "dB", atLeast: true, usual: "6" },
+  { kind: "phase-margin", group: "Margins", name: "Phase margin", unit: "°", atLeast: true, usual: "45" },
+  { kind: "delay-margin", group: "Margins", name: "Delay margin", unit: "s", atLeast: true },
+  { kind: "peak-sensitivity", group: "Margins", name: "Peak sensitivity", unit: "", atLeast: false, usual: "2" },
+  { kind: "bandwidth", group: "Margins", name: "Bandwidth", unit: "rad/s", atLeast: true },
+  { kind: "overshoot", group: "Answer to a step", name: "Overshoot", unit: "%", atLeast: false, usual: "20" },
+  { kind: "undershoot", group: "Answer to a step", name: "Undershoot", unit: "%", atLeast: false, usual: "10" },
+  { kind: "rise-time", group: "Answer to a step", name: "Rise time, 10 to 90 %", unit: "s", atLeast: false },
+  { kind: "settling-time-2", group: "Answer to a step", name: "Settling time, 2 %", unit: "s", atLeast: false },
+  { kind: "settling-time-5", group: "Answer to a step", name: "Settling time, 5 %", unit: "s", atLeast: false },
+  { kind: "peak-time", group: "Answer to a step", name: "Peak time", unit: "s", atLeast: false },
+  { kind: "step-error", group: "Static", name: "Static error, step", unit: "%", atLeast: false, usual: "5" },
+  { kind: "ramp-error", group: "Static", name: "Static error, ramp", unit: "", atLeast: false },
+  { kind: "parabola-error", group: "Static", name: "Static error, parabola", unit: "", atLeast: false },
+  { kind: "load-peak", group: "Load and effort", name: "Peak deviation, unit load", unit: "", atLeast: false },
+  { kind: "load-final", group: "Load and effort", name: "Final deviation, unit load", unit: "", atLeast: false },
+  { kind: "controller-peak", group: "Load and effort", name: "Peak controller output, unit step", unit: "", atLeast: false },
+];
+
+/** The groups in their order. */
+export const GROUPS: readonly Group[] = ["Poles", "Margins", "Answer to a step", "Static", "Load and effort"];
+
+/** Digits of a limit that is taken from the present loop. */
+const OFFERED_DIGITS = 2;
+
+/** What is known about a kind; there is an entry for every one. */
+export function kindOf(kind: RequirementKind): Kind {
+  const found = KINDS.find((entry) => entry.kind === kind);
+  if (!found) throw new RangeError(`a requirement without an entry: ${kind}`);
+  return found;
+}
+
+/** The name within a sentence: "damping ratio", "static error (step)". */
+export function nameInSentence(kind: RequirementKind): string {
+  const name = kindOf(kind).name.replace(/, (.*)$/, " ($1)");
+  return name.charAt(0).toLowerCase() + name.slice(1);
+}
+
+/** A limit to begin with, and where it comes from. */
+export interface Offer {
+  readonly limit: string;
+  readonly source: "usual" | "this loop" | "none";
+}
+
+/** The offer when a requirement is switched on: the usual limit, or one that the present setting just meets. */
+export function offerFor(kind: Kind, record: Findings | null): Offer {
+  if (kind.usual !== undefined) return { limit: kind.usual, source: "usual" };
+  const figure = record ? figureOf(kind.kind, record) : null;
+  if (figure === null || !Number.isFinite(figure) || figure <= 0) return { limit: "1", source: "none" };
+  const limit = roundDigits(fromNumber(figure), OFFERED_DIGITS, kind.atLeast ? "down" : "up");
+  return { limit: typedText(limit), source: "this loop" };
+}
+
+/** The figure at the setting, in the kind's unit; null where the record has none without the requirement. */
+export function figureOf(kind: RequirementKind, record: Findings): number | null {
+  const judged = record.requirements.find((requirement) => requirement.kind === kind);
+  if (judged) return judged.figure;
+  const { margins, step, load, closedLoop } = record;
+  const stable = closedLoop !== null && closedLoop.unstablePoles === 0 && closedLoop.axisPoles === 0;
+  const poles = stable ? closedLoop.poles : [];
+  const decibels = (factor: number | null | undefined): number | null => (factor ? 20 * Math.log10(factor) : null);
+  const smallest = (values: readonly number[]): number | null => (values.length === 0 ? null : Math.min(...values));
+  switch (kind) {
+    case "damping-ratio":
+      return smallest(poles.map(({ re, im }) => -re / Math.hypot(re, im)));
+    case "decay-rate":
+      return smallest(poles.map(({ re }) => -re));
+    case "natural-frequency-minimum":
+    case "natural-frequency-maximum":
+      return smallest(poles.map(({ re, im }) => Math.hypot(re, im)));
+    case "gain-margin-up":
+      return decibels(margins?.gainUp);
+    case "gain-margin-down":
+      return decibels(margins?.gainDown);
+    case "phase-margin":
+      return margins?.phase ?? null;
+    case "delay-margin":
+      return margins?.delay ?? null;
+    case "peak-sensitivity":
+      return margins?.peakSensitivity ?? null;
+    case "bandwidth":
+      return margins?.bandwidth ?? null;
+    case "overshoot":
+      return step?.overshoot ?? null;
+    case "undershoot":
+      return step?.undershoot ?? null;
+    case "rise-time":
+      return step?.riseTime ?? null;
+    case "settling-time-2":
+      return step?.settlingTime2 ?? null;
+    case "settling-time-5":
+      return step?.settlingTime5 ?? null;
+    case "peak-time":
+      return step?.peakTime ?? null;
+    case "step-error":
+      return step ? Math.abs(1 - step.finalValue) * 100 : null;
+    case "load-peak":
+      return load ? Math.abs(load.peak) : null;
+    case "load-final":
+      return load ? Math.abs(load.finalValue) : null;
+    case "controller-peak":
+      return step?.controllerPeak ?? null;
+    case "ramp-error":
+    case "parabola-error":
+      return null;
+  }
+}
+
+/** Several requirements in common use. */
+export interface Preset {
+  readonly name: string;
+  /** Where the figures come from, and how far that was confirmed. */
+  readonly source: string;
+  readonly requirements: readonly Requirement[];
+}
+
+/** Presets; each names its source. */
+export const PRESETS: readonly Preset[] = [
+  {
+    name: "Margins 6 dB and 45°",
+    source: "MIL-F-9490D (1975), flight control systems: figures confirmed second hand. Check your edition.",
+    requirements: [
+      { kind: "gain-margin-up", limit: "6" },
+      { kind: "gain-margin-down", limit: "6" },
+      { kind: "phase-margin", limit: "45" },
+    ],
+  },
+  {
+    name: "Margins 2.5 times (8 dB) and 60°",
+    source: "B. W. Bequette, Process Control, a textbook’s advice: figures confirmed second hand. Check your edition.",
+    requirements: [
+      { kind: "gain-margin-up", limit: "7.96" },
+      { kind: "phase-margin", limit: "60" },
+    ],
+  },
+  {
+    name: "Magnetic bearing, zone A: peak sensitivity 3 (9.5 dB)",
+    source: "ISO 14839-3:2006: limit confirmed second hand. Check your edition.",
+    requirements: [{ kind: "peak-sensitivity", limit: "3" }],
+  },
+  {
+    name: "Magnetic bearing, zone B: peak sensitivity 4 (12 dB)",
+    source: "ISO 14839-3:2006: limit confirmed second hand. Check your edition.",
+    requirements: [{ kind: "peak-sensitivity", limit: "4" }],
+  },
+  {
+    name: "Damping ratio 0.7",
+    source: "The textbooks’ usual value; from memory, no edition checked.",
+    requirements: [{ kind: "damping-ratio", limit: "0.7" }],
+  },
+  {
+    name: "Quarter-amplitude decay: damping ratio 0.215",
+    source: "J. G. Ziegler and N. B. Nichols, Trans. ASME 64 (1942): the aim is from memory; the ratio is that of a single pair. Check your edition.",
+    requirements: [{ kind: "damping-ratio", limit: "0.215" }],
+  },
+];
