@@ -24,6 +24,8 @@ pub struct LocusInput<'a> {
     pub partition: &'a Partition,
     /// Where branches meet.
     pub meetings: &'a [Meeting],
+    /// Fixed modes.
+    pub fixed: &'a [Root],
     /// Roots of the moving part at knob 0.
     pub poles: &'a [Root],
     /// Roots of the moving part at infinite knob.
@@ -32,12 +34,28 @@ pub struct LocusInput<'a> {
     pub view: View,
 }
 
-/// The branches of one half of the locus. None where they could not be followed with certainty, or nothing moves.
+/// The branches of one half of the locus, those that stand still included. None where they could not be followed with
+/// certainty.
 pub fn branches(input: &LocusInput<'_>, sign: KnobSign) -> Option<Vec<Branch>> {
-    let family = input.family;
-    if family.knob_degree() == 0 || family.moving_order() == 0 {
-        return Some(Vec::new());
+    let mut all = standing(input.fixed, sign);
+    let moves = input.family.knob_degree() > 0 && input.family.moving_order() > 0;
+    if moves {
+        all.extend(moving(input, sign)?);
     }
+    Some(all)
+}
+
+/// Fixed modes: the same point at every knob value.
+fn standing(fixed: &[Root], sign: KnobSign) -> Vec<Branch> {
+    let branch = |root: &Root| {
+        let point = |knob: f64| BranchPoint { re: root.re, im: root.im, knob };
+        Branch { sign, points: [point(0.0), point(sign.factor() * f64::INFINITY)].into() }
+    };
+    fixed.iter().flat_map(|root| core::iter::repeat_n(branch(root), root.multiplicity)).collect()
+}
+
+fn moving(input: &LocusInput<'_>, sign: KnobSign) -> Option<Vec<Branch>> {
+    let family = input.family;
     let system = match family.affine() {
         Some((d, n)) => System::factored(d, n, input.poles, input.zeros, sign.factor()),
         None => System::expanded(family, sign.factor())?,

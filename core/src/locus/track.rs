@@ -415,9 +415,10 @@ impl Tracker<'_> {
         let predicted = pole.s - end_speed * multiplicity as f64;
         let distance = (pole.s - s).modulus();
         let miss = (predicted - s).modulus();
-        // A miss across the chord bends the curve by about a quarter of it.
-        let bend = self.pixels.sagitta(pole.s, s, predicted - pole.s, s - pole.s);
-        (miss <= 0.2 * distance && bend <= 2.0 * SAGITTA) || (distance == 0.0)
+        // The parabola that leaves with this velocity and ends in s.
+        let (chord, out) = (s - pole.s, predicted - pole.s);
+        let bend = self.pixels.sagitta(pole.s, s, out, chord * 2.0 - out);
+        (miss <= 0.2 * distance && bend <= 1.6 * SAGITTA) || distance == 0.0
     }
 
     /// ds/d ln|q − q*| at the end the row is heading for.
