@@ -126,14 +126,14 @@ fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s:
     };
     for k in 0..poles.len().max(zeros.len()) {
         if let Some(p) = poles.get(k) {
-            let inverse = reciprocal(s - p);
+            let inverse = reciprocal(distance(s, *p));
             doubt += p.modulus() * inverse.modulus();
             sigma_d += inverse;
             product *= inverse;
             keep_in_range(&mut product);
         }
         if let Some(z) = zeros.get(k) {
-            let difference = s - z;
+            let difference = distance(s, *z);
             let inverse = reciprocal(difference);
             doubt += z.modulus() * inverse.modulus();
             sigma_n += inverse;
@@ -157,6 +157,16 @@ fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s:
         floor: doubt * f64::EPSILON * slope.modulus() * l.modulus().min(1.0),
         motion: -l * slope,
     }
+}
+
+/// s − root, or a quarter of a rounding unit where the two are the same number: a pole of the closed loop may be nearer to
+/// one of the open loop than f64 can tell, and is then found there.
+fn distance(s: Complex<f64>, root: Complex<f64>) -> Complex<f64> {
+    let difference = s - root;
+    if difference.re == 0.0 && difference.im == 0.0 {
+        return Complex::new((0.25 * f64::EPSILON * root.modulus()).max(1e-300), 0.0);
+    }
+    difference
 }
 
 /// Horner's scheme for F, its slope and its derivative by the knob.

@@ -28,12 +28,9 @@ const LARGEST_STEP: f64 = 0.7;
 /// The largest step once every moving pole is out of it, or at its end.
 const LARGEST_STEP_OUTSIDE: f64 = 3.0;
 
-/// Beyond this |ln τ| an end at a finite knob is joined even where the prediction is poor: f64 cannot tell the knob from
-/// the end's.
-const LOG_CAP: f64 = 30.0;
-
-/// Likewise towards infinity, where the knob itself leaves the range of f64.
-const LOG_CAP_AT_INFINITY: f64 = 600.0;
+/// Beyond this |ln τ| an end at knob 0 or infinity is joined even where the prediction is poor: the knob leaves the range
+/// of f64. At other ends that is so where f64 cannot tell the knob from the end's.
+const LOG_CAP: f64 = 600.0;
 
 /// Where poles meet.
 #[derive(Clone, Copy, Debug)]
@@ -42,6 +39,9 @@ pub(super) struct Cluster {
     pub(super) s: Complex<f64>,
     /// How many poles meet.
     pub(super) multiplicity: usize,
+    /// Where two poles only just miss each other, the side to which they turn: the sign of [`super::Meeting::miss`]; 0
+    /// where they meet.
+    pub(super) turn: f64,
 }
 
 /// One end of a stretch.
@@ -307,11 +307,14 @@ impl Tracker<'_> {
     /// One step to v: the new row and by how much the next step may grow. None where the step was too bold.
     fn step(&self, from: &Row, v: f64) -> Option<(Row, f64)> {
         let h = v - from.v;
+        let predictions: Vec<Complex<f64>> = from.poles.iter().map(|pole| pole.s + pole.velocity * h).collect();
+        let before: Vec<Complex<f64>> = from.poles.iter().map(|pole| pole.s).collect();
         let mut poles = Vec::with_capacity(from.poles.len());
         let mut worst: f64 = 0.01;
         for (k, pole) in from.poles.iter().enumerate() {
-            let predicted = pole.s + pole.velocity * h;
-            let room = nearest_other(&from.poles, k);
+            let predicted = predictions[k];
+            // Both where the poles are and where they are thought to go: no two of them can end up in the same place.
+            let room = nearest_other(&before, k).min(nearest_other(&predictions, k));
             let next = self.corrected(pole.s, predicted, DRIFT * room, v)?;
             // A complex pole never crosses to the lower half plane inside of a stretch.
             if (pole.s.im > 0.0) != (next.s.im > 0.0) {
@@ -330,11 +333,21 @@ impl Tracker<'_> {
         Some((Row { knob: self.parameter().knob(v), v, poles }, ease))
     }
 
+    /// |ln τ| beyond which an end is joined in any case.
+    fn log_cap(&self, way: Way) -> f64 {
+        let Parameter { inner, outer, .. } = self.parameter();
+        let end = if way == Way::Inward { inner } else { outer };
+        if end == 0.0 || end.is_infinite() {
+            return LOG_CAP;
+        }
+        let width = if outer.is_finite() { outer - inner } else { inner };
+        libm::log(width / (8.0 * f64::EPSILON * end)).max(0.0)
+    }
+
     /// Whether the end can be joined to this row by straight chords; then how.
     fn arrivals(&self, row: &Row, way: Way) -> Option<Vec<Arrival>> {
         let end = if way == Way::Inward { &self.stretch.inner } else { &self.stretch.outer };
-        let at_infinity = way == Way::Outward && self.stretch.outer.knob.is_infinite();
-        let forced = row.v.abs() > if at_infinity { LOG_CAP_AT_INFINITY } else { LOG_CAP };
+        let forced = row.v.abs() > self.log_cap(way);
         let mut arrivals: Vec<Option<Arrival>> = alloc::vec![None; row.poles.len()];
         self.send_to_infinity(row, end, forced, &mut arrivals)?;
         for (number, cluster) in end.clusters.iter().enumerate() {
@@ -344,7 +357,7 @@ impl Tracker<'_> {
             if !end.others_stay {
                 return None;
             }
-            *arrival = Some(Arrival::Place(self.settled(row, k, end.knob)?));
+            *arrival = Some(Arrival::Place(self.settled(row, k, end.knob, forced)?));
         }
         arrivals.into_iter().collect()
     }
@@ -381,7 +394,7 @@ impl Tracker<'_> {
         forced: bool,
         arrivals: &mut [Option<Arrival>],
     ) -> Option<()> {
-        let (number, Cluster { s, multiplicity }) = cluster;
+        let (number, Cluster { s, multiplicity, .. }) = cluster;
         let mut order: Vec<usize> = (0..row.poles.len()).filter(|k| arrivals[*k].is_none()).collect();
         let distance = |k: usize| (row.poles[k].s - s).modulus();
         order.sort_by(|a, b| distance(*a).total_cmp(&distance(*b)));
@@ -433,11 +446,12 @@ impl Tracker<'_> {
     }
 
     /// The place of a pole that neither meets another nor vanishes, at the end's knob.
-    fn settled(&self, row: &Row, k: usize, knob: f64) -> Option<Complex<f64>> {
+    fn settled(&self, row: &Row, k: usize, knob: f64, forced: bool) -> Option<Complex<f64>> {
         let pole = row.poles[k];
         let by_knob = pole.velocity / self.parameter().speed(row.v);
         let predicted = pole.s + by_knob * (knob - row.knob);
-        let room = nearest_other(&row.poles, k);
+        let places: Vec<Complex<f64>> = row.poles.iter().map(|pole| pole.s).collect();
+        let room = nearest_other(&places, k);
         let mut s = predicted;
         for _ in 0..NEWTON_CAP {
             let newton = self.system.newton(s, knob)?;
@@ -451,7 +465,7 @@ impl Tracker<'_> {
             if newton.correction.modulus() <= newton.floor.max(1e-13 * s.modulus()) {
                 let motion = newton.motion * ((knob - row.knob) / knob);
                 let bend = self.pixels.sagitta(pole.s, s, by_knob * (knob - row.knob), motion);
-                return (bend <= 1.6 * SAGITTA).then_some(s);
+                return (forced || bend <= 1.6 * SAGITTA).then_some(s);
             }
         }
         None
@@ -459,12 +473,12 @@ impl Tracker<'_> {
 }
 
 /// The distance to the nearest other pole, mirrored ones included.
-fn nearest_other(poles: &[Carried], k: usize) -> f64 {
-    let s = poles[k].s;
-    let own_mirror = if s.im > 0.0 { 2.0 * s.im } else { f64::INFINITY };
-    poles.iter().enumerate().filter(|(j, _)| *j != k).fold(own_mirror, |nearest, (_, other)| {
+fn nearest_other(places: &[Complex<f64>], k: usize) -> f64 {
+    let s = places[k];
+    let own_mirror = if s.im == 0.0 { f64::INFINITY } else { 2.0 * s.im.abs() };
+    places.iter().enumerate().filter(|(j, _)| *j != k).fold(own_mirror, |nearest, (_, other)| {
         // In the closed upper half plane the mirrored pole is never the nearer one.
-        nearest.min((other.s - s).modulus())
+        nearest.min((other - s).modulus())
     })
 }
 

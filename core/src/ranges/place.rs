@@ -16,7 +16,7 @@ pub const EDGE_BITS: i64 = 200;
 const ARGUMENT_BITS_CAP: i64 = 8192;
 
 /// A rational number this short in a bracket of [`EDGE_BITS`] is no accident: it is tried as the edge itself.
-const RATIONAL_BITS: usize = 80;
+const RATIONAL_BITS: usize = 150;
 
 /// What happens at a place.
 #[derive(Clone, Debug, PartialEq)]
@@ -192,11 +192,6 @@ pub(super) fn short_rational(bracket: &Interval) -> Option<RBig> {
 
 fn is_short(value: &RBig) -> bool {
     value.numerator().bit_len() + value.denominator().bit_len() <= RATIONAL_BITS
-}
-
-/// p at a rational number.
-pub(super) fn value_at(p: &IntPoly, x: &RBig) -> RBig {
-    p.coefficients().iter().rev().fold(RBig::ZERO, |sum, c| sum * x + RBig::from(c.clone()))
 }
 
 #[cfg(test)]
