@@ -12,6 +12,7 @@ pub mod exact;
 pub mod locus;
 pub mod model;
 pub mod notation;
+mod numerics;
 pub mod project;
 pub mod ranges;
 pub mod record;

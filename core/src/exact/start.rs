@@ -7,6 +7,7 @@
 
 use super::IntPoly;
 use super::dyadic::Dyadic;
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
 use nalgebra::{Complex, ComplexField};
 
@@ -32,21 +33,21 @@ impl Scaled {
 
     /// p(z)/p'(z), and whether p(z) is beyond its rounding error. None where p' vanishes in f64.
     fn newton(&self, z: Complex<f64>) -> Option<(Complex<f64>, bool)> {
-        let scale = binary_exponent(z.modulus());
+        let scale = binary_exponent(magnitude(z));
         let u = z * libm::ldexp(1.0, -scale as i32);
         let size = |i: usize| self.exponents[i] + scale * i as i64;
         let top = (0..self.mantissas.len()).filter(|i| self.mantissas[*i] != 0.0).map(size).max()?;
         let (mut value, mut slope) = (Complex::new(0.0, 0.0), Complex::new(0.0, 0.0));
-        let mut magnitude = 0.0;
-        let modulus = u.modulus();
+        let mut total = 0.0;
+        let modulus = magnitude(u);
         for i in (0..self.mantissas.len()).rev() {
             let c = libm::ldexp(self.mantissas[i], (size(i) - top).max(-2000) as i32);
             slope = slope * u + value;
             value = value * u + c;
-            magnitude = magnitude * modulus + libm::fabs(c);
+            total = total * modulus + libm::fabs(c);
         }
         let ratio = value / slope * libm::ldexp(1.0, scale as i32);
-        let certain = value.modulus() > 4.0 * f64::EPSILON * self.mantissas.len() as f64 * magnitude;
+        let certain = magnitude(value) > 4.0 * f64::EPSILON * self.mantissas.len() as f64 * total;
         (ratio.re.is_finite() && ratio.im.is_finite()).then_some((ratio, certain))
     }
 
@@ -98,7 +99,7 @@ pub(super) fn approximate_roots(p: &IntPoly) -> Vec<Complex<f64>> {
             if correction.re.is_finite() && correction.im.is_finite() {
                 z[i] -= correction;
             }
-            settled[i] = !certain || correction.modulus() <= f64::EPSILON * z[i].modulus();
+            settled[i] = !certain || magnitude(correction) <= f64::EPSILON * magnitude(z[i]);
         }
         if settled.iter().all(|done| *done) {
             break;

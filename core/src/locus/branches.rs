@@ -8,6 +8,7 @@ use super::{Branch, BranchPoint};
 use crate::exact::complex_roots::{ROOT_BITS, approximations, enclose_all};
 use crate::exact::real_roots::count_real;
 use crate::exact::{Dyadic, IntPoly};
+use crate::numerics::magnitude;
 use crate::ranges::{Contact, Family, Partition};
 use crate::record::{KnobSign, Root, View};
 use alloc::vec::Vec;
@@ -219,7 +220,7 @@ impl Weaver<'_> {
                     same_side.then(|| (i, self.turned_away(k, &cluster, other.carried, strand.carried)))
                 }
                 (Arrival::Place(a), Arrival::Place(b)) if other.mirrored == strand.mirrored => {
-                    Some((i, (a - b).modulus()))
+                    Some((i, magnitude(a - b)))
                 }
                 _ => None,
             }

@@ -3,6 +3,7 @@
 use crate::exact::complex_roots::{enclose, negative_ratio_at};
 use crate::exact::gcd::{squarefree_factors, without_common_roots};
 use crate::exact::{ExactError, IntPoly};
+use crate::numerics::magnitude;
 use crate::ranges::{Contact, Family, Partition, affine, polynomial};
 use alloc::vec::Vec;
 use nalgebra::{Complex, ComplexField};
@@ -96,7 +97,7 @@ fn complex_meetings(d: &IntPoly, n: &IntPoly) -> Result<Vec<Meeting>, ExactError
             let s = disc.center.to_f64();
             let Some(knob) = negative_ratio_at(d, n, &disc.center).filter(|_| s.im > 0.0) else { continue };
             let meets = knob.im.abs() <= SURELY_REAL * knob.re.abs();
-            let just_misses = order == 1 && knob.im.abs() <= JUST_MISSED * knob.re.abs() && s.im > AWAY * s.modulus();
+            let just_misses = order == 1 && knob.im.abs() <= JUST_MISSED * knob.re.abs() && s.im > AWAY * magnitude(s);
             if meets || just_misses {
                 let miss = if meets { 0.0 } else { knob.im };
                 found.push(Meeting { s, knob: knob.re, multiplicity: order + 1, leaves_axis: true, miss });

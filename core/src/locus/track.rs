@@ -7,6 +7,7 @@
 
 use super::system::System;
 use super::view::Pixels;
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
 use nalgebra::{Complex, ComplexField};
 
@@ -20,7 +21,7 @@ const ROW_CAP: usize = 20_000;
 const DRIFT: f64 = 0.15;
 
 /// Chord to curve, in pixels of the default view; a quarter is promised.
-const SAGITTA: f64 = 0.1;
+const SAGITTA: f64 = 0.08;
 
 /// The largest step in ln τ while a pole is in the picture: keeps the knob readable by interpolation between two rows.
 const LARGEST_STEP: f64 = 0.7;
@@ -211,7 +212,7 @@ impl Tracker<'_> {
         let mut s = approximations.to_vec();
         simultaneous(self.system, knob, &mut s)?;
         // The exact count of real poles says how many belong on the axis.
-        s.sort_by(|a, b| (libm::fabs(a.im) / a.modulus()).total_cmp(&(libm::fabs(b.im) / b.modulus())));
+        s.sort_by(|a, b| (libm::fabs(a.im) / magnitude(*a)).total_cmp(&(libm::fabs(b.im) / magnitude(*b))));
         let real = self.stretch.real;
         let mut carried: Vec<Complex<f64>> = s[..real].iter().map(|z| Complex::new(z.re, 0.0)).collect();
         carried.extend(s[real..].iter().filter(|z| z.im > 0.0));
@@ -238,11 +239,11 @@ impl Tracker<'_> {
             if real {
                 s.im = 0.0;
             }
-            if (s - predicted).modulus() > allowance {
+            if magnitude(s - predicted) > allowance {
                 return None;
             }
-            let step = newton.correction.modulus();
-            if step <= newton.floor.max(1e-13 * s.modulus()) {
+            let step = magnitude(newton.correction);
+            if step <= newton.floor.max(1e-13 * magnitude(s)) {
                 let mut velocity = newton.motion * (parameter.speed(v) / knob);
                 if real {
                     velocity.im = 0.0;
@@ -299,7 +300,7 @@ impl Tracker<'_> {
 
     /// How far the next step may go at the most.
     fn largest_step(&self, row: &Row) -> f64 {
-        let moving = |pole: &Carried| pole.velocity.modulus() > 1e-3 * pole.s.modulus();
+        let moving = |pole: &Carried| magnitude(pole.velocity) > 1e-3 * magnitude(pole.s);
         let seen = |pole: &Carried| moving(pole) && self.pixels.remoteness(pole.s) == 0.0;
         if row.poles.iter().any(seen) { LARGEST_STEP } else { LARGEST_STEP_OUTSIDE }
     }
@@ -320,7 +321,7 @@ impl Tracker<'_> {
             if (pole.s.im > 0.0) != (next.s.im > 0.0) {
                 return None;
             }
-            let drift = (next.s - predicted).modulus() / (DRIFT * room);
+            let drift = magnitude(next.s - predicted) / (DRIFT * room);
             let sagitta = self.pixels.sagitta(pole.s, next.s, pole.velocity * h, next.velocity * h) / SAGITTA;
             if sagitta > 1.6 {
                 return None;
@@ -396,7 +397,7 @@ impl Tracker<'_> {
     ) -> Option<()> {
         let (number, Cluster { s, multiplicity, .. }) = cluster;
         let mut order: Vec<usize> = (0..row.poles.len()).filter(|k| arrivals[*k].is_none()).collect();
-        let distance = |k: usize| (row.poles[k].s - s).modulus();
+        let distance = |k: usize| magnitude(row.poles[k].s - s);
         order.sort_by(|a, b| distance(*a).total_cmp(&distance(*b)));
         let mut left = *multiplicity;
         let mut farthest: f64 = 0.0;
@@ -426,8 +427,8 @@ impl Tracker<'_> {
         // (q − q*)·ds/dq, or −q·ds/dq towards infinity: dv is d ln|q − q*| near the end.
         let end_speed = self.end_motion(row, way, pole);
         let predicted = pole.s - end_speed * multiplicity as f64;
-        let distance = (pole.s - s).modulus();
-        let miss = (predicted - s).modulus();
+        let distance = magnitude(pole.s - s);
+        let miss = magnitude(predicted - s);
         // The parabola that leaves with this velocity and ends in s.
         let (chord, out) = (s - pole.s, predicted - pole.s);
         let bend = self.pixels.sagitta(pole.s, s, out, chord * 2.0 - out);
@@ -459,10 +460,10 @@ impl Tracker<'_> {
             if pole.s.im == 0.0 {
                 s.im = 0.0;
             }
-            if (s - predicted).modulus() > DRIFT * room {
+            if magnitude(s - predicted) > DRIFT * room {
                 return None;
             }
-            if newton.correction.modulus() <= newton.floor.max(1e-13 * s.modulus()) {
+            if magnitude(newton.correction) <= newton.floor.max(1e-13 * magnitude(s)) {
                 let motion = newton.motion * ((knob - row.knob) / knob);
                 let bend = self.pixels.sagitta(pole.s, s, by_knob * (knob - row.knob), motion);
                 return (forced || bend <= 1.6 * SAGITTA).then_some(s);
@@ -478,7 +479,7 @@ fn nearest_other(places: &[Complex<f64>], k: usize) -> f64 {
     let own_mirror = if s.im == 0.0 { f64::INFINITY } else { 2.0 * s.im.abs() };
     places.iter().enumerate().filter(|(j, _)| *j != k).fold(own_mirror, |nearest, (_, other)| {
         // In the closed upper half plane the mirrored pole is never the nearer one.
-        nearest.min((other - s).modulus())
+        nearest.min(magnitude(other - s))
     })
 }
 
@@ -491,7 +492,7 @@ fn simultaneous(system: &System, knob: f64, s: &mut [Complex<f64>]) -> Result<()
         for i in 0..s.len() {
             let Some(newton) = system.newton(s[i], knob) else {
                 // On a pole of the open loop: step aside.
-                let aside = s[i].modulus().max(f64::MIN_POSITIVE) * 1e-9;
+                let aside = magnitude(s[i]).max(f64::MIN_POSITIVE) * 1e-9;
                 s[i] += Complex::new(aside, aside);
                 settled = false;
                 continue;
@@ -503,7 +504,7 @@ fn simultaneous(system: &System, knob: f64, s: &mut [Complex<f64>]) -> Result<()
                 return Err(Lost);
             }
             s[i] -= step;
-            settled &= newton.correction.modulus() <= newton.floor.max(1e-13 * s[i].modulus());
+            settled &= magnitude(newton.correction) <= newton.floor.max(1e-13 * magnitude(s[i]));
         }
         if settled {
             return Ok(());

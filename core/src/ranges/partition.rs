@@ -7,6 +7,7 @@ use crate::exact::complex_roots::{ROOT_BITS, enclose_all};
 use crate::exact::gcd::gcd;
 use crate::exact::half_plane::{HalfPlaneCount, count};
 use crate::exact::{ExactError, IntPoly, Interval};
+use crate::numerics::magnitude;
 use crate::record::{CharacterName, CharacterRange, Edge, EdgeKind, StabilityRange};
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
@@ -227,20 +228,20 @@ fn looked_at(family: &Family, place: &Place) -> Result<Verdict, ExactError> {
     for disc in enclose_all(&p, ROOT_BITS)? {
         // What coincides at the place itself coincides here within rounding.
         let z = disc.center.to_f64();
-        match roots.iter_mut().find(|(known, _)| (*known - z).modulus() <= ON_AXIS * z.modulus()) {
+        match roots.iter_mut().find(|(known, _)| magnitude(*known - z) <= ON_AXIS * magnitude(z)) {
             Some((_, multiplicity)) => *multiplicity += disc.multiplicity,
             None => roots.push((z, disc.multiplicity)),
         }
     }
     // At the origin the knob's own rounding remains, far below every other pole.
-    let largest = roots.iter().map(|(z, _)| z.modulus()).fold(0.0, f64::max);
+    let largest = roots.iter().map(|(z, _)| magnitude(*z)).fold(0.0, f64::max);
     let at_origin = place.contacts.contains(&Contact::Origin);
-    let is_origin = |z: &Complex<f64>| z.modulus() == 0.0 || (at_origin && z.modulus() <= ORIGIN * largest);
-    let on_axis = |z: &Complex<f64>| is_origin(z) || libm::fabs(z.re) <= ON_AXIS * z.modulus();
+    let is_origin = |z: &Complex<f64>| magnitude(*z) == 0.0 || (at_origin && magnitude(*z) <= ORIGIN * largest);
+    let on_axis = |z: &Complex<f64>| is_origin(z) || libm::fabs(z.re) <= ON_AXIS * magnitude(*z);
     let sum =
         |wanted: &dyn Fn(&Complex<f64>) -> bool| roots.iter().filter(|(z, _)| wanted(z)).map(|(_, m)| m).sum::<usize>();
     let axis = sum(&|z| on_axis(z));
-    let real = sum(&|z| is_origin(z) || libm::fabs(z.im) <= ON_AXIS * z.modulus());
+    let real = sum(&|z| is_origin(z) || libm::fabs(z.im) <= ON_AXIS * magnitude(*z));
     let half_plane = HalfPlaneCount { right: sum(&|z| !on_axis(z) && z.re > 0.0), axis };
     let pairs = (p.degree() - real) / 2;
     let repeated = roots.iter().any(|(z, m)| *m > 1 && (axis == 0 || on_axis(z)));

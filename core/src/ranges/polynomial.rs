@@ -12,6 +12,7 @@ use crate::exact::gcd::{squarefree_part, without_common_roots};
 use crate::exact::real_roots::real_roots;
 use crate::exact::resultant::{interpolated, resultant};
 use crate::exact::{Dyadic, ExactError, IntPoly, Interval};
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
 use dashu_int::IBig;
 use nalgebra::{Complex, ComplexField};
@@ -126,10 +127,10 @@ fn meeting_points(discs: &[Disc]) -> Vec<(Complex<f64>, usize)> {
     let mut groups: Vec<(Complex<f64>, usize)> = Vec::new();
     for disc in discs {
         let mut z = disc.center.to_f64();
-        if z.im.abs() <= TOGETHER * z.modulus() {
+        if z.im.abs() <= TOGETHER * magnitude(z) {
             z.im = 0.0;
         }
-        match groups.iter_mut().find(|(center, _)| (*center - z).modulus() <= TOGETHER * z.modulus()) {
+        match groups.iter_mut().find(|(center, _)| magnitude(*center - z) <= TOGETHER * magnitude(z)) {
             Some((_, count)) => *count += disc.multiplicity,
             None => groups.push((z, disc.multiplicity)),
         }
