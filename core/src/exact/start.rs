@@ -9,7 +9,7 @@ use super::IntPoly;
 use super::dyadic::Dyadic;
 use crate::numerics::magnitude;
 use alloc::vec::Vec;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// Sweeps over all roots. Simple roots take about ten; clusters stop improving long before this, and are left to the
 /// exact iteration that follows.

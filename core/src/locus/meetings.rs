@@ -6,7 +6,7 @@ use crate::exact::{ExactError, IntPoly};
 use crate::numerics::magnitude;
 use crate::ranges::{Contact, Family, Partition, affine, polynomial};
 use alloc::vec::Vec;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// The knob at a candidate is first looked at in f64: beyond this relative imaginary part it is surely not real. The
 /// knob is stationary at these points, so that it is far more precise than the point itself.

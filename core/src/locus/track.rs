@@ -9,7 +9,7 @@ use super::system::System;
 use super::view::Pixels;
 use crate::numerics::magnitude;
 use alloc::vec::Vec;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// Newton steps for one pole after a good prediction; two or three are the rule.
 const NEWTON_CAP: usize = 12;

@@ -11,7 +11,7 @@ use crate::numerics::magnitude;
 use crate::record::{CharacterName, CharacterRange, Edge, EdgeKind, StabilityRange};
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// At a bracket of 2^−200 poles that meet, or are on the axis, at the place itself are computed within this fraction of
 /// their magnitude of each other, or of it: three that meet are split by 2^−66.

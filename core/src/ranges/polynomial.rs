@@ -15,7 +15,7 @@ use crate::exact::{Dyadic, ExactError, IntPoly, Interval};
 use crate::numerics::magnitude;
 use alloc::vec::Vec;
 use dashu_int::IBig;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// A candidate's knob is refined to this many bits before the poles there are looked at: a pole within 2^−100 of the axis
 /// then belongs to it.
