@@ -75,10 +75,12 @@ impl Analysis {
         let landmarks = all_landmarks(&family, &partition, found, &moving);
         let (poles, zeros) = open_loop(&family, &moving)?;
         let view = view::frame(poles.iter().chain(&zeros).map(place).chain(landmarks.iter().map(|l| l.s)));
+        let fixed = roots(&family.fixed)?;
         let input = LocusInput {
             family: &family,
             partition: &partition,
             meetings: found,
+            fixed: &fixed,
             poles: &moving.0,
             zeros: &moving.1,
             view,
@@ -148,7 +150,7 @@ impl Analysis {
     /// From the exact methods, when a cap is met.
     pub fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, ExactError> {
         let polynomial = self.family.at(knob).times(&self.family.fixed);
-        let verdict = verdict(&polynomial)?;
+        let verdict = verdict(&polynomial, &IntPoly::from_i64(&[1]))?;
         Ok(ClosedLoop {
             knob: knob.to_f64().value(),
             poles: roots(&polynomial)?,

@@ -8,7 +8,7 @@ use crate::notation;
 use crate::project::{Project, RequirementKind};
 use crate::ranges::permitted::{conflict, permitted};
 use crate::ranges::pieces::{Border, Piece};
-use crate::ranges::requirements::{Lane, Limit, at_least, check_limit, describe, unit};
+use crate::ranges::requirements::{Lane, Limit, at_least, check_limit, describe, meets, unit};
 use crate::record::{
     Conflict, EdgeCurve, LimitEdge, LimitRange, LoadRecord, Margins, Permitted, PhaseCrossing, RequirementRecord,
     StepRecord, Suggestion,
@@ -116,7 +116,10 @@ pub fn judge(
 fn requirement(limit: &Limit, lane: &Lane, scale: &Scale, here: Option<&LoopAt>) -> RequirementRecord {
     let value = limit.value.to_f64().value();
     let figure = here.map(|here| here.figure(limit.kind));
-    let met = here.map(|here| here.is_stable() && here.knob_within(&lane.pieces));
+    // A proven lane decides; of a computed one the figure itself, which the lane's edges approach to seven digits.
+    let by_figure = |figure: Option<Figure>| figure.is_some_and(|figure| meets(limit, figure));
+    let met = here
+        .map(|here| here.is_stable() && if lane.proven { here.knob_within(&lane.pieces) } else { by_figure(figure) });
     RequirementRecord {
         kind: limit.kind,
         limit: value,

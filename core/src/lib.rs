@@ -13,6 +13,7 @@ pub mod judgement;
 pub mod locus;
 pub mod model;
 pub mod notation;
+mod numerics;
 pub mod project;
 pub mod ranges;
 pub mod record;

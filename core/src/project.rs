@@ -177,11 +177,11 @@ pub enum RequirementKind {
     SettlingTime5,
     /// Until the highest point; s, at most.
     PeakTime,
-    /// The static error after a step of the command; % of the step, at most.
+    /// The static error after a step of the command, at the comparison of command and sensor; % of the step, at most.
     StepError,
-    /// The static error on a unit ramp of the command; at most.
+    /// The static error on a unit ramp of the command, at the comparison; at most.
     RampError,
-    /// The static error on a unit parabola t²/2 of the command; at most.
+    /// The static error on a unit parabola t²/2 of the command, at the comparison; at most.
     ParabolaError,
     /// The largest deviation of the output after a unit step at the plant's input; at most.
     LoadPeak,

@@ -123,7 +123,8 @@ def check_ends(case, knobs, ends, report):
         report.check(inside(case.project, knobs, setting) is not False, f"{what}: inside", knobs, text)
         report.check(on_grid(case.project, setting), f"{what}: on the grid", case.project["setting"], text)
         beyond = setting + outward * grid_step(case.project, end if end is not None and math.isfinite(end) and end else setting)
-        report.check(inside(case.project, knobs, beyond) is not True, f"{what}: outermost", f"{float(beyond)} outside", f"{text} in {knobs}")
+        outside = inside(case.project, knobs, beyond) is not True
+        report.check(outside, f"{what}: outermost", f"{float(beyond)} outside", f"{text} in {knobs}")
 
 
 def far_setting(project, knob):
@@ -153,7 +154,8 @@ def check_suggestion(case, ranges, suggested, report):
         return
     setting = Fraction(suggested["setting"])
     knob = scale_knob(case.project, setting)
-    report.check(abs(Fraction(suggested["knob"]) - knob) <= abs(knob) * Fraction(1, 10**15), "suggestion: knob", float(knob), suggested["knob"])
+    off = abs(Fraction(suggested["knob"]) - knob)
+    report.check(off <= abs(knob) * Fraction(1, 10**15), "suggestion: knob", float(knob), suggested["knob"])
     report.check(on_grid(case.project, setting), "suggestion: on the grid", case.project["setting"], suggested["setting"])
     holding = [k for k in ranges if inside(case.project, k, setting) is not False]
     if not report.check(bool(holding), "suggestion: inside", ranges, suggested):
@@ -166,7 +168,8 @@ def check_suggestion(case, ranges, suggested, report):
         for other in (setting - Fraction(step), setting + Fraction(step)):
             if inside(case.project, holding[0], other):
                 there = distance(holding[0], float(scale_knob(case.project, other)))
-                report.check(there <= here * (1 + 1e-9) + 1e-12, "suggestion: midway", f"{float(other)} is {there:.6g} from the ends of {holding[0]}", f"{suggested['setting']} is {here:.6g}")
+                words = f"{float(other)} is {there:.6g} from the ends of {holding[0]}", f"{suggested['setting']} is {here:.6g}"
+                report.check(there <= here * (1 + 1e-9) + 1e-12, "suggestion: midway", *words)
 
 
 def grid_settings(project, knobs):

@@ -4,7 +4,6 @@ The error of a static figure is that at the comparison, command minus what the s
 """
 
 import math
-from fractions import Fraction
 
 from flint import arb
 

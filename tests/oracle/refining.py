@@ -1,6 +1,9 @@
-"""Roots of real functions between two places of opposite sign, in high precision."""
+"""High precision: roots of polynomials, and of real functions between two places of opposite sign."""
 
-from flint import arb
+from flint import acb, arb
+
+#: Bits of all ball arithmetic with responses.
+BITS = 220
 
 #: Steps; bisection alone would need some 200 for all bits, the chord rule some ten.
 MOST_STEPS = 140
@@ -37,3 +40,18 @@ def axis_root(f, a, b):
             fb = fb / 2 if side == -1 else fb
             side = -1
     return ((a + b) / 2).mid()
+
+
+def roots(poly):
+    """Roots of a rational polynomial as balls, each as often as it occurs."""
+    if poly.degree() < 1:
+        return []
+    return [ball for ball, count in poly.numer().complex_roots() for _ in range(count)]
+
+
+def value(poly, z):
+    """A rational polynomial at a ball."""
+    total = acb(0)
+    for c in reversed(poly.coeffs()):
+        total = total * z + acb(c)
+    return total

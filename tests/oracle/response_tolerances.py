@@ -2,6 +2,8 @@
 
 #: Figures of the poles and exact ratios, relative: f64 rounding, and the last bits of roots that lie close together.
 POLES = 1e-9
+#: Rounding of f64 in the coefficients; the poles of a near pair move by it over their distance.
+POLE_ROUNDING = 1e-15
 STATIC = 1e-12
 #: Crossings, margins, peak sensitivity and bandwidth, relative.
 MARGIN = 1e-9
@@ -12,7 +14,7 @@ PLACE_OF_EXTREME = 1e-6
 #: Times, peaks and values of an answer, relative to the figure or, for a deviation, to the largest value of the answer.
 ANSWER = 1e-6
 #: Drawn curves, relative to their range: far below a pixel.
-CURVE = 1e-7
+CURVE = 1e-6
 
 #: A computed edge: this far inside the limit is met, this far outside it is not. The contract is 1e-6.
 COMPUTED_EDGE = 1e-5

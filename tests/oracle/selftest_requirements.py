@@ -2,10 +2,16 @@
 
 import copy
 
+import numpy as np
 from binary import NoAnswer
+from flint import arb
 from report import Report
-from requirement_cases import own_case
+from requirement_cases import FAMILIES, at, own_case, requirement_case
 from requirement_checks import check_record
+from scipy.linalg import expm
+
+#: Of the matrix exponential in f64, relative to the largest value.
+EXPONENTIAL = 1e-12
 
 #: A loop of our own on which every corruption is possible, and one whose requirements exclude each other: two of them do.
 SUBJECT = own_case({"overshoot": "25", "settling-time-2": "2", "damping-ratio": "0.3", "phase-margin": "30"})
@@ -20,6 +26,7 @@ def run(records):
             corrupt_all(case, records.ask(case.text)["answer"]["record"], corruptions, report)
         except NoAnswer as reason:
             report.check(False, "self-test: an answer", "a record", reason)
+    check_answers(report)
     return "self-test of requirements", f"{SUBJECT.text} {EXCLUDING.text}", report.passed, report.failures
 
 
@@ -35,6 +42,30 @@ def corrupt_all(case, record, corruptions, report):
         check_record(case, spoiled, found)
         hit = [what for what, _, _ in found.failures if what.startswith(expected)]
         report.check(bool(hit) and spoiled != record, f"self-test: {name}", f"a failure of {expected}", [f[0] for f in found.failures])
+
+
+def check_answers(report):
+    """The oracle's partial fractions against a matrix exponential."""
+    for seed in range(len(FAMILIES)):
+        case = requirement_case(seed)
+        answer = at(case, case.knob).answer("output")
+        for turns in (0.3, 1, 3, 8) if answer else ():
+            t = turns / float(np.abs(answer.p).prod() ** (1 / len(answer.p)))
+            expected, found = by_exponential(answer, t), float(answer.exact(arb(t)))
+            size = max(answer.scale, abs(answer.end))
+            report.check(abs(expected - found) <= EXPONENTIAL * size, f"self-test: answer of {case.name} at {t}", expected, found)
+
+
+def by_exponential(answer, t):
+    """y(t) of the reduced transfer function, by the exponential of its companion matrix with the constant command as one more state."""
+    above, below = answer.reduced
+    order = below.degree()
+    unit = float(np.abs(answer.p).prod() ** (1 / order))
+    a, b = (np.array([float(arb(p[i] / below[order])) * unit ** (i - order) for i in range(order + 1)]) for p in (below, above))
+    matrix = np.zeros((order + 1, order + 1))
+    matrix[: order - 1, 1:order] = np.eye(order - 1)
+    matrix[order - 1, :order], matrix[order - 1, order] = -a[:order], 1
+    return float((b[:order] - b[order] * a[:order]) @ expm(matrix * unit * t)[:order, order] + b[order])
 
 
 def scaled(*path, by=1.0001):

@@ -7,6 +7,7 @@
 use super::dyadic::{Dyadic, sign_of};
 use super::start::approximate_roots;
 use super::{ExactError, IntPoly, gcd};
+use crate::numerics::magnitude;
 use crate::record::Root;
 use alloc::vec::Vec;
 use dashu_int::IBig;
@@ -192,7 +193,7 @@ fn quotient(a: (&IBig, &IBig), b: (&IBig, &IBig), scale: i64) -> Option<Complex<
         (Complex::new(part(re), part(im)), size)
     };
     let ((a, a_size), (b, b_size)) = (to_complex(a), to_complex(b));
-    if b.modulus() == 0.0 {
+    if magnitude(b) == 0.0 {
         return None;
     }
     let exponent = (a_size - b_size + scale).clamp(-1060, 1020) as i32;
@@ -301,7 +302,7 @@ impl<'p> Search<'p> {
     /// From real points the iteration never turns complex: points that do not settle on the axis are pushed off it.
     fn leave_the_real_axis(&mut self) {
         for (i, disc) in self.discs.iter_mut().enumerate() {
-            let size = disc.center.to_f64().modulus();
+            let size = magnitude(disc.center.to_f64());
             if disc.center.im.is_zero() && disc.radius > size * f64::EPSILON {
                 let push = disc.radius.min(size) * if i % 2 == 0 { 0.5 } else { -0.5 };
                 disc.center = disc.center.moved(Complex::new(0.0, push), LAST_TARGET_BITS);
@@ -311,7 +312,7 @@ impl<'p> Search<'p> {
 
     /// One step for one root; true where its disc was already small enough.
     fn improve_one(&mut self, i: usize, target: i64) -> bool {
-        let size = self.discs[i].center.to_f64().modulus();
+        let size = magnitude(self.discs[i].center.to_f64());
         let small = size * libm::ldexp(1.0, -target.min(1000) as i32);
         if self.discs[i].radius <= small {
             return true;
@@ -321,14 +322,14 @@ impl<'p> Search<'p> {
             self.discs[i].center = self.discs[i].center.moved(Complex::new(size / 64.0, size / 81.0), target + 32);
             return false;
         };
-        self.discs[i].radius = newton.modulus() * self.p.degree() as f64 * ROUND_UP;
+        self.discs[i].radius = magnitude(newton) * self.p.degree() as f64 * ROUND_UP;
         if self.discs[i].radius <= small {
             return true;
         }
         let mut sum = Complex::new(0.0, 0.0);
         for (j, other) in self.discs.iter().enumerate() {
             let difference = self.discs[i].center.minus(&other.center);
-            if j != i && difference.modulus() > 0.0 {
+            if j != i && magnitude(difference) > 0.0 {
                 sum += difference.recip();
             }
         }
@@ -340,7 +341,7 @@ impl<'p> Search<'p> {
 
     fn disjoint(&self) -> bool {
         self.discs.iter().enumerate().all(|(i, a)| {
-            self.discs[..i].iter().all(|b| a.center.minus(&b.center).modulus() > (a.radius + b.radius) * ROUND_UP)
+            self.discs[..i].iter().all(|b| magnitude(a.center.minus(&b.center)) > (a.radius + b.radius) * ROUND_UP)
         })
     }
 

@@ -9,7 +9,7 @@ use dashu_ratio::RBig;
 
 /// Significant bits kept by interval evaluation. More costs time; fewer leaves edges of high-order loops undecided
 /// until the argument is refined further.
-const EVALUATION_BITS: usize = 256;
+const EVALUATION_BITS: usize = 512;
 
 /// A polynomial with integer coefficients; the last one is not zero. No coefficients: the zero polynomial.
 #[derive(Clone, Debug, PartialEq, Eq, Default)]

@@ -27,11 +27,13 @@ pub struct RealRoot {
     pub bracket: Interval,
     /// log2 of the number of parts for the next refinement.
     parts_log2: u32,
+    /// The values at the ends of the bracket, where they are known.
+    at_ends: Option<(Dyadic, Dyadic)>,
 }
 
 impl RealRoot {
     fn exactly(x: Dyadic) -> Self {
-        Self { bracket: Interval::point(x), parts_log2: 1 }
+        Self { bracket: Interval::point(x), parts_log2: 1, at_ends: None }
     }
 
     /// True where the bracket is a single number.
@@ -45,31 +47,45 @@ impl RealRoot {
             return;
         }
         let (low, high) = (self.bracket.low.clone(), self.bracket.high.clone());
-        let (at_low, at_high) = (p.scaled_value(&low), p.scaled_value(&high));
+        let (at_low, at_high) = self.at_ends.take().unwrap_or_else(|| (p.scaled_value(&low), p.scaled_value(&high)));
         let sign_low = at_low.signum();
         // The part of 2^parts_log2 equal ones in which the chord passes zero.
         let width = &high - &low;
         let rise = &at_high - &at_low;
         let parts = IBig::ONE << (self.parts_log2 as usize);
-        let guess = (-at_low).divide_down(&rise, self.parts_log2 as usize + 2);
+        let guess = (-at_low.clone()).divide_down(&rise, self.parts_log2 as usize + 2);
         let guess = (&guess * &Dyadic::new(parts.clone(), 0)).round_to_integer();
         let guess = guess.max(IBig::ZERO).min(&parts - 1);
         let step = Dyadic::new(width.mantissa, width.exponent - i64::from(self.parts_log2));
         let left = &low + &(&step * &Dyadic::new(guess, 0));
         let right = &left + &step;
-        let (sign_left, sign_right) = (p.sign_at(&left), p.sign_at(&right));
+        let (at_left, at_right) = (p.scaled_value(&left), p.scaled_value(&right));
+        let (sign_left, sign_right) = (at_left.signum(), at_right.signum());
         if sign_left == 0 || sign_right == 0 {
             *self = Self::exactly(if sign_left == 0 { left } else { right });
         } else if sign_left == sign_low && sign_right == -sign_low {
             self.bracket = Interval { low: left.shortened(), high: right.shortened() };
+            self.at_ends = Some((at_left, at_right));
             self.parts_log2 *= 2;
         } else {
             self.parts_log2 = (self.parts_log2 / 2).max(1);
-            self.bisect(p, sign_low);
+            self.narrow_beside((left, at_left), (right, at_right), (at_low, at_high));
+        }
+    }
+
+    /// The chord missed: the root lies left or right of the two points looked at.
+    fn narrow_beside(&mut self, left: (Dyadic, Dyadic), right: (Dyadic, Dyadic), at_ends: (Dyadic, Dyadic)) {
+        if left.1.signum() == at_ends.0.signum() {
+            self.bracket.low = right.0.shortened();
+            self.at_ends = Some((right.1, at_ends.1));
+        } else {
+            self.bracket.high = left.0.shortened();
+            self.at_ends = Some((at_ends.0, left.1));
         }
     }
 
     fn bisect(&mut self, p: &IntPoly, sign_low: i32) {
+        self.at_ends = None;
         let middle = self.bracket.midpoint().shortened();
         match p.sign_at(&middle) {
             0 => *self = Self::exactly(middle),
@@ -142,8 +158,11 @@ pub fn positive_roots(p: &IntPoly) -> Result<Vec<RealRoot>, ExactError> {
             1 => {
                 let low = Dyadic::new(piece.position.clone(), exponent);
                 let high = Dyadic::new(piece.position + 1, exponent);
-                let mut root =
-                    RealRoot { bracket: Interval { low: low.shortened(), high: high.shortened() }, parts_log2: 1 };
+                let mut root = RealRoot {
+                    bracket: Interval { low: low.shortened(), high: high.shortened() },
+                    parts_log2: 1,
+                    at_ends: None,
+                };
                 clear_ends(&mut root, p)?;
                 roots.push(root);
             }
@@ -168,7 +187,7 @@ pub fn real_roots(p: &IntPoly) -> Result<Vec<RealRoot>, ExactError> {
     let mut roots: Vec<RealRoot> = positive_roots(&p.mirrored())?
         .into_iter()
         .rev()
-        .map(|root| RealRoot { bracket: root.bracket.negated(), parts_log2: root.parts_log2 })
+        .map(|root| RealRoot { bracket: root.bracket.negated(), parts_log2: 1, at_ends: None })
         .collect();
     if p.coefficient(0).is_zero() && !p.is_zero() {
         roots.push(RealRoot::exactly(Dyadic::ZERO));

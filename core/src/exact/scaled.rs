@@ -2,8 +2,9 @@
 
 use super::IntPoly;
 use super::dyadic::Dyadic;
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// A complex number z·2^exponent, for values beyond the range of f64.
 #[derive(Clone, Copy, Debug)]
@@ -66,27 +67,27 @@ impl Scaled {
 
     /// p(z)/p'(z), and whether p(z) is beyond its rounding error. None where p' vanishes in f64.
     pub(super) fn newton(&self, z: Complex<f64>) -> Option<(Complex<f64>, bool)> {
-        let scale = binary_exponent(z.modulus());
+        let scale = binary_exponent(magnitude(z));
         let u = z * libm::ldexp(1.0, -scale as i32);
         let size = |i: usize| self.exponents[i] + scale * i as i64;
         let top = (0..self.mantissas.len()).filter(|i| self.mantissas[*i] != 0.0).map(size).max()?;
         let (mut value, mut slope) = (Complex::new(0.0, 0.0), Complex::new(0.0, 0.0));
-        let mut magnitude = 0.0;
-        let modulus = u.modulus();
+        let mut total = 0.0;
+        let modulus = magnitude(u);
         for i in (0..self.mantissas.len()).rev() {
             let c = libm::ldexp(self.mantissas[i], (size(i) - top).max(-2000) as i32);
             slope = slope * u + value;
             value = value * u + c;
-            magnitude = magnitude * modulus + libm::fabs(c);
+            total = total * modulus + libm::fabs(c);
         }
         let ratio = value / slope * libm::ldexp(1.0, scale as i32);
-        let certain = value.modulus() > 4.0 * f64::EPSILON * self.mantissas.len() as f64 * magnitude;
+        let certain = magnitude(value) > 4.0 * f64::EPSILON * self.mantissas.len() as f64 * total;
         (ratio.re.is_finite() && ratio.im.is_finite()).then_some((ratio, certain))
     }
 
     /// p(z).
     pub fn value(&self, z: Complex<f64>) -> Wide {
-        let scale = binary_exponent(z.modulus());
+        let scale = binary_exponent(magnitude(z));
         let u = z * libm::ldexp(1.0, -scale as i32);
         let size = |i: usize| self.exponents[i] + scale * i as i64;
         let top = (0..self.mantissas.len()).filter(|i| self.mantissas[*i] != 0.0).map(size).max().unwrap_or(0);

@@ -7,8 +7,9 @@
 
 use super::IntPoly;
 use super::scaled::Scaled;
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// Sweeps over all roots. Simple roots take about ten; clusters stop improving long before this, and are left to the
 /// exact iteration that follows.
@@ -71,7 +72,7 @@ pub(super) fn approximate_roots(p: &IntPoly) -> Vec<Complex<f64>> {
             if correction.re.is_finite() && correction.im.is_finite() {
                 z[i] -= correction;
             }
-            settled[i] = !certain || correction.modulus() <= f64::EPSILON * z[i].modulus();
+            settled[i] = !certain || magnitude(correction) <= f64::EPSILON * magnitude(z[i]);
         }
         if settled.iter().all(|done| *done) {
             break;

@@ -8,13 +8,14 @@ use super::{Branch, BranchPoint};
 use crate::exact::complex_roots::{ROOT_BITS, approximations, enclose_all};
 use crate::exact::real_roots::count_real;
 use crate::exact::{Dyadic, IntPoly};
+use crate::numerics::magnitude;
 use crate::ranges::{Contact, Family, Partition};
 use crate::record::{KnobSign, Root, View};
 use alloc::vec::Vec;
 use nalgebra::{Complex, ComplexField};
 
-/// Two knob values nearer to each other than this part of them are one end.
-const SAME_KNOB: f64 = 1e-13;
+/// Two knob values nearer to each other than this part of them are one end: f64 has no number between.
+const SAME_KNOB: f64 = 2.0 * f64::EPSILON;
 
 /// What the tracking needs to know about a loop.
 pub struct LocusInput<'a> {
@@ -24,6 +25,8 @@ pub struct LocusInput<'a> {
     pub partition: &'a Partition,
     /// Where branches meet.
     pub meetings: &'a [Meeting],
+    /// Fixed modes.
+    pub fixed: &'a [Root],
     /// Roots of the moving part at knob 0.
     pub poles: &'a [Root],
     /// Roots of the moving part at infinite knob.
@@ -32,12 +35,28 @@ pub struct LocusInput<'a> {
     pub view: View,
 }
 
-/// The branches of one half of the locus. None where they could not be followed with certainty, or nothing moves.
+/// The branches of one half of the locus, those that stand still included. None where they could not be followed with
+/// certainty.
 pub fn branches(input: &LocusInput<'_>, sign: KnobSign) -> Option<Vec<Branch>> {
-    let family = input.family;
-    if family.knob_degree() == 0 || family.moving_order() == 0 {
-        return Some(Vec::new());
+    let mut all = standing(input.fixed, sign);
+    let moves = input.family.knob_degree() > 0 && input.family.moving_order() > 0;
+    if moves {
+        all.extend(moving(input, sign)?);
     }
+    Some(all)
+}
+
+/// Fixed modes: the same point at every knob value.
+fn standing(fixed: &[Root], sign: KnobSign) -> Vec<Branch> {
+    let branch = |root: &Root| {
+        let point = |knob: f64| BranchPoint { re: root.re, im: root.im, knob };
+        Branch { sign, points: [point(0.0), point(sign.factor() * f64::INFINITY)].into() }
+    };
+    fixed.iter().flat_map(|root| core::iter::repeat_n(branch(root), root.multiplicity)).collect()
+}
+
+fn moving(input: &LocusInput<'_>, sign: KnobSign) -> Option<Vec<Branch>> {
+    let family = input.family;
     let system = match family.affine() {
         Some((d, n)) => System::factored(d, n, input.poles, input.zeros, sign.factor()),
         None => System::expanded(family, sign.factor())?,
@@ -89,7 +108,7 @@ fn ends(input: &LocusInput<'_>, sign: KnobSign) -> Vec<End> {
     let at_infinity = |part: &IntPoly| order - part.degree();
     let of_roots = |roots: &[Root]| -> Vec<Cluster> {
         let upper = roots.iter().filter(|r| r.im >= 0.0);
-        upper.map(|r| Cluster { s: Complex::new(r.re, r.im), multiplicity: r.multiplicity }).collect()
+        upper.map(|r| Cluster { s: Complex::new(r.re, r.im), multiplicity: r.multiplicity, turn: 0.0 }).collect()
     };
     let (first, last) = (&family.parts[0], &family.parts[family.knob_degree()]);
     let mut ends = Vec::new();
@@ -104,7 +123,9 @@ fn ends(input: &LocusInput<'_>, sign: KnobSign) -> Vec<End> {
     let mut inner: Vec<End> = Vec::new();
     for meeting in input.meetings {
         let knob = sign.factor() * meeting.knob;
-        inner.push(end(knob, [Cluster { s: meeting.s, multiplicity: meeting.multiplicity }].into(), 0, true));
+        let turn = sign.factor() * meeting.miss;
+        let cluster = Cluster { s: meeting.s, multiplicity: meeting.multiplicity, turn };
+        inner.push(end(knob, [cluster].into(), 0, true));
     }
     for place in &input.partition.places {
         if place.contacts.iter().any(|c| matches!(c, Contact::DegreeDrop)) {
@@ -194,16 +215,32 @@ impl Weaver<'_> {
             match (before.outer[other.carried], arrival) {
                 // At a point off the axis mirrored strands belong to the mirrored point.
                 (Arrival::Cluster(a), Arrival::Cluster(b)) if a == b => {
-                    let on_axis = self.ends[k].clusters[a].s.im == 0.0;
-                    (on_axis || other.mirrored == strand.mirrored).then_some((i, 0.0))
+                    let cluster = self.ends[k].clusters[a];
+                    let same_side = cluster.s.im == 0.0 || other.mirrored == strand.mirrored;
+                    same_side.then(|| (i, self.turned_away(k, &cluster, other.carried, strand.carried)))
                 }
                 (Arrival::Place(a), Arrival::Place(b)) if other.mirrored == strand.mirrored => {
-                    Some((i, (a - b).modulus()))
+                    Some((i, magnitude(a - b)))
                 }
                 _ => None,
             }
         };
         open.iter().enumerate().filter_map(distance).min_by(|a, b| a.1.total_cmp(&b.1)).map(|(i, _)| i)
+    }
+
+    /// How badly two strands through a near miss fit together: the angle, in radians, by which the way out differs from
+    /// the way in turned by a quarter. q − q* turns by half a circle on one side of 0, and the distance of the two poles
+    /// goes like its root. At a true meeting every pairing is as good as another.
+    fn turned_away(&self, k: usize, cluster: &Cluster, before: usize, after: usize) -> f64 {
+        let ends = (self.tracks[k - 1].rows.last(), self.tracks[k].rows.first());
+        let (Some(last), Some(first)) = ends else { return 0.0 };
+        if cluster.turn == 0.0 {
+            return 0.0;
+        }
+        let way_in = last.poles[before].s - cluster.s;
+        let way_out = first.poles[after].s - cluster.s;
+        let quarter = Complex::new(0.0, libm::copysign(1.0, cluster.turn));
+        (way_out / (way_in * quarter)).argument().abs()
     }
 
     fn end_point(&self, end: usize, arrival: Arrival, strand: Strand) -> Option<BranchPoint> {
@@ -233,4 +270,40 @@ fn strands(track: &Track) -> Vec<Strand> {
         }
     }
     strands
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::exact::complex_roots::roots;
+    use crate::locus::{meetings, view};
+    use crate::record::Point;
+
+    /// The branches of D + q·N, as (start, end) pairs, of one sign.
+    fn followed_branches(d: &[i64], n: &[i64], sign: KnobSign) -> Vec<Branch> {
+        let family = Family::new([IntPoly::from_i64(d), IntPoly::from_i64(n)].into()).expect("not zero");
+        let partition = Partition::new(&family).expect("cut");
+        let meetings = meetings(&family, &partition).expect("found");
+        let (poles, zeros) = (roots(&family.parts[0]).expect("poles"), roots(&family.parts[1]).expect("zeros"));
+        let points = poles.iter().chain(&zeros).map(|r| Point { re: r.re, im: r.im });
+        let view = view::frame(points);
+        let input = LocusInput {
+            family: &family,
+            partition: &partition,
+            meetings: &meetings,
+            fixed: &[],
+            poles: &poles,
+            zeros: &zeros,
+            view,
+        };
+        branches(&input, sign).expect("followed")
+    }
+
+    #[test]
+    fn a_zero_next_to_a_pole_takes_its_branch_on_both_signs() {
+        // 1000 (s + 1.001)/((s + 1)(s + 2)(s + 5))
+        for sign in KnobSign::BOTH {
+            assert_eq!(followed_branches(&[10, 17, 8, 1], &[1001, 1000], sign).len(), 3);
+        }
+    }
 }

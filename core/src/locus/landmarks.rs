@@ -11,6 +11,7 @@ use alloc::vec::Vec;
 pub fn from_meetings(meetings: &[Meeting]) -> Vec<Landmark> {
     meetings
         .iter()
+        .filter(|meeting| meeting.is_true())
         .map(|meeting| Landmark {
             kind: if meeting.leaves_axis { LandmarkKind::Breakaway } else { LandmarkKind::BreakIn },
             s: Point { re: meeting.s.re, im: meeting.s.im },

@@ -3,6 +3,7 @@
 use crate::exact::complex_roots::{enclose, negative_ratio_at};
 use crate::exact::gcd::{squarefree_factors, without_common_roots};
 use crate::exact::{ExactError, IntPoly};
+use crate::numerics::magnitude;
 use crate::ranges::{Contact, Family, Partition, affine, polynomial};
 use alloc::vec::Vec;
 use nalgebra::Complex;
@@ -13,6 +14,12 @@ const SURELY_COMPLEX: f64 = 1e-3;
 
 /// A knob computed to 30 digits or more with a relative imaginary part below this is real.
 const SURELY_REAL: f64 = 1e-25;
+
+/// Below this relative imaginary part of the knob two branches pass each other within about its square root: 3e-5.
+const JUST_MISSED: f64 = 1e-9;
+
+/// Nearer to the real axis than this part of its magnitude a point has its mirror image too near for two branches alone.
+const AWAY: f64 = 1e-3;
 
 /// Bits to which candidates are enclosed for that decision.
 const CANDIDATE_BITS: i64 = 128;
@@ -28,6 +35,16 @@ pub struct Meeting {
     pub multiplicity: usize,
     /// Whether real poles become fewer, or stay as many, as |knob| grows; true away from the axis.
     pub leaves_axis: bool,
+    /// The imaginary part of the knob at which the poles would meet; 0 for a true meeting. Two branches that just miss each
+    /// other turn by a quarter, to the side that its sign tells, nearer together than f64 can follow.
+    pub miss: f64,
+}
+
+impl Meeting {
+    /// Whether the branches really meet.
+    pub fn is_true(&self) -> bool {
+        self.miss == 0.0
+    }
 }
 
 /// All meetings, by growing knob.
@@ -45,6 +62,7 @@ pub fn meetings(family: &Family, partition: &Partition) -> Result<Vec<Meeting>, 
                     knob: place.value(),
                     multiplicity: *multiplicity,
                     leaves_axis: partition.loses_real_poles(i, sign),
+                    miss: 0.0,
                 });
             }
         }
@@ -54,7 +72,13 @@ pub fn meetings(family: &Family, partition: &Partition) -> Result<Vec<Meeting>, 
         None if family.knob_degree() == 0 => {}
         None => found.extend(polynomial::meetings(family)?.into_iter().filter(|m| m.s.im > 0.0).filter_map(|m| {
             let knob = m.bracket.midpoint().to_f64();
-            (knob != 0.0).then_some(Meeting { s: m.s, knob, multiplicity: m.multiplicity, leaves_axis: true })
+            (knob != 0.0).then_some(Meeting {
+                s: m.s,
+                knob,
+                multiplicity: m.multiplicity,
+                leaves_axis: true,
+                miss: 0.0,
+            })
         })),
     }
     found.sort_by(|a, b| a.knob.total_cmp(&b.knob));
@@ -72,8 +96,11 @@ fn complex_meetings(d: &IntPoly, n: &IntPoly) -> Result<Vec<Meeting>, ExactError
         for disc in enclose(&factor, CANDIDATE_BITS)? {
             let s = disc.center.to_f64();
             let Some(knob) = negative_ratio_at(d, n, &disc.center).filter(|_| s.im > 0.0) else { continue };
-            if knob.im.abs() <= SURELY_REAL * knob.re.abs() {
-                found.push(Meeting { s, knob: knob.re, multiplicity: order + 1, leaves_axis: true });
+            let meets = knob.im.abs() <= SURELY_REAL * knob.re.abs();
+            let just_misses = order == 1 && knob.im.abs() <= JUST_MISSED * knob.re.abs() && s.im > AWAY * magnitude(s);
+            if meets || just_misses {
+                let miss = if meets { 0.0 } else { knob.im };
+                found.push(Meeting { s, knob: knob.re, multiplicity: order + 1, leaves_axis: true, miss });
             }
         }
     }

@@ -1,6 +1,7 @@
 //! The moving poles as a function of the knob, in f64: one Newton step, its rounding error, and the direction of motion.
 
 use crate::exact::{Dyadic, IntPoly};
+use crate::numerics::magnitude;
 use crate::ranges::Family;
 use crate::record::Root;
 use alloc::vec::Vec;
@@ -94,7 +95,7 @@ impl System {
         match self {
             Self::Factored { poles, zeros, gain } => {
                 let logs = |roots: &[Complex<f64>]| -> (f64, usize) {
-                    let sizes = roots.iter().map(|r| r.modulus()).filter(|m| *m > 0.0);
+                    let sizes = roots.iter().map(|r| magnitude(*r)).filter(|m| *m > 0.0);
                     sizes.fold((0.0, 0), |(sum, count), m| (sum + libm::log(m), count + 1))
                 };
                 let ((a, i), (b, k)) = (logs(poles), logs(zeros));
@@ -126,23 +127,23 @@ fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s:
     };
     for k in 0..poles.len().max(zeros.len()) {
         if let Some(p) = poles.get(k) {
-            let inverse = reciprocal(s - p);
-            doubt += p.modulus() * inverse.modulus();
+            let inverse = reciprocal(distance(s, *p));
+            doubt += magnitude(*p) * magnitude(inverse);
             sigma_d += inverse;
             product *= inverse;
             keep_in_range(&mut product);
         }
         if let Some(z) = zeros.get(k) {
-            let difference = s - z;
+            let difference = distance(s, *z);
             let inverse = reciprocal(difference);
-            doubt += z.modulus() * inverse.modulus();
+            doubt += magnitude(*z) * magnitude(inverse);
             sigma_n += inverse;
             product *= difference;
             keep_in_range(&mut product);
         }
     }
     // The ratio alone decides: for |L| > 1 both numerator and denominator are divided by L.
-    let size = product.modulus();
+    let size = magnitude(product);
     let log = libm::log2(size) + exponent as f64;
     let (top, bottom, l) = if log <= 0.0 {
         let l = product * libm::ldexp(1.0, exponent.max(-2000) as i32);
@@ -154,17 +155,27 @@ fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s:
     let slope = reciprocal(bottom);
     Newton {
         correction: top * slope,
-        floor: doubt * f64::EPSILON * slope.modulus() * l.modulus().min(1.0),
+        floor: doubt * f64::EPSILON * magnitude(slope) * magnitude(l).min(1.0),
         motion: -l * slope,
     }
+}
+
+/// s − root, or a quarter of a rounding unit where the two are the same number: a pole of the closed loop may be nearer to
+/// one of the open loop than f64 can tell, and is then found there.
+fn distance(s: Complex<f64>, root: Complex<f64>) -> Complex<f64> {
+    let difference = s - root;
+    if difference.re == 0.0 && difference.im == 0.0 {
+        return Complex::new((0.25 * f64::EPSILON * magnitude(root)).max(1e-300), 0.0);
+    }
+    difference
 }
 
 /// Horner's scheme for F, its slope and its derivative by the knob.
 fn expanded_newton(coefficients: &[Vec<f64>], scale: f64, s: Complex<f64>, q: f64) -> Newton {
     let u = s / scale;
-    let modulus = u.modulus();
+    let modulus = magnitude(u);
     let zero = Complex::new(0.0, 0.0);
-    let (mut value, mut slope, mut by_knob, mut magnitude) = (zero, zero, zero, 0.0);
+    let (mut value, mut slope, mut by_knob, mut total) = (zero, zero, zero, 0.0);
     for row in coefficients.iter().rev() {
         let (mut c, mut dc, mut size) = (0.0, 0.0, 0.0);
         for a in row.iter().rev() {
@@ -176,12 +187,12 @@ fn expanded_newton(coefficients: &[Vec<f64>], scale: f64, s: Complex<f64>, q: f6
         slope = slope * u + value;
         value = value * u + c;
         by_knob = by_knob * u + dc * q;
-        magnitude = magnitude * modulus + size;
+        total = total * modulus + size;
     }
     let inverse = reciprocal(slope) * scale;
     Newton {
         correction: value * inverse,
-        floor: 4.0 * f64::EPSILON * coefficients.len() as f64 * magnitude * inverse.modulus(),
+        floor: 4.0 * f64::EPSILON * coefficients.len() as f64 * total * magnitude(inverse),
         motion: -by_knob * inverse,
     }
 }

@@ -7,8 +7,9 @@
 
 use super::system::System;
 use super::view::Pixels;
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// Newton steps for one pole after a good prediction; two or three are the rule.
 const NEWTON_CAP: usize = 12;
@@ -20,7 +21,7 @@ const ROW_CAP: usize = 20_000;
 const DRIFT: f64 = 0.15;
 
 /// Chord to curve, in pixels of the default view; a quarter is promised.
-const SAGITTA: f64 = 0.1;
+const SAGITTA: f64 = 0.08;
 
 /// The largest step in ln τ while a pole is in the picture: keeps the knob readable by interpolation between two rows.
 const LARGEST_STEP: f64 = 0.7;
@@ -28,12 +29,9 @@ const LARGEST_STEP: f64 = 0.7;
 /// The largest step once every moving pole is out of it, or at its end.
 const LARGEST_STEP_OUTSIDE: f64 = 3.0;
 
-/// Beyond this |ln τ| an end at a finite knob is joined even where the prediction is poor: f64 cannot tell the knob from
-/// the end's.
-const LOG_CAP: f64 = 30.0;
-
-/// Likewise towards infinity, where the knob itself leaves the range of f64.
-const LOG_CAP_AT_INFINITY: f64 = 600.0;
+/// Beyond this |ln τ| an end at knob 0 or infinity is joined even where the prediction is poor: the knob leaves the range
+/// of f64. At other ends that is so where f64 cannot tell the knob from the end's.
+const LOG_CAP: f64 = 600.0;
 
 /// Where poles meet.
 #[derive(Clone, Copy, Debug)]
@@ -42,6 +40,9 @@ pub(super) struct Cluster {
     pub(super) s: Complex<f64>,
     /// How many poles meet.
     pub(super) multiplicity: usize,
+    /// Where two poles only just miss each other, the side to which they turn: the sign of [`super::Meeting::miss`]; 0
+    /// where they meet.
+    pub(super) turn: f64,
 }
 
 /// One end of a stretch.
@@ -211,7 +212,7 @@ impl Tracker<'_> {
         let mut s = approximations.to_vec();
         simultaneous(self.system, knob, &mut s)?;
         // The exact count of real poles says how many belong on the axis.
-        s.sort_by(|a, b| (libm::fabs(a.im) / a.modulus()).total_cmp(&(libm::fabs(b.im) / b.modulus())));
+        s.sort_by(|a, b| (libm::fabs(a.im) / magnitude(*a)).total_cmp(&(libm::fabs(b.im) / magnitude(*b))));
         let real = self.stretch.real;
         let mut carried: Vec<Complex<f64>> = s[..real].iter().map(|z| Complex::new(z.re, 0.0)).collect();
         carried.extend(s[real..].iter().filter(|z| z.im > 0.0));
@@ -238,11 +239,11 @@ impl Tracker<'_> {
             if real {
                 s.im = 0.0;
             }
-            if (s - predicted).modulus() > allowance {
+            if magnitude(s - predicted) > allowance {
                 return None;
             }
-            let step = newton.correction.modulus();
-            if step <= newton.floor.max(1e-13 * s.modulus()) {
+            let step = magnitude(newton.correction);
+            if step <= newton.floor.max(1e-13 * magnitude(s)) {
                 let mut velocity = newton.motion * (parameter.speed(v) / knob);
                 if real {
                     velocity.im = 0.0;
@@ -299,7 +300,7 @@ impl Tracker<'_> {
 
     /// How far the next step may go at the most.
     fn largest_step(&self, row: &Row) -> f64 {
-        let moving = |pole: &Carried| pole.velocity.modulus() > 1e-3 * pole.s.modulus();
+        let moving = |pole: &Carried| magnitude(pole.velocity) > 1e-3 * magnitude(pole.s);
         let seen = |pole: &Carried| moving(pole) && self.pixels.remoteness(pole.s) == 0.0;
         if row.poles.iter().any(seen) { LARGEST_STEP } else { LARGEST_STEP_OUTSIDE }
     }
@@ -307,17 +308,20 @@ impl Tracker<'_> {
     /// One step to v: the new row and by how much the next step may grow. None where the step was too bold.
     fn step(&self, from: &Row, v: f64) -> Option<(Row, f64)> {
         let h = v - from.v;
+        let predictions: Vec<Complex<f64>> = from.poles.iter().map(|pole| pole.s + pole.velocity * h).collect();
+        let before: Vec<Complex<f64>> = from.poles.iter().map(|pole| pole.s).collect();
         let mut poles = Vec::with_capacity(from.poles.len());
         let mut worst: f64 = 0.01;
         for (k, pole) in from.poles.iter().enumerate() {
-            let predicted = pole.s + pole.velocity * h;
-            let room = nearest_other(&from.poles, k);
+            let predicted = predictions[k];
+            // Both where the poles are and where they are thought to go: no two of them can end up in the same place.
+            let room = nearest_other(&before, k).min(nearest_other(&predictions, k));
             let next = self.corrected(pole.s, predicted, DRIFT * room, v)?;
             // A complex pole never crosses to the lower half plane inside of a stretch.
             if (pole.s.im > 0.0) != (next.s.im > 0.0) {
                 return None;
             }
-            let drift = (next.s - predicted).modulus() / (DRIFT * room);
+            let drift = magnitude(next.s - predicted) / (DRIFT * room);
             let sagitta = self.pixels.sagitta(pole.s, next.s, pole.velocity * h, next.velocity * h) / SAGITTA;
             if sagitta > 1.6 {
                 return None;
@@ -330,11 +334,21 @@ impl Tracker<'_> {
         Some((Row { knob: self.parameter().knob(v), v, poles }, ease))
     }
 
+    /// |ln τ| beyond which an end is joined in any case.
+    fn log_cap(&self, way: Way) -> f64 {
+        let Parameter { inner, outer, .. } = self.parameter();
+        let end = if way == Way::Inward { inner } else { outer };
+        if end == 0.0 || end.is_infinite() {
+            return LOG_CAP;
+        }
+        let width = if outer.is_finite() { outer - inner } else { inner };
+        libm::log(width / (8.0 * f64::EPSILON * end)).max(0.0)
+    }
+
     /// Whether the end can be joined to this row by straight chords; then how.
     fn arrivals(&self, row: &Row, way: Way) -> Option<Vec<Arrival>> {
         let end = if way == Way::Inward { &self.stretch.inner } else { &self.stretch.outer };
-        let at_infinity = way == Way::Outward && self.stretch.outer.knob.is_infinite();
-        let forced = row.v.abs() > if at_infinity { LOG_CAP_AT_INFINITY } else { LOG_CAP };
+        let forced = row.v.abs() > self.log_cap(way);
         let mut arrivals: Vec<Option<Arrival>> = alloc::vec![None; row.poles.len()];
         self.send_to_infinity(row, end, forced, &mut arrivals)?;
         for (number, cluster) in end.clusters.iter().enumerate() {
@@ -344,7 +358,7 @@ impl Tracker<'_> {
             if !end.others_stay {
                 return None;
             }
-            *arrival = Some(Arrival::Place(self.settled(row, k, end.knob)?));
+            *arrival = Some(Arrival::Place(self.settled(row, k, end.knob, forced)?));
         }
         arrivals.into_iter().collect()
     }
@@ -381,9 +395,9 @@ impl Tracker<'_> {
         forced: bool,
         arrivals: &mut [Option<Arrival>],
     ) -> Option<()> {
-        let (number, Cluster { s, multiplicity }) = cluster;
+        let (number, Cluster { s, multiplicity, .. }) = cluster;
         let mut order: Vec<usize> = (0..row.poles.len()).filter(|k| arrivals[*k].is_none()).collect();
-        let distance = |k: usize| (row.poles[k].s - s).modulus();
+        let distance = |k: usize| magnitude(row.poles[k].s - s);
         order.sort_by(|a, b| distance(*a).total_cmp(&distance(*b)));
         let mut left = *multiplicity;
         let mut farthest: f64 = 0.0;
@@ -413,11 +427,12 @@ impl Tracker<'_> {
         // (q − q*)·ds/dq, or −q·ds/dq towards infinity: dv is d ln|q − q*| near the end.
         let end_speed = self.end_motion(row, way, pole);
         let predicted = pole.s - end_speed * multiplicity as f64;
-        let distance = (pole.s - s).modulus();
-        let miss = (predicted - s).modulus();
-        // A miss across the chord bends the curve by about a quarter of it.
-        let bend = self.pixels.sagitta(pole.s, s, predicted - pole.s, s - pole.s);
-        (miss <= 0.2 * distance && bend <= 2.0 * SAGITTA) || (distance == 0.0)
+        let distance = magnitude(pole.s - s);
+        let miss = magnitude(predicted - s);
+        // The parabola that leaves with this velocity and ends in s.
+        let (chord, out) = (s - pole.s, predicted - pole.s);
+        let bend = self.pixels.sagitta(pole.s, s, out, chord * 2.0 - out);
+        (miss <= 0.2 * distance && bend <= 1.6 * SAGITTA) || distance == 0.0
     }
 
     /// ds/d ln|q − q*| at the end the row is heading for.
@@ -432,11 +447,12 @@ impl Tracker<'_> {
     }
 
     /// The place of a pole that neither meets another nor vanishes, at the end's knob.
-    fn settled(&self, row: &Row, k: usize, knob: f64) -> Option<Complex<f64>> {
+    fn settled(&self, row: &Row, k: usize, knob: f64, forced: bool) -> Option<Complex<f64>> {
         let pole = row.poles[k];
         let by_knob = pole.velocity / self.parameter().speed(row.v);
         let predicted = pole.s + by_knob * (knob - row.knob);
-        let room = nearest_other(&row.poles, k);
+        let places: Vec<Complex<f64>> = row.poles.iter().map(|pole| pole.s).collect();
+        let room = nearest_other(&places, k);
         let mut s = predicted;
         for _ in 0..NEWTON_CAP {
             let newton = self.system.newton(s, knob)?;
@@ -444,13 +460,13 @@ impl Tracker<'_> {
             if pole.s.im == 0.0 {
                 s.im = 0.0;
             }
-            if (s - predicted).modulus() > DRIFT * room {
+            if magnitude(s - predicted) > DRIFT * room {
                 return None;
             }
-            if newton.correction.modulus() <= newton.floor.max(1e-13 * s.modulus()) {
+            if magnitude(newton.correction) <= newton.floor.max(1e-13 * magnitude(s)) {
                 let motion = newton.motion * ((knob - row.knob) / knob);
                 let bend = self.pixels.sagitta(pole.s, s, by_knob * (knob - row.knob), motion);
-                return (bend <= 1.6 * SAGITTA).then_some(s);
+                return (forced || bend <= 1.6 * SAGITTA).then_some(s);
             }
         }
         None
@@ -458,12 +474,12 @@ impl Tracker<'_> {
 }
 
 /// The distance to the nearest other pole, mirrored ones included.
-fn nearest_other(poles: &[Carried], k: usize) -> f64 {
-    let s = poles[k].s;
-    let own_mirror = if s.im > 0.0 { 2.0 * s.im } else { f64::INFINITY };
-    poles.iter().enumerate().filter(|(j, _)| *j != k).fold(own_mirror, |nearest, (_, other)| {
+fn nearest_other(places: &[Complex<f64>], k: usize) -> f64 {
+    let s = places[k];
+    let own_mirror = if s.im == 0.0 { f64::INFINITY } else { 2.0 * s.im.abs() };
+    places.iter().enumerate().filter(|(j, _)| *j != k).fold(own_mirror, |nearest, (_, other)| {
         // In the closed upper half plane the mirrored pole is never the nearer one.
-        nearest.min((other.s - s).modulus())
+        nearest.min(magnitude(other - s))
     })
 }
 
@@ -476,7 +492,7 @@ fn simultaneous(system: &System, knob: f64, s: &mut [Complex<f64>]) -> Result<()
         for i in 0..s.len() {
             let Some(newton) = system.newton(s[i], knob) else {
                 // On a pole of the open loop: step aside.
-                let aside = s[i].modulus().max(f64::MIN_POSITIVE) * 1e-9;
+                let aside = magnitude(s[i]).max(f64::MIN_POSITIVE) * 1e-9;
                 s[i] += Complex::new(aside, aside);
                 settled = false;
                 continue;
@@ -488,7 +504,7 @@ fn simultaneous(system: &System, knob: f64, s: &mut [Complex<f64>]) -> Result<()
                 return Err(Lost);
             }
             s[i] -= step;
-            settled &= newton.correction.modulus() <= newton.floor.max(1e-13 * s[i].modulus());
+            settled &= magnitude(newton.correction) <= newton.floor.max(1e-13 * magnitude(s[i]));
         }
         if settled {
             return Ok(());

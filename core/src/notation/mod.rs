@@ -47,5 +47,6 @@ pub const MAXIMUM_DECIMAL_EXPONENT: i32 = 60;
 /// The most digits in a number, before and behind the point together.
 pub const MAXIMUM_DIGITS: usize = 60;
 
-/// The largest whole exponent of a power, either sign: the largest order of a loop.
-pub const MAXIMUM_POWER: i32 = 40;
+/// The largest whole exponent of a power, either sign: ten times the largest order of a loop, so that a block of too high
+/// an order is told its order.
+pub const MAXIMUM_POWER: i32 = 400;

@@ -56,8 +56,8 @@ pub fn boundary_places(
     let rest = without_common_roots(&finite, &at_zero);
     let quotients = [Quotient { above: d1, below: n1 }, Quotient { above: d2, below: n2 }];
     for mut root in positive_roots(&rest)? {
-        let (bracket, exact) = knob_at(&rest, &mut root, &quotients)?;
-        places.push(Place { bracket, exact, contacts: [contact(root.to_f64())].into() });
+        let bracket = knob_at(&rest, &mut root, &quotients)?;
+        places.push(Place::within(bracket, contact(root.to_f64())));
     }
     Ok(Some(places))
 }
@@ -82,8 +82,8 @@ fn even_places(d: &IntPoly, n: &IntPoly, mut places: Vec<Place>) -> Result<Vec<P
     }
     let rest = without_common_roots(&finite, &at_zero);
     for mut root in positive_roots(&rest)? {
-        let (bracket, exact) = knob_at(&rest, &mut root, &[Quotient { above: d, below: n }])?;
-        places.push(Place { bracket, exact, contacts: [Contact::Axis { omega: libm::sqrt(root.to_f64()) }].into() });
+        let bracket = knob_at(&rest, &mut root, &[Quotient { above: d, below: n }])?;
+        places.push(Place::within(bracket, Contact::Axis { omega: libm::sqrt(root.to_f64()) }));
     }
     Ok(places)
 }
@@ -104,9 +104,9 @@ pub fn real_meetings(d: &IntPoly, n: &IntPoly) -> Result<Vec<Place>, ExactError>
         }
         let rest = without_common_roots(&finite, &at_zero);
         for mut root in real_roots(&rest)? {
-            let (bracket, exact) = knob_at(&rest, &mut root, &[Quotient { above: d, below: n }])?;
+            let bracket = knob_at(&rest, &mut root, &[Quotient { above: d, below: n }])?;
             let contact = Contact::RealMeeting { s: root.to_f64(), multiplicity: order + 1 };
-            places.push(Place { bracket, exact, contacts: [contact].into() });
+            places.push(Place::within(bracket, contact));
         }
     }
     Ok(places)

@@ -1,17 +1,24 @@
 //! The real line of the knob, cut into ranges with a verdict on each range and on each place between two.
 
-use super::place::{Contact, Place, merge, samples};
+use super::place::{Contact, Place, merge, samples, short_rational};
 use super::verdict::{Verdict, name, verdict};
 use super::{Family, affine, polynomial};
-use crate::exact::complex_roots::{Disc, ROOT_BITS, enclose_all};
-use crate::exact::half_plane::HalfPlaneCount;
-use crate::exact::{ExactError, IntPoly};
+use crate::exact::complex_roots::{ROOT_BITS, enclose_all};
+use crate::exact::gcd::gcd;
+use crate::exact::half_plane::{HalfPlaneCount, count};
+use crate::exact::{ExactError, IntPoly, Interval};
+use crate::numerics::magnitude;
 use crate::record::{CharacterName, CharacterRange, Edge, EdgeKind, StabilityRange};
 use alloc::vec::Vec;
-use nalgebra::ComplexField;
+use dashu_ratio::RBig;
+use nalgebra::Complex;
 
-/// At a bracket of 2^−56 a pole that is on the axis at the edge is computed within this fraction of its magnitude of it.
-const ON_AXIS: f64 = 1e-12;
+/// At a bracket of 2^−200 poles that meet, or are on the axis, at the place itself are computed within this fraction of
+/// their magnitude of each other, or of it: three that meet are split by 2^−66.
+const ON_AXIS: f64 = 1e-14;
+
+/// A pole at the origin is computed there within this part of the largest pole.
+const ORIGIN: f64 = 1e-25;
 
 /// Digits of the bracket's decimals: one more than 1e-17 relative needs.
 const BRACKET_DIGITS: u32 = 19;
@@ -44,13 +51,19 @@ impl Partition {
         let meetings = real_meetings(family);
         let with_meetings = meetings.is_ok();
         places.extend(meetings.unwrap_or_default());
-        let places = merge(places);
-        let whole = |moving: &IntPoly| verdict(&moving.times(&family.fixed));
-        let ranges = samples(&places).iter().map(|q| whole(&family.at(q))).collect::<Result<Vec<_>, _>>()?;
+        let mut places = merge(places);
+        let ranges =
+            samples(&places).iter().map(|q| verdict(&family.at(q), &family.fixed)).collect::<Result<Vec<_>, _>>()?;
         let mut at_places = Vec::with_capacity(places.len());
-        for (i, place) in places.iter().enumerate() {
+        for (i, place) in places.iter_mut().enumerate() {
+            if place.exact.is_none() {
+                place.exact = short_rational(&place.bracket).filter(|q| happens_at(family, place, q));
+            }
             at_places.push(match &place.exact {
-                Some(q) => whole(&family.at(q))?,
+                Some(q) => {
+                    place.bracket = Interval::around(q, super::EDGE_BITS as usize);
+                    verdict(&family.at(q).times(&family.fixed), &IntPoly::from_i64(&[1]))?
+                }
                 None => between(family, place, &ranges[i], &ranges[i + 1])?,
             });
         }
@@ -75,9 +88,10 @@ impl Partition {
             return Vec::new();
         }
         let kind = |v: &Verdict| (v.real, v.pairs, v.name);
+        // A character that is met only exactly at the place is a change, too.
         let cuts = self.cuts(|i| {
-            kind(&self.ranges[i]) != kind(&self.ranges[i + 1])
-                || (self.is_stability_place(i) && self.at_places[i].name != self.ranges[i].name)
+            let (below, here, above) = (kind(&self.ranges[i]), kind(&self.at_places[i]), kind(&self.ranges[i + 1]));
+            below != above || (here.0, here.2) != (below.0, below.2)
         });
         ranges_between(&cuts, |from, to, first| CharacterRange {
             from: from.map(|i| self.edge(i)),
@@ -115,8 +129,9 @@ impl Partition {
                 None => place.bracket.decimal_bracket(BRACKET_DIGITS),
             },
             exact: place.exact.as_ref().map(crate::exact::dyadic::exact_text),
-            // Of a family of higher degree in the knob a touching edge is told from a near miss by 100 bits, not by proof.
-            proven: self.affine || !touching,
+            // Of a family of higher degree in the knob an irrational touching edge is told from a near miss by 100 bits, not
+            // by proof.
+            proven: self.affine || !touching || place.exact.is_some(),
             kind: self.kind(i),
             omega: omegas.first().copied(),
             omegas,
@@ -158,10 +173,9 @@ fn real_meetings(family: &Family) -> Result<Vec<Place>, ExactError> {
         None => Ok(polynomial::meetings(family)?
             .into_iter()
             .filter(|meeting| meeting.s.im == 0.0)
-            .map(|meeting| Place {
-                bracket: meeting.bracket,
-                exact: meeting.exact,
-                contacts: [Contact::RealMeeting { s: meeting.s.re, multiplicity: meeting.multiplicity }].into(),
+            .map(|meeting| {
+                let contact = Contact::RealMeeting { s: meeting.s.re, multiplicity: meeting.multiplicity };
+                Place::within(meeting.bracket, contact)
             })
             .collect()),
     }
@@ -177,25 +191,36 @@ fn ranges_between<T>(cuts: &[usize], make: impl Fn(Option<usize>, Option<usize>,
         .collect()
 }
 
+/// Whether what a place says happens exactly at a rational number in its bracket.
+fn happens_at(family: &Family, place: &Place, q: &RBig) -> bool {
+    let p = family.at(q);
+    let on_axis = || count(&p).is_ok_and(|count| count.axis > 0);
+    let repeated = || gcd(&p, &p.derivative()).degree() > 0;
+    place.contacts.iter().all(|contact| match contact {
+        Contact::Axis { .. } => on_axis(),
+        Contact::RealMeeting { .. } => repeated(),
+        Contact::Origin => p.coefficient(0).is_zero(),
+        Contact::DegreeDrop => p.degree() < family.moving_order(),
+    })
+}
+
 /// The verdict at an irrational place, from its contacts and the verdicts on both sides.
 fn between(family: &Family, place: &Place, below: &Verdict, above: &Verdict) -> Result<Verdict, ExactError> {
     let (low, high) = (below.half_plane, above.half_plane);
     match &place.contacts[..] {
-        // Real poles meet away from the axis: nothing else changes, and at the meeting they are all real.
-        [Contact::RealMeeting { .. }] if low == high => {
-            let (real, pairs) = (below.real.max(above.real), below.pairs.min(above.pairs));
+        // Poles meet on the real axis away from the origin: they are all real there, and nothing else changes.
+        [Contact::RealMeeting { multiplicity, .. }] if low == high && low.axis == 0 => {
+            // Of an odd number one is real on both sides; of an even number none, or two, depending on the side.
+            let joined = multiplicity - multiplicity % 2;
+            let real = below.real.min(above.real) + joined;
+            let pairs = (below.real + 2 * below.pairs - real) / 2;
             Ok(Verdict { half_plane: low, real, pairs, name: name(low, pairs, pairs == 0) })
         }
         // One pair crosses: it is on the axis, and the others are where they are on the better side.
-        [Contact::Axis { .. }] if low.right.abs_diff(high.right) == 2 => {
-            let half_plane = HalfPlaneCount { right: low.right.min(high.right), axis: low.axis + 2 };
-            let fixed_on_axis = low.axis > 0;
-            Ok(Verdict {
-                half_plane,
-                real: below.real,
-                pairs: below.pairs,
-                name: name(half_plane, below.pairs, fixed_on_axis),
-            })
+        [Contact::Axis { .. }] if low.right.abs_diff(high.right) == 2 && low.axis == 0 => {
+            let half_plane = HalfPlaneCount { right: low.right.min(high.right), axis: 2 };
+            let (real, pairs) = (below.real, below.pairs);
+            Ok(Verdict { half_plane, real, pairs, name: name(half_plane, pairs, false) })
         }
         _ => looked_at(family, place),
     }
@@ -204,18 +229,28 @@ fn between(family: &Family, place: &Place, below: &Verdict, above: &Verdict) -> 
 /// Several things at once, or a touch: the roots at the middle of the bracket show what is on the axis.
 fn looked_at(family: &Family, place: &Place) -> Result<Verdict, ExactError> {
     let p = family.at_dyadic(&place.bracket.midpoint()).times(&family.fixed);
-    let roots: Vec<(nalgebra::Complex<f64>, usize)> =
-        enclose_all(&p, ROOT_BITS)?.iter().map(|disc: &Disc| (disc.center.to_f64(), disc.multiplicity)).collect();
-    let on_axis = |z: &nalgebra::Complex<f64>| libm::fabs(z.re) <= ON_AXIS * z.modulus();
-    let sum = |wanted: &dyn Fn(&nalgebra::Complex<f64>) -> bool| {
-        roots.iter().filter(|(z, _)| wanted(z)).map(|(_, m)| m).sum::<usize>()
-    };
+    let mut roots: Vec<(Complex<f64>, usize)> = Vec::new();
+    for disc in enclose_all(&p, ROOT_BITS)? {
+        // What coincides at the place itself coincides here within rounding.
+        let z = disc.center.to_f64();
+        match roots.iter_mut().find(|(known, _)| magnitude(*known - z) <= ON_AXIS * magnitude(z)) {
+            Some((_, multiplicity)) => *multiplicity += disc.multiplicity,
+            None => roots.push((z, disc.multiplicity)),
+        }
+    }
+    // At the origin the knob's own rounding remains, far below every other pole.
+    let largest = roots.iter().map(|(z, _)| magnitude(*z)).fold(0.0, f64::max);
+    let at_origin = place.contacts.contains(&Contact::Origin);
+    let is_origin = |z: &Complex<f64>| magnitude(*z) == 0.0 || (at_origin && magnitude(*z) <= ORIGIN * largest);
+    let on_axis = |z: &Complex<f64>| is_origin(z) || libm::fabs(z.re) <= ON_AXIS * magnitude(*z);
+    let sum =
+        |wanted: &dyn Fn(&Complex<f64>) -> bool| roots.iter().filter(|(z, _)| wanted(z)).map(|(_, m)| m).sum::<usize>();
     let axis = sum(&|z| on_axis(z));
-    let real = sum(&|z| libm::fabs(z.im) <= ON_AXIS * z.modulus());
+    let real = sum(&|z| is_origin(z) || libm::fabs(z.im) <= ON_AXIS * magnitude(*z));
     let half_plane = HalfPlaneCount { right: sum(&|z| !on_axis(z) && z.re > 0.0), axis };
-    let distinct = place.contacts.iter().filter(|c| matches!(c, Contact::Axis { .. })).count();
     let pairs = (p.degree() - real) / 2;
-    Ok(Verdict { half_plane, real, pairs, name: name(half_plane, pairs, axis > 2 * distinct || axis == 0) })
+    let repeated = roots.iter().any(|(z, m)| *m > 1 && (axis == 0 || on_axis(z)));
+    Ok(Verdict { half_plane, real, pairs, name: name(half_plane, pairs, repeated) })
 }
 
 impl Contact {

@@ -102,10 +102,11 @@ fn sentence(base: &[Piece], limits: &[Limit], lanes: &[Lane], set: &[usize], sca
 fn spoken(piece: &Piece, scale: &Scale) -> String {
     let (low, high) = if scale.rises() { (&piece.from, &piece.to) } else { (&piece.to, &piece.from) };
     let at = |border: &Option<Border>| border.as_ref().and_then(|b| scale.setting_f64(b.value())).map(short);
+    let unit = if scale.unit.is_empty() { String::new() } else { format!(" {}", scale.unit) };
     match (at(low), at(high)) {
-        (Some(low), Some(high)) => format!("{low} to {high}"),
-        (Some(low), None) => format!("{low} and more"),
-        (None, Some(high)) => format!("up to {high}"),
+        (Some(low), Some(high)) => format!("{low} to {high}{unit}"),
+        (Some(low), None) => format!("{low}{unit} and more"),
+        (None, Some(high)) => format!("up to {high}{unit}"),
         (None, None) => "every setting".to_string(),
     }
 }

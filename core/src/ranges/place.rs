@@ -7,15 +7,16 @@ use dashu_int::IBig;
 use dashu_int::ops::BitTest;
 use dashu_ratio::RBig;
 
-/// Brackets are narrowed to 2^−56 of their value: two of them merged are still within 1e-15.
-pub const EDGE_BITS: i64 = 56;
+/// Brackets are narrowed to 2^−200 of their value. The record needs 2^−53; the rest tells edges apart that f64 cannot,
+/// shows which of them are rational, and keeps poles that meet there within 2^−100 of each other.
+pub const EDGE_BITS: i64 = 200;
 
 /// Bits of refinement of the argument tried before an edge is given up: far beyond what any cancellation in an order
 /// of 40 asks for.
 const ARGUMENT_BITS_CAP: i64 = 8192;
 
-/// Denominators longer than this are not tried when looking for a rational root: nobody would read the fraction.
-const RATIONAL_BITS: usize = 96;
+/// A rational number this short in a bracket of [`EDGE_BITS`] is no accident: it is tried as the edge itself.
+const RATIONAL_BITS: usize = 150;
 
 /// What happens at a place.
 #[derive(Clone, Debug, PartialEq)]
@@ -138,25 +139,11 @@ pub(super) struct Quotient<'a> {
 }
 
 /// The knob −above(x)/below(x) at a root x of the square-free `p`, narrow; at least one of the quotients must be defined
-/// at x, and where several are they must agree there.
+/// at x, and where several are they must agree there. The root is refined on the way.
 ///
 /// # Errors
 /// [`ExactError::EdgeNotNarrow`] when the cap on refinement is met.
-pub(super) fn knob_at(
-    p: &IntPoly,
-    root: &mut RealRoot,
-    quotients: &[Quotient<'_>],
-) -> Result<(Interval, Option<RBig>), ExactError> {
-    if let Some(x) = rational_root(p, root)? {
-        for quotient in quotients {
-            let below = value_at(quotient.below, &x);
-            if !below.is_zero() {
-                let q = -value_at(quotient.above, &x) / below;
-                return Ok((Interval::around(&q, EDGE_BITS as usize + 8), Some(q)));
-            }
-        }
-        return Err(ExactError::EdgeNotNarrow);
-    }
+pub(super) fn knob_at(p: &IntPoly, root: &mut RealRoot, quotients: &[Quotient<'_>]) -> Result<Interval, ExactError> {
     let mut bits = EDGE_BITS + 8;
     while bits <= ARGUMENT_BITS_CAP {
         root.refine_to(p, bits)?;
@@ -169,42 +156,42 @@ pub(super) fn knob_at(
             }
         }
         if let Some(q) = known.filter(|q| q.narrow(EDGE_BITS)) {
-            return Ok((q, None));
+            return Ok(q);
         }
         bits *= 2;
     }
     Err(ExactError::EdgeNotNarrow)
 }
 
-/// p at a rational number.
-pub(super) fn value_at(p: &IntPoly, x: &RBig) -> RBig {
-    p.coefficients().iter().rev().fold(RBig::ZERO, |sum, c| sum * x + RBig::from(c.clone()))
+/// The short rational number in a narrow bracket, if there is one: the last convergent of the continued fraction that
+/// both ends share. Whether it is the edge itself must be checked.
+pub(super) fn short_rational(bracket: &Interval) -> Option<RBig> {
+    let (mut low, mut high) = (bracket.low.to_rational(), bracket.high.to_rational());
+    if low == high {
+        return Some(low).filter(is_short);
+    }
+    // Convergents h/k, of which the last two are carried.
+    let (mut h, mut h_before) = (IBig::ONE, IBig::ZERO);
+    let (mut k, mut k_before) = (IBig::ZERO, IBig::ONE);
+    while h.bit_len() + k.bit_len() <= RATIONAL_BITS {
+        let (floor, above) = (low.floor(), high.floor());
+        let last = floor != above || low == RBig::from(floor.clone());
+        // The simplest number between two whose whole parts differ is the whole number above the lower one.
+        let term = if last && low != RBig::from(floor.clone()) { &floor + 1 } else { floor.clone() };
+        (h, h_before) = (&term * &h + &h_before, h);
+        (k, k_before) = (&term * &k + &k_before, k);
+        if last {
+            return Some(RBig::from_parts_signed(h, k)).filter(is_short);
+        }
+        // The fractional parts, turned over, exchange their order.
+        let whole = RBig::from(floor);
+        (low, high) = (RBig::ONE / (high - &whole), RBig::ONE / (low - &whole));
+    }
+    None
 }
 
-/// The root as a rational number, where it is one with a short denominator.
-///
-/// # Errors
-/// As [`RealRoot::refine_until`].
-pub(super) fn rational_root(p: &IntPoly, root: &mut RealRoot) -> Result<Option<RBig>, ExactError> {
-    if root.is_exact() {
-        return Ok(Some(root.bracket.low.to_rational()));
-    }
-    let leading = p.leading();
-    if leading.bit_len() > RATIONAL_BITS {
-        return Ok(None);
-    }
-    // The denominator of a rational root divides the leading coefficient: lc·x is then an integer.
-    let scale = Dyadic::new(leading.clone(), 0);
-    root.refine_until(p, |bracket| {
-        let width = &(&bracket.high - &bracket.low) * &scale;
-        width.magnitude().is_none_or(|m| m < 0)
-    })?;
-    let scaled = &root.bracket.high * &scale;
-    let scaled = if scale.signum() < 0 { &root.bracket.low * &scale } else { scaled };
-    let shift = -scaled.exponent.min(0) as usize;
-    let numerator = (scaled.mantissa << (scaled.exponent.max(0) as usize)) >> shift;
-    let candidate = RBig::from_parts_signed(numerator, leading);
-    Ok(value_at(p, &candidate).is_zero().then_some(candidate))
+fn is_short(value: &RBig) -> bool {
+    value.numerator().bit_len() + value.denominator().bit_len() <= RATIONAL_BITS
 }
 
 #[cfg(test)]
@@ -225,12 +212,15 @@ mod tests {
     }
 
     #[test]
-    fn a_rational_root_is_recognised() {
-        // (7x − 3)(x² − 2)
-        let p = IntPoly::from_i64(&[-3, 7]).times(&IntPoly::from_i64(&[-2, 0, 1]));
-        let mut roots = positive_roots(&p).expect("isolated");
-        let found: Vec<_> = roots.iter_mut().map(|r| rational_root(&p, r).expect("refined")).collect();
-        assert_eq!(found, [Some(RBig::from_parts(3.into(), 7u8.into())), None]);
+    fn a_short_rational_is_recognised_and_no_other() {
+        let around = |n: i64, d: u64| Interval::around(&RBig::from_parts(n.into(), d.into()), EDGE_BITS as usize);
+        for (n, d) in [(3, 7), (-2, 15), (1386, 1), (-1, 1_000_003), (5120, 9)] {
+            assert_eq!(short_rational(&around(n, d)), Some(RBig::from_parts(n.into(), d.into())), "{n}/{d}");
+        }
+        let p = IntPoly::from_i64(&[-2, 0, 1]);
+        let mut root = positive_roots(&p).expect("isolated").remove(0);
+        root.refine_to(&p, EDGE_BITS).expect("refined");
+        assert_eq!(short_rational(&root.bracket), None);
     }
 
     #[test]

@@ -6,16 +6,16 @@
 //! counts on both sides and no pole near the axis, and dropped. Multiple poles make the discriminant vanish.
 
 use super::Family;
-use super::place::{Contact, EDGE_BITS, Place, rational_root};
+use super::place::{Contact, EDGE_BITS, Place};
 use crate::exact::complex_roots::{Disc, enclose_all};
 use crate::exact::gcd::{squarefree_part, without_common_roots};
 use crate::exact::real_roots::real_roots;
 use crate::exact::resultant::{interpolated, resultant};
 use crate::exact::{Dyadic, ExactError, IntPoly, Interval};
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
 use dashu_int::IBig;
-use dashu_ratio::RBig;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// A candidate's knob is refined to this many bits before the poles there are looked at: a pole within 2^−100 of the axis
 /// then belongs to it.
@@ -50,7 +50,6 @@ pub fn stability_places(family: &Family) -> Result<Vec<Place>, ExactError> {
     let outer = family.in_knob(0).times(&family.in_knob(order));
     let rest = without_common_roots(&orlando, &outer);
     for mut root in real_roots(&rest)? {
-        let exact = rational_root(&rest, &mut root)?;
         root.refine_to(&rest, CANDIDATE_BITS)?;
         let omegas = axis_frequencies(&enclose_at(family, &root.bracket.midpoint())?);
         if omegas.is_empty() {
@@ -59,7 +58,7 @@ pub fn stability_places(family: &Family) -> Result<Vec<Place>, ExactError> {
         let bracket = root.bracket.rounded(EDGE_BITS as usize + 8);
         places.push(Place {
             bracket,
-            exact,
+            exact: None,
             contacts: omegas.into_iter().map(|omega| Contact::Axis { omega }).collect(),
         });
     }
@@ -70,8 +69,6 @@ pub fn stability_places(family: &Family) -> Result<Vec<Place>, ExactError> {
 pub struct Meeting {
     /// The knob lies in this bracket.
     pub bracket: Interval,
-    /// The knob itself, where it is known to be rational.
-    pub exact: Option<RBig>,
     /// Where they meet, in the closed upper half plane, 1/s; the imaginary part is exactly 0 on the real axis.
     pub s: Complex<f64>,
     /// How many meet.
@@ -90,11 +87,10 @@ pub fn meetings(family: &Family) -> Result<Vec<Meeting>, ExactError> {
     let rest = without_common_roots(&squarefree_part(&discriminant), &family.in_knob(family.moving_order()));
     let mut found = Vec::new();
     for mut root in real_roots(&rest)? {
-        let exact = rational_root(&rest, &mut root)?;
         root.refine_to(&rest, CANDIDATE_BITS)?;
         let bracket = root.bracket.rounded(EDGE_BITS as usize + 8);
         for (s, multiplicity) in meeting_points(&enclose_at(family, &root.bracket.midpoint())?) {
-            found.push(Meeting { bracket: bracket.clone(), exact: exact.clone(), s, multiplicity });
+            found.push(Meeting { bracket: bracket.clone(), s, multiplicity });
         }
     }
     Ok(found)
@@ -131,10 +127,10 @@ fn meeting_points(discs: &[Disc]) -> Vec<(Complex<f64>, usize)> {
     let mut groups: Vec<(Complex<f64>, usize)> = Vec::new();
     for disc in discs {
         let mut z = disc.center.to_f64();
-        if z.im.abs() <= TOGETHER * z.modulus() {
+        if z.im.abs() <= TOGETHER * magnitude(z) {
             z.im = 0.0;
         }
-        match groups.iter_mut().find(|(center, _)| (*center - z).modulus() <= TOGETHER * z.modulus()) {
+        match groups.iter_mut().find(|(center, _)| magnitude(*center - z) <= TOGETHER * magnitude(z)) {
             Some((_, count)) => *count += disc.multiplicity,
             None => groups.push((z, disc.multiplicity)),
         }
@@ -152,9 +148,8 @@ fn knob_places(p: &IntPoly, contact: &Contact) -> Result<Vec<Place>, ExactError>
     let p = squarefree_part(p);
     for mut root in real_roots(&p)? {
         root.refine_to(&p, EDGE_BITS + 8)?;
-        let exact = rational_root(&p, &mut root)?;
         let bracket = root.bracket.rounded(EDGE_BITS as usize + 8);
-        places.push(Place { bracket, exact, contacts: [contact.clone()].into() });
+        places.push(Place::within(bracket, contact.clone()));
     }
     Ok(places)
 }

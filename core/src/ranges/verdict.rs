@@ -18,18 +18,22 @@ pub struct Verdict {
     pub name: CharacterName,
 }
 
-/// Looks at any polynomial but zero.
+/// Looks at the product of a moving and a fixed polynomial, neither of them zero. Poles of the one that happen to coincide
+/// with poles of the other do not count as repeated: in a range they do so at single knob values only.
 ///
 /// # Errors
 /// From the exact methods, when a cap is met.
-pub fn verdict(p: &IntPoly) -> Result<Verdict, ExactError> {
-    let half_plane = count(p)?;
-    let real = count_real(p)?;
-    let pairs = (p.degree() - real) / 2;
+pub fn verdict(moving: &IntPoly, fixed: &IntPoly) -> Result<Verdict, ExactError> {
+    let half_plane = count(moving)?.plus(count(fixed)?);
+    let real = count_real(moving)? + count_real(fixed)?;
+    let pairs = (moving.degree() + fixed.degree() - real) / 2;
     // Repetition matters on the axis, and where every pole is real.
     let repeated = if half_plane.right == 0 && (half_plane.axis > 0 || pairs == 0) {
-        let common = gcd::gcd(p, &p.derivative());
-        if half_plane.axis > 0 { count(&common)?.axis > 0 } else { common.degree() > 0 }
+        let is_repeated = |p: &IntPoly| -> Result<bool, ExactError> {
+            let common = gcd::gcd(p, &p.derivative());
+            if half_plane.axis > 0 { Ok(count(&common)?.axis > 0) } else { Ok(common.degree() > 0) }
+        };
+        is_repeated(moving)? || is_repeated(fixed)?
     } else {
         false
     };
@@ -53,7 +57,7 @@ mod tests {
 
     #[test]
     fn the_words_are_the_trades() {
-        let word = |c: &[i64]| verdict(&IntPoly::from_i64(c)).expect("counted").name;
+        let word = |c: &[i64]| verdict(&IntPoly::from_i64(c), &IntPoly::from_i64(&[1])).expect("counted").name;
         assert_eq!(word(&[2, 3, 1]), CharacterName::Overdamped);
         assert_eq!(word(&[1, 2, 1]), CharacterName::CriticallyDamped);
         assert_eq!(word(&[1, 1, 1]), CharacterName::Underdamped);

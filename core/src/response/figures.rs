@@ -10,6 +10,9 @@ use nalgebra::ComplexField;
 /// A static gain below this part of the answer's largest mode is zero but for rounding.
 const NO_FINAL_VALUE: f64 = 1e-12;
 
+/// An excess below this part of the final value is none but for rounding.
+const NO_EXCESS: f64 = 1e-9;
+
 /// A figure.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub enum Figure {
@@ -112,11 +115,10 @@ impl LoopAt {
     pub fn peak_time(&self) -> Option<f64> {
         let (modes, peaks) = self.output()?;
         let (_, time) = if modes.final_value > 0.0 { peaks.highest } else { peaks.lowest };
-        (has_final_value(modes, peaks) && time.is_finite() && time > 0.0).then_some(time)
+        (has_final_value(modes, peaks) && time.is_finite()).then_some(time)
     }
 
-    /// The static error |lim s·E(s)| for the command 1/s^(order + 1), where E = (1 − T)/s^(order + 1) and 1 − T = D/F with
-    /// the sensor's static gain in T.
+    /// The static error at the comparison, |lim s·E(s)| for the command 1/s^(order + 1) and E = D/F·1/s^(order + 1).
     fn static_error(&self, order: usize) -> Figure {
         match static_error(&self.open.below, &self.closed, order) {
             Some(error) => Figure::Value(error.to_f64().value().abs()),
@@ -147,23 +149,24 @@ fn largest(peaks: &Peaks) -> f64 {
 pub fn overshoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
     let end = modes.final_value;
     let beyond = if end > 0.0 { peaks.highest.0 - end } else { end - peaks.lowest.0 };
-    has_final_value(modes, peaks).then(|| 100.0 * beyond.max(0.0) / end.abs())
+    has_final_value(modes, peaks).then(|| percentage(beyond, end))
 }
 
 /// % of the final value on the other side of zero.
 pub fn undershoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
     let end = modes.final_value;
     let opposite = if end > 0.0 { -peaks.lowest.0 } else { peaks.highest.0 };
-    has_final_value(modes, peaks).then(|| 100.0 * opposite.max(0.0) / end.abs())
+    has_final_value(modes, peaks).then(|| percentage(opposite, end))
+}
+
+fn percentage(excess: f64, end: f64) -> f64 {
+    let part = excess / end.abs();
+    if part > NO_EXCESS { 100.0 * part } else { 0.0 }
 }
 
 /// s, from 10 % to 90 % of the final value.
 pub fn rise_time(modes: &Modes) -> Option<f64> {
-    let end = modes.final_value;
-    if end == 0.0 {
-        return None;
-    }
-    Some((modes.first_reach(0.9 * end)? - modes.first_reach(0.1 * end)?).max(0.0))
+    Some(modes.first_reach(0.9)? - modes.first_reach(0.1)?)
 }
 
 #[cfg(test)]
@@ -185,7 +188,7 @@ mod tests {
     fn second_order_figures_follow_the_formulas() {
         for zeta in [0.1, 0.3, 0.5, 0.7, 0.9] {
             let modes = second_order(zeta);
-            let peaks = modes.peaks();
+            let peaks = modes.peaks().expect("found");
             let root = libm::sqrt(1.0 - zeta * zeta);
             let expected = 100.0 * libm::exp(-core::f64::consts::PI * zeta / root);
             assert!((overshoot(&modes, &peaks).expect("defined") - expected).abs() < 1e-8, "{zeta}");

@@ -5,7 +5,7 @@
 //! gain, or stable in several ranges, gain margins are the distances to the nearest crossing in each direction.
 
 use super::loop_at::LoopAt;
-use crate::exact::gcd::squarefree_part;
+use crate::exact::gcd::{gcd, squarefree_part, without_common_roots};
 use crate::exact::real_roots::positive_roots;
 use crate::exact::scaled::Scaled;
 use crate::exact::{ExactError, IntPoly};
@@ -24,7 +24,7 @@ const OMEGA_BITS: i64 = 40;
 const CURVE_POINTS: usize = 240;
 
 /// Points for each decade when looking for the peak of the sensitivity; lightly damped poles add their own.
-const SEARCH_POINTS: usize = 24;
+const SEARCH_POINTS: usize = 12;
 
 /// Decades searched and drawn below the slowest and above the fastest pole, zero or crossing.
 const DECADES_BEYOND: f64 = 1.0;
@@ -289,6 +289,9 @@ fn phase_crossings(open: &BlockAt) -> Result<Vec<PhaseCrossing>, ExactError> {
     }
     let crossing = d_odd.times(&n_even).minus(&d_even.times(&n_odd));
     let parts = [&n_even, &n_odd, &d_even, &d_odd].map(Scaled::new);
+    // Where N or D vanishes on the axis the open loop is zero or infinite, and no factor brings it to −1.
+    let finite = without_common_roots(&crossing, &gcd(&n_even, &n_odd));
+    let crossing = without_common_roots(&finite, &gcd(&d_even, &d_odd));
     for omega in frequencies(&crossing)? {
         let x = Complex::new(omega * omega, 0.0);
         let value = |k: usize| parts[k].value(x);

@@ -109,7 +109,7 @@ impl LoopAt {
             return None;
         }
         let modes = Modes::of_step(transfer, &self.poles)?;
-        let peaks = modes.peaks();
+        let peaks = modes.peaks()?;
         Some((modes, peaks))
     }
 

@@ -5,6 +5,7 @@
 
 use crate::exact::scaled::{Scaled, Wide};
 use crate::model::BlockAt;
+use crate::numerics::magnitude;
 use crate::record::Curve;
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
@@ -18,11 +19,14 @@ const TOGETHER: f64 = 1e-5;
 const STEP: f64 = 0.12;
 
 /// A mode below this part of the largest one no longer sets the step.
-const ACTIVE: f64 = 1e-6;
+const ACTIVE: f64 = 1e-8;
 
-/// Steps before the search for extremes ends. Extremes lie in the first oscillations; this many are needed only where
-/// fast and slow modes are both strong.
-const STEP_CAP: usize = 20_000;
+/// Steps before a search ends without an answer. Extremes lie in the first oscillations; this many are needed only where
+/// fast modes with next to no damping ride on slow ones.
+const STEP_CAP: usize = 300_000;
+
+/// A turn is looked at where the answer is nearer to the band's border than this part of the band.
+const NEAR_BAND: f64 = 0.1;
 
 /// Points of a curve for drawing.
 const CURVE_POINTS: usize = 480;
@@ -90,15 +94,15 @@ impl Modes {
 
     /// A bound on |y(τ) − y(∞)| for every τ ≥ t.
     fn envelope(&self, t: f64) -> f64 {
-        self.modes.iter().map(|mode| mode.coefficient.modulus() * libm::exp(mode.pole.re * t)).sum()
+        self.modes.iter().map(|mode| magnitude(mode.coefficient) * libm::exp(mode.pole.re * t)).sum()
     }
 
     /// The step that resolves the modes still alive at t.
     fn step_at(&self, t: f64) -> f64 {
-        let size = |mode: &Mode| mode.coefficient.modulus() * libm::exp(mode.pole.re * t);
+        let size = |mode: &Mode| magnitude(mode.coefficient) * libm::exp(mode.pole.re * t);
         let largest = self.modes.iter().map(size).fold(0.0, f64::max).max(ACTIVE * self.final_value.abs());
         let fastest =
-            self.modes.iter().filter(|m| size(m) > ACTIVE * largest).map(|m| m.pole.modulus()).fold(0.0, f64::max);
+            self.modes.iter().filter(|m| size(m) > ACTIVE * largest).map(|m| magnitude(m.pole)).fold(0.0, f64::max);
         if fastest > 0.0 { STEP / fastest } else { f64::INFINITY }
     }
 
@@ -121,67 +125,70 @@ impl Modes {
         high
     }
 
-    /// The highest and the lowest value.
-    pub fn peaks(&self) -> Peaks {
+    /// y′(t).
+    fn slope(&self, t: f64) -> f64 {
+        self.modes.iter().map(|mode| (mode.coefficient * mode.pole * (mode.pole * t).exp()).re).sum()
+    }
+
+    /// The highest and the lowest value. None where the search meets its cap.
+    pub fn peaks(&self) -> Option<Peaks> {
         let start = self.value(0.0);
         let end = self.final_value;
-        let mut walk = Walk::new(self);
         let mut highest = if start > end { (start, 0.0) } else { (end, f64::INFINITY) };
         let mut lowest = if start < end { (start, 0.0) } else { (end, f64::INFINITY) };
-        let (mut before, mut here) = ((0.0, start), walk.next());
         let tiny = 1e-9 * self.envelope(0.0);
+        let mut walk = Walk::new(self, 0.0, Heading::Later);
+        let mut before = Look { t: 0.0, y: start, slope: self.slope(0.0) };
         for _ in 0..STEP_CAP {
-            let next = walk.next();
-            let top = |a: f64, b: f64, c: f64| b >= a && b > c;
-            if top(before.1, here.1, next.1) {
-                let peak = self.refined(before.0, next.0, 1.0);
-                if peak.0 > highest.0 {
-                    highest = peak;
+            let here = walk.next();
+            if let Some((y, t)) = self.turn(&before, &here) {
+                if y > highest.0 {
+                    highest = (y, t);
                 }
-            }
-            if top(-before.1, -here.1, -next.1) {
-                let peak = self.refined(before.0, next.0, -1.0);
-                if peak.0 < lowest.0 {
-                    lowest = peak;
+                if y < lowest.0 {
+                    lowest = (y, t);
                 }
             }
             let envelope = walk.envelope;
             if envelope <= tiny || (end + envelope <= highest.0 && end - envelope >= lowest.0) {
-                break;
+                return Some(Peaks { highest, lowest });
             }
-            (before, here) = (here, next);
+            before = here;
         }
-        Peaks { highest, lowest }
+        None
     }
 
-    /// The largest (sign 1) or smallest (−1) value between two times around it, by golden sections.
-    fn refined(&self, mut low: f64, mut high: f64, sign: f64) -> (f64, f64) {
-        const GOLDEN: f64 = 0.618_033_988_749_894_9;
-        for _ in 0..40 {
-            let (a, b) = (high - GOLDEN * (high - low), low + GOLDEN * (high - low));
-            if sign * self.value(a) > sign * self.value(b) { high = b } else { low = a }
+    /// The value and time of the turn between two looks, if there is one.
+    fn turn(&self, a: &Look, b: &Look) -> Option<(f64, f64)> {
+        if a.slope * b.slope >= 0.0 {
+            return None;
         }
-        let t = 0.5 * (low + high);
-        (self.value(t), t)
+        let t = root_between(a.t, b.t, |t| self.slope(t));
+        Some((self.value(t), t))
     }
 
-    /// The first time at which y reaches `level` from its side at t = 0. None where it does not within the search.
-    pub fn first_reach(&self, level: f64) -> Option<f64> {
-        let start = self.value(0.0) - level;
-        if start == 0.0 {
+    /// The first time at which the answer, taken in the direction of its final value, is at `part` of it. None where the
+    /// search meets its cap, or the final value is zero.
+    pub fn first_reach(&self, part: f64) -> Option<f64> {
+        let scale = self.final_value;
+        if scale == 0.0 {
+            return None;
+        }
+        let missing = |y: f64| part - y / scale;
+        if missing(self.value(0.0)) <= 0.0 {
             return Some(0.0);
         }
-        let mut walk = Walk::new(self);
-        let mut before = 0.0;
+        let mut walk = Walk::new(self, 0.0, Heading::Later);
+        let mut before = Look { t: 0.0, y: self.value(0.0), slope: self.slope(0.0) };
         for _ in 0..STEP_CAP {
-            let (t, y) = walk.next();
-            if (y - level) * start <= 0.0 {
-                return Some(self.crossing(before, t, level));
+            let here = walk.next();
+            // Between two looks the answer may reach the level and turn.
+            let turn = self.turn(&before, &here).filter(|(y, _)| missing(*y) <= 0.0);
+            let reached = turn.map(|(_, t)| t).or((missing(here.y) <= 0.0).then_some(here.t));
+            if let Some(t) = reached {
+                return Some(root_between(before.t, t, |t| missing(self.value(t))));
             }
-            if (self.final_value - level).abs() > walk.envelope && (self.final_value - level) * start > 0.0 {
-                return None;
-            }
-            before = t;
+            before = here;
         }
         None
     }
@@ -191,34 +198,28 @@ impl Modes {
         if band <= 0.0 {
             return None;
         }
-        let outside = |t: f64| (self.value(t) - self.final_value).abs() - band;
+        let outside = |y: f64| (y - self.final_value).abs() - band;
         // From where the envelope is inside for good, backwards.
-        let mut t = self.quiet_after(band);
+        let quiet = self.quiet_after(band);
+        let mut walk = Walk::new(self, quiet, Heading::Earlier);
+        let mut later = Look { t: quiet, y: self.value(quiet), slope: self.slope(quiet) };
         for _ in 0..STEP_CAP {
-            if t <= 0.0 {
+            if later.t <= 0.0 {
                 return Some(0.0);
             }
-            let earlier = (t - self.step_at(t)).max(0.0);
-            if outside(earlier) > 0.0 {
-                let (mut low, mut high) = (earlier, t);
-                for _ in 0..50 {
-                    let middle = 0.5 * (low + high);
-                    if outside(middle) > 0.0 { low = middle } else { high = middle }
-                }
-                return Some(high);
+            let mut earlier = walk.next();
+            if earlier.t < 0.0 {
+                earlier = Look { t: 0.0, y: self.value(0.0), slope: self.slope(0.0) };
             }
-            t = earlier;
+            let near = outside(earlier.y).max(outside(later.y)) > -NEAR_BAND * band;
+            let turn = if near { self.turn(&earlier, &later) } else { None };
+            let peak = turn.filter(|(y, _)| outside(*y) > 0.0).map(|(_, t)| t);
+            if let Some(t) = peak.or((outside(earlier.y) > 0.0).then_some(earlier.t)) {
+                return Some(root_between(t, later.t, |t| outside(self.value(t))));
+            }
+            later = earlier;
         }
         None
-    }
-
-    fn crossing(&self, mut low: f64, mut high: f64, level: f64) -> f64 {
-        let start = self.value(low) - level;
-        for _ in 0..50 {
-            let middle = 0.5 * (low + high);
-            if (self.value(middle) - level) * start > 0.0 { low = middle } else { high = middle }
-        }
-        0.5 * (low + high)
     }
 
     /// A time by which the answer has settled well, for drawing.
@@ -236,15 +237,43 @@ impl Modes {
     }
 }
 
+/// A zero of a function between two arguments with values of different sign, by bisection.
+fn root_between(mut low: f64, mut high: f64, value: impl Fn(f64) -> f64) -> f64 {
+    let sign = value(low) > 0.0;
+    // f64 has 52 bits; a few more rounds do no harm.
+    for _ in 0..56 {
+        let middle = 0.5 * (low + high);
+        if (value(middle) > 0.0) == sign { low = middle } else { high = middle }
+    }
+    0.5 * (low + high)
+}
+
+/// The answer and its slope at one time.
+#[derive(Clone, Copy, Debug)]
+struct Look {
+    t: f64,
+    y: f64,
+    slope: f64,
+}
+
+/// Which way a walk goes.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum Heading {
+    Later,
+    Earlier,
+}
+
 /// A walk along an answer, with steps that grow as fast modes die out. Between two changes of the step each mode is
 /// advanced by one multiplication.
 struct Walk<'a> {
     modes: &'a Modes,
+    heading: Heading,
     t: f64,
     step: f64,
     state: Vec<Complex<f64>>,
     factors: Vec<Complex<f64>>,
     until_check: usize,
+    /// A bound on |y − y(∞)| from the last check on, going later.
     envelope: f64,
 }
 
@@ -252,40 +281,42 @@ struct Walk<'a> {
 const CHECK_EVERY: usize = 16;
 
 impl<'a> Walk<'a> {
-    fn new(modes: &'a Modes) -> Self {
-        Self {
-            modes,
-            t: 0.0,
-            step: 0.0,
-            state: Vec::new(),
-            factors: Vec::new(),
-            until_check: 0,
-            envelope: f64::INFINITY,
-        }
+    fn new(modes: &'a Modes, t: f64, heading: Heading) -> Self {
+        let (state, factors) = (Vec::new(), Vec::new());
+        Self { modes, heading, t, step: 0.0, state, factors, until_check: 0, envelope: f64::INFINITY }
     }
 
-    /// The next time and value.
-    fn next(&mut self) -> (f64, f64) {
+    /// The next time, value and slope.
+    fn next(&mut self) -> Look {
         if self.until_check == 0 {
-            self.step = self.modes.step_at(self.t);
-            if !self.step.is_finite() {
-                self.step = 1.0;
-            }
-            self.state.clear();
-            self.state.extend(self.modes.modes.iter().map(|m| m.coefficient * (m.pole * self.t).exp()));
-            self.factors.clear();
-            self.factors.extend(self.modes.modes.iter().map(|m| (m.pole * self.step).exp()));
-            self.envelope = self.state.iter().map(|z| z.modulus()).sum();
-            self.until_check = CHECK_EVERY;
+            self.check();
         }
         self.until_check -= 1;
         self.t += self.step;
-        let mut sum = self.modes.final_value;
-        for (z, factor) in self.state.iter_mut().zip(&self.factors) {
+        let (mut y, mut slope) = (self.modes.final_value, 0.0);
+        for ((z, factor), mode) in self.state.iter_mut().zip(&self.factors).zip(&self.modes.modes) {
             *z *= *factor;
-            sum += z.re;
+            y += z.re;
+            slope += z.re * mode.pole.re - z.im * mode.pole.im;
         }
-        (self.t, sum)
+        Look { t: self.t, y, slope }
+    }
+
+    /// Chooses the step anew and removes the rounding errors of the multiplications.
+    fn check(&mut self) {
+        let finite = |step: f64| if step.is_finite() { step } else { 1.0 };
+        let step = finite(self.modes.step_at(self.t));
+        self.step = match self.heading {
+            Heading::Later => step,
+            // Faster modes may be alive at the earlier end of this round.
+            Heading::Earlier => -step.min(finite(self.modes.step_at((self.t - CHECK_EVERY as f64 * step).max(0.0)))),
+        };
+        self.state.clear();
+        self.state.extend(self.modes.modes.iter().map(|m| m.coefficient * (m.pole * self.t).exp()));
+        self.factors.clear();
+        self.factors.extend(self.modes.modes.iter().map(|m| (m.pole * self.step).exp()));
+        self.envelope = self.state.iter().map(|z| magnitude(*z)).sum();
+        self.until_check = CHECK_EVERY;
     }
 }
 
@@ -293,7 +324,7 @@ impl<'a> Walk<'a> {
 fn spread(poles: &[Complex<f64>]) -> Vec<Complex<f64>> {
     let mut groups: Vec<Vec<Complex<f64>>> = Vec::new();
     for pole in poles {
-        let near = |other: &Complex<f64>| (pole - other).modulus() <= 4.0 * TOGETHER * pole.modulus();
+        let near = |other: &Complex<f64>| magnitude(pole - other) <= 4.0 * TOGETHER * magnitude(*pole);
         match groups.iter_mut().find(|group| group.iter().any(near)) {
             Some(group) => group.push(*pole),
             None => groups.push([*pole].into()),
@@ -307,10 +338,10 @@ fn spread(poles: &[Complex<f64>]) -> Vec<Complex<f64>> {
             continue;
         }
         let middle = group.iter().sum::<Complex<f64>>() / count as f64;
-        let on_axis = middle.im.abs() <= TOGETHER * middle.modulus();
+        let on_axis = middle.im.abs() <= TOGETHER * magnitude(middle);
         let middle = if on_axis { Complex::new(middle.re, 0.0) } else { middle };
         // δ^m and eps/δ^(m−1) balance.
-        let radius = middle.modulus() * libm::pow(1e-16, 1.0 / (2.0 * count as f64 - 1.0)).max(TOGETHER);
+        let radius = magnitude(middle) * libm::pow(1e-16, 1.0 / (2.0 * count as f64 - 1.0)).max(TOGETHER);
         for k in 0..count {
             // Odd groups on the axis keep one pole on it; the others are exact conjugates.
             let angle = core::f64::consts::TAU * k as f64 / count as f64;

@@ -56,12 +56,12 @@ impl Scale {
         }
     }
 
-    /// The setting for a knob in f64; None where it is not finite.
+    /// The setting for a knob in f64; None where it is not finite, or would be negative on a reciprocal scale.
     pub fn setting_f64(&self, knob: f64) -> Option<f64> {
         let factor = self.factor.to_f64().value();
         let setting = match self.direction {
             Direction::Proportional => knob / factor,
-            Direction::Reciprocal => factor / knob,
+            Direction::Reciprocal => Some(factor / knob).filter(|setting| *setting > 0.0)?,
         };
         setting.is_finite().then_some(setting)
     }

@@ -12,7 +12,7 @@ mod sampled;
 mod static_figures;
 
 pub use kinds::{at_least, check_limit, describe, unit};
-pub use sampled::Samples;
+pub use sampled::{Samples, meets};
 
 use super::pieces::{Border, Piece, intersection};
 use super::place::{Place, merge, samples};

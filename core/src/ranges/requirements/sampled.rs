@@ -13,8 +13,21 @@ const FIRST: f64 = -9.0;
 const SPACING: f64 = 0.5;
 const COUNT: usize = 37;
 
-/// Two more values on each side, near the ends.
+/// More values on each side, near a finite end.
 const NEAR_ENDS: [f64; 2] = [13.0, 20.0];
+
+/// More values towards an infinite end or knob 0, where a loop may change its ways many decades out.
+const FAR_ENDS: [f64; 8] = [12.0, 16.0, 20.0, 26.0, 34.0, 44.0, 56.0, 70.0];
+
+/// Neighbours on one side of the limit are looked between where the nearer one's room is below this part of the change
+/// between them: the figure may turn there.
+const TURNING: f64 = 0.5;
+
+/// Likewise for settling times, which jump by half an oscillation.
+const JUMPING: f64 = 2.0;
+
+/// How often such a gap is halved: down to 1.5 % of the knob.
+const HALVINGS: u32 = 5;
 
 /// Edges are refined to this relative width; a tenth of what is promised.
 const EDGE_WIDTH: f64 = 1e-7;
@@ -27,8 +40,7 @@ const REFINEMENT_CAP: usize = 60;
 
 /// The loop at many knob values of every stable range, computed once.
 pub struct Samples {
-    /// One entry for every stable range.
-    ranges: Vec<Vec<(f64, LoopAt)>>,
+    courses: Vec<(Course, Vec<(f64, LoopAt)>)>,
 }
 
 impl Samples {
@@ -37,55 +49,80 @@ impl Samples {
     /// # Errors
     /// From the exact methods, where poles cannot be found.
     pub fn new(model: &Loop, stable: &[Piece]) -> Result<Self, ExactError> {
-        let mut ranges = Vec::with_capacity(stable.len());
-        for piece in stable {
-            let course = Course::new(piece);
-            let mut values: Vec<f64> = (0..COUNT).map(|k| FIRST + SPACING * k as f64).collect();
-            for v in NEAR_ENDS {
-                values.insert(0, -v);
-                values.push(v);
-            }
-            let mut samples = Vec::with_capacity(values.len());
-            for v in values {
+        let mut courses = Vec::new();
+        for piece in stable.iter().flat_map(cut_at_zero) {
+            let course = Course { piece };
+            let mut samples = Vec::new();
+            for v in course.values() {
                 if let Some(at) = course.loop_at(model, v)? {
                     samples.push((v, at));
                 }
             }
-            ranges.push(samples);
+            courses.push((course, samples));
         }
-        Ok(Self { ranges })
+        Ok(Self { courses })
     }
 }
 
-/// A stable range run through by v = ln τ, τ = (q − a)/(b − q); τ = (q − a)/|a| where b is infinite, and alike.
-struct Course<'a> {
-    piece: &'a Piece,
-    from: Option<f64>,
-    to: Option<f64>,
+/// The parts of a range left and right of knob 0: figures are even in a logarithm of the knob, on each side of 0.
+fn cut_at_zero(piece: &Piece) -> Vec<Piece> {
+    if !piece.holds(0.0) {
+        return [piece.clone()].into();
+    }
+    let left = Piece { from: piece.from.clone(), to: Some(zero()) };
+    let right = Piece { from: Some(zero()), to: piece.to.clone() };
+    [left, right].into()
 }
 
-impl<'a> Course<'a> {
-    fn new(piece: &'a Piece) -> Self {
-        Self { piece, from: piece.from.as_ref().map(Border::value), to: piece.to.as_ref().map(Border::value) }
+/// The cut at knob 0, which is no end of the range.
+fn zero() -> Border {
+    Border { bracket: Interval::point(Dyadic::ZERO), proven: true, cause: Cause::Controller }
+}
+
+fn is_cut(border: Option<&Border>) -> bool {
+    border.is_some_and(|b| *b == zero())
+}
+
+/// A range of one sign run through by v = ln τ, τ = (q − a)/(b − q); τ = (q − a)/|a| where b is infinite, and alike.
+struct Course {
+    piece: Piece,
+}
+
+impl Course {
+    fn ends(&self) -> (Option<f64>, Option<f64>) {
+        (self.piece.from.as_ref().map(Border::value), self.piece.to.as_ref().map(Border::value))
+    }
+
+    /// The sampled v, ascending.
+    fn values(&self) -> Vec<f64> {
+        let (from, to) = self.ends();
+        let beyond = |end: Option<f64>| if end.is_none_or(|q| q == 0.0) { &FAR_ENDS[..] } else { &NEAR_ENDS[..] };
+        let mut values: Vec<f64> = (0..COUNT).map(|k| FIRST + SPACING * k as f64).collect();
+        values.extend(beyond(from).iter().map(|v| -v));
+        values.extend(beyond(to));
+        values.sort_by(f64::total_cmp);
+        values
     }
 
     fn knob(&self, v: f64) -> f64 {
         let tau = libm::exp(v);
         let unit = |a: f64| if a == 0.0 { 1.0 } else { a.abs() };
-        match (self.from, self.to) {
+        match self.ends() {
             (Some(a), Some(b)) if tau < 1.0 => a + (b - a) * (tau / (1.0 + tau)),
             (Some(a), Some(b)) => b - (b - a) / (1.0 + tau),
             (Some(a), None) => a + unit(a) * tau,
             (None, Some(b)) => b - unit(b) / tau,
-            (None, None) => libm::sinh(v),
+            // Only a loop that no knob makes unstable has no end at all, and it is cut at 0.
+            (None, None) => tau,
         }
     }
 
-    /// The loop at v. None where it is not stable in spite of all: so near to the end that f64 rounds the knob past it.
+    /// The loop at v. None where f64 rounds the knob to an end.
     fn loop_at(&self, model: &Loop, v: f64) -> Result<Option<LoopAt>, ExactError> {
         let Some(knob) = Dyadic::from_f64(self.knob(v)) else { return Ok(None) };
         let knob = knob.round_down(KNOB_BITS).to_rational();
-        if !self.piece.surely_holds(&knob) {
+        let at_cut = knob.is_zero();
+        if at_cut || !self.piece.surely_holds(&knob) {
             return Ok(None);
         }
         LoopAt::known_stable(model, knob).map(Some)
@@ -110,20 +147,36 @@ impl Room {
     }
 }
 
+/// Whether a figure meets its limit.
+pub fn meets(limit: &Limit, figure: Figure) -> bool {
+    Judge { limit, value: limit.value.to_f64().value() }.room(figure).is_met()
+}
+
 pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactError> {
     let judge = Judge { limit, value: limit.value.to_f64().value() };
-    let mut pieces = Vec::new();
+    let mut pieces: Vec<Piece> = Vec::new();
     let mut defined = false;
-    for (piece, samples) in ground.stable.iter().zip(&ground.samples.ranges) {
-        let course = Course::new(piece);
+    for (course, samples) in &ground.samples.courses {
         let mut points: Vec<(f64, Room)> = Vec::with_capacity(samples.len());
         for (v, at) in samples {
             let figure = at.figure(limit.kind);
             defined |= figure != Figure::Undefined;
             points.push((*v, judge.room(figure)));
         }
-        judge.look_into_turns(ground.model, &course, &mut points)?;
-        pieces.extend(judge.pieces(ground.model, &course, piece, &points)?);
+        judge.look_into_gaps(ground.model, course, &mut points)?;
+        for piece in judge.pieces(ground.model, course, &points)? {
+            // What ends at the cut on one side goes on at the other.
+            match pieces.last_mut() {
+                Some(last) if is_cut(last.to.as_ref()) && is_cut(piece.from.as_ref()) => last.to = piece.to,
+                _ => pieces.push(piece),
+            }
+        }
+    }
+    for border in pieces.iter_mut().flat_map(|piece| [&mut piece.from, &mut piece.to]).flatten() {
+        if *border == zero() {
+            border.cause = Cause::Requirement(limit.kind);
+            border.proven = false;
+        }
     }
     let remark = (!defined && !ground.stable.is_empty()).then(|| undefined(limit).into());
     Ok(Lane { pieces, proven: false, remark })
@@ -156,51 +209,49 @@ impl Judge<'_> {
         }
     }
 
-    fn room_at(&self, model: &Loop, course: &Course<'_>, v: f64) -> Result<Room, ExactError> {
+    fn room_at(&self, model: &Loop, course: &Course, v: f64) -> Result<Room, ExactError> {
         Ok(course.loop_at(model, v)?.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind))))
     }
 
-    /// Where three neighbours turn towards the limit without reaching it, looks at the vertex of their parabola.
-    fn look_into_turns(
-        &self,
-        model: &Loop,
-        course: &Course<'_>,
-        points: &mut Vec<(f64, Room)>,
-    ) -> Result<(), ExactError> {
-        let mut found = Vec::new();
-        for triple in points.windows(3) {
-            let [(v0, Room::By(a)), (v1, Room::By(b)), (v2, Room::By(c))] = triple else { continue };
-            let same_side = (*a >= 0.0) == (*b >= 0.0) && (*b >= 0.0) == (*c >= 0.0);
-            let turns = if *b >= 0.0 { a > b && c > b } else { a < b && c < b };
-            if !(same_side && turns) {
-                continue;
-            }
-            let (left, right) = ((b - a) / (v1 - v0), (c - b) / (v2 - v1));
-            let vertex = 0.5 * (v0 + v1) - left * 0.5 * (v2 - v0) / (right - left);
-            if vertex > *v0 && vertex < *v2 {
-                found.push((vertex, self.room_at(model, course, vertex)?));
+    fn nervousness(&self) -> f64 {
+        use crate::project::RequirementKind as Kind;
+        if matches!(self.limit.kind, Kind::SettlingTime2 | Kind::SettlingTime5) { JUMPING } else { TURNING }
+    }
+
+    /// Looks between neighbours on the same side of the limit where the figure may jump or turn to the other side.
+    fn look_into_gaps(&self, model: &Loop, course: &Course, points: &mut Vec<(f64, Room)>) -> Result<(), ExactError> {
+        let mut all = core::mem::take(points);
+        // From left to right: a gap that is halved puts its two halves back on the stack.
+        let mut done: Vec<(f64, Room)> = all.first().copied().into_iter().collect();
+        let mut stack: Vec<((f64, Room), u32)> = Vec::new();
+        for point in all.drain(..).skip(1) {
+            stack.push((point, 0));
+            while let Some((right, depth)) = stack.pop() {
+                let Some(left) = done.last().copied() else { break };
+                if depth < HALVINGS && doubtful(left.1, right.1, self.nervousness()) {
+                    let middle = 0.5 * (left.0 + right.0);
+                    let room = self.room_at(model, course, middle)?;
+                    stack.push((right, depth + 1));
+                    stack.push(((middle, room), depth + 1));
+                } else {
+                    done.push(right);
+                }
             }
         }
-        points.extend(found);
-        points.sort_by(|a, b| a.0.total_cmp(&b.0));
+        *points = done;
         Ok(())
     }
 
-    /// The pieces of one stable range.
-    fn pieces(
-        &self,
-        model: &Loop,
-        course: &Course<'_>,
-        range: &Piece,
-        points: &[(f64, Room)],
-    ) -> Result<Vec<Piece>, ExactError> {
+    /// The pieces of one course.
+    fn pieces(&self, model: &Loop, course: &Course, points: &[(f64, Room)]) -> Result<Vec<Piece>, ExactError> {
+        let range = &course.piece;
         let mut pieces = Vec::new();
         // At the range's own ends the sample next to them decides.
         let mut open = points.first().filter(|p| p.1.is_met()).map(|_| Piece { from: range.from.clone(), to: None });
         for pair in points.windows(2) {
             match (pair[0].1.is_met(), pair[1].1.is_met()) {
                 (false, true) => {
-                    open = Some(Piece { from: Some(self.edge(model, course, pair[0], pair[1])?), to: None })
+                    open = Some(Piece { from: Some(self.edge(model, course, pair[0], pair[1])?), to: None });
                 }
                 (true, false) => {
                     let to = Some(self.edge(model, course, pair[0], pair[1])?);
@@ -218,7 +269,7 @@ impl Judge<'_> {
     fn edge(
         &self,
         model: &Loop,
-        course: &Course<'_>,
+        course: &Course,
         mut low: (f64, Room),
         mut high: (f64, Room),
     ) -> Result<Border, ExactError> {
@@ -231,7 +282,7 @@ impl Judge<'_> {
             }
             let width = high.0 - low.0;
             let v = match (low.1, high.1) {
-                (Room::By(x), Room::By(y)) if !halve && x != y => {
+                (Room::By(x), Room::By(y)) if !halve && (x - y).abs() > 0.0 => {
                     // Not nearer to an end than a thousandth, so that both ends move.
                     (low.0 + width * (x / (x - y))).clamp(low.0 + 1e-3 * width, high.0 - 1e-3 * width)
                 }
@@ -239,9 +290,9 @@ impl Judge<'_> {
             };
             let room = self.room_at(model, course, v)?;
             if room.is_met() == low_met {
-                low = (v, room)
+                low = (v, room);
             } else {
-                high = (v, room)
+                high = (v, room);
             }
             halve = high.0 - low.0 > 0.5 * width;
         }
@@ -249,5 +300,15 @@ impl Judge<'_> {
         let end = |x: f64| Dyadic::from_f64(x).unwrap_or(Dyadic::ZERO);
         let bracket = Interval { low: end(a.min(b)), high: end(a.max(b)) };
         Ok(Border { bracket, proven: false, cause: Cause::Requirement(self.limit.kind) })
+    }
+}
+
+/// Whether the figure may pass the limit between two neighbours on the same side of it.
+fn doubtful(left: Room, right: Room, part: f64) -> bool {
+    match (left, right) {
+        (Room::By(a), Room::By(b)) => (a >= 0.0) == (b >= 0.0) && (b - a).abs() * part > a.abs().min(b.abs()),
+        // Defined on one side only, yet both met or both not.
+        (Room::By(_), Room::Met(_)) | (Room::Met(_), Room::By(_)) => left.is_met() == right.is_met(),
+        (Room::Met(_), Room::Met(_)) => false,
     }
 }

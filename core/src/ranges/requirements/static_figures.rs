@@ -2,8 +2,9 @@
 //! the knob, |above(q)| ≤ limit·|below(q)|, so that the edges are exact.
 
 use super::super::EDGE_BITS;
-use super::super::place::{Contact, Place, rational_root};
+use super::super::place::{Contact, Place, short_rational};
 use super::{Ground, Lane, Limit, judged};
+use crate::exact::dyadic::sign_of;
 use crate::exact::gcd::squarefree_part;
 use crate::exact::real_roots::real_roots;
 use crate::exact::{ExactError, IntPoly};
@@ -11,6 +12,7 @@ use crate::model::StaticRatio;
 use crate::project::RequirementKind;
 use alloc::vec::Vec;
 use dashu_int::IBig;
+use dashu_ratio::RBig;
 
 pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactError> {
     let ratio = match limit.kind {
@@ -34,9 +36,9 @@ pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactErro
     if difference.degree() > 0 {
         let p = squarefree_part(&difference);
         for mut root in real_roots(&p)? {
-            let exact = rational_root(&p, &mut root)?;
             root.refine_to(&p, EDGE_BITS + 8)?;
             let contact = Contact::Axis { omega: 0.0 };
+            let exact = short_rational(&root.bracket).filter(|q| sign_at(&p, q) == 0);
             places.push(match exact {
                 Some(q) => Place::exactly(q, contact),
                 None => Place::within(root.bracket.rounded(EDGE_BITS as usize + 8), contact),
@@ -46,7 +48,7 @@ pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactErro
     judged(ground, limit.kind, places, |q| Ok(sign_at(&difference, q) >= 0))
 }
 
-fn sign_at(p: &IntPoly, q: &dashu_ratio::RBig) -> i32 {
-    use super::super::place::value_at;
-    crate::exact::dyadic::sign_of(value_at(p, q).numerator())
+fn sign_at(p: &IntPoly, q: &RBig) -> i32 {
+    let value = p.coefficients().iter().rev().fold(RBig::ZERO, |sum, c| sum * q + RBig::from(c.clone()));
+    sign_of(value.numerator())
 }
