@@ -204,3 +204,81 @@ fn load(here: &LoopAt) -> Option<LoadRecord> {
     let peak = here.figure(RequirementKind::LoadPeak).value()?;
     Some(LoadRecord { curve: modes.curve(modes.horizon()), peak, final_value: modes.final_value })
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::answer::{Answer, Field, Session};
+    use crate::record::Record;
+    use alloc::format;
+    use alloc::string::String;
+
+    fn answer(loop_: &str, setting: &str, requirements: &str) -> Answer {
+        let json = format!(
+            r#"{{"format": "stayband-project/1", "loop": {loop_}, "knob": "K", "setting": {setting}, "requirements": [{requirements}]}}"#
+        );
+        Session::new().solve(&json, None).answer
+    }
+
+    fn record(loop_: &str, setting: &str, requirements: &str) -> Record {
+        let answer = answer(loop_, setting, requirements);
+        answer.record.unwrap_or_else(|| panic!("{:?}", answer.problems))
+    }
+
+    /// A levitated roller, invented: unstable at zero gain.
+    const ROLLER: &str = r#"{"controller": "K (0.12 s + 1)/(0.012 s + 1)", "plant": "14/((s - 3)(s + 9)(0.008 s + 1))", "sensor": "0.5"}"#;
+
+    #[test]
+    fn the_permitted_range_is_where_all_agree_on_the_controllers_grid() {
+        let limits = r#"{"kind": "damping-ratio", "limit": "0.5"}, {"kind": "step-error", "limit": "15"}"#;
+        let found = record(ROLLER, r#"{"value": "37", "step": "1"}"#, limits);
+        // |1/(1 − 7K/27)| ≤ 0.15 for K ≥ 27·(1 + 1/0.15)/7 = 207/7.
+        let low = found.permitted.knob[0].from.as_ref().expect("an end");
+        assert!((low.knob - 207.0 / 7.0).abs() < 1e-12 && low.proven, "{low:?}");
+        assert_eq!(found.permitted.setting, [[Some("30".into()), Some("44".into())]]);
+        assert!(found.permitted.proven && found.permitted.conflict.is_none());
+        assert!(found.requirements.iter().all(|r| r.met == Some(true)));
+    }
+
+    #[test]
+    fn requirements_that_exclude_each_other_are_named_with_their_ranges() {
+        let limits = r#"{"kind": "overshoot", "limit": "30"}, {"kind": "damping-ratio", "limit": "0.8"}, {"kind": "step-error", "limit": "15"}"#;
+        let found = record(ROLLER, "{}", limits).permitted;
+        let conflict = found.conflict.expect("a conflict");
+        let kinds: alloc::vec::Vec<String> = conflict.requirements.iter().map(|kind| super::name_of(*kind)).collect();
+        assert_eq!(kinds, ["damping-ratio", "step-error"]);
+        assert!(conflict.text.contains("29.57"), "{}", conflict.text);
+    }
+
+    #[test]
+    fn a_proportional_band_turns_the_limits_round() {
+        let lag = r#"{"controller": "K", "plant": "2/((s + 1)(0.5 s + 1)(0.2 s + 1))"}"#;
+        let gain = record(lag, r#"{"value": "1", "step": "0.01"}"#, r#"{"kind": "phase-margin", "limit": "45"}"#);
+        let band = record(
+            lag,
+            r#"{"value": "100", "direction": "reciprocal", "factor": "100", "step": "0.1"}"#,
+            r#"{"kind": "phase-margin", "limit": "45"}"#,
+        );
+        let (edge, same) = (&gain.permitted.knob[0].to, &band.permitted.knob[0].to);
+        let (edge, same) = (edge.as_ref().expect("an end"), same.as_ref().expect("an end"));
+        assert!((edge.knob - same.knob).abs() < 1e-12);
+        assert!((same.setting.expect("a setting") - 100.0 / edge.knob).abs() < 1e-9);
+        assert!(band.permitted.setting[0][0].is_some());
+    }
+
+    #[test]
+    fn an_older_project_still_opens_and_a_wrong_limit_is_told_at_its_row() {
+        let json = format!(
+            r#"{{"format": "stayband-project/1", "loop": {ROLLER}, "knob": "K", "setting": {{"value": "37"}}}}"#
+        );
+        assert!(Session::new().solve(&json, None).answer.record.is_some());
+        let problems = answer(ROLLER, "{}", r#"{"kind": "damping-ratio", "limit": "1.5"}"#).problems;
+        assert_eq!((problems[0].field, problems[0].symbol.as_deref()), (Field::Requirement, Some("damping-ratio")));
+    }
+
+    #[test]
+    fn an_error_that_no_setting_makes_finite_says_why() {
+        let found = record(ROLLER, "{}", r#"{"kind": "ramp-error", "limit": "1"}"#);
+        assert!(found.requirements[0].ranges.is_empty());
+        assert!(found.requirements[0].remark.as_deref().is_some_and(|text| text.contains("one integrator")));
+    }
+}

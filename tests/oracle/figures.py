@@ -9,6 +9,7 @@ from flint import arb
 
 from polynomials import rational
 from refining import middle
+from responses import GivenUp
 
 #: Kinds whose figure must be at least the limit.
 AT_LEAST = {
@@ -39,8 +40,11 @@ def meets(loop, kind, limit, near=0.0):
     """True or false, or None where the figure is nearer to the limit than `near`, relative, or too small a deviation to tell."""
     if not loop.stable:
         return False
-    found = FIGURES[kind](loop)
-    if kind == "peak-time" and too_flat(loop):
+    try:
+        found = FIGURES[kind](loop)
+        if kind == "peak-time" and too_flat(loop):
+            return None
+    except GivenUp:
         return None
     if found is None:
         return False

@@ -18,7 +18,7 @@ from generator import ONE, Factor, Writer, constant, poly, quotient
 from knobs import scale_knob
 from polynomials import Characteristic, Knobbed, Ratio, knob, laplace, number, rational
 from refining import BITS
-from responses import LoopAt
+from responses import GivenUp, LoopAt
 
 #: Seeds of loops whose limits are drawn freely, so that most exclude each other; the seeds after them have limits that the setting
 #: meets, so that something is permitted. Every family comes equally often.
@@ -277,9 +277,11 @@ def scale_for(rng, wanted):
 def requirements(rng, case, all_met):
     """Four to eight requirements with limits around the figures at the setting, or of figures that all meet theirs."""
     loop = at(case, case.knob)
+    figures = {kind: known_figure(loop, kind) for kind in sorted(FIGURES)}
+    kinds = [kind for kind, found in figures.items() if not all_met or can_be_met(found, kind)]
     listed = []
-    for kind in rng.sample([k for k in sorted(FIGURES) if not all_met or can_be_met(figure(loop, k), k)], rng.randint(4, 8)):
-        found = figure(loop, kind)
+    for kind in rng.sample(kinds, rng.randint(4, 8)):
+        found = figures[kind]
         if found is None or math.isinf(found) or found < 1e-6:
             limit = Fraction(rng.choice(TYPICAL[kind]))
         else:
@@ -287,6 +289,14 @@ def requirements(rng, case, all_met):
             limit = Fraction(f"{found * (easy if kind in AT_LEAST else 1 / easy):.2e}")
         listed.append({"kind": kind, "limit": decimal_text(allowed(kind, limit))})
     return listed
+
+
+def known_figure(loop, kind):
+    """The figure, or None also where the oracle gives up."""
+    try:
+        return figure(loop, kind)
+    except GivenUp:
+        return None
 
 
 def can_be_met(found, kind):

@@ -15,6 +15,8 @@ PLACE_OF_EXTREME = 1e-6
 ANSWER = 1e-6
 #: Drawn curves, relative to their range: far below a pixel.
 CURVE = 1e-6
+#: Modes of poles that nearly coincide cancel in a curve; relative to the sum of their sizes, the digits that are left of it.
+CANCELLED = 1e-9
 
 #: A computed edge: this far inside the limit is met, this far outside it is not. The contract is 1e-6.
 COMPUTED_EDGE = 1e-5

@@ -36,6 +36,10 @@ def block_at(ratio, knob):
     return tuple(sum((power * knob**k for k, power in enumerate(part.powers)), fmpq_poly()) for part in parts)
 
 
+class GivenUp(ArithmeticError):
+    """A search took too many values: the oracle has no say in this figure."""
+
+
 class LoopAt:
     """The loop of a case at a rational knob value."""
 
@@ -155,6 +159,7 @@ class Answer:
             yield times, self.values(times)
             # The overlap is longer than two steps of the next block, so that no turn hides at the seam.
             t, h = times[-OVERLAP], min(self.step(times[-OVERLAP]), 2 * h)
+        raise GivenUp
 
     def blocks_back(self, t):
         """Overlapping blocks backward from a time to 0."""
@@ -167,6 +172,7 @@ class Answer:
             times = times[: int(np.argmax(times == 0.0)) + 1] if times[-1] == 0.0 else times
             yield times, self.values(times)
             t = times[-OVERLAP] if times[-1] > 0 else 0.0
+        raise GivenUp
 
     @cached_property
     def highest(self):

@@ -104,7 +104,9 @@ fn within(scale: &Scale, piece: &Piece, ends: &[Option<RBig>; 2]) -> Option<Sugg
         let grid = with_step(scale, &step_near(scale, &wanted, count));
         let below = grid.rounded(&wanted, Rounding::Down);
         let above = grid.rounded(&wanted, Rounding::Up);
-        let nearer_below = &wanted - &below <= &above - &wanted;
+        // Nearer on a logarithmic scale: the smallest distance to the range's ends is then the largest.
+        let ratio = |setting: &RBig| libm::fabs(libm::log(setting.to_f64().value() / wanted.to_f64().value()));
+        let nearer_below = ratio(&below) <= ratio(&above);
         let order = if nearer_below { [below, above] } else { [above, below] };
         if let Some(setting) = order.into_iter().find(holds) {
             let knob = scale.knob(&setting)?;
@@ -161,4 +163,59 @@ pub fn controller_range(scale: &Scale) -> Option<Piece> {
     let low_end = at(minimum);
     let (from, to) = if scale.rises() { (low_end, high_end) } else { (high_end, low_end) };
     Some(Piece { from: from.map(border), to: to.map(border) })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::exact::Interval;
+    use crate::ranges::pieces::Border;
+    use crate::record::Cause;
+    use alloc::string::String;
+
+    fn rational(n: i64, d: u64) -> RBig {
+        RBig::from_parts(n.into(), d.into())
+    }
+
+    fn scale(direction: Direction, factor: RBig, step: Option<RBig>) -> Scale {
+        Scale { name: String::new(), unit: String::new(), direction, factor, minimum: None, maximum: None, step }
+    }
+
+    fn piece(low: RBig, high: RBig) -> Piece {
+        let border =
+            |q: RBig| Some(Border { bracket: Interval::around(&q, 64), proven: true, cause: Cause::Stability });
+        Piece { from: border(low), to: border(high) }
+    }
+
+    #[test]
+    fn ends_are_rounded_inward_and_an_open_end_on_the_grid_is_left() {
+        let gain = scale(Direction::Proportional, RBig::ONE, Some(RBig::ONE));
+        let advice = suggest(&gain, &[piece(rational(296, 10), rational(45, 1))]);
+        assert_eq!(advice.ends, [[Some(rational(30, 1)), Some(rational(44, 1))]]);
+        // √(29.6·45) = 36.5; on a logarithmic scale 36 is 0.0137 away and 37 0.0137 the other way.
+        let suggested = advice.suggested.expect("a setting");
+        assert!([rational(36, 1), rational(37, 1)].contains(&suggested.setting), "{suggested:?}");
+    }
+
+    #[test]
+    fn a_proportional_band_is_rounded_to_the_safe_side_too() {
+        // knob = 100/band, permitted 3 to 8: band 12.5 to 33.3, both open.
+        let band = scale(Direction::Reciprocal, rational(100, 1), Some(rational(1, 2)));
+        let advice = suggest(&band, &[piece(rational(3, 1), rational(8, 1))]);
+        assert_eq!(advice.ends, [[Some(rational(13, 1)), Some(rational(33, 1))]]);
+    }
+
+    #[test]
+    fn a_grid_too_coarse_leaves_no_setting() {
+        let gain = scale(Direction::Proportional, RBig::ONE, Some(rational(10, 1)));
+        let advice = suggest(&gain, &[piece(rational(31, 1), rational(39, 1))]);
+        assert_eq!((advice.ends, advice.suggested), ([[None, None]].into(), None));
+    }
+
+    #[test]
+    fn without_a_grid_few_digits_are_suggested() {
+        let gain = scale(Direction::Proportional, RBig::ONE, None);
+        let suggested = suggest(&gain, &[piece(rational(1, 10), rational(1, 5))]).suggested.expect("a setting");
+        assert_eq!(suggested.setting, rational(14, 100));
+    }
 }
