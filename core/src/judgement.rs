@@ -13,7 +13,7 @@ use crate::record::{
     Conflict, EdgeCurve, LimitEdge, LimitRange, LoadRecord, Margins, Permitted, PhaseCrossing, RequirementRecord,
     StepRecord, Suggestion,
 };
-use crate::response::{Figure, LoopAt, SettlingBand, overshoot, rise_time, undershoot};
+use crate::response::{Figure, LoopAt};
 use crate::setting::{Scale, controller_range, suggest, typed};
 use alloc::format;
 use alloc::string::{String, ToString};
@@ -169,7 +169,7 @@ fn margins(here: &LoopAt) -> Result<Option<Margins>, ExactError> {
 }
 
 fn step(analysis: &Analysis, here: &LoopAt, pieces: &[Piece]) -> Option<StepRecord> {
-    let (modes, peaks) = here.output()?;
+    let (modes, _) = here.output().found()?;
     let own = modes.horizon();
     let knob = here.knob.to_f64().value();
     let chosen = pieces.iter().find(|piece| piece.holds(knob)).or(pieces.first());
@@ -178,29 +178,30 @@ fn step(analysis: &Analysis, here: &LoopAt, pieces: &[Piece]) -> Option<StepReco
         .filter(|border| border.cause != crate::record::Cause::Stability)
         .filter_map(|border| LoopAt::new(&analysis.model, border.bracket.midpoint().to_rational()).ok())
         .collect();
-    let horizons = at_edges.iter().filter_map(LoopAt::output).map(|(modes, _)| modes.horizon());
+    let horizons = at_edges.iter().filter_map(|at| at.output().found()).map(|(modes, _)| modes.horizon());
     let end = horizons.fold(own, f64::max).min(LONGEST * own);
     let edge_curve = |at: &LoopAt| {
-        let (modes, _) = at.output()?;
+        let (modes, _) = at.output().found()?;
         Some(EdgeCurve { knob: at.knob.to_f64().value(), curve: modes.curve(end) })
     };
+    let figure = |kind: RequirementKind| here.figure(kind).value();
     Some(StepRecord {
         curve: modes.curve(end),
         at_edges: at_edges.iter().filter_map(edge_curve).collect(),
-        controller: here.control().map(|(modes, _)| modes.curve(end)),
+        controller: here.control().found().map(|(modes, _)| modes.curve(end)),
         final_value: modes.final_value,
-        overshoot: overshoot(modes, peaks),
-        undershoot: undershoot(modes, peaks),
-        rise_time: rise_time(modes),
-        settling_time2: here.settling_time(SettlingBand::TwoPercent),
-        settling_time5: here.settling_time(SettlingBand::FivePercent),
-        peak_time: here.peak_time(),
-        controller_peak: here.figure(RequirementKind::ControllerPeak).value(),
+        overshoot: figure(RequirementKind::Overshoot),
+        undershoot: figure(RequirementKind::Undershoot),
+        rise_time: figure(RequirementKind::RiseTime),
+        settling_time2: figure(RequirementKind::SettlingTime2),
+        settling_time5: figure(RequirementKind::SettlingTime5),
+        peak_time: figure(RequirementKind::PeakTime),
+        controller_peak: figure(RequirementKind::ControllerPeak),
     })
 }
 
 fn load(here: &LoopAt) -> Option<LoadRecord> {
-    let (modes, _) = here.load()?;
+    let (modes, _) = here.load().found()?;
     let peak = here.figure(RequirementKind::LoadPeak).value()?;
     Some(LoadRecord { curve: modes.curve(modes.horizon()), peak, final_value: modes.final_value })
 }

@@ -42,9 +42,10 @@ def factor_of(project):
 
 
 def scale_setting(project, knob):
-    """The setting for a knob; None for knob 0 on a reciprocal scale."""
+    """The setting for a knob; None where it would not be above zero on a reciprocal scale."""
     if project["setting"].get("direction") == "reciprocal":
-        return factor_of(project) / knob if knob else None
+        setting = factor_of(project) / knob if knob else None
+        return setting if setting is not None and setting > 0 else None
     return knob / factor_of(project)
 
 

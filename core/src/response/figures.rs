@@ -1,6 +1,6 @@
 //! The figures that requirements speak of, at one value of the knob.
 
-use super::loop_at::LoopAt;
+use super::loop_at::{Answer, LoopAt};
 use super::modes::{Modes, Peaks};
 use crate::exact::IntPoly;
 use crate::project::RequirementKind;
@@ -22,6 +22,8 @@ pub enum Figure {
     Infinite,
     /// It has no meaning for this loop at this knob.
     Undefined,
+    /// It was not found within the caps of the search.
+    NotComputed,
 }
 
 /// How near the output must stay.
@@ -82,40 +84,31 @@ impl LoopAt {
             Kind::DelayMargin => frequency().and_then(|f| f.delay_margin().ok()).into(),
             Kind::PeakSensitivity => frequency().map(|f| f.peak().1).into(),
             Kind::Bandwidth => frequency().and_then(|f| f.bandwidth().ok().flatten()).into(),
-            Kind::Overshoot => self.output().and_then(|(m, p)| overshoot(m, p)).into(),
-            Kind::Undershoot => self.output().and_then(|(m, p)| undershoot(m, p)).into(),
-            Kind::RiseTime => self.output().and_then(|(m, _)| rise_time(m)).into(),
-            Kind::SettlingTime2 => self.settling_time(SettlingBand::TwoPercent).into(),
-            Kind::SettlingTime5 => self.settling_time(SettlingBand::FivePercent).into(),
-            Kind::PeakTime => self.peak_time().into(),
+            Kind::Overshoot => self.output().figure(|m, p| overshoot(m, p).into()),
+            Kind::Undershoot => self.output().figure(|m, p| undershoot(m, p).into()),
+            Kind::RiseTime => self.output().figure(|m, p| searched(m, p, rise_time(m))),
+            Kind::SettlingTime2 => {
+                self.output().figure(|m, p| searched(m, p, settling_time(m, SettlingBand::TwoPercent)))
+            }
+            Kind::SettlingTime5 => {
+                self.output().figure(|m, p| searched(m, p, settling_time(m, SettlingBand::FivePercent)))
+            }
+            Kind::PeakTime => self.output().figure(|m, p| peak_time(m, p).into()),
             Kind::StepError => match self.static_error(0) {
                 Figure::Value(v) => Figure::Value(100.0 * v),
                 other => other,
             },
             Kind::RampError => self.static_error(1),
             Kind::ParabolaError => self.static_error(2),
-            Kind::LoadPeak => self.load().map(|(_, p)| largest(p)).into(),
-            Kind::LoadFinal => self.load().map(|(m, _)| m.final_value.abs()).into(),
-            Kind::ControllerPeak => self.control().map(|(_, p)| largest(p)).into(),
+            Kind::LoadPeak => self.load().figure(|_, p| Figure::Value(largest(p))),
+            Kind::LoadFinal => self.load().figure(|m, _| Figure::Value(m.final_value.abs())),
+            Kind::ControllerPeak => self.control().figure(|_, p| Figure::Value(largest(p))),
         }
     }
 
     /// The smallest value over all poles.
     fn over_poles(&self, value: impl Fn(&nalgebra::Complex<f64>) -> f64) -> Figure {
         Some(self.poles.iter().map(value).fold(f64::INFINITY, f64::min)).into()
-    }
-
-    /// s, until the output stays within the band.
-    pub fn settling_time(&self, band: SettlingBand) -> Option<f64> {
-        let (modes, peaks) = self.output()?;
-        has_final_value(modes, peaks).then(|| modes.last_outside(band.part() * modes.final_value.abs())).flatten()
-    }
-
-    /// s, until the highest point beyond the final value.
-    pub fn peak_time(&self) -> Option<f64> {
-        let (modes, peaks) = self.output()?;
-        let (_, time) = if modes.final_value > 0.0 { peaks.highest } else { peaks.lowest };
-        (has_final_value(modes, peaks) && time.is_finite()).then_some(time)
     }
 
     /// The static error at the comparison, |lim s·E(s)| for the command 1/s^(order + 1) and E = D/F·1/s^(order + 1).
@@ -128,13 +121,43 @@ impl LoopAt {
 }
 
 /// D/(F·s^order) at s = 0, exactly; None where it is infinite.
-pub fn static_error(below: &IntPoly, closed: &IntPoly, order: usize) -> Option<RBig> {
+fn static_error(below: &IntPoly, closed: &IntPoly, order: usize) -> Option<RBig> {
     let at = |p: &IntPoly, i: usize| p.coefficient(i);
     // A factor s common to both is a fixed mode at the origin: the loop is then not stable, and nobody asks.
     if (0..order).any(|i| !at(below, i).is_zero()) || at(closed, 0).is_zero() {
         return None;
     }
     Some(RBig::from_parts_signed(at(below, order), at(closed, 0)))
+}
+
+impl Answer {
+    fn figure(&self, make: impl Fn(&Modes, &Peaks) -> Figure) -> Figure {
+        match self {
+            Self::Found(modes, peaks) => make(modes, peaks),
+            Self::Undefined => Figure::Undefined,
+            Self::NotComputed => Figure::NotComputed,
+        }
+    }
+}
+
+/// A figure that a search may not find; undefined without a final value.
+fn searched(modes: &Modes, peaks: &Peaks, found: Option<f64>) -> Figure {
+    match found {
+        _ if !has_final_value(modes, peaks) => Figure::Undefined,
+        Some(value) => Figure::Value(value),
+        None => Figure::NotComputed,
+    }
+}
+
+/// s, until the output stays within the band. None where the search meets its cap, or there is no final value.
+fn settling_time(modes: &Modes, band: SettlingBand) -> Option<f64> {
+    modes.last_outside(band.part() * modes.final_value.abs())
+}
+
+/// s, until the highest point beyond the final value. None without one.
+fn peak_time(modes: &Modes, peaks: &Peaks) -> Option<f64> {
+    let (_, time) = if modes.final_value > 0.0 { peaks.highest } else { peaks.lowest };
+    (has_final_value(modes, peaks) && time.is_finite()).then_some(time)
 }
 
 fn has_final_value(modes: &Modes, peaks: &Peaks) -> bool {
@@ -146,14 +169,14 @@ fn largest(peaks: &Peaks) -> f64 {
 }
 
 /// % of the final value beyond it.
-pub fn overshoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
+fn overshoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
     let end = modes.final_value;
     let beyond = if end > 0.0 { peaks.highest.0 - end } else { end - peaks.lowest.0 };
     has_final_value(modes, peaks).then(|| percentage(beyond, end))
 }
 
 /// % of the final value on the other side of zero.
-pub fn undershoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
+fn undershoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
     let end = modes.final_value;
     let opposite = if end > 0.0 { -peaks.lowest.0 } else { peaks.highest.0 };
     has_final_value(modes, peaks).then(|| percentage(opposite, end))
@@ -165,7 +188,7 @@ fn percentage(excess: f64, end: f64) -> f64 {
 }
 
 /// s, from 10 % to 90 % of the final value.
-pub fn rise_time(modes: &Modes) -> Option<f64> {
+fn rise_time(modes: &Modes) -> Option<f64> {
     Some(modes.first_reach(0.9)? - modes.first_reach(0.1)?)
 }
 

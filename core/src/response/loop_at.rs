@@ -12,6 +12,27 @@ use dashu_int::IBig;
 use dashu_ratio::RBig;
 use nalgebra::Complex;
 
+/// An answer over time, as far as there is one.
+#[derive(Debug)]
+pub enum Answer {
+    /// Modes and extremes.
+    Found(Modes, Peaks),
+    /// The loop is unstable, or the answer contains an impulse.
+    Undefined,
+    /// The extremes were not found within the cap on steps.
+    NotComputed,
+}
+
+impl Answer {
+    /// Modes and extremes, where there are any.
+    pub fn found(&self) -> Option<(&Modes, &Peaks)> {
+        match self {
+            Self::Found(modes, peaks) => Some((modes, peaks)),
+            _ => None,
+        }
+    }
+}
+
 /// The loop at one value of the knob.
 #[derive(Debug)]
 pub struct LoopAt {
@@ -26,9 +47,9 @@ pub struct LoopAt {
     pub(super) closed: IntPoly,
     pub(super) poles: Vec<Complex<f64>>,
     stable: OnceCell<bool>,
-    output: OnceCell<Option<(Modes, Peaks)>>,
-    load: OnceCell<Option<(Modes, Peaks)>>,
-    control: OnceCell<Option<(Modes, Peaks)>>,
+    output: OnceCell<Answer>,
+    load: OnceCell<Answer>,
+    control: OnceCell<Answer>,
     frequency: OnceCell<Frequency>,
 }
 
@@ -81,22 +102,21 @@ impl LoopAt {
         *self.stable.get_or_init(|| count(&self.closed).is_ok_and(|count| count.is_stable()))
     }
 
-    /// The answer of the output, in the command's units, to a unit step of the command. None where the loop is unstable or
-    /// the answer contains an impulse.
-    pub fn output(&self) -> Option<&(Modes, Peaks)> {
-        self.output.get_or_init(|| self.answer(&self.output_transfer())).as_ref()
+    /// The answer of the output, in the command's units, to a unit step of the command.
+    pub fn output(&self) -> &Answer {
+        self.output.get_or_init(|| self.answer(&self.output_transfer()))
     }
 
     /// The answer of the output to a unit step at the plant's input.
-    pub fn load(&self) -> Option<&(Modes, Peaks)> {
+    pub fn load(&self) -> &Answer {
         let above = || self.plant.above.times(&self.controller.below).times(&self.sensor.below);
-        self.load.get_or_init(|| self.answer(&BlockAt { above: above(), below: self.closed.clone() })).as_ref()
+        self.load.get_or_init(|| self.answer(&BlockAt { above: above(), below: self.closed.clone() }))
     }
 
     /// The controller's output after a unit step of the command.
-    pub fn control(&self) -> Option<&(Modes, Peaks)> {
+    pub fn control(&self) -> &Answer {
         let above = || self.controller.above.times(&self.plant.below).times(&self.sensor.below);
-        self.control.get_or_init(|| self.answer(&BlockAt { above: above(), below: self.closed.clone() })).as_ref()
+        self.control.get_or_init(|| self.answer(&BlockAt { above: above(), below: self.closed.clone() }))
     }
 
     /// The open loop over frequency. None where the closed loop is unstable.
@@ -104,13 +124,12 @@ impl LoopAt {
         self.is_stable().then(|| self.frequency.get_or_init(|| Frequency::new(self)))
     }
 
-    fn answer(&self, transfer: &BlockAt) -> Option<(Modes, Peaks)> {
+    fn answer(&self, transfer: &BlockAt) -> Answer {
         if !self.is_stable() {
-            return None;
+            return Answer::Undefined;
         }
-        let modes = Modes::of_step(transfer, &self.poles)?;
-        let peaks = modes.peaks()?;
-        Some((modes, peaks))
+        let Some(modes) = Modes::of_step(transfer, &self.poles) else { return Answer::Undefined };
+        modes.peaks().map_or(Answer::NotComputed, |peaks| Answer::Found(modes, peaks))
     }
 
     /// N·h and F·g of command to output: the output is scaled by the sensor's static gain h/g where it has one, so that

@@ -5,7 +5,7 @@ mod frequency;
 mod loop_at;
 mod modes;
 
-pub use figures::{Figure, SettlingBand, overshoot, rise_time, static_error, undershoot};
+pub use figures::{Figure, SettlingBand};
 pub use frequency::Frequency;
-pub use loop_at::LoopAt;
+pub use loop_at::{Answer, LoopAt};
 pub use modes::{Modes, Peaks};

@@ -160,6 +160,10 @@ pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactErro
         let mut points: Vec<(f64, Room)> = Vec::with_capacity(samples.len());
         for (v, at) in samples {
             let figure = at.figure(limit.kind);
+            // What could not be computed says nothing: its neighbours decide.
+            if figure == Figure::NotComputed {
+                continue;
+            }
             defined |= figure != Figure::Undefined;
             points.push((*v, judge.room(figure)));
         }
@@ -205,7 +209,7 @@ impl Judge<'_> {
             Figure::Value(v) if at_least => Room::By(v - self.value),
             Figure::Value(v) => Room::By(self.value - v),
             Figure::Infinite => Room::Met(at_least),
-            Figure::Undefined => Room::Met(false),
+            Figure::Undefined | Figure::NotComputed => Room::Met(false),
         }
     }
 
