@@ -5,19 +5,19 @@ use nalgebra::Complex;
 
 /// √x.
 #[cfg(all(target_arch = "wasm32", target_feature = "simd128"))]
-pub fn square_root(x: f64) -> f64 {
+pub(crate) fn square_root(x: f64) -> f64 {
     use core::arch::wasm32::{f64x2_extract_lane, f64x2_splat, f64x2_sqrt};
     f64x2_extract_lane::<0>(f64x2_sqrt(f64x2_splat(x)))
 }
 
 /// √x.
 #[cfg(not(all(target_arch = "wasm32", target_feature = "simd128")))]
-pub fn square_root(x: f64) -> f64 {
+pub(crate) fn square_root(x: f64) -> f64 {
     libm::sqrt(x)
 }
 
 /// |z|, to a few rounding errors, without over- or underflow of the squares.
-pub fn magnitude(z: Complex<f64>) -> f64 {
+pub(crate) fn magnitude(z: Complex<f64>) -> f64 {
     let (a, b) = (z.re.abs(), z.im.abs());
     let (large, small) = if a > b { (a, b) } else { (b, a) };
     if small == 0.0 {
