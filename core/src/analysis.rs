@@ -4,7 +4,7 @@ use crate::exact::complex_roots::roots;
 use crate::exact::gcd::squarefree_factors;
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
-use crate::locus::{Branch, LocusInput, Meeting, branches, landmarks, meetings, view};
+use crate::locus::{Branch, LocusInput, Meeting, branches, close_calls, landmarks, meetings, view};
 use crate::model::{self, KnobPolynomial, Loop};
 use crate::ranges::permitted::short;
 use crate::ranges::pieces::Piece;
@@ -80,6 +80,7 @@ impl Analysis {
             family: &family,
             partition: &partition,
             meetings: found,
+            close_calls: &close_calls(&family, found),
             fixed: &fixed,
             poles: &moving.0,
             zeros: &moving.1,

@@ -5,7 +5,7 @@ use nalgebra::Complex;
 
 /// √x.
 #[cfg(all(target_arch = "wasm32", target_feature = "simd128"))]
-pub fn square_root(x: f64) -> f64 {
+pub(crate) fn square_root(x: f64) -> f64 {
     use core::arch::wasm32::{f64x2_extract_lane, f64x2_splat, f64x2_sqrt};
     f64x2_extract_lane::<0>(f64x2_sqrt(f64x2_splat(x)))
 }

@@ -47,11 +47,13 @@ impl Browser {
         for switch in SWITCHES {
             capabilities.add_arg(switch)?;
         }
-        capabilities.add_arg(&format!("--window-size={width},{height}"))?;
         capabilities.add_arg(&format!("--user-data-dir={}", folder.path().join("profile").display()))?;
         if let Some(binary) = binary() {
             capabilities.set_binary(&binary)?;
         }
+        // A window of its own would be larger by its frame, and never narrower than 500.
+        let metrics = json!({ "width": width, "height": height, "pixelRatio": 1, "mobile": false, "touch": false });
+        capabilities.add_experimental_option("mobileEmulation", json!({ "deviceMetrics": metrics }))?;
         let preferences = json!({
             "download.default_directory": downloads,
             "download.prompt_for_download": false,

@@ -73,10 +73,7 @@ fn a_broken_file_changes_nothing_and_says_what_is_wrong_with_it() {
         let loop_text = json!({ "controller": "K", "plant": "1/s" });
         let broken = [
             ("no JSON at all {".to_owned(), "JSON"),
-            (
-                json!({ "format": "stayband-project/2", "loop": loop_text, "knob": "K" }).to_string(),
-                "stayband-project/2",
-            ),
+            (json!({ "format": "stayband-project/2", "loop": loop_text, "knob": "K" }).to_string(), "version 2"),
             (
                 json!({ "format": "stayband-project/1", "loop": loop_text, "knob": "K", "colour": 1 }).to_string(),
                 "colour",

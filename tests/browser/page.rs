@@ -110,9 +110,13 @@ impl Page {
         Ok(self.driver.find(By::Id(id)).await?.text().await?)
     }
 
-    /// Waits until the text of the element with this id contains `part`.
+    /// Waits until the element with this id is shown and its text contains `part`.
     pub(crate) async fn shows(&self, id: &str, part: &str) -> Result<()> {
-        let script = "return document.getElementById(arguments[0]).innerText.includes(arguments[1])";
+        // The inner text of an element that is not shown is all of its text, so it must be shown, too.
+        let script = r#"
+            const place = document.getElementById(arguments[0]);
+            return (place?.checkVisibility() ?? false) && place.innerText.includes(arguments[1]);
+        "#;
         let waited = self.until(part, script, vec![json!(id), json!(part)]).await;
         let text = self.text(id).await?;
         waited.with_context(|| format!("#{id} shows {text:?}, not {part:?}"))
@@ -128,6 +132,19 @@ impl Page {
     pub(crate) async fn run_async(&self, script: &str, arguments: Vec<Value>) -> Result<Value> {
         let value = self.driver.execute_async(script, arguments).await.with_context(|| script.to_owned())?;
         Ok(value.json().clone())
+    }
+
+    /// Shows the page to a user with this preference: a media feature and its value.
+    pub(crate) async fn prefer(&self, feature: &str, value: &str) -> Result<()> {
+        let features = json!({ "features": [{ "name": feature, "value": value }] });
+        self.driver.cdp().send_raw("Emulation.setEmulatedMedia", features).await?;
+        Ok(())
+    }
+
+    /// Waits until the element with this id is not shown.
+    pub(crate) async fn hides(&self, id: &str) -> Result<()> {
+        let script = "return !document.getElementById(arguments[0]).checkVisibility()";
+        self.until(&format!("#{id} is hidden"), script, vec![json!(id)]).await
     }
 
     /// Waits until a piece of JavaScript returns true.

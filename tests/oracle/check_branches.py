@@ -16,13 +16,19 @@ from polynomials import at_knob
 from tracking import FOLLOW_BITS, Fast, Follower, Lost, fraction, reversed_knob
 
 #: A multiple point belongs to a segment if its knob is within this of the ends, relative: the stated knob is rounded.
-AT_MEETING = fmpq(1, 10**12)
+AT_MEETING = fmpq(1, 10**15)
 #: Quarterings of the knob towards a multiple point before a segment is given up.
 QUARTERINGS = 80
+#: A root that meets others comes at least this factor nearer with each quartering: 4^(-1/m) for m of them, m up to 40.
+APPROACH = 0.99
+#: Vertices tried outwards from a segment until one has a root of its own.
+STEPS_OUTWARDS = 12
 #: Radii of the disc around a multiple point, in distances of the farther vertex.
 MEETING_RADII = (1.05, 1.4, 2.0, 3.5)
 #: Factor by which the view is shrunk when a missing root is looked for: a branch may end right at its border.
 INNER_VIEW = 0.999
+#: Vertices at the end of a branch that are farther out than this many views are left unchecked: nobody sees them, and f64 overflows.
+FAR_OUT = 1e4
 #: Bits of the true roots.
 BITS = 128
 
@@ -63,8 +69,7 @@ class Picture:
 
         point, a, along = place(s), place(start), place(end) - place(start)
         length = (along**2).sum(axis=-1)
-        with np.errstate(all="ignore"):
-            share = np.clip(np.where(length > 0, ((point - a) * along).sum(axis=-1) / length, 0), 0, 1)
+        share = np.clip(np.where(length > 0, ((point - a) * along).sum(axis=-1) / length, 0), 0, 1)
         return np.sqrt(((point - a - along * share[..., None]) ** 2).sum(axis=-1))
 
 
@@ -115,6 +120,7 @@ class Half:
             track.number = number
             self.check_order(track)
             self.check_ends(track)
+            track.cut(FAR_OUT * self.picture.size)
             self.check_vertices(track)
             self.check_segments(track)
         self.check_all_different(tracks)
@@ -186,41 +192,77 @@ class Half:
         end = int(at[-1]) + 2 if len(at) else 0
         track.pieces, open_ones = self.fast.pieces(track.s[begin:end], track.q[begin:end])
         track.pieces.segment += begin
-        lost = []
-        for i in [*(open_ones + begin), *np.flatnonzero(~plain)]:
-            where = (track.s[i], track.s[i + 1], track.q[i], track.q[i + 1])
+        lost = [i for i in np.flatnonzero(~usable) if not self.passes_infinity(track, i)]
+        reasons = [f"{track.s[i]}, {track.s[i + 1]}, knob {track.q[i]}" for i in lost]
+        for first, last in runs(np.union1d(open_ones + begin, np.flatnonzero(usable & ~plain))):
             try:
-                if not (self.slow_segment(track, i) if usable[i] else self.passes_infinity(track, i)):
-                    lost.append(where)
-            except Lost as reason:
-                lost.append((*where, str(reason)))
-        self.report.check(not lost, f"{self.name} {track.number}: follows one root", f"0 of {len(plain)} lost", lost[:3])
+                good, reason = self.follows(track, first, last), "another root"
+            except Lost as lost_root:
+                good, reason = False, str(lost_root)
+            if not good:
+                reasons.append(f"{track.s[first]} to {track.s[last]}, knob {track.q[first]} to {track.q[last]}: {reason}")
+        self.report.check(not reasons, f"{self.name} {track.number}: follows one root", f"0 of {len(plain)} lost", reasons[:3])
         self.check_sagitta(track, plain)
 
-    def slow_segment(self, track, i):
-        """One segment in ball arithmetic."""
-        s0, s1, q0, q1 = track.s[i], track.s[i + 1], track.q[i], track.q[i + 1]
-        if s0 == s1 and np.isfinite(q1):
-            return True  # Both ends are poles already; a root that has not moved in f64 cannot have swapped.
+    def follows(self, track, first, last):
+        """From one vertex to another in ball arithmetic: through a multiple point, past infinity, or along one root."""
+        first, last = self.single_vertices(track, first, last)
+        s0, s1, q0, q1 = track.s[first], track.s[last], track.q[first], track.q[last]
         if np.isfinite(q1):
             low, high, follower = fraction(q0), fraction(q1), self.slow
+        elif q0 != 0:
+            low, high, follower = 1 / fraction(q0), fmpq(0), self.slow_end
         else:
-            low, high, follower = 1 / fraction(q0) if q0 else None, fmpq(0), self.slow_end
-            if low is None:
-                return False
+            halfway = fmpq(self.sign)
+            s0 = self.slow.follow(s0, fmpq(0), halfway)
+            low, high, follower = 1 / halfway, fmpq(0), self.slow_end
         met = self.meetings_between(low, high, np.isfinite(q1))
-        for meeting, knob in met:
-            if self.near_meeting(follower, meeting, knob, s0, s1, low, high):
-                return True
-        if self.passes_infinity(track, i):
+        if np.isfinite(q1) and any(self.within_meeting(m, s0, s1, low, high) for m in self.meetings):
+            return True
+        if self.through_meetings(follower, met, s0, s1, low, high) or self.passes_infinity(track, first):
             return True
         end = follower.follow(s0, low, high)
         return bool(abs(end - acb(s1)) <= tolerances.VERTEX_PLACE * float(self.scale(s1))) or self.same_at(follower, end, s1, high)
+
+    def single_vertices(self, track, first, last):
+        """The nearest vertices outwards whose root can be told from its neighbours: next to a near miss it cannot."""
+        for _ in range(STEPS_OUTWARDS):
+            if first == 0 or not track.finite[first - 1] or self.is_single(track, first):
+                break
+            first -= 1
+        for _ in range(STEPS_OUTWARDS):
+            if last + 1 >= len(track.s) or not track.finite[last + 1] or self.is_single(track, last):
+                break
+            last += 1
+        return first, last
+
+    def is_single(self, track, i):
+        """True if the vertex has a root of its own next to it."""
+        if not np.isfinite(track.q[i]):
+            return True
+        try:
+            with precision(FOLLOW_BITS):
+                self.slow.settle(acb(track.s[i]), fraction(track.q[i]))
+            return True
+        except Lost:
+            return False
 
     def same_at(self, follower, end, s1, q1):
         """True if the root is the one nearest to the vertex."""
         with precision(FOLLOW_BITS):
             return bool(abs(follower.newton(acb(s1), q1) - end) <= abs(end) * arb(2) ** -100)
+
+    def through_meetings(self, follower, met, s0, s1, low, high):
+        """True if both ends are among roots that meet on the way."""
+        with precision(FOLLOW_BITS):
+            knobs = [(m, fraction_near(knob, min(low, high), max(low, high))) for m, knob in met]
+            reach = 4 * abs(acb(s1) - acb(s0)) + tolerances.VERTEX_PLACE * self.picture.size
+
+            def reaches(s, q):
+                near = [(m, knob) for m, knob in knobs if abs(m.place - acb(s)) < reach]
+                return any(self.joins(follower, m, s, q, knob) for m, knob in near)
+
+            return bool(knobs) and reaches(s0, low) and reaches(s1, high)
 
     def meetings_between(self, low, high, finite):
         """Multiple points whose knob lies on the segment, with the knob in the segment's own terms."""
@@ -241,28 +283,33 @@ class Half:
                     found.append((meeting, knob))
         return found
 
-    def near_meeting(self, follower, meeting, knob, s0, s1, low, high):
-        """Both ends are among the roots that meet, or are followed to where they are."""
+    def within_meeting(self, meeting, s0, s1, low, high):
+        """True so close to a multiple point that nobody can tell its branches apart."""
+        room = tolerances.VERTEX_PLACE * self.picture.size
         with precision(FOLLOW_BITS):
-            middle = fraction_near(knob, min(low, high), max(low, high))
-        return all(self.joins(follower, meeting, s, q, middle) for s, q in ((s0, low), (s1, high)))
+            if meeting.knob is None or not all(bool(abs(acb(s) - meeting.place) < room) for s in (s0, s1)):
+                return False
+            return self.slow.holds(meeting.place, low, high, meeting.count, room)
 
     def joins(self, follower, meeting, s, q, knob):
         """True if the root next to s is one of those that meet, followed from q to the knob of the meeting."""
-        with precision(FOLLOW_BITS):
-            place = acb(s)
-            for _ in range(QUARTERINGS):
-                away = abs(place - meeting.place)
-                if abs(q - knob) <= abs(knob) * AT_MEETING:
-                    return bool(away <= tolerances.VERTEX_PLACE * float(self.scale(s)))
-                if any(follower.holds(meeting.place, q, knob, meeting.count, away * factor) for factor in MEETING_RADII):
-                    return True
-                nearer = knob + (q - knob) / 4
-                try:
-                    place, q = follower.follow(place, q, nearer), nearer
-                except Lost:
-                    return False
-            return False
+        place, away = acb(s), abs(acb(s) - meeting.place)
+        for _ in range(QUARTERINGS):
+            if abs(q - knob) <= abs(knob) * AT_MEETING and away <= tolerances.VERTEX_PLACE * float(self.scale(s)):
+                return True
+            if q == knob:
+                return False
+            if any(follower.holds(meeting.place, q, knob, meeting.count, away * factor) for factor in MEETING_RADII):
+                return True
+            nearer = knob + (q - knob) / 4
+            try:
+                place, q = follower.follow(place, q, nearer), nearer
+            except Lost:
+                return False
+            before, away = away, abs(place - meeting.place)
+            if away > before * APPROACH:
+                return False
+        return False
 
     def passes_infinity(self, track, i):
         """True for a segment out of view on both sides of a knob at which a pole passes infinity."""
@@ -300,8 +347,7 @@ class Half:
             return np.array([self.exact_root_between(track, i, k) for i, k in zip(at, q)])
         inside = (pieces.segment[index] == at) & (abs(q) <= abs(pieces.q1[index]))
         low, high = pieces.q0[index], pieces.q1[index]
-        with np.errstate(all="ignore"):
-            share = np.clip(np.where(high != low, (q - low) / (high - low), 0), 0, 1)
+        share = np.clip(np.where(high != low, (q - low) / (high - low), 0), 0, 1)
         s = self.fast.newton(pieces.s0[index] + share * (pieces.s1[index] - pieces.s0[index]), q)
         sure = inside & (abs(s - pieces.center[index]) + self.fast.root_distance(s, q) < pieces.radius[index])
         for k in np.flatnonzero(~sure):
@@ -311,6 +357,8 @@ class Half:
     def exact_root_between(self, track, i, q):
         """The same, followed from an end; at a multiple point the nearest root to the chord."""
         for end in (i, i + 1):
+            if not np.isfinite(track.q[end]):
+                continue
             try:
                 found = self.slow.follow(track.s[end], fraction(track.q[end]), fraction(q))
                 return complex(found.real.mid(), found.imag.mid())
@@ -341,8 +389,7 @@ class Half:
         """The branch's root at a knob inside segment i, which may run into a zero."""
         if np.isfinite(track.q[i + 1]):
             return complex(self.roots_between(track, np.array([i]), np.array([q]))[0])
-        found = self.slow.follow(track.s[i], fraction(track.q[i]), fraction(q))
-        return complex(found.real.mid(), found.imag.mid())
+        return self.exact_root_between(track, i, q)
 
     def sample_knobs(self, tracks):
         """One vertex's knob inside each interval between multiple points, and some beyond the last vertices."""
@@ -366,6 +413,17 @@ def fraction_near(ball, low, high):
     return max(low, min(high, fmpq(mantissa) * fmpq(2) ** int(power)))
 
 
+def runs(indices):
+    """Consecutive indices of segments as pairs of vertices: (first, behind the last)."""
+    found = []
+    for i in indices:
+        if found and found[-1][1] == i:
+            found[-1] = (found[-1][0], i + 1)
+        else:
+            found.append((i, i + 1))
+    return found
+
+
 class Track:
     """One branch as arrays."""
 
@@ -379,6 +437,12 @@ class Track:
         if self.into_zero and len(points) > 1 and points[-2][2] is not None and points[-2][2] < 0:
             self.q[-1] = -np.inf
         self.pieces = None
+
+    def cut(self, limit):
+        """Leaves out the end that is farther out than a limit."""
+        inside = np.flatnonzero(~self.finite | (abs(self.s) <= limit))
+        keep = min(len(self.s), (int(inside[-1]) if len(inside) else 0) + 2)
+        self.s, self.q, self.finite = self.s[:keep], self.q[:keep], self.finite[:keep]
 
     def stands_at(self, place, size):
         """True if no vertex is away from a place."""

@@ -25,10 +25,9 @@ RESIDUAL_BITS = 300
 LARGEST_DENOMINATOR = 1 << 300
 #: A rational of denominator d counts only in a ball narrower than 2^-CHANCE_BITS / d², where hardly any lies by chance.
 CHANCE_BITS = 100
-#: At an irrational event the knob is rounded to this many bits, so an m-fold root is off by 2^-(bits / m) relative.
-ROUNDED_BITS = 480
-#: Two roots nearer than this relative distance are one at the event: between 2^-(ROUNDED_BITS / 4) and any true distance.
-COINCIDENT = arb(2) ** -75
+#: At an irrational event the knob is rounded to so many bits, and roots nearer than this, relative, are taken for one: m-fold roots are
+#: off by 2^-(bits / m). The finer rounding is for events at which the coarse one sees more roots meet than there should.
+ROUNDINGS = ((480, arb(2) ** -75), (880, arb(2) ** -210))
 
 
 @dataclass
@@ -253,38 +252,45 @@ def general_meetings(moving):
 
 
 def state_at(characteristic, event):
-    """Counts exactly at the event: by exact arithmetic where it is rational, else by roots that coincide to COINCIDENT."""
+    """Counts exactly at the event: by exact arithmetic where it is rational, else by roots that coincide as far as one can see."""
     if event.rational is not None:
         return certified.kinds(characteristic.at(event.rational))
-    with precision(ROUNDED_BITS):
-        near = exact(+event.value)
-    poly = at_knob(characteristic.powers, near)
-    return clustered_kinds(roots(poly, 2 * ROUNDED_BITS))
+    for bits, coincident in ROUNDINGS:
+        with precision(bits):
+            near = exact(+event.value)
+        kinds, doubtful = clustered_kinds(roots(at_knob(characteristic.powers, near), 2 * bits), event, coincident)
+        if not doubtful:
+            break
+    return kinds
 
 
-def clustered_kinds(found):
-    """Counts where roots within COINCIDENT of the axis, of the real line, of each other or of infinity are there."""
+def clustered_kinds(found, event, coincident):
+    """Counts where roots nearer than this to the axis, to the real line or to each other are there; roots that small or large are at
+    the origin or infinity if the event says so. Doubtful if more roots meet than the event explains."""
     sizes = sorted(abs(s).mid() for s, _ in found)
     middle = sizes[len(sizes) // 2]
-    listed = [s for s, m in found for _ in range(m) if not abs(s) > middle / COINCIDENT]
-    near_origin = [s for s in listed if abs(s) < middle * COINCIDENT]
-    rest = [s for s in listed if not abs(s) < middle * COINCIDENT]
-    on_axis = [s for s in rest if abs(s.real) < abs(s) * COINCIDENT]
-    right = sum(1 for s in rest if s.real > abs(s) * COINCIDENT)
-    real = [s for s in rest if abs(s.imag) < abs(s) * COINCIDENT]
+    listed = [s for s, m in found for _ in range(m) if not (event.drop and abs(s) > middle / coincident)]
+    at_origin = [s.is_zero() or bool(event.origin and abs(s) < middle * coincident) for s in listed]
+    near_origin = [s for s, here in zip(listed, at_origin) if here]
+    rest = [s for s, here in zip(listed, at_origin) if not here]
+    on_axis = [s for s in rest if abs(s.real) < abs(s) * coincident]
+    right = sum(1 for s in rest if s.real > abs(s) * coincident)
+    real = [s for s in rest if abs(s.imag) < abs(s) * coincident]
     count_axis, count_real = len(on_axis) + len(near_origin), len(real) + len(near_origin)
     pairs = (len(listed) - count_real) // 2
-    if right or len(near_origin) > 1 or coincide(on_axis):
+    repeated_real = coincide(real, coincident)
+    if right or len(near_origin) > 1 or coincide(on_axis, coincident):
         word = "unstable"
     elif count_axis:
         word = "marginally stable"
     elif pairs:
         word = "underdamped"
     else:
-        word = "critically damped" if coincide(real) else "overdamped"
-    return Kinds(right, count_axis, count_real, pairs, word)
+        word = "critically damped" if repeated_real else "overdamped"
+    doubtful = len(on_axis) > 2 * len(event.omegas) or repeated_real and not event.real_meetings
+    return Kinds(right, count_axis, count_real, pairs, word), doubtful
 
 
-def coincide(listed):
+def coincide(listed, coincident):
     """True if two of the roots are one."""
-    return any(abs(a - b) < abs(a) * COINCIDENT for i, a in enumerate(listed) for b in listed[:i])
+    return any(abs(a - b) < abs(a) * coincident for i, a in enumerate(listed) for b in listed[:i])

@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass, field
 from math import pi
+from sys import float_info
 
 from flint import acb, acb_poly, arb, fmpq
 
@@ -13,6 +14,8 @@ from polynomials import at_knob
 #: takes. The direction is off by its m-th root.
 TINY = 120
 TINY_BITS = 2000
+
+EPSILON = float_info.epsilon
 
 
 @dataclass
@@ -26,6 +29,7 @@ class Mark:
     signs: set
     angle: float | None = None
     required: bool = True
+    vague: float = 0.0  # degrees by which f64 places of poles and zeros leave the angle open
 
 
 def marks(loop, truth):
@@ -118,19 +122,31 @@ def directions(loop, kind, home, other):
         for k in range(m):
             derivative, factorial = derivative.derivative(), factorial * (k + 1)
         power = -acb_value(other, place) * factorial / acb_value(derivative, place)
+        vague = openness(loop, place, m)
         for sign, half in ((1, "positive"), (-1, "negative")):
             argument = degrees(power * sign)
             angles = [wrap((argument + 360 * k) / m) for k in range(m)]
-            found += fan(loop, kind, place, m, half, angles, arb(0) if kind == "departure" else None)
+            found += fan(loop, kind, place, m, half, angles, arb(0) if kind == "departure" else None, vague)
     return found
 
 
-def fan(loop, kind, place, m, half, angles, at):
+def openness(loop, place, m):
+    """How far an angle can turn, in degrees, if every pole and zero is rounded to f64: a pole next to a zero is the worst."""
+    turn = 0.0
+    for part in loop.moving:
+        for other, count in roots(part, EVENT_BITS):
+            away = abs(other - place)
+            if not away.contains(0):
+                turn += count * float(((abs(other) + abs(place)) / away).mid()) * EPSILON
+    return turn / m * 180 / pi
+
+
+def fan(loop, kind, place, m, half, angles, at, vague=0.0):
     """One mark for every direction. A record need not say that a simple real pole leaves along the axis, nor how poles leave where
     the knob does not enter once."""
     counts = {m, m + fixed_at(loop, place)}
     plain = is_real(place) and m == 1
-    return [Mark({kind}, place, at, counts, {half}, angle, loop.affine and not plain) for angle in angles]
+    return [Mark({kind}, place, at, counts, {half}, angle, loop.affine and not plain, vague) for angle in angles]
 
 
 def measured(loop):

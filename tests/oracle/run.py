@@ -34,22 +34,26 @@ from nasty import all_cases
 SEEDS = 520
 #: Failures shown of one case; the rest is counted.
 SHOWN = 6
+#: Cases named at the end, so that one that grows slow is seen.
+SLOWEST = 5
 
 
 def main():
     arguments = parse()
     started = time.monotonic()
     jobs = named_jobs(arguments.only) if arguments.only else every_job(arguments.seeds)
-    passed, failed = 0, 0
+    passed, failed, slowest = 0, 0, []
     with multiprocessing.Pool(arguments.workers, initializer=start_worker, initargs=(arguments.binary,)) as pool:
         if arguments.self_test or not arguments.only:
             for test in (selftest, selftest_requirements):
                 counts = show(pool.apply(run_self_test, (test.__name__,)))
                 passed, failed = passed + counts[0], failed + counts[1]
         if not arguments.self_test:
-            for result in pool.imap_unordered(run_job, jobs, chunksize=1):
+            for seconds, result in pool.imap_unordered(run_job, jobs, chunksize=1):
                 counts = show(result)
                 passed, failed = passed + counts[0], failed + counts[1]
+                slowest = sorted([*slowest, (seconds, result[0])], reverse=True)[:SLOWEST]
+    print("slowest: " + ", ".join(f"{name} {seconds:.1f} s" for seconds, name in slowest))
     print(f"{time.monotonic() - started:.0f} s")
     print(f"{passed} passed, {failed} failed")
     return 1 if failed or not passed else 0
@@ -100,17 +104,20 @@ def run_self_test(name):
 
 
 def run_job(job):
-    """(name, project, passed, failures)."""
+    """Seconds of the processor, and (name, project, passed, failures)."""
+    started = time.process_time()
     kind, key = job
     if kind == "published":
-        return published.check(key, RECORDS)
-    if kind == "requirements":
+        result = published.check(key, RECORDS)
+    elif kind == "requirements":
         case = requirement_cases.requirement_case(int(key.removeprefix("requirements-")))
         report = requirement_checks.check_case(case, RECORDS)
-        return case.name, case.text, report.passed, report.failures
-    case = random_case(key) if kind == "random" else next(c for c in all_cases() if c.name == key)
-    report = check_case(case, RECORDS)
-    return case.name, case.text, report.passed, report.failures
+        result = case.name, case.text, report.passed, report.failures
+    else:
+        case = random_case(key) if kind == "random" else next(c for c in all_cases() if c.name == key)
+        report = check_case(case, RECORDS)
+        result = case.name, case.text, report.passed, report.failures
+    return time.process_time() - started, result
 
 
 def show(result):

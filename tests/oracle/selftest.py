@@ -3,14 +3,19 @@
 import copy
 from decimal import Decimal
 
+import numpy as np
+
 import events
 from binary import NoAnswer
+from check_branches import Picture
 from checks import check_record
 from nasty import all_cases
 from report import Report
 
 #: Cases whose records are corrupted; together they have every kind of edge, landmark and branch.
 SUBJECTS = ("triple real breakaway", "complex breakaway", "amplifier", "touching edge", "unstable pair, zeros near the axis")
+#: Vertices from one end to the other of a chord that stands for a bent part.
+COARSE = 6
 
 
 def run(records):
@@ -186,12 +191,20 @@ def move_vertex(record, branches):
 
 
 def coarse_branch(record, branches):
-    """Most vertices left out."""
-    longest = max(branches, key=lambda b: len(b["points"]))
-    every = max(4, len(longest["points"]) // 6)
-    kept = longest["points"][:-1:every] + longest["points"][-1:]
-    longest["points"] = kept
-    return len(kept) > 4
+    """Vertices left out where the branch is bent most."""
+    picture = Picture(record["view"])
+    worst = max((bend(picture, b["points"], i), k, i) for k, b in enumerate(branches) for i in range(len(b["points"]) - COARSE))
+    if worst[0] < 1:
+        return False
+    del branches[worst[1]]["points"][worst[2] + 1 : worst[2] + COARSE]
+
+
+def bend(picture, points, i):
+    """Pixels between the vertices that would be left out and the chord that would stand for them."""
+    if any(part is None for point in points[i : i + COARSE + 1] for part in point):
+        return 0.0
+    s = np.array([complex(*point[:2]) for point in points[i : i + COARSE + 1]])
+    return float(picture.pixels_to_chord(s[1:-1], s[0], s[-1]).max()) if picture.shows(s).all() else 0.0
 
 
 def cut_branch(record, branches):

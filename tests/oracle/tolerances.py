@@ -9,8 +9,10 @@ OMEGA = 1e-9
 LANDMARK_KNOB = 1e-9
 LANDMARK_PLACE = 1e-9
 
-#: Degrees. An angle is a sum of up to 40 arguments of differences of poles; poles 1e-8 apart leave 1e-8 rad of it.
-ANGLE = 1e-5
+#: Degrees. An angle is a sum of up to 40 arguments of differences of poles and zeros, good to some 1e-13 where these are apart.
+ANGLE = 1e-9
+#: Where they are close, ANGLE_ROUNDINGS times what the angle turns if each of them moves by EPSILON of its modulus.
+ANGLE_ROUNDINGS = 16
 
 #: Centroid, relative to the largest pole or zero: a sum of 40 figures of f64.
 CENTROID = 1e-12
@@ -32,3 +34,6 @@ PICTURE = 1000
 
 #: Distance from an edge at which the counts are sampled, relative to the edge.
 NEAR_EDGE = "1e-6"
+
+#: An edge that is a quotient of numbers up to this must be given exactly: someone checks it by hand.
+SHORT_NUMBER = 10**9

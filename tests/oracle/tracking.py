@@ -20,14 +20,29 @@ FOLLOW_BITS = 640
 FOLLOW_STEPS = 3000
 #: Halvings of one segment after which its root is said to be not separable: 2^-SMALLEST_STEP of the segment.
 SMALLEST_STEP = 160
+#: A disc no smaller than 2^-SETTLED_BITS of its centre's modulus is tried around a root: less drowns in the rounding.
+SETTLED_BITS = 150
 #: Newton steps towards a root that is known to be near.
 NEWTON_STEPS = 60
 #: Radii tried for a disc, in distances between its vertices.
-FAST_RADII = (1.2, 2.0, 3.2, 5.5)
+FAST_RADII = (1.2, 2.0, 3.2, 5.5, 20.0, 60.0)
 #: Halvings of a segment in f64 before it goes to the slow follower.
 HALVINGS = 16
+#: Pieces of one segment that may be without proof at a time; next to a multiple point more would never end.
+OPEN_PIECES = 24
+EPSILON = np.finfo(float).eps
 #: f64 rounding of a product of n factors, in units of n·EPSILON: each factor and each addition rounds once.
 ROUNDINGS = 4
+
+# Overflow and division by zero make a disc fail, which is what they should do.
+np.seterr(all="ignore")
+
+
+def up(coefficients, off):
+    """Coefficients of a polynomial times (u + off)."""
+    raised = coefficients * off
+    raised[:, 1:] += coefficients[:, :-1]
+    return raised
 
 
 class Fast:
@@ -40,42 +55,39 @@ class Fast:
             lead = float(int(p.leading_coefficient())) if p.degree() >= 0 else 0.0
             self.parts.append((lead, np.array(listed, dtype=complex)))
         self.order = max(p.degree() for p in moving)
-        self.noise = ROUNDINGS * (self.order + 1) * np.finfo(float).eps
+        self.noise = ROUNDINGS * (self.order + 1) * EPSILON
 
     def taylor(self, centers):
-        """For every part the coefficients around the centres, and the same with absolute values."""
+        """For every part the coefficients around the centres, and bounds on their errors: of the rounding of each step, and of the
+        poles and zeros themselves, which are rounded to f64."""
         found = []
         for lead, listed in self.parts:
             plain = np.zeros((len(centers), self.order + 1), dtype=complex)
-            bound = np.zeros((len(centers), self.order + 1))
-            plain[:, 0], bound[:, 0] = lead, abs(lead)
+            size, moved = np.zeros((2, len(centers), self.order + 1))
+            plain[:, 0], size[:, 0] = lead, abs(lead)
             for root in listed:
                 off = (centers - root)[:, None]
-                shifted, lifted = plain * off, bound * abs(off)
-                shifted[:, 1:] += plain[:, :-1]
-                lifted[:, 1:] += bound[:, :-1]
-                plain, bound = shifted, lifted
-            found.append((plain, bound))
+                moved = up(moved, abs(off)) + size * (EPSILON * abs(root))
+                plain, size = up(plain, off), up(size, abs(off))
+            found.append((plain, moved + size * self.noise))
         return found
 
     def discs(self, start, end, q0, q1):
-        """Radius of a disc around the middle of each segment with one root all along; 0 where none is proven."""
+        """The largest radius tried of a disc around the middle of each segment with one root all along; 0 where none is proven."""
         middle, half = (q0 + q1) / 2, abs(q1 - q0) / 2
         center, apart = (start + end) / 2, abs(end - start)
         size, worst = self.sizes(center, middle, half)
         radius = np.zeros(len(center))
         powers = np.arange(self.order + 1)
-        with np.errstate(all="ignore"):
-            # A root that comes back moves farther than its ends are apart.
-            apart = apart / 2 + np.where(size[:, 1] > 0, worst[:, 0] / size[:, 1], 0) / 2
+        # A root that comes back moves farther than its ends are apart.
+        apart = apart / 2 + np.where(size[:, 1] > 0, (size[:, 0] + worst[:, 0]) / size[:, 1], 0) / 2
         for factor in FAST_RADII:
             trial = apart * factor
-            with np.errstate(all="ignore"):
-                scaled = trial[:, None] ** powers
-                others = (size + worst) * scaled
-                most = others.sum(axis=1) - others[:, 1]
-                good = (size[:, 1] - worst[:, 1]) * trial > most
-            radius = np.where((radius == 0) & good, trial, radius)
+            scaled = trial[:, None] ** powers
+            others = (size + worst) * scaled
+            most = others.sum(axis=1) - others[:, 1]
+            good = (size[:, 1] - worst[:, 1]) * trial > most
+            radius = np.where(good, trial, radius)
         return center, radius
 
     def sizes(self, center, middle, half):
@@ -90,35 +102,39 @@ class Fast:
                 total = slope
             else:
                 worst += abs(slope) * (half**j)[:, None]
-        for k, (_, bound) in enumerate(around):
-            worst += bound * (self.noise * (abs(middle) + half) ** k)[:, None]
+        for k, (_, error) in enumerate(around):
+            worst += error * ((abs(middle) + half) ** k)[:, None]
         return abs(total), worst
 
     def value_and_slope(self, s, q):
         """F and dF/ds with a bound on the rounding of F."""
         value, slope, noise = np.zeros_like(s), np.zeros_like(s), np.zeros(len(s))
         for k, (lead, listed) in enumerate(self.parts):
-            f, df, size = np.full_like(s, lead), np.zeros_like(s), np.full(len(s), abs(lead))
+            f, df, size, moved = np.full_like(s, lead), np.zeros_like(s), np.full(len(s), abs(lead)), np.zeros(len(s))
             for root in listed:
-                df = df * (s - root) + f
-                f = f * (s - root)
-                size = size * (abs(s - root) + np.finfo(float).eps * abs(root))
-            value, slope, noise = value + q**k * f, slope + q**k * df, noise + abs(q) ** k * size * self.noise
+                off = s - root
+                df = df * off + f
+                f = f * off
+                moved = moved * abs(off) + size * (EPSILON * abs(root))
+                size = size * abs(off)
+            value, slope = value + q**k * f, slope + q**k * df
+            noise = noise + abs(q) ** k * (moved + size * self.noise)
         return value, slope, noise
 
     def newton(self, s, q, steps=12):
         """Roots near s, without proof."""
-        with np.errstate(all="ignore"):
-            for _ in range(steps):
-                value, slope, _ = self.value_and_slope(s, q)
-                s = s - np.where(slope != 0, value / slope, 0)
+        for _ in range(steps):
+            value, slope, _ = self.value_and_slope(s, q)
+            step = np.where(slope != 0, value / slope, 0)
+            s = s - step
+            if not (abs(step) > abs(s) * 2 * EPSILON).any():
+                break
         return s
 
     def root_distance(self, s, q):
         """A bound on the distance to the nearest root: n |F / F′|, rounding included."""
-        with np.errstate(all="ignore"):
-            value, slope, noise = self.value_and_slope(s, q)
-            return self.order * (abs(value) + noise) / abs(slope)
+        value, slope, noise = self.value_and_slope(s, q)
+        return self.order * (abs(value) + noise) / abs(slope)
 
 
     def turning(self, s, q0, q1):
@@ -126,26 +142,30 @@ class Fast:
         middle = (q0 + q1) / 2
         if len(self.parts) > 2:
             return middle
-        with np.errstate(all="ignore"):
-            d, n = (lead * np.prod(s[:, None] - listed[None, :], axis=1) for lead, listed in self.parts)
-            q = np.real(-d / n)
+        d, n = (lead * np.prod(s[:, None] - listed[None, :], axis=1) for lead, listed in self.parts)
+        q = np.real(-d / n)
         return np.where((q - q0) * (q - q1) < 0, q, middle)
 
     def pieces(self, s, q):
         """Pieces of a polyline with one root in a disc all along each; longer segments are halved up to HALVINGS times."""
         work = Pieces(np.arange(len(s) - 1), s[:-1], s[1:], q[:-1], q[1:])
-        done = []
+        done, left = [], []
         for _ in range(HALVINGS):
             work.center, work.radius = self.discs(work.s0, work.s1, work.q0, work.q1)
             off = np.maximum(self.root_distance(work.s0, work.q0), self.root_distance(work.s1, work.q1))
             sure = (work.radius > 0) & (abs(work.s1 - work.s0) / 2 + off <= work.radius)
             done.append(work.where(sure))
-            work = work.where(~sure)
+            lost = work.where(~sure)
+            hopeless = off[~sure] > abs(lost.s1 - lost.s0)
+            crowded = np.bincount(lost.segment, minlength=len(s)) > OPEN_PIECES
+            given_up = crowded | (np.bincount(lost.segment, weights=hopeless, minlength=len(s)) > 0)
+            left.append(np.flatnonzero(given_up))
+            work = lost.where(~given_up[lost.segment])
             if not len(work.segment):
                 break
             knob = self.turning((work.s0 + work.s1) / 2, work.q0, work.q1)
             work = work.halved(knob, self.newton((work.s0 + work.s1) / 2, knob))
-        return Pieces.joined(done), np.unique(work.segment)
+        return Pieces.joined(done), np.unique(np.concatenate([*left, work.segment]))
 
 
 @dataclass
@@ -256,8 +276,8 @@ class Follower:
     def settle(self, s, q):
         """The one root next to s, as far as it can be told from the others."""
         root = self.newton(s, q)
-        moved = abs(root - s)
-        if moved.contains(0) or self.pellet(self.coefficients(s, q, fmpq(0)), 1, moved * 2):
+        reach = 2 * abs(root - s) + abs(s) * arb(2) ** -SETTLED_BITS
+        if reach.contains(0) or self.pellet(self.coefficients(s, q, fmpq(0)), 1, reach):
             return root
         raise Lost(f"no single root next to {s.str(12)}")
 

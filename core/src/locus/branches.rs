@@ -9,7 +9,7 @@ use crate::exact::complex_roots::{ROOT_BITS, approximations, enclose_all};
 use crate::exact::real_roots::count_real;
 use crate::exact::{Dyadic, IntPoly};
 use crate::numerics::magnitude;
-use crate::ranges::{Contact, Family, Partition};
+use crate::ranges::{Contact, Family, Partition, Place};
 use crate::record::{KnobSign, Root, View};
 use alloc::vec::Vec;
 use nalgebra::{Complex, ComplexField};
@@ -25,6 +25,8 @@ pub struct LocusInput<'a> {
     pub partition: &'a Partition,
     /// Where branches meet.
     pub meetings: &'a [Meeting],
+    /// Knob values at which they come near each other.
+    pub close_calls: &'a [f64],
     /// Fixed modes.
     pub fixed: &'a [Root],
     /// Roots of the moving part at knob 0.
@@ -82,7 +84,8 @@ fn followed(
     let knob = middle(system, &stretch);
     let signed = sign.factor() * knob;
     let inside = |q: f64| q > ends.0.knob && q < ends.1.knob;
-    stretch.stops = input.partition.places.iter().map(|p| sign.factor() * p.value()).filter(|q| inside(*q)).collect();
+    let wanted = input.partition.places.iter().map(Place::value).chain(input.close_calls.iter().copied());
+    stretch.stops = wanted.map(|q| sign.factor() * q).filter(|q| inside(*q)).collect();
     let polynomial = input.family.at_dyadic(&Dyadic::from_f64(signed).ok_or(Lost)?);
     stretch.real = real_poles(input, signed).ok_or(Lost)?;
     let (stripped, zeros) = polynomial.without_zero_roots();
@@ -276,7 +279,7 @@ fn strands(track: &Track) -> Vec<Strand> {
 mod tests {
     use super::*;
     use crate::exact::complex_roots::roots;
-    use crate::locus::{meetings, view};
+    use crate::locus::{close_calls, meetings, view};
     use crate::record::Point;
 
     /// The branches of D + q·N, as (start, end) pairs, of one sign.
@@ -291,12 +294,26 @@ mod tests {
             family: &family,
             partition: &partition,
             meetings: &meetings,
+            close_calls: &close_calls(&family, &meetings),
             fixed: &[],
             poles: &poles,
             zeros: &zeros,
             view,
         };
         branches(&input, sign).expect("followed")
+    }
+
+    #[test]
+    fn branches_that_turn_away_from_each_other_are_not_joined_across_the_gap() {
+        // 10^5 (s + 1.00001)/((s + 1)(s + 2)(s + 5)), negative knob: no pole is ever between −1.00001 and −1.
+        let d = IntPoly::from_i64(&[10, 17, 8, 1]).times(&IntPoly::from_i64(&[100_000]));
+        let coefficients: Vec<i64> =
+            d.coefficients().iter().map(|c| i64::try_from(c.clone()).expect("short")).collect();
+        for branch in followed_branches(&coefficients, &[100_001, 100_000], KnobSign::Negative) {
+            let real: Vec<f64> = branch.points.iter().filter(|p| p.im == 0.0).map(|p| p.re).collect();
+            let crosses = real.windows(2).any(|pair| (pair[0] < -1.000_005) != (pair[1] < -1.000_005));
+            assert!(!crosses, "{real:?}");
+        }
     }
 
     #[test]

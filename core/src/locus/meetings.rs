@@ -1,6 +1,6 @@
 //! Every point where branches meet at a real, finite, non-zero knob: breakaway and break-in points, real and complex.
 
-use crate::exact::complex_roots::{enclose, negative_ratio_at};
+use crate::exact::complex_roots::{ComplexDyadic, approximations, enclose, negative_ratio_at};
 use crate::exact::gcd::{squarefree_factors, without_common_roots};
 use crate::exact::{ExactError, IntPoly};
 use crate::numerics::magnitude;
@@ -15,11 +15,18 @@ const SURELY_COMPLEX: f64 = 1e-3;
 /// A knob computed to 30 digits or more with a relative imaginary part below this is real.
 const SURELY_REAL: f64 = 1e-25;
 
-/// Below this relative imaginary part of the knob two branches pass each other within about its square root: 3e-5.
-const JUST_MISSED: f64 = 1e-9;
+/// Below this relative imaginary part of the knob two branches pass each other within about its square root, 3e-7: nearer
+/// than tracking in f64 can follow.
+const JUST_MISSED: f64 = 1e-13;
+
+/// Up to this relative imaginary part of the knob branches pass each other near enough that a row is wanted there.
+const CLOSE_CALL: f64 = 0.5;
 
 /// Nearer to the real axis than this part of its magnitude a point has its mirror image too near for two branches alone.
 const AWAY: f64 = 1e-3;
+
+/// A close call this near to a true meeting, as a part of the knob, is the meeting itself seen in f64.
+const KNOWN: f64 = 1e-7;
 
 /// Bits to which candidates are enclosed for that decision.
 const CANDIDATE_BITS: i64 = 128;
@@ -107,11 +114,29 @@ fn complex_meetings(d: &IntPoly, n: &IntPoly) -> Result<Vec<Meeting>, ExactError
     Ok(found)
 }
 
+/// Knob values at which branches come near each other without meeting, good enough to stop there and look: without a row
+/// in between, two poles that turn away from each other look like two that pass straight on.
+pub fn close_calls(family: &Family, meetings: &[Meeting]) -> Vec<f64> {
+    let Some((d, n)) = family.affine() else { return Vec::new() };
+    let (factor, _) = affine::meeting_polynomial(d, n).without_zero_roots();
+    let knobs =
+        approximations(&factor).into_iter().filter_map(|s| negative_ratio_at(d, n, &ComplexDyadic::from_f64(s)?));
+    let known = |q: f64| meetings.iter().any(|m| (m.knob - q).abs() <= KNOWN * q.abs());
+    let mut calls: Vec<f64> = knobs
+        .filter(|q| q.re.is_finite() && q.im.abs() <= CLOSE_CALL * q.re.abs())
+        .map(|q| q.re)
+        .filter(|q| !known(*q))
+        .collect();
+    calls.sort_by(f64::total_cmp);
+    calls.dedup_by(|a, b| (*a - *b).abs() <= KNOWN * b.abs());
+    calls
+}
+
 /// A quick look in f64 that spares most loops the enclosing.
 fn may_have_real_knob(factor: &IntPoly, d: &IntPoly, n: &IntPoly) -> bool {
-    crate::exact::complex_roots::approximations(factor).iter().any(|s| {
+    approximations(factor).iter().any(|s| {
         let upper = s.im > 1e-9 * s.re.abs();
-        let knob = crate::exact::complex_roots::ComplexDyadic::from_f64(*s).and_then(|s| negative_ratio_at(d, n, &s));
+        let knob = ComplexDyadic::from_f64(*s).and_then(|s| negative_ratio_at(d, n, &s));
         upper && knob.is_none_or(|q| q.im.abs() <= SURELY_COMPLEX * q.re.abs())
     })
 }

@@ -9,7 +9,7 @@ pub mod trade;
 pub mod view;
 
 pub use branches::{LocusInput, branches};
-pub use meetings::{Meeting, meetings};
+pub use meetings::{Meeting, close_calls, meetings};
 
 use crate::record::KnobSign;
 use alloc::vec::Vec;

@@ -23,6 +23,12 @@ const DRIFT: f64 = 0.15;
 /// Chord to curve, in pixels of the default view; a quarter is promised.
 const SAGITTA: f64 = 0.08;
 
+/// The smallest exponent of an approach: at order 40 forty poles may meet.
+const SLOWEST_APPROACH: f64 = 0.02;
+
+/// The smallest step in ln τ: f64 cannot tell smaller ones apart.
+const SMALLEST_STEP: f64 = 1e-15;
+
 /// The largest step in ln τ while a pole is in the picture: keeps the knob readable by interpolation between two rows.
 const LARGEST_STEP: f64 = 0.7;
 
@@ -291,7 +297,7 @@ impl Tracker<'_> {
                 }
                 None => step *= 0.4,
             }
-            if step < 1e-12 {
+            if step < SMALLEST_STEP * (1.0 + v.abs()) {
                 return Err(Lost);
             }
         }
@@ -421,18 +427,28 @@ impl Tracker<'_> {
         (left == 0).then_some(())
     }
 
-    /// Near a meeting of m poles s − s* ~ (q − q*)^(1/m), so that s − m·(q − q*)·ds/dq points at s*.
+    /// Near a meeting of m poles s − s* ~ (q − q*)^α, so that s − (q − q*)·ds/dq/α points at s*. For an affine knob
+    /// α = 1/m; otherwise any fraction may occur, and is read off the motion itself.
     fn hits(&self, row: &Row, way: Way, k: usize, s: Complex<f64>, multiplicity: usize) -> bool {
         let pole = row.poles[k];
+        let chord = s - pole.s;
+        let distance = magnitude(chord);
+        if distance == 0.0 {
+            return true;
+        }
         // (q − q*)·ds/dq, or −q·ds/dq towards infinity: dv is d ln|q − q*| near the end.
         let end_speed = self.end_motion(row, way, pole);
-        let predicted = pole.s - end_speed * multiplicity as f64;
-        let distance = magnitude(pole.s - s);
-        let miss = magnitude(predicted - s);
+        let exponent = match self.system {
+            System::Factored { .. } => 1.0 / multiplicity as f64,
+            System::Expanded { .. } => -(end_speed / chord).re,
+        };
+        if exponent < SLOWEST_APPROACH {
+            return false;
+        }
         // The parabola that leaves with this velocity and ends in s.
-        let (chord, out) = (s - pole.s, predicted - pole.s);
+        let out = -end_speed / exponent;
         let bend = self.pixels.sagitta(pole.s, s, out, chord * 2.0 - out);
-        (miss <= 0.2 * distance && bend <= 1.6 * SAGITTA) || distance == 0.0
+        magnitude(out - chord) <= 0.2 * distance && bend <= 0.8 * SAGITTA
     }
 
     /// ds/d ln|q − q*| at the end the row is heading for.
