@@ -21,6 +21,7 @@ sys.path.insert(0, str(Path(__file__).parent.parent / "published"))
 
 import published
 import selftest
+import tolerances
 from binary import Records
 from checks import check_case
 from generator import random_case
@@ -38,15 +39,18 @@ def main():
     arguments = parse()
     started = time.monotonic()
     jobs = named_jobs(arguments.only) if arguments.only else every_job(arguments.seeds)
-    passed, failed, slowest = 0, 0, []
+    passed, failed, undrawn, slowest = 0, 0, 0, []
     with multiprocessing.Pool(arguments.workers, initializer=start_worker, initargs=(arguments.binary,)) as pool:
         if arguments.self_test or not arguments.only:
             passed, failed = show(pool.apply(run_self_test))
         if not arguments.self_test:
-            for seconds, result in pool.imap_unordered(run_job, jobs, chunksize=1):
+            for seconds, missing, result in pool.imap_unordered(run_job, jobs, chunksize=1):
                 counts = show(result)
-                passed, failed = passed + counts[0], failed + counts[1]
+                passed, failed, undrawn = passed + counts[0], failed + counts[1], undrawn + missing
                 slowest = sorted([*slowest, (seconds, result[0])], reverse=True)[:SLOWEST]
+    if undrawn > tolerances.UNDRAWN * max(arguments.seeds, 100):
+        failed += 1
+        print(f"{undrawn} halves of the locus could not be followed: too many")
     print("slowest: " + ", ".join(f"{name} {seconds:.1f} s" for seconds, name in slowest))
     print(f"{time.monotonic() - started:.0f} s")
     print(f"{passed} passed, {failed} failed")
@@ -97,7 +101,8 @@ def run_self_test():
 
 
 def run_job(job):
-    """Seconds of the processor, and (name, project, passed, failures)."""
+    """Seconds of the processor, halves of the locus that are not drawn, and (name, project, passed, failures)."""
+    undrawn = 0
     started = time.process_time()
     kind, key = job
     if kind == "published":
@@ -105,8 +110,9 @@ def run_job(job):
     else:
         case = random_case(key) if kind == "random" else next(c for c in all_cases() if c.name == key)
         report = check_case(case, RECORDS)
+        undrawn = report.undrawn if kind == "random" else 0
         result = case.name, case.text, report.passed, report.failures
-    return time.process_time() - started, result
+    return time.process_time() - started, undrawn, result
 
 
 def show(result):
