@@ -87,15 +87,28 @@ def check_branches(case, truth, record, branches, report):
     drops = [e.value for e in truth if e.drop]
     for sign in ("positive", "negative"):
         own = [b["points"] for b in branches if b["sign"] == sign]
+        if not own and undrawn(record, sign):
+            report.undrawn += 1
+            continue
         allowed = {loop.order, loop.order + passing(loop, truth, sign)}
         report.check(len(own) in allowed, f"branches {sign}: number", allowed, len(own))
         Half(loop, sign, meetings, drops, Picture(record["view"]), report).check(own)
+
+
+def undrawn(record, sign):
+    """True where the record says that this half of the locus could not be followed."""
+    return any(n["kind"] == "not-computed" and f"{sign} half" in n["text"] for n in record["notices"])
 
 
 def passing(loop, truth, sign):
     """Poles that pass infinity at a knob of this sign: each may end one branch and begin another."""
     half = [e for e in truth if e.drop and (e.value > 0 if sign == "positive" else e.value < 0)]
     return sum(loop.order - e.state.real - 2 * e.state.pairs for e in half)
+
+
+def s_of(track, i):
+    """Place and knob of a vertex."""
+    return track.s[i], track.q[i]
 
 
 class Half:
@@ -199,10 +212,18 @@ class Half:
                 good, reason = self.follows(track, first, last), "another root"
             except Lost as lost_root:
                 good, reason = False, str(lost_root)
-            if not good:
+            if not good and not (self.undecided(s_of(track, first)) or self.undecided(s_of(track, last))):
                 reasons.append(f"{track.s[first]} to {track.s[last]}, knob {track.q[first]} to {track.q[last]}: {reason}")
         self.report.check(not reasons, f"{self.name} {track.number}: follows one root", f"0 of {len(plain)} lost", reasons[:3])
         self.check_sagitta(track, plain)
+
+    def undecided(self, vertex):
+        """True where two true roots are so near to each other that f64 vertices cannot tell which is which."""
+        s, q = vertex
+        if not np.isfinite(q):
+            return False
+        near = sorted(abs(complex(ball.real.mid(), ball.imag.mid()) - s) for ball, _ in roots(at_knob(self.moving, fraction(q)), BITS))
+        return len(near) > 1 and near[1] <= tolerances.TOO_NEAR * abs(s)
 
     def follows(self, track, first, last):
         """From one vertex to another in ball arithmetic: through a multiple point, past infinity, or along one root."""
@@ -378,7 +399,7 @@ class Half:
                     continue
                 s = self.root_at(track, i, q)
                 near = min(left, key=lambda z: abs(z - s), default=None)
-                good = near is not None and abs(near - s) <= tolerances.VERTEX_PLACE * self.scale(s)
+                good = near is not None and abs(near - s) <= tolerances.OWN_ROOT * self.scale(s)
                 self.report.check(good, f"{self.name} {track.number}: a root of its own at {q!r}", s, [near])
                 if good:
                     left.remove(near)

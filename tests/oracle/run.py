@@ -20,11 +20,13 @@ from pathlib import Path
 sys.path.insert(0, str(Path(__file__).parent))
 sys.path.insert(0, str(Path(__file__).parent.parent / "published"))
 
+import known
 import published
 import requirement_cases
 import requirement_checks
 import selftest
 import selftest_requirements
+import tolerances
 from binary import Records
 from checks import check_case
 from generator import random_case
@@ -42,21 +44,36 @@ def main():
     arguments = parse()
     started = time.monotonic()
     jobs = named_jobs(arguments.only) if arguments.only else every_job(arguments.seeds)
-    passed, failed, slowest = 0, 0, []
+    passed, failed, undrawn, slowest = 0, 0, 0, []
     with multiprocessing.Pool(arguments.workers, initializer=start_worker, initargs=(arguments.binary,)) as pool:
         if arguments.self_test or not arguments.only:
             for test in (selftest, selftest_requirements):
                 counts = show(pool.apply(run_self_test, (test.__name__,)))
                 passed, failed = passed + counts[0], failed + counts[1]
         if not arguments.self_test:
-            for seconds, result in pool.imap_unordered(run_job, jobs, chunksize=1):
-                counts = show(result)
-                passed, failed = passed + counts[0], failed + counts[1]
+            for seconds, missing, result in pool.imap_unordered(run_job, jobs, chunksize=1):
+                counts = show(known_or(result))
+                passed, failed, undrawn = passed + counts[0], failed + counts[1], undrawn + missing
                 slowest = sorted([*slowest, (seconds, result[0])], reverse=True)[:SLOWEST]
+    if undrawn > tolerances.UNDRAWN * max(arguments.seeds, 100):
+        failed += 1
+        print(f"{undrawn} halves of the locus could not be followed: too many")
     print("slowest: " + ", ".join(f"{name} {seconds:.1f} s" for seconds, name in slowest))
     print(f"{time.monotonic() - started:.0f} s")
     print(f"{passed} passed, {failed} failed")
     return 1 if failed or not passed else 0
+
+
+def known_or(result):
+    """The result, with the failures of a known deviation taken out; one that has gone away is a failure until it is off the list."""
+    name, project, passed, failures = result
+    reason = known.DEVIATIONS.get(name)
+    if reason is None:
+        return result
+    if not failures:
+        return name, project, passed, [("known deviation", f"still there: {reason}", "gone: take it off known.py")]
+    print(f"known: {name}: {len(failures)} of {passed + len(failures)} checks fail: {reason}")
+    return name, project, passed, []
 
 
 def parse():
@@ -104,7 +121,8 @@ def run_self_test(name):
 
 
 def run_job(job):
-    """Seconds of the processor, and (name, project, passed, failures)."""
+    """Seconds of the processor, halves of the locus that are not drawn, and (name, project, passed, failures)."""
+    undrawn = 0
     started = time.process_time()
     kind, key = job
     if kind == "published":
@@ -116,8 +134,9 @@ def run_job(job):
     else:
         case = random_case(key) if kind == "random" else next(c for c in all_cases() if c.name == key)
         report = check_case(case, RECORDS)
+        undrawn = report.undrawn if kind == "random" else 0
         result = case.name, case.text, report.passed, report.failures
-    return time.process_time() - started, result
+    return time.process_time() - started, undrawn, result
 
 
 def show(result):

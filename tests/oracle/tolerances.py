@@ -28,6 +28,14 @@ RADIUS_MULTIPLE = 1e-12
 VERTEX_PLACE = 1e-9
 VERTEX_KNOB = 1e-13
 
+#: A branch has a root of its own if one is this near to it, relative as above; which root it is matters here, not where exactly.
+OWN_ROOT = 1e-7
+#: Two roots nearer to each other than this part of their modulus: which of them an f64 vertex belongs to is not judged.
+TOO_NEAR = 1e-8
+#: Part of the random loops of which a half of the locus may be missing, with a notice that says so: poles nearer to each other
+#: than f64 resolves.
+UNDRAWN = 0.02
+
 #: Pixels between the true locus and the polyline, in a picture of PICTURE pixels each way.
 SAGITTA = 0.25
 PICTURE = 1000

@@ -26,6 +26,10 @@ const SAGITTA: f64 = 0.08;
 /// The smallest exponent of an approach: at order 40 forty poles may meet.
 const SLOWEST_APPROACH: f64 = 0.02;
 
+/// |ln τ| from which a meeting of several poles may be joined: farther away the terms of higher order can hide in the
+/// motion at one point.
+const NEAR_MEETING: f64 = 2.5;
+
 /// The smallest step in ln τ: f64 cannot tell smaller ones apart.
 const SMALLEST_STEP: f64 = 1e-15;
 
@@ -442,13 +446,38 @@ impl Tracker<'_> {
             System::Factored { .. } => 1.0 / multiplicity as f64,
             System::Expanded { .. } => -(end_speed / chord).re,
         };
-        if exponent < SLOWEST_APPROACH {
+        if exponent < SLOWEST_APPROACH || (multiplicity > 1 && row.v.abs() < NEAR_MEETING) {
             return false;
         }
         // The parabola that leaves with this velocity and ends in s.
         let out = -end_speed / exponent;
         let bend = self.pixels.sagitta(pole.s, s, out, chord * 2.0 - out);
-        magnitude(out - chord) <= 0.2 * distance && bend <= 0.8 * SAGITTA
+        magnitude(out - chord) <= 0.2 * distance
+            && bend <= 0.8 * SAGITTA
+            && self.halfway_is_near(row, way, pole.s, s, exponent)
+    }
+
+    /// Whether the pole halfway to the end is where the chord says: terms of higher order can hide in the motion at one
+    /// point.
+    fn halfway_is_near(&self, row: &Row, way: Way, from: Complex<f64>, to: Complex<f64>, exponent: f64) -> bool {
+        let Parameter { inner, outer, .. } = self.parameter();
+        // s − s* halves where q − q* (or 1/q, towards infinity) falls by this factor.
+        let factor = libm::pow(0.5, 1.0 / exponent);
+        let knob = match way {
+            Way::Inward => inner + (row.knob - inner) * factor,
+            Way::Outward if outer.is_finite() => outer + (row.knob - outer) * factor,
+            Way::Outward => row.knob / factor,
+        };
+        let middle = (from + to) * 0.5;
+        let mut s = middle;
+        for _ in 0..NEWTON_CAP {
+            let Some(newton) = self.system.newton(s, knob) else { return false };
+            s -= newton.correction;
+            if magnitude(newton.correction) <= newton.floor.max(1e-9 * magnitude(s)) {
+                break;
+            }
+        }
+        magnitude(s - middle) <= 0.25 * magnitude(to - from) && self.pixels.off_chord(from, to, s) <= 1.6 * SAGITTA
     }
 
     /// ds/d ln|q − q*| at the end the row is heading for.

@@ -60,6 +60,14 @@ impl Pixels {
         self.remoteness(s) >= FAR
     }
 
+    /// The distance of a point from the line through two others, in pixels; leniently outside of the view.
+    pub fn off_chord(&self, from: Complex<f64>, to: Complex<f64>, point: Complex<f64>) -> f64 {
+        let (chord, way) = (self.scaled(to - from), self.scaled(point - from));
+        let length = libm::hypot(chord.re, chord.im);
+        let off = if length == 0.0 { 0.0 } else { libm::fabs(chord.re * way.im - chord.im * way.re) / length };
+        off / (1.0 + 20.0 * self.remoteness(from).min(self.remoteness(to)))
+    }
+
     /// How far the cubic with these end velocities (over a parameter of length 1) bends from its chord, in pixels;
     /// leniently outside of the view.
     pub fn sagitta(&self, from: Complex<f64>, to: Complex<f64>, out: Complex<f64>, into: Complex<f64>) -> f64 {
