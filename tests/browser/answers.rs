@@ -109,7 +109,8 @@ fn every_demo_opens_and_has_a_stable_range() {
             page.press("New").await?;
             page.shows("answer", "Type a loop").await?;
             page.run("document.querySelectorAll('#demo-list button')[arguments[0]].click()", vec![demo.into()]).await?;
-            page.shows("answer", "Stable for").await?;
+            page.shows("answer", "Use ").await?;
+            page.shows("answer-stable", "Stable for").await?;
             let record = page.record().await?;
             let title = record["project"]["title"].as_str().context("a title")?;
             assert!(title.contains("invented"), "{title} is not marked as invented");

@@ -14,3 +14,4 @@ mod mistakes;
 mod picture;
 mod pointer;
 mod recovery;
+mod requirements;
