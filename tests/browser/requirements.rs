@@ -43,7 +43,8 @@ fn a_requirement_that_is_changed_changes_the_permitted_settings() {
         assert_eq!(permitted, json!([["30", "44"]]));
         type_limit(&page, "Damping ratio, at least", "0.55").await?;
         page.shows("answer", "Use 30 to 4").await?;
-        page.until("fewer settings", "return window.stayband.record().permitted.setting[0][1] !== '44'", vec![]).await?;
+        page.until("fewer settings", "return window.stayband.record().permitted.setting[0][1] !== '44'", vec![])
+            .await?;
         type_limit(&page, "Damping ratio, at least", "0.8").await?;
         page.until("a conflict", "return window.stayband.record().permitted.conflict !== null", vec![]).await?;
         page.shows("answer", "static error").await
