@@ -11,8 +11,8 @@ from check_roots import check_roots
 from report import Report
 
 
-def check_case(case, records):
-    """Asks for the record and holds it against the truth."""
+def check_case(case, records, with_branches=True):
+    """Asks for the record and holds it against the truth. The branches take nine tenths of the time."""
     report = Report()
     try:
         reply = records.ask(case.text)
@@ -21,7 +21,8 @@ def check_case(case, records):
         return report
     answer = reply["answer"]
     if report.check(answer["record"] is not None, "a record", "a record", answer["problems"]):
-        check_record(case, events.events(case.loop), answer["record"], reply["branches"], report)
+        branches = reply["branches"] if with_branches else None
+        check_record(case, events.events(case.loop), answer["record"], branches, report)
     return report
 
 
@@ -36,7 +37,7 @@ def check_record(case, truth, record, branches, report):
         ("asymptotes", lambda: check_asymptotes(case, record, report)),
         ("real axis", lambda: check_real_axis(case, record, report)),
         ("roots", lambda: check_roots(case, record, report)),
-        ("branches", lambda: check_branches(case, truth, record, branches, report)),
+        ("branches", lambda: branches is None or check_branches(case, truth, record, branches, report)),
     ):
         try:
             check()

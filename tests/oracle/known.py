@@ -1,4 +1,63 @@
 """Deviations that are known and not yet mended, by the name of the case. They are printed in every run; one that has gone away
 fails the run until it is taken off."""
 
-DEVIATIONS = {}
+#: Where a turn of the answer just touches the band, core and oracle place the jump of a settling time up to about 1e-4 of the knob
+#: apart; beside it a margin or a peak at a sharp corner. Which of the two is right is open.
+JUMP = "an edge where a figure jumps or has a corner"
+#: Two branches pass each other at 5e-15 of the knob, nearer than f64 can follow.
+NEAR_MISS = "branches that pass each other nearer than f64 tells"
+
+DEVIATIONS = {
+    "requirements 5": JUMP,
+    "requirements 9": JUMP,
+    "requirements 15": JUMP,
+    "requirements 19": JUMP,
+    "requirements 20": JUMP,
+    "requirements 22": JUMP,
+    "requirements 28": JUMP,
+    "requirements 29": JUMP,
+    "requirements 30": JUMP,
+    "requirements 31": JUMP,
+    "requirements 40": JUMP,
+    "requirements 50": JUMP,
+    "requirements 52": JUMP,
+    "requirements 53": JUMP,
+    "requirements 75": JUMP,
+    "requirements 79": JUMP,
+    "requirements 92": JUMP,
+    "requirements 95": JUMP,
+    "requirements 96": JUMP,
+    "requirements 100": JUMP,
+    "requirements 105": JUMP,
+    "requirements 107": JUMP,
+    "requirements 111": JUMP,
+    "requirements 115": JUMP,
+    "requirements 117": JUMP,
+    "requirements 120": JUMP,
+    "requirements 121": JUMP,
+    "requirements 126": JUMP,
+    "requirements 133": JUMP,
+    "requirements 139": JUMP,
+    "requirements 140": JUMP,
+    "requirements 143": JUMP,
+    "requirements 152": JUMP,
+    "requirements 155": JUMP,
+    "requirements 159": JUMP,
+    "requirements 160": JUMP,
+    "requirements 161": JUMP,
+    "requirements 162": JUMP,
+    "requirements 163": JUMP,
+    "requirements 170": JUMP,
+    "requirements 172": JUMP,
+    "requirements 174": JUMP,
+    "requirements 177": JUMP,
+    "requirements 181": JUMP,
+    "requirements 183": JUMP,
+    "requirements 188": JUMP,
+    "requirements 190": JUMP,
+    "requirements 195": JUMP,
+    "requirements 196": JUMP,
+    "148": NEAR_MISS,
+    "192": "a polyline a little beyond a quarter of a pixel",
+    "208": NEAR_MISS,
+}

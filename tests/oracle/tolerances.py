@@ -34,7 +34,7 @@ OWN_ROOT = 1e-7
 TOO_NEAR = 1e-8
 #: Part of the random loops of which a half of the locus may be missing, with a notice that says so: poles nearer to each other
 #: than f64 resolves.
-UNDRAWN = 0.02
+UNDRAWN = 0.08
 
 #: Pixels between the true locus and the polyline, in a picture of PICTURE pixels each way.
 SAGITTA = 0.25

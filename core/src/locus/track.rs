@@ -30,6 +30,9 @@ const SLOWEST_APPROACH: f64 = 0.02;
 /// motion at one point.
 const NEAR_MEETING: f64 = 2.5;
 
+/// |ln τ| from which the way to an end is not looked at halfway any more: there rounding decides what is found.
+const VERY_NEAR_MEETING: f64 = 10.0;
+
 /// The smallest step in ln τ: f64 cannot tell smaller ones apart.
 const SMALLEST_STEP: f64 = 1e-15;
 
@@ -454,7 +457,7 @@ impl Tracker<'_> {
         let bend = self.pixels.sagitta(pole.s, s, out, chord * 2.0 - out);
         magnitude(out - chord) <= 0.2 * distance
             && bend <= 0.8 * SAGITTA
-            && self.halfway_is_near(row, way, pole.s, s, exponent)
+            && (row.v.abs() > VERY_NEAR_MEETING || self.halfway_is_near(row, way, pole.s, s, exponent))
     }
 
     /// Whether the pole halfway to the end is where the chord says: terms of higher order can hide in the motion at one
