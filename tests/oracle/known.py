@@ -55,5 +55,4 @@ DEVIATIONS = {
     "requirements 190": JUMP,
     "requirements 195": JUMP,
     "requirements 196": JUMP,
-    "192": "a polyline a little beyond a quarter of a pixel",
 }
