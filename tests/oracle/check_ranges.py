@@ -94,6 +94,8 @@ def beside(known, event):
 
 def short(value, room):
     """A rational of few bits within a quarter of `room` of a value."""
+    if room <= 0:
+        raise ValueError(f"no room beside {value}: brackets that meet")
     unit = fmpq(1)
     while unit > room / 4:
         unit /= 2

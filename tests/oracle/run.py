@@ -13,6 +13,7 @@ import argparse
 import json
 import multiprocessing
 import os
+import signal
 import sys
 import time
 from pathlib import Path
@@ -39,6 +40,8 @@ ALWAYS_FOLLOWED = 10
 FOLLOWED_EACH = 5
 #: Failures shown of one case; the rest is counted.
 SHOWN = 6
+#: Seconds after which a case counts as hanging, and fails.
+PATIENCE = 240
 #: Cases named at the end, so that one that grows slow is seen.
 SLOWEST = 5
 
@@ -115,9 +118,14 @@ RECORDS = None
 
 
 def start_worker(path):
-    """Every worker talks to its own process of the program."""
+    """Every worker talks to its own process of the program, and gives up a case that hangs."""
     global RECORDS
     RECORDS = Records(path)
+    signal.signal(signal.SIGALRM, give_up)
+
+
+def give_up(*_):
+    raise TimeoutError(f"not ended after {PATIENCE} s")
 
 
 def run_self_test(name):
@@ -126,8 +134,19 @@ def run_self_test(name):
 
 def run_job(job):
     """Seconds of the processor, halves of the locus that are not drawn, and (name, project, passed, failures)."""
-    undrawn = 0
     started = time.process_time()
+    signal.alarm(PATIENCE)
+    try:
+        undrawn, result = checked(job)
+    except TimeoutError as reason:
+        undrawn, result = 0, (str(job[1]), "", 0, [("the check", "to end", str(reason))])
+    signal.alarm(0)
+    return time.process_time() - started, undrawn, result
+
+
+def checked(job):
+    """Halves of the locus that are not drawn, and (name, project, passed, failures)."""
+    undrawn = 0
     kind, key = job
     if kind == "published":
         result = published.check(key, RECORDS)
@@ -141,7 +160,7 @@ def run_job(job):
         report = check_case(case, RECORDS, with_branches=followed)
         undrawn = report.undrawn if kind == "random" else 0
         result = case.name, case.text, report.passed, report.failures
-    return time.process_time() - started, undrawn, result
+    return undrawn, result
 
 
 def show(result):

@@ -20,7 +20,7 @@ const ON_AXIS: f64 = 1e-14;
 /// A pole at the origin is computed there within this part of the largest pole.
 const ORIGIN: f64 = 1e-25;
 
-/// Digits of the bracket's decimals: one more than 1e-17 relative needs.
+/// Digits of the bracket's decimals: one more than 1e-17 relative needs. Where two places are nearer than that, more.
 const BRACKET_DIGITS: u32 = 19;
 
 /// The partition. `ranges` has one entry more than `places`.
@@ -122,11 +122,12 @@ impl Partition {
         omegas.sort_by(f64::total_cmp);
         let (below, above) = (self.ranges[i].half_plane, self.ranges[i + 1].half_plane);
         let touching = self.is_stability_place(i) && below == above;
+        let digits = self.bracket_digits(i);
         Edge {
             value: place.value(),
             bracket: match &place.exact {
-                Some(q) => crate::exact::dyadic::rational_bracket(q, BRACKET_DIGITS),
-                None => place.bracket.decimal_bracket(BRACKET_DIGITS),
+                Some(q) => crate::exact::dyadic::rational_bracket(q, digits),
+                None => place.bracket.decimal_bracket(digits),
             },
             exact: place.exact.as_ref().map(crate::exact::dyadic::exact_text),
             // Of a family of higher degree in the knob an irrational touching edge is told from a near miss by 100 bits, not
@@ -140,6 +141,21 @@ impl Partition {
             axis_poles: here.half_plane.axis,
             name: here.name,
         }
+    }
+
+    /// As many digits as keep the printed bracket of a place off those of its neighbours.
+    fn bracket_digits(&self, i: usize) -> u32 {
+        let gaps = [i.checked_sub(1).map(|before| (before, i)), (i + 1 < self.places.len()).then_some((i, i + 1))];
+        gaps.into_iter()
+            .flatten()
+            .filter_map(|(lower, upper)| {
+                let (lower, upper) = (&self.places[lower].bracket.high, &self.places[upper].bracket.low);
+                let size = lower.magnitude().max(upper.magnitude())?;
+                Some(size - (upper - lower).magnitude()?)
+            })
+            // A bit is less than a third of a digit; the two printed ends may each be off by a whole one, and the size by a bit.
+            .map(|bits| (bits.max(0) / 3 + 3) as u32)
+            .fold(BRACKET_DIGITS, u32::max)
     }
 
     fn kind(&self, i: usize) -> EdgeKind {
