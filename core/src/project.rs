@@ -34,7 +34,7 @@ pub struct Project {
 }
 
 /// The blocks as typed.
-#[derive(Clone, Debug, PartialEq, Eq, Serialize, Deserialize)]
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
 #[serde(rename_all = "camelCase", deny_unknown_fields)]
 #[cfg_attr(feature = "types", derive(ts_rs::TS))]
 pub struct LoopText {
@@ -48,6 +48,47 @@ pub struct LoopText {
     /// The sign with which the sensor's signal enters the comparison.
     #[serde(default)]
     pub feedback: Feedback,
+    /// The plant's dead time in s, beside those typed into the blocks as e^(−T s): an expression in numbers and quantities.
+    /// Empty: none.
+    #[serde(default)]
+    pub dead_time: String,
+    /// The controller's sampling. None: the controller works continuously.
+    #[serde(default)]
+    pub sampling: Option<SamplingText>,
+}
+
+/// How the controller samples, as typed: expressions in numbers and quantities.
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "camelCase", deny_unknown_fields)]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct SamplingText {
+    /// The sample period in s.
+    pub period: String,
+    /// From a sample to the output computed from it, in sample periods, 0 to 3. Empty: 0.
+    #[serde(default)]
+    pub delay: String,
+    /// How a controller in s becomes one in z.
+    #[serde(default)]
+    pub method: Discretisation,
+    /// rad/s: where [`Discretisation::TustinPrewarped`] is exact.
+    #[serde(default)]
+    pub prewarp: String,
+}
+
+/// The published methods by which a controller in s becomes one in z.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub enum Discretisation {
+    /// Tustin's method: the trapezoidal rule.
+    #[default]
+    Tustin,
+    /// Tustin's method, exact at one frequency.
+    TustinPrewarped,
+    /// The backward difference.
+    BackwardDifference,
+    /// Matched poles and zeros.
+    Matched,
 }
 
 fn one() -> String {

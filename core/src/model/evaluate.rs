@@ -4,6 +4,7 @@ use super::factors::Excess;
 use super::polynomial::KnobPolynomial;
 use super::quantities::Quantities;
 use super::ratio::Ratio;
+use super::scalar::affine;
 use super::{MAXIMUM_KNOB_DEGREE, MAXIMUM_ORDER};
 use crate::answer::{Field, Problem};
 use crate::notation::{Expression, Node, Span, names};
@@ -20,6 +21,17 @@ pub(super) struct Block<'a> {
     pub(super) text: &'a str,
     /// Its tree.
     pub(super) expression: &'a Expression,
+    /// The variable it is written in.
+    pub(super) variable: Variable,
+}
+
+/// The variable of a block.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Variable {
+    /// s.
+    Laplace,
+    /// z.
+    Advance,
 }
 
 /// The block as a ratio of polynomials.
@@ -28,7 +40,8 @@ pub(super) struct Block<'a> {
 /// Everything that keeps it from being one; nothing where a name only lacks its value, which the table reports.
 pub(super) fn evaluate(block: &Block<'_>, quantities: &Quantities) -> Result<Ratio, Vec<Problem>> {
     let mut evaluation = Evaluation { block, quantities, changed: None, problems: Vec::new() };
-    evaluation.ratio(block.expression).ok_or(evaluation.problems)
+    let found = evaluation.ratio(block.expression).and_then(|ratio| evaluation.without_prediction(ratio));
+    found.ok_or(evaluation.problems)
 }
 
 /// One pass over a block. Parts that cannot be evaluated are None, and the pass goes on to find all problems at once.
@@ -44,14 +57,19 @@ impl Evaluation<'_> {
     fn ratio(&mut self, expression: &Expression) -> Option<Ratio> {
         match &expression.node {
             Node::Number(number) => Some(Ratio::constant(number.value.clone())),
-            Node::Laplace => Some(Ratio::factor(KnobPolynomial::laplace())),
+            Node::Laplace => self.variable(Variable::Laplace, expression.span),
+            Node::Advance => self.variable(Variable::Advance, expression.span),
             Node::Name(name) => self.quantity(name),
             Node::Negation(inner) => Some(self.ratio(inner)?.negated()),
             Node::Sum(terms) => {
                 let parts: Vec<_> = terms.iter().map(|term| (term.sign, self.ratio(&term.expression))).collect();
                 let mut sum = Ratio::constant(RBig::ZERO);
-                for (sign, part) in parts {
-                    sum = self.within_limits(sum.plus(sign, &part?), expression.span)?;
+                for ((sign, part), term) in parts.into_iter().zip(terms) {
+                    let part = part?;
+                    if !sum.has_dead_time_of(&part) {
+                        return self.mixed_dead_times(term.expression.span);
+                    }
+                    sum = self.within_limits(sum.plus(sign, &part), expression.span)?;
                 }
                 Some(sum)
             }
@@ -99,15 +117,62 @@ impl Evaluation<'_> {
         None
     }
 
-    fn exponential<T>(&mut self, expression: &Expression, exponent: &Expression) -> Option<T> {
+    /// The block's variable, or what to type instead of another one.
+    fn variable(&mut self, found: Variable, span: Span) -> Option<Ratio> {
+        if found == self.block.variable {
+            return Some(Ratio::factor(KnobPolynomial::laplace()));
+        }
+        let message = match (found, self.block.field) {
+            (Variable::Laplace, _) => {
+                "s and z in one controller: write it in one of the two; a delay in z is typed as 1/z, or as the \
+                 computation delay"
+            }
+            (Variable::Advance, Field::Controller) => {
+                "z belongs to a sampled controller: turn Sampling on and type its period, or write the controller in s"
+            }
+            (Variable::Advance, Field::Plant | Field::Sensor) => {
+                "only the controller may stand in z: write this block in s; the conversion is exact"
+            }
+            (Variable::Advance, _) => "this must be a number: z cannot stand here",
+        };
+        self.report(span, message.to_string())
+    }
+
+    /// e^(−T s), where T is a time that may grow in proportion to the knob.
+    fn exponential(&mut self, expression: &Expression, exponent: &Expression) -> Option<Ratio> {
         let Span { start, end } = expression.span;
         let typed: String = self.block.text.chars().skip(start).take(end - start).collect();
-        let message = if contains_laplace(exponent) {
-            format!("dead time is not treated in this version, only ratios of polynomials in s: remove {typed}")
-        } else {
-            format!("not a ratio of polynomials in s: type the value of {typed} as a decimal")
-        };
-        self.report(expression.span, message)
+        if !contains_laplace(exponent) {
+            let message = format!("not a ratio of polynomials in s: type the value of {typed} as a decimal");
+            return self.report(expression.span, message);
+        }
+        let ratio = self.ratio(exponent)?;
+        let time = ratio
+            .polynomials()
+            .ok()
+            .filter(|(above, _)| above.order() == 1 && above.coefficient_of(0).is_zero() && ratio.dead_time.is_none());
+        match time.and_then(|(above, below)| affine(&above, &below, 1)) {
+            Some(found) => Some(Ratio::delay(found.times(-1))),
+            None => {
+                let message = format!("{typed} is no dead time: type e^(-T s) with a time T, such as e^(-0.2 s)");
+                self.report(expression.span, message)
+            }
+        }
+    }
+
+    fn mixed_dead_times<T>(&mut self, span: Span) -> Option<T> {
+        let message = "this adds paths with different dead times: a block may have one dead time, as a factor of the \
+                       whole block";
+        self.report(span, message.to_string())
+    }
+
+    /// The whole block, which cannot answer before it is asked.
+    fn without_prediction(&mut self, ratio: Ratio) -> Option<Ratio> {
+        if ratio.dead_time.is_possible() {
+            return Some(ratio);
+        }
+        let message = "this answers before it is asked: type a dead time with a negative exponent, such as e^(-0.2 s)";
+        self.report(self.block.expression.span, message.to_string())
     }
 
     fn within_limits(&mut self, result: Result<Ratio, Excess>, span: Span) -> Option<Ratio> {

@@ -6,19 +6,24 @@
 //! coefficient is positive. The knob itself is not scaled: in the affine case F = D + q N.
 
 mod characteristic;
+mod dead_time;
 mod display;
 mod evaluate;
 mod factors;
 mod polynomial;
 mod quantities;
 mod ratio;
+mod sampling;
+mod scalar;
 #[cfg(test)]
 mod tests;
 
+pub use dead_time::DeadTime;
 pub use display::formula;
 pub use factors::Factor;
 pub use polynomial::KnobPolynomial;
 pub use ratio::{BlockAt, Ratio};
+pub use sampling::Sampling;
 
 use crate::answer::{Field, Problem};
 use crate::exact::IntPoly;
@@ -31,7 +36,7 @@ use alloc::string::{String, ToString};
 use alloc::vec::Vec;
 use dashu_int::IBig;
 use dashu_ratio::RBig;
-use evaluate::{Block, evaluate};
+use evaluate::{Block, Variable, evaluate};
 use quantities::Quantities;
 
 /// The highest order of a loop. Up to here the exact methods are tried and fast.
@@ -52,7 +57,7 @@ pub struct Loop {
     pub knob: String,
     /// The chosen setting, if one was typed, on the controller's scale.
     pub setting: Option<RBig>,
-    /// Controller, plant and sensor, in factors as typed.
+    /// Controller, plant and sensor, in factors as typed. The field Dead time is part of the plant.
     pub blocks: [Ratio; 3],
     /// Controller times plant times sensor, in factors as typed.
     pub open_loop: Ratio,
@@ -60,7 +65,10 @@ pub struct Loop {
     pub feedback: Feedback,
     /// The controller's scale.
     pub scale: Scale,
-    /// F(s, q), of order 1 or more. Normalised as the module's head says.
+    /// How the controller samples; None for one that works continuously.
+    pub sampling: Option<Sampling>,
+    /// F(s, q), of order 1 or more. Normalised as the module's head says. Of a loop with dead time, that of the loop
+    /// without it; of a loop with a controller in z it is not used.
     pub characteristic: KnobPolynomial,
     /// A factor in the knob alone that was divided out of F, as text. Where it is zero, the loop as typed makes no
     /// sense.
@@ -82,10 +90,18 @@ fn blocks(project: &Project) -> [(Field, &'static str, &str); 3] {
 #[must_use]
 pub fn reading(project: &Project) -> Reading {
     let read = blocks(project).map(|(_, _, text)| notation::read(text).ok());
-    let factor = notation::read(&project.setting.factor).ok();
-    let names = names(read.iter().flatten().chain(&factor));
+    let others = numbers(project);
+    let names = names(read.iter().flatten().chain(&others));
     let [controller, plant, sensor] = read.map(|block| block.as_ref().map(notation::mathml));
     Reading { controller, plant, sensor, names }
+}
+
+/// The inputs that are numbers typed as expressions, as far as they can be read.
+fn numbers(project: &Project) -> Vec<Expression> {
+    let sampling =
+        project.blocks.sampling.iter().flat_map(|sampling| [&sampling.period, &sampling.delay, &sampling.prewarp]);
+    let texts = [&project.blocks.dead_time].into_iter().chain(sampling).chain([&project.setting.factor]);
+    texts.filter_map(|text| notation::read(text).ok()).collect()
 }
 
 /// The names in all blocks, in order of first appearance.
@@ -106,15 +122,17 @@ fn names<'a>(expressions: impl Iterator<Item = &'a Expression>) -> Vec<String> {
 pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
     let texts = blocks(project);
     let read = texts.map(|(_, _, text)| notation::read(text));
-    let factor_read = notation::read(&project.setting.factor).ok();
-    let used = names(read.iter().flatten().chain(&factor_read));
+    let used = names(read.iter().flatten().chain(&numbers(project)));
     let (quantities, table_problems) = quantities::read(project, &used);
 
     let mut problems = Vec::new();
     let mut ratios = Vec::new();
     for ((field, _, text), expression) in texts.iter().zip(&read) {
         let evaluated = match expression {
-            Ok(expression) => evaluate(&Block { field: *field, text, expression }, &quantities),
+            Ok(expression) => {
+                let variable = variable(project, *field, expression);
+                evaluate(&Block { field: *field, text, expression, variable }, &quantities)
+            }
             Err(error) => Err([fault(*field, error)].into()),
         };
         match evaluated {
@@ -122,23 +140,39 @@ pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
             Err(found) => problems.extend(found),
         }
     }
+    let dead_time = scalar::dead_time(&project.blocks.dead_time, &quantities).unwrap_or_else(|found| {
+        problems.extend(found);
+        DeadTime::default()
+    });
+    let sampling = sampling::read(project, read[0].as_ref().ok(), &quantities).unwrap_or_else(|found| {
+        problems.extend(found);
+        None
+    });
     problems.extend(table_problems);
     let scaled = setting(project, &quantities).map_err(|found| problems.extend(found));
     let ([controller, plant, sensor], Some(knob), Ok((setting, scale))) = (ratios.as_slice(), quantities.knob, scaled)
     else {
         return Err(problems);
     };
+    let plant = &Ratio { dead_time: plant.dead_time.plus(&dead_time), ..plant.clone() };
     if !problems.is_empty() {
         return Err(problems);
     }
 
+    let in_z = sampling.as_ref().is_some_and(|sampling| sampling.controller_in_z);
+    if in_z && controller.zero_count() > controller.pole_count() {
+        let message = "this needs samples that are not yet taken: give the controller as many poles as zeros, such as \
+                       K (z - 0.9)/z"
+            .to_string();
+        return Err([Problem { field: Field::Controller, symbol: None, span: None, message }].into());
+    }
     let about_loop = |message| [Problem { field: Field::Loop, symbol: None, span: None, message }].to_vec();
     let open_loop = controller.times(plant).and_then(|path| path.times(sensor));
     let open_loop = open_loop.map_err(|excess| about_loop(characteristic::too_large(excess)))?;
     let found = characteristic::characteristic(&open_loop, project.blocks.feedback).map_err(about_loop)?;
     let mut notices: Vec<Notice> =
         texts.iter().zip(&ratios).filter_map(|((_, name, _), ratio)| improper(name, ratio)).collect();
-    if found.loses_order {
+    if found.loses_order && sampling.is_none() && open_loop.dead_time.is_none() {
         let text = "algebraic loop: at high frequencies the loop returns exactly its own signal at every setting; add a \
                     filter pole, such as 1/(0.01 s + 1)";
         notices.push(Notice { kind: NoticeKind::AlgebraicLoop, text: text.to_string() });
@@ -153,6 +187,7 @@ pub fn build(project: &Project) -> Result<Loop, Vec<Problem>> {
         open_loop,
         feedback,
         scale,
+        sampling,
         characteristic: found.polynomial,
         knob_factor,
         notices,
@@ -211,6 +246,13 @@ impl Loop {
             Feedback::Positive => IBig::NEG_ONE,
         }
     }
+}
+
+/// The variable a block is written in: z stands for the controller of a sampled loop only.
+fn variable(project: &Project, field: Field, expression: &Expression) -> Variable {
+    let in_z =
+        field == Field::Controller && project.blocks.sampling.is_some() && sampling::contains_advance(expression);
+    if in_z { Variable::Advance } else { Variable::Laplace }
 }
 
 fn fault(field: Field, error: &NotationError) -> Problem {
@@ -272,29 +314,12 @@ fn setting(project: &Project, quantities: &Quantities) -> Result<(Option<RBig>, 
 
 /// The factor of the scale: a number other than zero.
 fn factor(text: &str, quantities: &Quantities) -> Result<RBig, Vec<Problem>> {
-    if text.trim().is_empty() {
-        return Ok(RBig::ONE);
+    let factor = scalar::number(Field::Setting, "factor", text, quantities)?.unwrap_or(RBig::ONE);
+    if factor.is_zero() {
+        let message = "the factor must not be zero: type what one unit of the setting means for the knob";
+        return Err([setting_problem("factor", None, message.to_string())].into());
     }
-    let fail = |span: Option<[usize; 2]>, message: String| [setting_problem("factor", span, message)].to_vec();
-    let expression = notation::read(text).map_err(|error| fail(Some(error.span().into()), error.to_string()))?;
-    let block = Block { field: Field::Setting, text, expression: &expression };
-    let ratio = evaluate(&block, quantities).map_err(|mut found| {
-        found.iter_mut().for_each(|problem| problem.symbol = Some("factor".to_string()));
-        found
-    })?;
-    if !ratio.numerator.is_empty() || !ratio.denominator.is_empty() {
-        return Err(fail(
-            None,
-            "the factor must be a number: use quantities with values, neither s nor the knob".to_string(),
-        ));
-    }
-    if ratio.is_zero() {
-        return Err(fail(
-            None,
-            "the factor must not be zero: type what one unit of the setting means for the knob".to_string(),
-        ));
-    }
-    Ok(ratio.constant)
+    Ok(factor)
 }
 
 /// A warning about a block with more zeros than poles.

@@ -8,6 +8,7 @@
 //! common divisor; factors that mix s and the knob are compared as wholes.
 
 use super::MAXIMUM_BITS;
+use super::dead_time::DeadTime;
 use super::factors::{Excess, Factor, expanded, knob_degree, merged, order, shared, split, without, without_common};
 use super::polynomial::KnobPolynomial;
 use crate::exact::IntPoly;
@@ -22,7 +23,7 @@ use dashu_ratio::RBig;
 /// limits; this one keeps exponents small, and the order in the message true.
 const MAXIMUM_FACTORED_DEGREE: u64 = 1_000_000;
 
-/// A constant times a product of factors over a product of factors.
+/// A constant times a product of factors over a product of factors, held back by a dead time.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Ratio {
     /// The constant; zero makes the whole ratio zero.
@@ -31,6 +32,8 @@ pub struct Ratio {
     pub numerator: Vec<Factor>,
     /// Factors of the denominator, all different. A ratio that is zero keeps them: they are poles of the machine.
     pub denominator: Vec<Factor>,
+    /// The dead time T of the factor e^(−T s).
+    pub dead_time: DeadTime,
 }
 
 /// A block at one value of the knob.
@@ -46,12 +49,17 @@ impl Ratio {
     /// A number.
     #[must_use]
     pub fn constant(constant: RBig) -> Self {
-        Self { constant, numerator: Vec::new(), denominator: Vec::new() }
+        Self { constant, numerator: Vec::new(), denominator: Vec::new(), dead_time: DeadTime::default() }
     }
 
     /// A polynomial that is not constant, primitive and of the right sign.
     pub(super) fn factor(polynomial: KnobPolynomial) -> Self {
-        Self { constant: RBig::ONE, numerator: vec![Factor { polynomial, exponent: 1 }], denominator: Vec::new() }
+        Self { numerator: vec![Factor { polynomial, exponent: 1 }], ..Self::constant(RBig::ONE) }
+    }
+
+    /// e^(−T s).
+    pub(super) fn delay(dead_time: DeadTime) -> Self {
+        Self { dead_time, ..Self::constant(RBig::ONE) }
     }
 
     /// True where the ratio is zero for every s and knob.
@@ -78,11 +86,12 @@ impl Ratio {
     }
 
     pub(super) fn times(&self, other: &Self) -> Result<Self, Excess> {
-        Self::checked(
+        let product = Self::checked(
             &self.constant * &other.constant,
             merged(&self.numerator, &other.numerator),
             merged(&self.denominator, &other.denominator),
-        )
+        )?;
+        Ok(product.delayed(self.dead_time.plus(&other.dead_time)))
     }
 
     /// self/other, cleared of factors common to both denominators. None where `other` is zero.
@@ -91,11 +100,12 @@ impl Ratio {
             return None;
         }
         let (below, above) = without_common(&self.denominator, &other.denominator);
-        Some(Self::checked(
+        let quotient = Self::checked(
             &self.constant / &other.constant,
             merged(&self.numerator, &above),
             merged(&below, &other.numerator),
-        ))
+        );
+        Some(quotient.map(|quotient| quotient.delayed(self.dead_time.plus(&other.dead_time.times(-1)))))
     }
 
     /// self^exponent. None where zero is raised to a negative power.
@@ -114,10 +124,21 @@ impl Ratio {
             let raise = |factor: &Factor| Factor { exponent: factor.exponent * u64::from(times), ..factor.clone() };
             if times == 0 { Vec::new() } else { factors.iter().map(raise).collect() }
         };
-        Some(Self::checked(self.constant.pow(times as isize), raised(&self.numerator), raised(&self.denominator)))
+        let power =
+            Self::checked(self.constant.pow(times as isize), raised(&self.numerator), raised(&self.denominator));
+        Some(power.map(|power| power.delayed(self.dead_time.times(exponent))))
     }
 
-    /// self ± other over the least common denominator.
+    fn delayed(self, dead_time: DeadTime) -> Self {
+        Self { dead_time, ..self }
+    }
+
+    /// Whether the two can be added: a sum of paths with different dead times is no ratio times one dead time.
+    pub(super) fn has_dead_time_of(&self, other: &Self) -> bool {
+        self.is_zero() || other.is_zero() || self.dead_time == other.dead_time
+    }
+
+    /// self ± other over the least common denominator; both with the same dead time, or one of them zero.
     pub(super) fn plus(&self, sign: Sign, other: &Self) -> Result<Self, Excess> {
         // Nothing plus something keeps its factors.
         if self.is_zero() && self.denominator.is_empty() {
@@ -130,7 +151,9 @@ impl Ratio {
         let (sum, scale) = weighted_sum(&self.constant, &here, sign, &other.constant, &there);
         let (factors, content) = split(&sum);
         let constant = if sum.is_zero() { RBig::ZERO } else { RBig::from_parts(content, scale) };
-        Self::checked(constant, merged(&common, &factors), merged(&self.denominator, &lacking_here))
+        let dead_time = if self.is_zero() { &other.dead_time } else { &self.dead_time };
+        let sum = Self::checked(constant, merged(&common, &factors), merged(&self.denominator, &lacking_here))?;
+        Ok(sum.delayed(dead_time.clone()))
     }
 
     /// Numerator and denominator over the integers, multiplied out, common factors kept.
@@ -187,7 +210,7 @@ impl Ratio {
                 return Err(Excess::KnobDegree(knob_degree(factors)));
             }
         }
-        Ok(Self { constant, numerator, denominator })
+        Ok(Self { constant, numerator, denominator, dead_time: DeadTime::default() })
     }
 }
 

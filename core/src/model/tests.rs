@@ -1,7 +1,7 @@
 //! Tests of the model, named by behaviour. All loops are invented.
 
 use super::*;
-use crate::project::{Feedback, LoopText, PROJECT_FORMAT, Quantity, Setting};
+use crate::project::{Discretisation, Feedback, LoopText, PROJECT_FORMAT, Quantity, SamplingText, Setting};
 use alloc::vec;
 use dashu_int::IBig;
 use proptest::prelude::*;
@@ -16,7 +16,7 @@ fn project(blocks: [&str; 3], rows: &str, knob: &str) -> Project {
     Project {
         format: PROJECT_FORMAT.into(),
         title: String::new(),
-        blocks: LoopText { controller, plant, sensor, feedback: Feedback::Negative },
+        blocks: LoopText { controller, plant, sensor, feedback: Feedback::Negative, ..LoopText::default() },
         quantities: rows.split(';').filter(|row| row.contains('=')).map(row).collect(),
         knob: knob.into(),
         setting: Setting::default(),
@@ -211,18 +211,100 @@ fn the_setting_is_an_exact_decimal() {
 #[test]
 fn blocks_that_are_no_ratio_of_polynomials_are_refused() {
     assert_eq!(
-        only_problem(["K", "2.5 e^(-0.2 s)/(4 s + 1)", "1"], "", "K"),
-        in_block(
-            Field::Plant,
-            4,
-            14,
-            "dead time is not treated in this version, only ratios of polynomials in s: remove e^(-0.2 s)"
-        )
-    );
-    assert_eq!(
         only_problem(["K exp(2)", "1/s", "1"], "", "K"),
         in_block(Field::Controller, 2, 8, "not a ratio of polynomials in s: type the value of exp(2) as a decimal")
     );
+}
+
+/// The dead times of controller, plant and sensor at knob 10.
+fn dead_times(project: &Project) -> [RBig; 3] {
+    build(project).unwrap().blocks.each_ref().map(|block| block.dead_time.at(&RBig::from(10)))
+}
+
+#[test]
+fn dead_times_of_blocks_and_field_add_up() {
+    let tenths = |n: i32| RBig::from_parts(n.into(), 10u8.into());
+    let mut heater = project(["K", "2.5 e^(-0.2 s)/(4 s + 1)", "exp(-T s)"], "T = 0.3", "K");
+    assert_eq!(dead_times(&heater), [tenths(0), tenths(2), tenths(3)]);
+    heater.blocks.dead_time = "2 T".into();
+    assert_eq!(dead_times(&heater), [tenths(0), tenths(8), tenths(3)]);
+    let pade_free = project(["K", "(e^(-0.1 s))^3 e^(-s)/(e^(-s/2) (s + 1)) + e^(-0.8 s)/s", "1"], "", "K");
+    assert_eq!(dead_times(&pade_free)[1], tenths(8));
+    heater.knob = "T".into();
+    heater.quantities = project(["K", "1/s", "1"], "K = 2", "T").quantities;
+    assert_eq!(dead_times(&heater), [tenths(0), tenths(202), tenths(100)]);
+}
+
+#[test]
+fn what_is_no_dead_time_says_what_to_type() {
+    let mixed =
+        "this adds paths with different dead times: a block may have one dead time, as a factor of the whole block";
+    assert_eq!(only_problem(["K", "1/s + e^(-s)/(s + 1)", "1"], "", "K"), in_block(Field::Plant, 6, 20, mixed));
+    let ahead = "this answers before it is asked: type a dead time with a negative exponent, such as e^(-0.2 s)";
+    assert_eq!(only_problem(["K", "e^(2 s)/s", "1"], "", "K"), in_block(Field::Plant, 0, 9, ahead));
+    let other = "e^(-s^2) is no dead time: type e^(-T s) with a time T, such as e^(-0.2 s)";
+    assert_eq!(only_problem(["K", "e^(-s^2)", "1/s"], "", "K"), in_block(Field::Plant, 0, 8, other));
+    let mut late = project(["K", "1/s", "1"], "", "K");
+    late.blocks.dead_time = "-1".into();
+    let message = "a dead time is never negative: type the time as a positive number";
+    assert_eq!(problems(&late), [(Field::DeadTime, None, None, message.into())]);
+    late.blocks.dead_time = "1/s".into();
+    let message = "type a time in seconds, such as 0.2, or the name of a quantity";
+    assert_eq!(problems(&late), [(Field::DeadTime, None, None, message.into())]);
+}
+
+/// A loop with a sampled controller.
+fn sampled(controller: &str, sampling: SamplingText) -> Project {
+    let mut project = project([controller, "1/(s (s + 1))", "1"], "", "K");
+    project.blocks.sampling = Some(sampling);
+    project
+}
+
+#[test]
+fn a_controller_in_z_needs_sampling_and_stands_alone() {
+    let period = |text: &str| SamplingText { period: text.into(), ..SamplingText::default() };
+    let found = build(&sampled("K (z - 0.9)/(z - 0.2)", period("0.01"))).unwrap();
+    let sampling = found.sampling.unwrap();
+    assert!(sampling.controller_in_z && sampling.delay.is_zero());
+    assert_eq!(sampling.period, RBig::from_parts(1.into(), 100u8.into()));
+    assert!(!build(&sampled("K", period("0.01"))).unwrap().sampling.unwrap().controller_in_z);
+    let off = "z belongs to a sampled controller: turn Sampling on and type its period, or write the controller in s";
+    assert_eq!(only_problem(["K/z", "1/s", "1"], "", "K"), in_block(Field::Controller, 2, 3, off));
+    let plant = "only the controller may stand in z: write this block in s; the conversion is exact";
+    assert_eq!(only_problem(["K", "1/z", "1/s"], "", "K"), in_block(Field::Plant, 2, 3, plant));
+    let message = "s and z in one controller: write it in one of the two; a delay in z is typed as 1/z, or as the \
+                   computation delay";
+    assert_eq!(
+        problems(&sampled("K/(z s)", period("0.01"))),
+        [(Field::Controller, None, Some([5, 6]), message.into())]
+    );
+    let message = "this needs samples that are not yet taken: give the controller as many poles as zeros, such as \
+                   K (z - 0.9)/z";
+    assert_eq!(problems(&sampled("K (z - 0.9)", period("0.01"))), [(Field::Controller, None, None, message.into())]);
+}
+
+#[test]
+fn the_inputs_of_the_sampling_are_checked() {
+    let complaint = |period: &str, delay: &str, method, prewarp: &str| {
+        let [period, delay, prewarp] = [period, delay, prewarp].map(String::from);
+        let found = problems(&sampled("K", SamplingText { period, delay, method, prewarp }));
+        assert_eq!(found.len(), 1, "{found:?}");
+        let (field, part, _, message) = found[0].clone();
+        assert_eq!(field, Field::Sampling);
+        (part.unwrap(), message)
+    };
+    let tustin = Discretisation::Tustin;
+    let says = |part: &str, message: &str| (part.to_string(), message.to_string());
+    let missing = says("period", "type the sample period in seconds, such as 0.002");
+    assert_eq!(complaint("", "", tustin, ""), missing);
+    assert_eq!(complaint("0", "", tustin, ""), says("period", "the sample period must be above zero"));
+    assert_eq!(complaint("0,1", "", tustin, ""), says("period", "use a decimal point: 0.1"));
+    let delay = says("delay", "type the computation delay in sample periods, from 0 to 3");
+    assert_eq!(complaint("1", "3.5", tustin, ""), delay);
+    let knob = says("period", "this must be a number: use quantities with values, neither s, z nor the knob");
+    assert_eq!(complaint("K", "", tustin, ""), knob);
+    let high = says("prewarp", "the frequency must stay below half the sampling frequency, π over the period");
+    assert_eq!(complaint("1", "", Discretisation::TustinPrewarped, "4"), high);
 }
 
 #[test]
@@ -341,7 +423,7 @@ fn value_at(expression: &Expression, x: &RBig, knob: &RBig, others: &RBig) -> Op
     let part = |expression| value_at(expression, x, knob, others);
     Some(match &expression.node {
         Node::Number(number) => number.value.clone(),
-        Node::Laplace => x.clone(),
+        Node::Laplace | Node::Advance => x.clone(),
         Node::Name(name) => {
             if name == "K" {
                 knob.clone()

@@ -83,11 +83,6 @@ pub enum NotationError {
         /// From `e` to the exponent's first character.
         span: Span,
     },
-    /// `z`, which belongs to sampled controllers.
-    SampledVariable {
-        /// The letter.
-        span: Span,
-    },
     /// A Greek letter without space beside another letter: a product or one name.
     AmbiguousName {
         /// The word.
@@ -209,7 +204,6 @@ impl NotationError {
             | Self::LoneBase { span }
             | Self::MissingArgument { span }
             | Self::OpenExponent { span }
-            | Self::SampledVariable { span }
             | Self::AmbiguousName { span, .. }
             | Self::MissingSubscript { span }
             | Self::MissingClosing { span, .. }
@@ -256,8 +250,6 @@ impl fmt::Display for NotationError {
             }
             Self::MissingArgument { .. } => out.write_str("type the exponent in brackets: exp(-0.2 s)"),
             Self::OpenExponent { .. } => out.write_str("put the exponent in brackets: e^(-0.2 s)"),
-            Self::SampledVariable { .. } => out
-                .write_str("z belongs to sampled controllers, which this version does not treat: write the loop in s"),
             Self::AmbiguousName { product, name, .. } => {
                 write!(out, "a product or a name: type {product} for the product, {name} for the name")
             }

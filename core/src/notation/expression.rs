@@ -54,6 +54,8 @@ pub enum Node {
     Name(String),
     /// The Laplace variable s.
     Laplace,
+    /// z, the advance by one sample period.
+    Advance,
     /// Two or more terms with their signs.
     Sum(Vec<Term>),
     /// The expression with the opposite sign.
@@ -106,7 +108,7 @@ impl Expression {
     #[must_use]
     pub fn parts(&self) -> Vec<&Self> {
         match &self.node {
-            Node::Number(_) | Node::Name(_) | Node::Laplace => Vec::new(),
+            Node::Number(_) | Node::Name(_) | Node::Laplace | Node::Advance => Vec::new(),
             Node::Sum(terms) => terms.iter().map(|term| &term.expression).collect(),
             Node::Product(factors) => factors.iter().collect(),
             Node::Quotient(numerator, denominator) => alloc::vec![&**numerator, &**denominator],
@@ -117,7 +119,7 @@ impl Expression {
     }
 }
 
-/// Every name in the expression, in order of first appearance; `s` is not one.
+/// Every name in the expression, in order of first appearance; `s` and `z` are none.
 #[must_use]
 pub fn names(expression: &Expression) -> Vec<String> {
     let mut found = Vec::new();

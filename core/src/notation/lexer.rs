@@ -19,6 +19,8 @@ pub(super) enum Token {
     Name(String),
     /// `s`.
     Laplace,
+    /// The word `z`.
+    Advance,
     /// `e`, the base of the exponential.
     Base,
     /// `exp`.
@@ -215,7 +217,7 @@ impl Lexer<'_> {
             "s" => Ok(Token::Laplace),
             "e" => Ok(Token::Base),
             "exp" => Ok(Token::Exponential),
-            "z" => Err(NotationError::SampledVariable { span: self.since(start) }),
+            "z" => Ok(Token::Advance),
             _ => Ok(Token::Name(name)),
         }
     }

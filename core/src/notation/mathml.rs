@@ -57,6 +57,7 @@ fn bare(expression: &Expression) -> String {
         Node::Number(number) => format!("<mn>{}</mn>", escaped(&number.text)),
         Node::Name(name) => name_mathml(name),
         Node::Laplace => "<mi>s</mi>".to_string(),
+        Node::Advance => "<mi>z</mi>".to_string(),
         Node::Sum(terms) => format!("<mrow>{}</mrow>", terms.iter().enumerate().map(term).collect::<String>()),
         Node::Negation(inner) => format!("<mrow><mo>−</mo>{}</mrow>", operand(inner)),
         Node::Product(factors) => format!("<mrow>{}</mrow>", product(factors)),
@@ -115,7 +116,7 @@ fn begins_with_digit(expression: &Expression) -> bool {
 /// The base of a power: only a letter or a number does without brackets.
 fn power_base(base: &Expression) -> String {
     match base.node {
-        Node::Number(_) | Node::Name(_) | Node::Laplace => shown(base),
+        Node::Number(_) | Node::Name(_) | Node::Laplace | Node::Advance => shown(base),
         _ => fenced(base),
     }
 }

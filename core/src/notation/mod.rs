@@ -8,7 +8,7 @@
 //! product = signed { ("*" | "/" | nothing) signed }          left to right; a product without sign behind "/" is refused
 //! signed  = { "+" | "-" } power
 //! power   = atom ["^" whole | superscript]
-//! atom    = number | name | "s" | "(" sum ")" | "[" sum "]" | "{" sum "}" | "e^(" sum ")" | "exp(" sum ")"
+//! atom    = number | name | "s" | "z" | "(" sum ")" | "[" sum "]" | "{" sum "}" | "e^(" sum ")" | "exp(" sum ")"
 //! ```
 //!
 //! Numbers are exact decimals. A Greek letter and its spelled name are the same symbol (`τ` is `tau`); `T_{i}` and `Tᵢ`

@@ -46,7 +46,7 @@ pub fn read(text: &str) -> Result<Expression, NotationError> {
 /// The canonical name of a single symbol: `τ` gives `tau`, `T_{i}` gives `T_i`.
 ///
 /// # Errors
-/// [`NotationError::NotASymbol`] for anything but one name, `s` included; otherwise the fault of the name.
+/// [`NotationError::NotASymbol`] for anything but one name, `s` and `z` included; otherwise the fault of the name.
 pub fn symbol(text: &str) -> Result<String, NotationError> {
     let characters: Vec<char> = text.chars().collect();
     match lexemes(&characters)?.as_slice() {
@@ -218,6 +218,7 @@ impl<'a> Parser<'a> {
             Token::Number(number) => Node::Number(number.clone()),
             Token::Name(name) => Node::Name(name.clone()),
             Token::Laplace => Node::Laplace,
+            Token::Advance => Node::Advance,
             Token::Open(_) => return self.brackets(),
             Token::Base => return self.natural_power(span),
             Token::Exponential => {
@@ -293,7 +294,13 @@ pub(super) fn closing(opening: char) -> char {
 pub(super) fn begins_factor(token: &Token) -> bool {
     matches!(
         token,
-        Token::Number(_) | Token::Name(_) | Token::Laplace | Token::Base | Token::Exponential | Token::Open(_)
+        Token::Number(_)
+            | Token::Name(_)
+            | Token::Laplace
+            | Token::Advance
+            | Token::Base
+            | Token::Exponential
+            | Token::Open(_)
     )
 }
 

@@ -25,6 +25,7 @@ fn bare(expression: &Expression) -> String {
         Node::Number(number) => number.text.clone(),
         Node::Name(name) => name.clone(),
         Node::Laplace => "s".to_string(),
+        Node::Advance => "z".to_string(),
         Node::Sum(terms) => terms.iter().enumerate().map(term).collect(),
         Node::Negation(inner) => format!("-{}", operand(inner)),
         Node::Product(factors) => factors.iter().enumerate().map(factor).collect(),
@@ -33,7 +34,7 @@ fn bare(expression: &Expression) -> String {
             _ => format!("{}/{}", atom(above), atom(below)),
         },
         Node::Power(base, exponent) => match base.node {
-            Node::Number(_) | Node::Name(_) | Node::Laplace => format!("{}^{exponent}", text(base)),
+            Node::Number(_) | Node::Name(_) | Node::Laplace | Node::Advance => format!("{}^{exponent}", text(base)),
             _ => format!("{}^{exponent}", fenced(base)),
         },
         Node::Exponential(exponent) => format!("e^{}", fenced(exponent)),
