@@ -139,6 +139,11 @@ value: Array<number>, };
 export type Direction = "proportional" | "reciprocal";
 
 /**
+ * The published methods by which a controller in s becomes one in z.
+ */
+export type Discretisation = "tustin" | "tustin-prewarped" | "backward-difference" | "matched";
+
+/**
  * An end of a range.
  */
 export type Edge = {
@@ -214,7 +219,7 @@ export type Feedback = "negative" | "positive";
 /**
  * A field of the form.
  */
-export type Field = "controller" | "plant" | "sensor" | "quantity" | "knob" | "setting" | "requirement" | "loop" | "document";
+export type Field = "controller" | "plant" | "sensor" | "deadTime" | "sampling" | "quantity" | "knob" | "setting" | "requirement" | "loop" | "document";
 
 /**
  * The open loop L(jω), the same number of entries in each.
@@ -364,7 +369,16 @@ sensor: string,
 /**
  * The sign with which the sensor's signal enters the comparison.
  */
-feedback: Feedback, };
+feedback: Feedback,
+/**
+ * The plant's dead time in s, beside those typed into the blocks as e^(−T s): an expression in numbers and quantities.
+ * Empty: none.
+ */
+deadTime: string,
+/**
+ * The controller's sampling. None: the controller works continuously.
+ */
+sampling: SamplingText | null, };
 
 /**
  * Margins of the open loop at one setting.
@@ -779,6 +793,27 @@ radius: number,
  * How many roots coincide here.
  */
 multiplicity: number, };
+
+/**
+ * How the controller samples, as typed: expressions in numbers and quantities.
+ */
+export type SamplingText = {
+/**
+ * The sample period in s.
+ */
+period: string,
+/**
+ * From a sample to the output computed from it, in sample periods, 0 to 3. Empty: 0.
+ */
+delay: string,
+/**
+ * How a controller in s becomes one in z.
+ */
+method: Discretisation,
+/**
+ * rad/s: where [`Discretisation::TustinPrewarped`] is exact.
+ */
+prewarp: string, };
 
 /**
  * The controller's scale: what setting belongs to what knob.

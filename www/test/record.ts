@@ -39,7 +39,7 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
     project: {
       format: "stayband-project/1",
       title: "",
-      loop: { controller: "K", plant: "1/s", sensor: "1", feedback: "negative" },
+      loop: { controller: "K", plant: "1/s", sensor: "1", feedback: "negative", deadTime: "", sampling: null },
       quantities: [{ symbol: "K", value: "", unit: "V", meaning: "" }],
       knob: "K",
       setting: { value: "", name: "", unit: "", direction: "proportional", factor: "", minimum: "", maximum: "", step: "" },
