@@ -4,7 +4,7 @@ use crate::exact::complex_roots::roots;
 use crate::exact::gcd::squarefree_factors;
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
-use crate::locus::{Branch, LocusInput, Meeting, branches, close_calls, landmarks, meetings, view};
+use crate::locus::{Branch, LocusInput, Meeting, branches, encounters, landmarks, view};
 use crate::model::{self, KnobPolynomial, Loop};
 use crate::ranges::permitted::short;
 use crate::ranges::pieces::Piece;
@@ -65,22 +65,22 @@ impl Analysis {
             Family::new(parts).unwrap_or(Family { fixed: IntPoly::default(), parts: [IntPoly::from_i64(&[1])].into() });
         let partition = Partition::new(&family)?;
         let mut notices = notices(&model, &family, &partition)?;
-        let meetings = meetings(&family, &partition);
-        if let Err(error) = &meetings {
+        let encounters = encounters(&family, &partition);
+        if let Err(error) = &encounters {
             notices.push(not_computed("breakaway points and the character of the ranges", error));
         }
         let last = &family.parts[family.knob_degree()];
         let moving = (roots(&family.parts[0])?, if family.knob_degree() > 0 { roots(last)? } else { Vec::new() });
-        let found = meetings.as_deref().unwrap_or_default();
-        let landmarks = all_landmarks(&family, &partition, found, &moving);
+        let followed = encounters.is_ok();
+        let encounters = encounters.unwrap_or_default();
+        let landmarks = all_landmarks(&family, &partition, &encounters.meetings, &moving);
         let (poles, zeros) = open_loop(&family, &moving)?;
         let view = view::frame(poles.iter().chain(&zeros).map(place).chain(landmarks.iter().map(|l| l.s)));
         let fixed = roots(&family.fixed)?;
         let input = LocusInput {
             family: &family,
             partition: &partition,
-            meetings: found,
-            close_calls: &close_calls(&family, found),
+            encounters: &encounters,
             fixed: &fixed,
             poles: &moving.0,
             zeros: &moving.1,
@@ -88,7 +88,7 @@ impl Analysis {
         };
         let mut all = Vec::new();
         for sign in KnobSign::BOTH {
-            match branches(&input, sign).filter(|_| meetings.is_ok()) {
+            match branches(&input, sign).filter(|_| followed) {
                 Some(found) => all.extend(found),
                 None => notices.push(lost_branches(sign)),
             }
