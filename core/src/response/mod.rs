@@ -4,6 +4,7 @@ mod figures;
 mod frequency;
 mod loop_at;
 mod modes;
+mod searches;
 
 pub use figures::{Figure, SettlingBand};
 pub use frequency::Frequency;
