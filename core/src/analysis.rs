@@ -154,7 +154,7 @@ impl Analysis {
         let verdict = verdict(&polynomial, &IntPoly::from_i64(&[1]))?;
         Ok(ClosedLoop {
             knob: knob.to_f64().value(),
-            poles: roots(&polynomial)?,
+            poles: roots(&polynomial)?.into_iter().map(Into::into).collect(),
             unstable_poles: verdict.half_plane.right,
             axis_poles: verdict.half_plane.axis,
             name: verdict.name,

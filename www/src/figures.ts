@@ -1,12 +1,12 @@
 // The closed loop at the setting, in figures: those with a limit first, each beside it, then the others, then the poles.
 import { settingText, verdictWords } from "./answer.ts";
 import { byId, html } from "./dom.ts";
-import { dampingOf, figure, knownDigits, pairText, withUnit } from "./format.ts";
+import { figure, knownDigits, pairText, withUnit } from "./format.ts";
 import { limitWords, quantity } from "./reason.ts";
 import { figureOf, KINDS } from "./requirements.ts";
 import { isPlain, settingName, settingUnit } from "./scale.ts";
 import type { Session } from "./session.ts";
-import type { ClosedLoop, Record as Findings, Root } from "./types.ts";
+import type { ClosedLoop, ClosedPole, Record as Findings } from "./types.ts";
 
 /** A row of the table of poles, as text; units stand in the head of the table. */
 export interface PoleRow {
@@ -64,16 +64,15 @@ export function poleRows(loop: ClosedLoop): PoleRow[] {
     .map(poleRow);
 }
 
-function poleRow(root: Root): PoleRow {
-  const { re, im, radius, multiplicity } = root;
-  const { ratio, frequency } = dampingOf(re, im);
-  const digits = Math.min(DIGITS, knownDigits(frequency, radius));
+function poleRow(pole: ClosedPole): PoleRow {
+  const { re, im, radius, multiplicity, dampingRatio, naturalFrequency } = pole;
+  const digits = Math.min(DIGITS, knownDigits(naturalFrequency, radius));
   const onAxis = Math.abs(re) <= radius;
   const many = multiplicity > 1 ? ` (${multiplicity} times)` : "";
   return {
     s: pairText(re, im, radius) + many,
-    ratio: ratio === null || frequency <= radius ? "–" : onAxis ? "0" : figure(ratio, digits),
-    frequency: frequency <= radius ? "0" : figure(frequency, digits),
+    ratio: dampingRatio === null ? "–" : figure(dampingRatio, digits),
+    frequency: figure(naturalFrequency, digits),
     time: onAxis ? "∞" : re > 0 ? "grows" : figure(-1 / re, Math.min(DIGITS, knownDigits(re, radius))),
   };
 }

@@ -54,9 +54,3 @@ export function listed(items: readonly string[], conjunction: "and" | "or" = "an
   const last = items.at(-1) ?? "";
   return items.length < 2 ? last : `${items.slice(0, -1).join(", ")} ${conjunction} ${last}`;
 }
-
-/** Damping ratio and natural frequency of the pole at re + j im; the ratio is null at the origin. */
-export function dampingOf(re: number, im: number): { ratio: number | null; frequency: number } {
-  const frequency = Math.hypot(re, im);
-  return { ratio: frequency === 0 ? null : -re / frequency, frequency };
-}

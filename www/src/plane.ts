@@ -7,7 +7,7 @@ import { zoom, zoomIdentity, type D3ZoomEvent, type ZoomBehavior, type ZoomTrans
 import { tickText } from "./axis.ts";
 import { fromNumber, roundDigits, typedText } from "./decimal.ts";
 import { byId, html, letterScale, oncePerFrame, setAttributes, svg, watchSize } from "./dom.ts";
-import { dampingOf, figure, pairText, THIN_SPACE, withUnit } from "./format.ts";
+import { figure, pairText, THIN_SPACE, withUnit } from "./format.ts";
 import { clipLine, frameOf, nearestPoint, piecesOf, type BranchLine, type Piece, type Window } from "./locus.ts";
 import { forbiddenOf, type Forbidden } from "./forbidden.ts";
 import { gridOf, onGrid } from "./grid.ts";
@@ -260,11 +260,12 @@ export class Plane {
     const { re, im, knob } = found.point;
     const { x, y } = this.#scales(record);
     this.#layers.hover.replaceChildren(svg("circle", { class: "hover", cx: x(re), cy: y(im), r: 5 }));
-    const { ratio, frequency } = dampingOf(re, im);
+    // The polar coordinates of the place under the pointer, read off the drawing as x and y are.
+    const frequency = Math.hypot(re, im);
     const parts = [
       `s = ${pairText(roundTo(re, frequency), roundTo(im, frequency))}`,
       `${settingName(record)} = ${withUnit(figure(toSetting(record.scale, knob)), settingUnit(record))}`,
-      ratio === null ? "" : `damping ratio ${figure(ratio, 3)}`,
+      frequency === 0 ? "" : `damping ratio ${figure(-re / frequency, 3)}`,
       `natural frequency ${figure(frequency, 3)}${THIN_SPACE}rad/s`,
     ];
     this.#readout.replaceChildren(...parts.filter((part) => part !== "").map((part) => html("li", {}, part)));

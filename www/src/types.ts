@@ -1,4 +1,4 @@
-// Made by `cargo page` from the types of the core (core/src/project.rs, record.rs, answer.rs). Do not edit.
+// Made by `cargo page` from the types of the core (core/src/project.rs, record/, answer.rs). Do not edit.
 
 /**
  * What Stayband says to a project: a record, or what must be put right before there can be one.
@@ -93,7 +93,7 @@ knob: number,
 /**
  * Poles of the closed loop.
  */
-poles: Array<Root>,
+poles: Array<ClosedPole>,
 /**
  * Poles in the open right half plane; exact.
  */
@@ -106,6 +106,36 @@ axisPoles: number,
  * The trade's word for the kinds of poles; exact.
  */
 name: CharacterName, };
+
+/**
+ * A pole of the closed loop: a [`Root`] with the trade's figures of it.
+ */
+export type ClosedPole = {
+/**
+ * The real part, 1/s.
+ */
+re: number,
+/**
+ * The imaginary part, 1/s; exactly 0 for a real pole.
+ */
+im: number,
+/**
+ * The true pole is no farther than this, 1/s.
+ */
+radius: number,
+/**
+ * How many poles coincide here.
+ */
+multiplicity: number,
+/**
+ * −re/|s|: 1 for a stable real pole, 0 on the imaginary axis, negative right of it. None where the pole cannot be
+ * told from the origin.
+ */
+dampingRatio: number | null,
+/**
+ * |s|, rad/s; 0 where the pole cannot be told from the origin.
+ */
+naturalFrequency: number, };
 
 /**
  * Requirements that exclude each other.
@@ -994,3 +1024,29 @@ re: [number, number],
  * Bottom and top.
  */
 im: [number, number], };
+
+/** Unit of limit and figure, and whether the figure must be at least the limit, for every kind. */
+export const REQUIREMENT_FACTS: { readonly [kind in RequirementKind]: { readonly unit: string; readonly atLeast: boolean } } = {
+  "damping-ratio": { unit: "", atLeast: true },
+  "decay-rate": { unit: "1/s", atLeast: true },
+  "natural-frequency-minimum": { unit: "rad/s", atLeast: true },
+  "natural-frequency-maximum": { unit: "rad/s", atLeast: false },
+  "gain-margin-up": { unit: "dB", atLeast: true },
+  "gain-margin-down": { unit: "dB", atLeast: true },
+  "phase-margin": { unit: "°", atLeast: true },
+  "delay-margin": { unit: "s", atLeast: true },
+  "peak-sensitivity": { unit: "", atLeast: false },
+  "bandwidth": { unit: "rad/s", atLeast: true },
+  "overshoot": { unit: "%", atLeast: false },
+  "undershoot": { unit: "%", atLeast: false },
+  "rise-time": { unit: "s", atLeast: false },
+  "settling-time-2": { unit: "s", atLeast: false },
+  "settling-time-5": { unit: "s", atLeast: false },
+  "peak-time": { unit: "s", atLeast: false },
+  "step-error": { unit: "%", atLeast: false },
+  "ramp-error": { unit: "", atLeast: false },
+  "parabola-error": { unit: "", atLeast: false },
+  "load-peak": { unit: "", atLeast: false },
+  "load-final": { unit: "", atLeast: false },
+  "controller-peak": { unit: "", atLeast: false },
+};

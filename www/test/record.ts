@@ -1,5 +1,5 @@
 // Records for the tests: small, invented, with only what a test needs spelled out.
-import type { CharacterRange, Edge, LimitEdge, LimitRange, Record as Findings, RequirementRecord, Scale, StabilityRange } from "../src/types.ts";
+import type { CharacterRange, ClosedPole, Edge, LimitEdge, LimitRange, Record as Findings, RequirementRecord, Scale, StabilityRange } from "../src/types.ts";
 
 /** An edge at a value; parts may be given otherwise. */
 export function edge(value: number, parts: Partial<Edge> = {}): Edge {
@@ -84,4 +84,9 @@ export function limitRange(from: number | null, to: number | null): LimitRange {
 /** A requirement on the damping ratio, met at the setting. */
 export function requirement(parts: Partial<RequirementRecord> = {}): RequirementRecord {
   return { kind: "damping-ratio", limit: 0.5, atLeast: true, unit: "", ranges: [], proven: true, figure: 0.6, met: true, remark: null, ...parts };
+}
+
+/** A pole of the closed loop. */
+export function pole(re: number, im: number, parts: Partial<ClosedPole> = {}): ClosedPole {
+  return { re, im, radius: 1e-12, multiplicity: 1, dampingRatio: null, naturalFrequency: 0, ...parts };
 }

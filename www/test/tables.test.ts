@@ -4,7 +4,7 @@ import { figureRows, poleRows } from "../src/figures.ts";
 import { shownSigns } from "../src/halves.ts";
 import { asymptoteWords, grouped, landmarkWords, notable, realAxisWords } from "../src/landmarks.ts";
 import type { ClosedLoop, Landmark } from "../src/types.ts";
-import { edge, record, requirement, stability } from "./record.ts";
+import { edge, pole, record, requirement, stability } from "./record.ts";
 
 const landmark = (parts: Partial<Landmark>): Landmark => ({
   kind: "breakaway",
@@ -69,9 +69,9 @@ test("Asymptotes and the parts of the real axis are told in one line", () => {
 test("Poles are listed slowest first, a pair once, with its figures", () => {
   const rows = poleRows(
     loop([
-      { re: -200, im: 0, radius: 1e-12, multiplicity: 1 },
-      { re: -3, im: 4, radius: 1e-12, multiplicity: 1 },
-      { re: -3, im: -4, radius: 1e-12, multiplicity: 1 },
+      pole(-200, 0, { dampingRatio: 1, naturalFrequency: 200 }),
+      pole(-3, 4, { dampingRatio: 0.6, naturalFrequency: 5 }),
+      pole(-3, -4, { dampingRatio: 0.6, naturalFrequency: 5 }),
     ]),
   );
   assert.deepEqual(rows, [
@@ -81,11 +81,12 @@ test("Poles are listed slowest first, a pair once, with its figures", () => {
 });
 
 test("A pole on the axis does not decay, one right of it grows, one at the origin has no damping ratio", () => {
-  const row = (re: number, im: number): ReturnType<typeof poleRows>[number] | undefined =>
-    poleRows(loop([{ re, im, radius: 1e-9, multiplicity: 1 }]))[0];
-  assert.deepEqual([row(1e-12, 5)?.ratio, row(1e-12, 5)?.time], ["0", "∞"]);
-  assert.equal(row(2, 5)?.time, "grows");
-  assert.deepEqual([row(0, 0)?.s, row(0, 0)?.ratio], ["0", "–"]);
+  const row = (...parts: Parameters<typeof pole>): ReturnType<typeof poleRows>[number] | undefined => poleRows(loop([pole(...parts)]))[0];
+  const onAxis = row(0, 5, { radius: 1e-9, dampingRatio: 0, naturalFrequency: 5 });
+  assert.deepEqual([onAxis?.ratio, onAxis?.time], ["0", "∞"]);
+  assert.equal(row(2, 5, { dampingRatio: -0.371, naturalFrequency: 5.385 })?.time, "grows");
+  const origin = row(0, 0, { dampingRatio: null, naturalFrequency: 0 });
+  assert.deepEqual([origin?.s, origin?.ratio, origin?.frequency], ["0", "–", "0"]);
 });
 
 test("The half that is shown is the one of the setting, else the one with stable ranges", () => {
@@ -98,7 +99,7 @@ test("The half that is shown is the one of the setting, else the one with stable
 });
 
 test("Figures with a limit come first, with their verdict; others follow without", () => {
-  const closedLoop = { ...loop([{ re: -3, im: 4, radius: 1e-12, multiplicity: 1 }]), name: "underdamped" as const };
+  const closedLoop = { ...loop([pole(-3, 4, { dampingRatio: 0.6, naturalFrequency: 5 })]), name: "underdamped" as const };
   const rows = figureRows(record([], { closedLoop, requirements: [requirement({ kind: "phase-margin", limit: 45, figure: 41.26, unit: "°", met: false })] }));
   assert.deepEqual(rows[0], { name: "Phase margin", here: "41.3°", limit: "at least 45°", met: false });
   assert.deepEqual(rows.find(({ name }) => name === "Damping ratio"), { name: "Damping ratio", here: "0.6", limit: "", met: null });
