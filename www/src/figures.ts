@@ -1,7 +1,7 @@
 // The closed loop at the setting, in figures: those with a limit first, each beside it, then the others, then the poles.
 import { settingText, verdictWords } from "./answer.ts";
 import { byId, html } from "./dom.ts";
-import { figure, knownDigits, pairText, withUnit } from "./format.ts";
+import { capital, figure, knownDigits, pairText, withUnit } from "./format.ts";
 import { limitWords, quantity } from "./reason.ts";
 import { figureOf, KINDS } from "./requirements.ts";
 import { isPlain, settingName, settingUnit } from "./scale.ts";
@@ -91,7 +91,7 @@ export function figuresTable(session: Session): void {
     const loop = record.closedLoop;
     figures.hidden = loop === null;
     poles.hidden = loop === null;
-    heading.textContent = loop ? `At ${settingName(record)} ${withUnit(settingText(record), settingUnit(record))}` : "At the setting";
+    heading.textContent = loop ? `At ${settingName(record)} = ${withUnit(settingText(record), settingUnit(record))}` : "At the setting";
     verdict.textContent = loop ? `${capital(verdictWords(loop))}.` : "No setting is chosen yet.";
     figureBody.replaceChildren(...(loop ? figureRows(record) : []).map(figureRow));
     poleBody.replaceChildren(
@@ -114,6 +114,3 @@ function figureRow({ name, here, limit, met }: FigureRow): HTMLTableRowElement {
   );
 }
 
-function capital(text: string): string {
-  return text.charAt(0).toUpperCase() + text.slice(1);
-}

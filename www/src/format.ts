@@ -44,6 +44,11 @@ export function angleText(degrees: number): string {
   return `${figure(Math.round(degrees * 10) / 10)}°`;
 }
 
+/** With a capital letter, to begin a sentence. */
+export function capital(text: string): string {
+  return text.charAt(0).toUpperCase() + text.slice(1);
+}
+
 /** "1 pole", "2 poles": a count with its noun. */
 export function counted(count: number, noun: string): string {
   return `${count} ${noun}${count === 1 ? "" : "s"}`;
