@@ -149,6 +149,7 @@ impl Session {
             project: project.clone(),
             reading: reading.clone(),
             model: model::record(&analysis.model),
+            timing: model::timing(&analysis.model),
             stability: found.stability.clone(),
             character: found.character.clone(),
             landmarks: found.landmarks.clone(),

@@ -67,13 +67,16 @@ export function poleRows(loop: ClosedLoop): PoleRow[] {
 function poleRow(pole: ClosedPole): PoleRow {
   const { re, im, radius, multiplicity, dampingRatio, naturalFrequency } = pole;
   const digits = Math.min(DIGITS, knownDigits(naturalFrequency, radius));
-  const onAxis = Math.abs(re) <= radius;
+  // A sampled pole dies away as the one of the s-plane does that it comes from.
+  const rate = pole.equivalent?.re ?? re;
+  const blur = pole.equivalent && naturalFrequency > 0 ? (radius * Math.abs(rate)) / Math.max(Math.abs(1 - Math.hypot(re, im)), radius) : radius;
+  const onAxis = Math.abs(rate) <= blur;
   const many = multiplicity > 1 ? ` (${multiplicity} times)` : "";
   return {
     s: pairText(re, im, radius) + many,
     ratio: dampingRatio === null ? "–" : figure(dampingRatio, digits),
     frequency: figure(naturalFrequency, digits),
-    time: onAxis ? "∞" : re > 0 ? "grows" : figure(-1 / re, Math.min(DIGITS, knownDigits(re, radius))),
+    time: onAxis ? "∞" : rate > 0 ? "grows" : figure(-1 / rate, Math.min(DIGITS, knownDigits(rate, blur))),
   };
 }
 
@@ -92,7 +95,7 @@ export function figuresTable(session: Session): void {
     figures.hidden = loop === null;
     poles.hidden = loop === null;
     heading.textContent = loop ? `At ${settingName(record)} = ${withUnit(settingText(record), settingUnit(record))}` : "At the setting";
-    verdict.textContent = loop ? `${capital(verdictWords(loop))}.` : "No setting is chosen yet.";
+    verdict.textContent = loop ? `${capital(verdictWords(loop, record.timing.plane))}.` : "No setting is chosen yet.";
     figureBody.replaceChildren(...(loop ? figureRows(record) : []).map(figureRow));
     poleBody.replaceChildren(
       ...(loop ? poleRows(loop) : []).map(({ s, ratio, frequency, time }) =>

@@ -128,6 +128,10 @@ radius: number,
  */
 multiplicity: number,
 /**
+ * Of a pole in the z-plane the point of the s-plane it comes from, 1/s; the figures below are those of it.
+ */
+equivalent: Point | null,
+/**
  * −re/|s|: 1 for a stable real pole, 0 on the imaginary axis, negative right of it. None where the pole cannot be
  * told from the origin.
  */
@@ -239,7 +243,7 @@ curve: Curve, };
 /**
  * What happens at an edge.
  */
-export type EdgeKind = "axis crossing" | "origin crossing" | "degree drop" | "breakaway" | "break-in" | "repeated pole";
+export type EdgeKind = "axis crossing" | "origin crossing" | "alternation crossing" | "no dead time" | "degree drop" | "breakaway" | "break-in" | "repeated pole";
 
 /**
  * The sign of the feedback.
@@ -299,9 +303,13 @@ export type Landmark = {
  */
 kind: LandmarkKind,
 /**
- * Where it is, 1/s. Of a conjugate pair only the upper one is listed.
+ * Where it is, 1/s; in the z-plane without unit. Of a conjugate pair only the upper one is listed.
  */
 s: Point,
+/**
+ * Of a landmark in the z-plane the point of the s-plane it comes from, 1/s.
+ */
+equivalent: Point | null,
 /**
  * The knob there; None is infinity (arrivals).
  */
@@ -323,7 +331,7 @@ sign: KnobSign, };
 /**
  * What a landmark is.
  */
-export type LandmarkKind = "breakaway" | "break-in" | "departure" | "arrival" | "axis crossing" | "origin crossing";
+export type LandmarkKind = "breakaway" | "break-in" | "departure" | "arrival" | "axis crossing" | "origin crossing" | "alternation crossing";
 
 /**
  * An end of a requirement's or a permitted range.
@@ -456,7 +464,8 @@ phaseCrossings: Array<PhaseCrossing>,
 response: FrequencyResponse, };
 
 /**
- * The characteristic polynomial F(s, q) of the loop, in exact integers; q is the knob.
+ * The characteristic polynomial F(s, q) of the loop, in exact integers; q is the knob. Of a loop with dead time it is the
+ * one without it, of a sampled loop that of the continuous one; there the equation says how the loop differs.
  */
 export type ModelRecord = {
 /**
@@ -492,7 +501,7 @@ text: string, };
 /**
  * What a notice is about.
  */
-export type NoticeKind = "unstable-fixed-mode" | "cancelled-factor" | "knob-without-effect" | "improper-block" | "algebraic-loop" | "not-computed";
+export type NoticeKind = "unstable-fixed-mode" | "cancelled-factor" | "knob-without-effect" | "improper-block" | "algebraic-loop" | "sampling" | "not-computed";
 
 /**
  * Where stability and all requirements agree.
@@ -532,6 +541,11 @@ omega: number,
  * The factor of the loop gain at which −1 is met here.
  */
 factor: number, };
+
+/**
+ * The plane of the poles.
+ */
+export type Plane = "s" | "z";
 
 /**
  * A point of the s-plane, 1/s.
@@ -680,6 +694,10 @@ reading: Reading,
  */
 model: ModelRecord,
 /**
+ * Dead time and sampling.
+ */
+timing: Timing,
+/**
  * The whole real line of the knob, from −∞ to +∞, in ranges with a constant count of unstable poles.
  */
 stability: Array<StabilityRange>,
@@ -825,6 +843,32 @@ radius: number,
 multiplicity: number, };
 
 /**
+ * How the controller samples.
+ */
+export type SamplingRecord = {
+/**
+ * s.
+ */
+period: number,
+/**
+ * The computation delay in sample periods.
+ */
+delay: number,
+/**
+ * How the controller was converted. None where it was typed in z.
+ */
+method: Discretisation | null,
+/**
+ * The stable ranges at other periods, with the period, ascending.
+ */
+byPeriod: Array<StableAtPeriod>,
+/**
+ * The longest period up to which the chosen setting is stable without a break, s. None without a setting, where it is
+ * not stable, or where no limit was found.
+ */
+longestPeriod: number | null, };
+
+/**
  * How the controller samples, as typed: expressions in numbers and quantities.
  */
 export type SamplingText = {
@@ -933,7 +977,7 @@ from: Edge | null,
  */
 to: Edge | null,
 /**
- * Poles in the open right half plane, with multiplicity.
+ * Poles in the open right half plane, or outside the unit circle, with multiplicity.
  */
 unstablePoles: number,
 /**
@@ -941,9 +985,26 @@ unstablePoles: number,
  */
 axisPoles: number,
 /**
+ * True where there are this many or more: dead time brings ever more of them over the axis as the knob grows.
+ */
+atLeast: boolean,
+/**
  * True where both counts are zero.
  */
 stable: boolean, };
+
+/**
+ * The stable ranges at another sample period.
+ */
+export type StableAtPeriod = {
+/**
+ * s.
+ */
+period: number,
+/**
+ * The ends of the stable ranges of the knob; None is an infinite end.
+ */
+ranges: Array<[number | null, number | null]>, };
 
 /**
  * The answer of the output to a unit step of the command. The output is in the command's units: what the sensor shows
@@ -1011,6 +1072,27 @@ knob: number,
  * How it was chosen, a sentence.
  */
 reason: string, };
+
+/**
+ * How the loop's signals travel in time.
+ */
+export type Timing = {
+/**
+ * The plane in which poles, zeros, branches and landmarks of this record lie.
+ */
+plane: Plane,
+/**
+ * The dead time of the whole loop in s, without the sampling's own; the part that does not change with the knob.
+ */
+deadTime: number,
+/**
+ * What one unit of the knob adds to it, s.
+ */
+deadTimePerKnob: number,
+/**
+ * The controller's sampling; None for one that works continuously.
+ */
+sampling: SamplingRecord | null, };
 
 /**
  * A rectangle of the s-plane, 1/s.

@@ -26,6 +26,7 @@ export function stability(edges: readonly Edge[], unstable: readonly number[]): 
     to: edges[index] ?? null,
     unstablePoles,
     axisPoles: 0,
+    atLeast: false,
     stable: unstablePoles === 0,
   }));
 }
@@ -47,6 +48,7 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
     },
     reading: { controller: null, plant: null, sensor: null, names: ["K"] },
     model: { order: 3, knobDegree: 1, coefficients: [], mathml: "" },
+    timing: { plane: "s", deadTime: 0, deadTimePerKnob: 0, sampling: null },
     stability: ranges,
     character: [whole],
     landmarks: [],
@@ -88,5 +90,5 @@ export function requirement(parts: Partial<RequirementRecord> = {}): Requirement
 
 /** A pole of the closed loop. */
 export function pole(re: number, im: number, parts: Partial<ClosedPole> = {}): ClosedPole {
-  return { re, im, radius: 1e-12, multiplicity: 1, dampingRatio: null, naturalFrequency: 0, ...parts };
+  return { re, im, radius: 1e-12, multiplicity: 1, equivalent: null, dampingRatio: null, naturalFrequency: 0, ...parts };
 }

@@ -9,6 +9,7 @@ import { edge, pole, record, requirement, stability } from "./record.ts";
 const landmark = (parts: Partial<Landmark>): Landmark => ({
   kind: "breakaway",
   s: { re: -2, im: 0 },
+  equivalent: null,
   knob: 3,
   multiplicity: 2,
   angle: null,
@@ -39,7 +40,7 @@ test("Branches of simple real poles and zeros get no row, others do", () => {
 });
 
 test("Landmarks are told in the trade's words", () => {
-  const words = (parts: Partial<Landmark>): string[] => grouped([landmark(parts)]).map(landmarkWords);
+  const words = (parts: Partial<Landmark>): string[] => grouped([landmark(parts)]).map((row) => landmarkWords(row, "s"));
   assert.deepEqual(words({}), ["leaves the real axis"]);
   assert.deepEqual(words({ multiplicity: 3 }), ["leaves the real axis (3 poles)"]);
   assert.deepEqual(words({ s: { re: -2, im: 1 } }), ["branches meet"]);
@@ -49,7 +50,7 @@ test("Landmarks are told in the trade's words", () => {
 test("Branches that leave one repeated pole share a row", () => {
   const leaving = (angle: number, re: number): Landmark => landmark({ kind: "departure", angle, s: { re, im: 0 }, knob: 0 });
   const rows = grouped([leaving(90, -20), leaving(-90, -20), leaving(60, -3), landmark({})]);
-  assert.deepEqual(rows.map(landmarkWords), ["leaves the pole at ±90°", "leaves the pole at 60°", "leaves the real axis"]);
+  assert.deepEqual(rows.map((row) => landmarkWords(row, "s")), ["leaves the pole at ±90°", "leaves the pole at 60°", "leaves the real axis"]);
 });
 
 test("Asymptotes and the parts of the real axis are told in one line", () => {

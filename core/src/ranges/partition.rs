@@ -78,6 +78,7 @@ impl Partition {
             to: to.map(|i| self.edge(i)),
             unstable_poles: self.ranges[first].half_plane.right,
             axis_poles: self.ranges[first].half_plane.axis,
+            at_least: false,
             stable: self.ranges[first].half_plane.is_stable(),
         })
     }

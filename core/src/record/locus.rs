@@ -11,8 +11,10 @@ use serde::Serialize;
 pub struct Landmark {
     /// What it is.
     pub kind: LandmarkKind,
-    /// Where it is, 1/s. Of a conjugate pair only the upper one is listed.
+    /// Where it is, 1/s; in the z-plane without unit. Of a conjugate pair only the upper one is listed.
     pub s: Point,
+    /// Of a landmark in the z-plane the point of the s-plane it comes from, 1/s.
+    pub equivalent: Option<Point>,
     /// The knob there; None is infinity (arrivals).
     pub knob: Option<f64>,
     /// How many poles meet there.
@@ -43,6 +45,9 @@ pub enum LandmarkKind {
     /// A pole is at the origin.
     #[serde(rename = "origin crossing")]
     OriginCrossing,
+    /// A pole is at z = −1.
+    #[serde(rename = "alternation crossing")]
+    AlternationCrossing,
 }
 
 /// Which half of the locus.
@@ -144,6 +149,8 @@ pub struct ClosedPole {
     pub radius: f64,
     /// How many poles coincide here.
     pub multiplicity: usize,
+    /// Of a pole in the z-plane the point of the s-plane it comes from, 1/s; the figures below are those of it.
+    pub equivalent: Option<Point>,
     /// −re/|s|: 1 for a stable real pole, 0 on the imaginary axis, negative right of it. None where the pole cannot be
     /// told from the origin.
     pub damping_ratio: Option<f64>,
@@ -160,6 +167,7 @@ impl From<Root> for ClosedPole {
             im,
             radius,
             multiplicity,
+            equivalent: None,
             damping_ratio: known.then(|| if libm::fabs(re) <= radius { 0.0 } else { -re / distance }),
             natural_frequency: if known { distance } else { 0.0 },
         }

@@ -4,6 +4,7 @@ mod locus;
 mod permitted;
 mod ranges;
 mod responses;
+mod timing;
 
 pub use locus::{
     Asymptotes, BothSigns, ClosedLoop, ClosedPole, KnobSign, Landmark, LandmarkKind, Point, Root, Segment, View,
@@ -13,6 +14,8 @@ pub use ranges::{CharacterName, CharacterRange, Edge, EdgeKind, StabilityRange};
 pub use responses::{
     Curve, EdgeCurve, FrequencyResponse, GainCrossing, LoadRecord, Margins, PhaseCrossing, StepRecord,
 };
+
+pub use timing::{Plane, SamplingRecord, StableAtPeriod, Timing, equivalent};
 
 use crate::project::Project;
 use alloc::string::String;
@@ -37,6 +40,8 @@ pub struct Record {
     pub reading: Reading,
     /// The characteristic polynomial.
     pub model: ModelRecord,
+    /// Dead time and sampling.
+    pub timing: Timing,
     /// The whole real line of the knob, from −∞ to +∞, in ranges with a constant count of unstable poles.
     pub stability: Vec<StabilityRange>,
     /// The whole real line of the knob in ranges of constant character.
@@ -97,7 +102,8 @@ pub struct Reading {
     pub names: Vec<String>,
 }
 
-/// The characteristic polynomial F(s, q) of the loop, in exact integers; q is the knob.
+/// The characteristic polynomial F(s, q) of the loop, in exact integers; q is the knob. Of a loop with dead time it is the
+/// one without it, of a sampled loop that of the continuous one; there the equation says how the loop differs.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
 #[serde(rename_all = "camelCase")]
 #[cfg_attr(feature = "types", derive(ts_rs::TS))]
@@ -138,6 +144,8 @@ pub enum NoticeKind {
     ImproperBlock,
     /// The leading coefficient vanishes at some knob value.
     AlgebraicLoop,
+    /// The sample period is long for this loop.
+    Sampling,
     /// Something could not be computed; the text says what.
     NotComputed,
 }

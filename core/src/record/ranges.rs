@@ -42,9 +42,15 @@ pub enum EdgeKind {
     /// A pole pair is at ±jω.
     #[serde(rename = "axis crossing")]
     AxisCrossing,
-    /// A pole is at the origin.
+    /// A pole is at the origin; in the z-plane at 1.
     #[serde(rename = "origin crossing")]
     OriginCrossing,
+    /// A pole is at z = −1: the signals change their sign from sample to sample.
+    #[serde(rename = "alternation crossing")]
+    AlternationCrossing,
+    /// The knob is the dead time, which is never below zero.
+    #[serde(rename = "no dead time")]
+    NoDeadTime,
     /// The leading coefficient vanishes: a pole passes infinity.
     #[serde(rename = "degree drop")]
     DegreeDrop,
@@ -66,10 +72,12 @@ pub struct StabilityRange {
     pub from: Option<Edge>,
     /// The upper end; None is +∞.
     pub to: Option<Edge>,
-    /// Poles in the open right half plane, with multiplicity.
+    /// Poles in the open right half plane, or outside the unit circle, with multiplicity.
     pub unstable_poles: usize,
     /// Poles on the imaginary axis throughout the range, with multiplicity.
     pub axis_poles: usize,
+    /// True where there are this many or more: dead time brings ever more of them over the axis as the knob grows.
+    pub at_least: bool,
     /// True where both counts are zero.
     pub stable: bool,
 }
