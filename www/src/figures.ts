@@ -68,8 +68,7 @@ function poleRow(pole: ClosedPole): PoleRow {
   const { re, im, radius, multiplicity, dampingRatio, naturalFrequency } = pole;
   const digits = Math.min(DIGITS, knownDigits(naturalFrequency, radius));
   // A sampled pole dies away as the one of the s-plane does that it comes from.
-  const rate = pole.equivalent?.re ?? re;
-  const blur = pole.equivalent && naturalFrequency > 0 ? (radius * Math.abs(rate)) / Math.max(Math.abs(1 - Math.hypot(re, im)), radius) : radius;
+  const { re: rate, radius: blur } = pole.equivalent ?? pole;
   const onAxis = Math.abs(rate) <= blur;
   const many = multiplicity > 1 ? ` (${multiplicity} times)` : "";
   return {

@@ -1,6 +1,7 @@
 //! The s-plane in the record: landmarks, asymptotes, poles and zeros, and the closed loop at the setting.
 
 use super::CharacterName;
+use super::timing::equivalent;
 use alloc::vec::Vec;
 use serde::Serialize;
 
@@ -150,12 +151,43 @@ pub struct ClosedPole {
     /// How many poles coincide here.
     pub multiplicity: usize,
     /// Of a pole in the z-plane the point of the s-plane it comes from, 1/s; the figures below are those of it.
-    pub equivalent: Option<Point>,
+    pub equivalent: Option<EquivalentPole>,
     /// −re/|s|: 1 for a stable real pole, 0 on the imaginary axis, negative right of it. None where the pole cannot be
     /// told from the origin.
     pub damping_ratio: Option<f64>,
     /// |s|, rad/s; 0 where the pole cannot be told from the origin.
     pub natural_frequency: f64,
+}
+
+/// The pole of the s-plane that a pole of the z-plane comes from.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct EquivalentPole {
+    /// The real part, 1/s.
+    pub re: f64,
+    /// The imaginary part, 1/s.
+    pub im: f64,
+    /// The true pole is no farther than this, 1/s.
+    pub radius: f64,
+}
+
+impl ClosedPole {
+    /// A pole of the z-plane; its figures are those of the equivalent pole. Poles next to z = 0 have none: they are gone
+    /// within a sample.
+    #[must_use]
+    pub fn sampled(root: Root, period: f64) -> Self {
+        let Root { re, im, radius, multiplicity } = root;
+        let size = libm::hypot(re, im);
+        let found = equivalent(Point { re, im }, period).filter(|_| size > 2.0 * radius);
+        let Some(Point { re: s_re, im: s_im }) = found else {
+            return Self { damping_ratio: None, natural_frequency: 0.0, ..root.into() };
+        };
+        // d(ln z) = dz/z; the factor covers the curvature for discs up to half of |z|.
+        let own = EquivalentPole { re: s_re, im: s_im, radius: 2.0 * radius / (size * period) };
+        let Self { damping_ratio, natural_frequency, .. } =
+            Root { re: s_re, im: s_im, radius: own.radius, multiplicity }.into();
+        Self { re, im, radius, multiplicity, equivalent: Some(own), damping_ratio, natural_frequency }
+    }
 }
 
 impl From<Root> for ClosedPole {

@@ -7,7 +7,8 @@ mod responses;
 mod timing;
 
 pub use locus::{
-    Asymptotes, BothSigns, ClosedLoop, ClosedPole, KnobSign, Landmark, LandmarkKind, Point, Root, Segment, View,
+    Asymptotes, BothSigns, ClosedLoop, ClosedPole, EquivalentPole, KnobSign, Landmark, LandmarkKind, Point, Root,
+    Segment, View,
 };
 pub use permitted::{Cause, Conflict, LimitEdge, LimitRange, Permitted, RequirementRecord, Scale, Suggestion};
 pub use ranges::{CharacterName, CharacterRange, Edge, EdgeKind, StabilityRange};
