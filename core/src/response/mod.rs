@@ -5,8 +5,10 @@ mod frequency;
 mod loop_at;
 mod modes;
 mod searches;
+mod trace;
 
 pub use figures::{Figure, SettlingBand};
 pub use frequency::Frequency;
 pub use loop_at::{Answer, LoopAt};
 pub use modes::{Modes, Peaks};
+pub use trace::{Trace, TracePoint};

@@ -16,7 +16,7 @@ use nalgebra::Complex;
 const TOGETHER: f64 = 1e-5;
 
 /// Points of a curve for drawing.
-const CURVE_POINTS: usize = 480;
+pub(super) const CURVE_POINTS: usize = 480;
 
 /// Halvings towards the time at which the envelope has fallen to a bound: any later time does as well.
 const QUIET_HALVINGS: usize = 14;

@@ -274,7 +274,7 @@ impl Quest for LastOutside {
 
 /// A zero of a function between two arguments, given with their values of different sign: chord steps with the value at
 /// an end that stays halved, and a halving every fourth step. Without a change of sign the end with the smaller value.
-fn root_between(mut a: (f64, f64), mut b: (f64, f64), value: impl Fn(f64) -> f64) -> f64 {
+pub(super) fn root_between(mut a: (f64, f64), mut b: (f64, f64), value: impl Fn(f64) -> f64) -> f64 {
     if a.1 * b.1 > 0.0 {
         return if a.1.abs() < b.1.abs() { a.0 } else { b.0 };
     }
