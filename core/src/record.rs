@@ -142,6 +142,8 @@ pub enum EdgeKind {
     /// The leading coefficient vanishes: a pole passes infinity.
     #[serde(rename = "degree drop")]
     DegreeDrop,
+    /// A pole is at z = −1: the loop alternates from sample to sample. Of sampled loops only.
+    Alternation,
     /// Real poles meet and leave the real axis.
     Breakaway,
     /// A pole pair meets on the real axis and becomes real.
