@@ -4,8 +4,10 @@ mod figures;
 mod frequency;
 mod loop_at;
 mod modes;
+mod trace;
 
 pub use figures::{Figure, SettlingBand};
 pub use frequency::Frequency;
 pub use loop_at::{Answer, LoopAt};
 pub use modes::{Modes, Peaks};
+pub use trace::{Trace, TracePoint};

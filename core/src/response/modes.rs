@@ -29,7 +29,7 @@ const STEP_CAP: usize = 300_000;
 const NEAR_BAND: f64 = 0.1;
 
 /// Points of a curve for drawing.
-const CURVE_POINTS: usize = 480;
+pub(super) const CURVE_POINTS: usize = 480;
 
 /// One real mode or one complex pair.
 #[derive(Clone, Copy, Debug)]
@@ -238,7 +238,7 @@ impl Modes {
 }
 
 /// A zero of a function between two arguments with values of different sign, by bisection.
-fn root_between(mut low: f64, mut high: f64, value: impl Fn(f64) -> f64) -> f64 {
+pub(super) fn root_between(mut low: f64, mut high: f64, value: impl Fn(f64) -> f64) -> f64 {
     let sign = value(low) > 0.0;
     // f64 has 52 bits; a few more rounds do no harm.
     for _ in 0..56 {
