@@ -19,4 +19,5 @@ pub mod project;
 pub mod ranges;
 pub mod record;
 pub mod response;
+pub mod sampled;
 pub mod setting;

@@ -33,7 +33,7 @@ pub fn from_places(partition: &Partition) -> Vec<Landmark> {
             let (kind, im) = match contact {
                 Contact::Axis { omega } => (LandmarkKind::AxisCrossing, *omega),
                 Contact::Origin => (LandmarkKind::OriginCrossing, 0.0),
-                Contact::DegreeDrop | Contact::RealMeeting { .. } => continue,
+                Contact::DegreeDrop | Contact::Alternation | Contact::RealMeeting { .. } => continue,
             };
             let s = Point { re: 0.0, im };
             found.push(Landmark {

@@ -34,7 +34,8 @@ pub struct Partition {
     pub at_places: Vec<Verdict>,
     /// Whether places where real poles meet have been looked for; without them `real` and `pairs` mean nothing.
     pub with_meetings: bool,
-    affine: bool,
+    /// Whether what is said of a place is proven.
+    proven: Vec<bool>,
 }
 
 impl Partition {
@@ -67,7 +68,17 @@ impl Partition {
                 None => between(family, place, &ranges[i], &ranges[i + 1])?,
             });
         }
-        Ok(Self { places, ranges, at_places, with_meetings, affine: family.knob_degree() < 2 })
+        // Of a family of higher degree in the knob an irrational touching edge is told from a near miss by 100 bits, not by
+        // proof.
+        let affine = family.knob_degree() < 2;
+        let touching = |i: usize| ranges[i].half_plane == ranges[i + 1].half_plane;
+        let proven = places.iter().enumerate().map(|(i, p)| affine || !touching(i) || p.exact.is_some()).collect();
+        Ok(Self { places, ranges, at_places, with_meetings, proven })
+    }
+
+    /// From places found elsewhere, without those where real poles meet; `proven` has one entry for each place.
+    pub fn from_parts(places: Vec<Place>, ranges: Vec<Verdict>, at_places: Vec<Verdict>, proven: Vec<bool>) -> Self {
+        Self { places, ranges, at_places, with_meetings: false, proven }
     }
 
     /// The ranges of constant counts of unstable poles.
@@ -131,9 +142,7 @@ impl Partition {
                 None => place.bracket.decimal_bracket(digits),
             },
             exact: place.exact.as_ref().map(crate::exact::dyadic::exact_text),
-            // Of a family of higher degree in the knob an irrational touching edge is told from a near miss by 100 bits, not
-            // by proof.
-            proven: self.affine || !touching || place.exact.is_some(),
+            proven: self.proven[i],
             kind: self.kind(i),
             omega: omegas.first().copied(),
             omegas,
@@ -165,6 +174,8 @@ impl Partition {
             EdgeKind::DegreeDrop
         } else if has(|c| matches!(c, Contact::Axis { .. })) {
             EdgeKind::AxisCrossing
+        } else if has(|c| matches!(c, Contact::Alternation)) {
+            EdgeKind::AlternationCrossing
         } else if has(|c| matches!(c, Contact::Origin)) {
             EdgeKind::OriginCrossing
         } else {
@@ -218,6 +229,8 @@ fn happens_at(family: &Family, place: &Place, q: &RBig) -> bool {
         Contact::RealMeeting { .. } => repeated(),
         Contact::Origin => p.coefficient(0).is_zero(),
         Contact::DegreeDrop => p.degree() < family.moving_order(),
+        // No place of a continuous loop.
+        Contact::Alternation => false,
     })
 }
 
