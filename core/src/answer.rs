@@ -1,7 +1,6 @@
 //! The one way through: project in, answer out.
 
-use crate::analysis::Analysis;
-use crate::exact::ExactError;
+use crate::analysis::{Analysis, AnalysisError};
 use crate::judgement::{judge, limits};
 use crate::locus::Branch;
 use crate::model;
@@ -134,11 +133,12 @@ impl Session {
             return Err([problem].into());
         }
         let (setting, scale) = (model.setting.clone(), model.scale.clone());
-        let analysis = self.analysis(project, model).map_err(|error| [too_hard(&error)])?;
+        let analysis = self.analysis(project, model).map_err(|error| [error.problem()])?;
         let knob = setting.as_ref().and_then(|setting| scale.knob(setting));
         let closed_loop =
-            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
-        let judged = judge(analysis, &limits, &scale, setting.as_ref()).map_err(|error| [too_hard(&error)])?;
+            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [error.problem()])?;
+        let judged = judge(analysis, &limits, &scale, setting.as_ref())
+            .map_err(|error| [AnalysisError::from(error).problem()])?;
         let found = &analysis.findings;
         Ok(Record {
             format: RECORD_FORMAT.to_string(),
@@ -170,7 +170,7 @@ impl Session {
     }
 
     /// The analysis of this project, kept or new.
-    fn analysis(&mut self, project: &Project, model: model::Loop) -> Result<&Analysis, ExactError> {
+    fn analysis(&mut self, project: &Project, model: model::Loop) -> Result<&Analysis, AnalysisError> {
         let key = without_notes(project);
         let kept = self.last.take().filter(|(last, _)| *last == key);
         let entry = match kept {
@@ -228,9 +228,4 @@ fn read_project(json: &str) -> Result<Project, String> {
         }
         None => format!("this is no Stayband project: its format is \"{}\", not \"{PROJECT_FORMAT}\"", project.format),
     })
-}
-
-fn too_hard(error: &ExactError) -> Problem {
-    let message = format!("this loop could not be solved within the limits of the exact methods: {error}");
-    Problem { field: Field::Loop, symbol: None, span: None, message }
 }
