@@ -1,5 +1,6 @@
 //! What the closed loop does at one value of the knob: its answers over time, and its open loop over frequency.
 
+mod axis;
 mod figures;
 mod frequency;
 mod loop_at;

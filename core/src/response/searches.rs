@@ -12,11 +12,12 @@ const EXPANDED: f64 = 1.0;
 /// Stretches looked at in one search before it ends without an answer. Ordinary answers need some hundred.
 const STRETCH_CAP: usize = 60_000;
 
-/// A stretch this short, relative to its end, is monotone but for rounding.
-const SHORTEST: f64 = 1e-14;
+/// A stretch this short, relative to its end, is not halved any more: in f64 the phase of faster modes is blurred, and
+/// the bounds themselves count.
+const SHORTEST: f64 = 1e-11;
 
 /// Extremes are right to this part of the answer's largest known value; closer ones are not told apart.
-const PEAK_ERROR: f64 = 1e-10;
+const PEAK_ERROR: f64 = 1e-13;
 
 /// Rounding of the sum of modes, as a part of the sum of their sizes.
 const ROUNDING: f64 = 1e-15;
@@ -34,7 +35,22 @@ impl Modes {
         let mut extremes = Extremes { peaks: Peaks { highest, lowest }, end, rounding };
         let quiet = self.quiet_after(extremes.error().max(f64::MIN_POSITIVE));
         self.search(quiet, &mut extremes)?;
-        Some(extremes.peaks)
+        let Peaks { highest, lowest } = extremes.peaks;
+        Some(Peaks { highest: self.at_turn(highest), lowest: self.at_turn(lowest) })
+    }
+
+    /// An extreme whose value is found, moved to the turn beside it: nearer than the error of values, times still differ.
+    fn at_turn(&self, (y, t): (f64, f64)) -> (f64, f64) {
+        if t == 0.0 || !t.is_finite() {
+            return (y, t);
+        }
+        let (slope, bend) = (self.slope(t), self.bend(t));
+        let beyond = t - 2.0 * slope / bend;
+        if !(beyond >= 0.0 && slope * self.slope(beyond) < 0.0) {
+            return (y, t);
+        }
+        let turn = self.turn(t, beyond);
+        (self.value(turn), turn)
     }
 
     /// The first time at which the answer, taken in the direction of its final value, is at `part` < 1 of it. None where
@@ -73,8 +89,12 @@ impl Modes {
                 continue;
             }
             let Stretch { from, to, .. } = stretch;
-            if stretch.is_monotone() || to - from <= SHORTEST * to {
+            if stretch.is_monotone() {
                 if quest.look(self, from, to) {
+                    return Some(());
+                }
+            } else if to - from <= SHORTEST * to {
+                if quest.take(&stretch) {
                     return Some(());
                 }
             } else if stretch.has_one_turn() {
@@ -174,6 +194,9 @@ trait Quest {
     /// Looks at a monotone stretch; true ends the search.
     fn look(&mut self, modes: &Modes, from: f64, to: f64) -> bool;
 
+    /// Takes a stretch by its bounds; true ends the search.
+    fn take(&mut self, stretch: &Stretch) -> bool;
+
     /// Whether the later of two neighbours is looked at first.
     fn later_first(&self, halves: Option<(&Stretch, &Stretch)>) -> bool;
 }
@@ -214,6 +237,16 @@ impl Quest for Extremes {
         false
     }
 
+    fn take(&mut self, stretch: &Stretch) -> bool {
+        if stretch.high > self.peaks.highest.0 {
+            self.peaks.highest = (stretch.high, stretch.to);
+        }
+        if stretch.low < self.peaks.lowest.0 {
+            self.peaks.lowest = (stretch.low, stretch.to);
+        }
+        false
+    }
+
     fn later_first(&self, halves: Option<(&Stretch, &Stretch)>) -> bool {
         halves.is_some_and(|(earlier, later)| self.promise(later) > self.promise(earlier))
     }
@@ -238,6 +271,11 @@ impl Quest for FirstReach {
             self.found = Some(if ends[0].1 >= 0.0 { from } else { root_between(ends[0], ends[1], beyond) });
         }
         self.found.is_some()
+    }
+
+    fn take(&mut self, stretch: &Stretch) -> bool {
+        self.found = Some(stretch.to);
+        true
     }
 
     fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
@@ -265,6 +303,11 @@ impl Quest for LastOutside {
             self.found = Some(root_between(ends[0], ends[1], beyond));
         }
         self.found.is_some()
+    }
+
+    fn take(&mut self, stretch: &Stretch) -> bool {
+        self.found = Some(stretch.to);
+        true
     }
 
     fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
