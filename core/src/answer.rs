@@ -3,7 +3,7 @@
 use crate::analysis::Analysis;
 use crate::exact::ExactError;
 use crate::judgement::{judge, limits};
-use crate::locus::{Branch, trade};
+use crate::locus::Branch;
 use crate::model;
 use crate::project::{PROJECT_FORMAT, Project, Setting};
 use crate::record::{Program, RECORD_FORMAT, Reading, Record};
@@ -109,7 +109,7 @@ impl Session {
         match self.record(&project, &reading, program_hash) {
             Ok(record) => {
                 let answer = Answer { reading, problems: Vec::new(), record: Some(record) };
-                let branches = self.last.as_ref().map_or(&[][..], |(_, analysis)| &analysis.branches);
+                let branches = self.last.as_ref().map_or(&[][..], |(_, analysis)| &analysis.findings.branches);
                 Solved { answer, branches, analysis: self.analyses }
             }
             Err(problems) => {
@@ -139,7 +139,7 @@ impl Session {
         let closed_loop =
             knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
         let judged = judge(analysis, &limits, &scale, setting.as_ref()).map_err(|error| [too_hard(&error)])?;
-        let affine = analysis.affine();
+        let found = &analysis.findings;
         Ok(Record {
             format: RECORD_FORMAT.to_string(),
             program: Program {
@@ -149,13 +149,14 @@ impl Session {
             project: project.clone(),
             reading: reading.clone(),
             model: model::record(&analysis.model),
-            stability: analysis.stability.clone(),
-            character: analysis.character.clone(),
-            landmarks: analysis.landmarks.clone(),
-            asymptotes: affine.map(|p| trade::for_both_signs(|sign| trade::asymptotes(p.d, p.n, sign))),
-            real_axis: affine.map(|p| trade::for_both_signs(|sign| trade::real_axis(p.d, p.n, p.poles, p.zeros, sign))),
-            poles: analysis.poles.clone(),
-            zeros: analysis.zeros.clone(),
+            timing: model::timing(&analysis.model),
+            stability: found.stability.clone(),
+            character: found.character.clone(),
+            landmarks: found.landmarks.clone(),
+            asymptotes: found.asymptotes.clone(),
+            real_axis: found.real_axis.clone(),
+            poles: found.poles.clone(),
+            zeros: found.zeros.clone(),
             closed_loop,
             scale: scale.record(),
             requirements: judged.requirements,
@@ -163,8 +164,8 @@ impl Session {
             margins: judged.margins,
             step: judged.step,
             load: judged.load,
-            view: analysis.view,
-            notices: analysis.notices.clone(),
+            view: found.view,
+            notices: found.notices.clone(),
         })
     }
 

@@ -8,6 +8,7 @@ extern crate alloc;
 
 pub mod analysis;
 pub mod answer;
+pub mod dead_time;
 pub mod exact;
 pub mod judgement;
 pub mod locus;

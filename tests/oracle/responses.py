@@ -228,7 +228,9 @@ class Answer:
         """The last time at which y is farther than the band from its end; 0 where it never is."""
         end = self.end_exact_number
         room = lambda t: abs(self.exact(t) - end) - band
-        for times, y in self.blocks_back(self.quiet_after(float(band))):
+        quiet = self.quiet_after(float(band))
+        # A turn that just touches the band lies right at the quiet time where one pair is left: begin beyond it.
+        for times, y in self.blocks_back(quiet + OVERLAP * self.step(quiet)):
             found = self.first_inside(times, np.abs(y - self.end) - float(band), room)
             if found is not None:
                 return found

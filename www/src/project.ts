@@ -1,5 +1,5 @@
 // Changes of the project. Each returns a new project and leaves the old one as it was, so that it can be undone.
-import type { Feedback, LoopText, Project, Quantity, Requirement, RequirementKind, Setting } from "./types.ts";
+import type { Feedback, LoopText, Project, Quantity, Requirement, RequirementKind, SamplingText, Setting } from "./types.ts";
 
 /** The blocks that are typed. */
 export type BlockName = "controller" | "plant" | "sensor";
@@ -22,12 +22,15 @@ const PLAIN_SETTING: Setting = {
   step: "",
 };
 
+/** A sampling nobody has typed anything into. */
+const EMPTY_SAMPLING: SamplingText = { period: "", delay: "", method: "tustin", prewarp: "" };
+
 /** A project nobody has typed anything into. */
 export function emptyProject(): Project {
   return {
     format: PROJECT_FORMAT,
     title: "",
-    loop: { controller: "", plant: "", sensor: "1", feedback: "negative" },
+    loop: { controller: "", plant: "", sensor: "1", feedback: "negative", deadTime: "", sampling: null },
     quantities: [],
     knob: "",
     setting: PLAIN_SETTING,
@@ -48,6 +51,16 @@ export function withBlock(project: Project, block: BlockName, text: string): Pro
 /** With another feedback sign. */
 export function withFeedback(project: Project, feedback: Feedback): Project {
   return withLoop(project, { feedback });
+}
+
+/** With another dead time. */
+export function withDeadTime(project: Project, deadTime: string): Project {
+  return withLoop(project, { deadTime });
+}
+
+/** With another part of the sampling, or switched on or off. */
+export function withSampling(project: Project, part: Partial<SamplingText> | null): Project {
+  return withLoop(project, { sampling: part && { ...EMPTY_SAMPLING, ...part } });
 }
 
 /** With another setting. */
@@ -118,7 +131,7 @@ export function completed(given: Project): Project {
   return {
     format: given.format,
     title: given.title ?? empty.title,
-    loop: { ...empty.loop, ...given.loop },
+    loop: { ...empty.loop, ...given.loop, sampling: given.loop.sampling ? { ...EMPTY_SAMPLING, ...given.loop.sampling } : null },
     quantities: (given.quantities ?? []).map((row) => ({ ...quantity, ...row })),
     knob: given.knob,
     setting: { ...empty.setting, ...given.setting },

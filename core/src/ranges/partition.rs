@@ -89,6 +89,7 @@ impl Partition {
             to: to.map(|i| self.edge(i)),
             unstable_poles: self.ranges[first].half_plane.right,
             axis_poles: self.ranges[first].half_plane.axis,
+            at_least: false,
             stable: self.ranges[first].half_plane.is_stable(),
         })
     }
@@ -174,7 +175,7 @@ impl Partition {
         } else if has(|c| matches!(c, Contact::Axis { .. })) {
             EdgeKind::AxisCrossing
         } else if has(|c| matches!(c, Contact::Alternation)) {
-            EdgeKind::Alternation
+            EdgeKind::AlternationCrossing
         } else if has(|c| matches!(c, Contact::Origin)) {
             EdgeKind::OriginCrossing
         } else {

@@ -4,6 +4,7 @@ mod figures;
 mod frequency;
 mod loop_at;
 mod modes;
+mod searches;
 mod trace;
 
 pub use figures::{Figure, SettlingBand};

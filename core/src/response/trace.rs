@@ -3,7 +3,8 @@
 //! Between two points the cubic takes both values and both slopes (Hermite): its error is h⁴/384 times the fourth
 //! derivative, so that whoever makes the points chooses h. Two points at one time are a jump; the later one holds there.
 
-use super::modes::{CURVE_POINTS, Peaks, root_between};
+use super::modes::{CURVE_POINTS, Peaks};
+use super::searches::root_between;
 use crate::record::Curve;
 use alloc::vec::Vec;
 
@@ -107,7 +108,9 @@ impl Trace {
             let mut before = stretch.from.time;
             for (t, y) in stretch.looks() {
                 if missing(y) <= 0.0 {
-                    return Some(root_between(before, t, |t| missing(stretch.value(t))));
+                    return Some(root_between((before, missing(stretch.value(before))), (t, missing(y)), |t| {
+                        missing(stretch.value(t))
+                    }));
                 }
                 before = t;
             }
@@ -129,7 +132,9 @@ impl Trace {
             looks.extend(stretch.looks());
             for (t, y) in looks.into_iter().rev().skip(1) {
                 if outside(y) > 0.0 {
-                    return Some(root_between(t, later, |t| outside(stretch.value(t))));
+                    return Some(root_between((t, outside(y)), (later, outside(stretch.value(later))), |t| {
+                        outside(stretch.value(t))
+                    }));
                 }
                 later = t;
             }
