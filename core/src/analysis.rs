@@ -24,6 +24,7 @@ pub struct Analysis {
     /// The loop as built from the project.
     pub model: Loop,
     family: Family,
+    partition: Partition,
     /// The whole real line of the knob.
     pub stability: Vec<StabilityRange>,
     /// Likewise; empty where it could not be told.
@@ -99,6 +100,7 @@ impl Analysis {
         Ok(Self {
             model,
             family,
+            partition,
             stability,
             character,
             landmarks,
@@ -118,6 +120,16 @@ impl Analysis {
     pub fn affine(&self) -> Option<AffineParts<'_>> {
         let (d, n) = self.family.affine()?;
         Some(AffineParts { d, n, poles: &self.moving.0, zeros: &self.moving.1 })
+    }
+
+    /// The characteristic polynomial over the knob, its fixed factor taken out.
+    pub fn family(&self) -> &Family {
+        &self.family
+    }
+
+    /// The line of the knob, cut where something happens.
+    pub fn partition(&self) -> &Partition {
+        &self.partition
     }
 
     /// Where a requirement is met; kept for the next time.

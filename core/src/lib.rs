@@ -8,6 +8,7 @@ extern crate alloc;
 
 pub mod analysis;
 pub mod answer;
+pub mod derivation;
 pub mod exact;
 pub mod judgement;
 pub mod locus;
@@ -19,3 +20,5 @@ pub mod ranges;
 pub mod record;
 pub mod response;
 pub mod setting;
+pub mod sheet;
+pub mod site_check;

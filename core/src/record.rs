@@ -1,6 +1,7 @@
 //! The record: all that comes out. Angles in degrees, frequencies in rad/s, poles in 1/s.
 
 use crate::project::{Direction, Project, RequirementKind};
+use crate::sheet::SheetRecord;
 use alloc::string::String;
 use alloc::vec::Vec;
 use serde::Serialize;
@@ -55,6 +56,8 @@ pub struct Record {
     pub view: View,
     /// Warnings about the loop, most serious first.
     pub notices: Vec<Notice>,
+    /// What the printed sheet needs beside the rest. None unless it was asked for.
+    pub sheet: Option<SheetRecord>,
 }
 
 /// The program that made a record.

@@ -1,10 +1,12 @@
 //! What the closed loop does at one value of the knob: its answers over time, and its open loop over frequency.
 
+mod altered;
 mod figures;
 mod frequency;
 mod loop_at;
 mod modes;
 
+pub use altered::FirstSwing;
 pub use figures::{Figure, SettlingBand};
 pub use frequency::Frequency;
 pub use loop_at::{Answer, LoopAt};

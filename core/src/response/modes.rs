@@ -28,6 +28,9 @@ const STEP_CAP: usize = 300_000;
 /// A turn is looked at where the answer is nearer to the band's border than this part of the band.
 const NEAR_BAND: f64 = 0.1;
 
+/// No peak is looked for where the answer stays this near to its final value: nobody sees it on a record.
+const SETTLED: f64 = 1e-6;
+
 /// Points of a curve for drawing.
 const CURVE_POINTS: usize = 480;
 
@@ -152,6 +155,32 @@ impl Modes {
             let envelope = walk.envelope;
             if envelope <= tiny || (end + envelope <= highest.0 && end - envelope >= lowest.0) {
                 return Some(Peaks { highest, lowest });
+            }
+            before = here;
+        }
+        None
+    }
+
+    /// Time and value of the first `count` turns at which the answer, taken in the direction of its final value, is highest.
+    /// None where there are not so many before it has settled, or within the cap.
+    pub fn first_peaks(&self, count: usize) -> Option<Vec<(f64, f64)>> {
+        let direction = self.final_value.signum();
+        let settled = SETTLED * self.final_value.abs();
+        let mut walk = Walk::new(self, 0.0, Heading::Later);
+        let mut before = Look { t: 0.0, y: self.value(0.0), slope: self.slope(0.0) };
+        let mut peaks = Vec::new();
+        for _ in 0..STEP_CAP {
+            let here = walk.next();
+            if before.slope * direction > 0.0
+                && let Some((y, t)) = self.turn(&before, &here)
+            {
+                peaks.push((t, y));
+            }
+            if peaks.len() == count {
+                return Some(peaks);
+            }
+            if walk.envelope <= settled {
+                return None;
             }
             before = here;
         }
