@@ -4,8 +4,10 @@ use crate::analysis::{Analysis, AnalysisError};
 use crate::judgement::{judge, limits};
 use crate::locus::Branch;
 use crate::model;
-use crate::project::{PROJECT_FORMAT, Project, Setting};
+use crate::project::{PROJECT_FORMAT, Project, Setting, SheetText, SiteCheckText, StepUpText};
 use crate::record::{Program, RECORD_FORMAT, Reading, Record};
+use crate::sheet::sheet;
+use crate::site_check::check_tolerances;
 use alloc::format;
 use alloc::string::{String, ToString};
 use alloc::vec::Vec;
@@ -117,6 +119,24 @@ impl Session {
         }
     }
 
+    /// Answers a project document as [`Self::solve`] does, with the sheet's part of the record.
+    pub fn sheet(&mut self, project_json: &str, program_hash: Option<&str>) -> Answer {
+        let mut answer = self.solve(project_json, program_hash).answer;
+        if let (Some(record), Some((_, analysis))) = (&mut answer.record, &self.last) {
+            let project = &record.project;
+            let made =
+                model::build(project).and_then(|model| Ok((model, limits(project)?))).and_then(|(model, limits)| {
+                    sheet(project, project_json, &model, analysis, &limits)
+                        .map_err(|error| [AnalysisError::from(error).problem()].into())
+                });
+            match made {
+                Ok(sheet) => record.sheet = Some(sheet),
+                Err(problems) => return Answer { problems, record: None, ..answer },
+            }
+        }
+        answer
+    }
+
     fn record(
         &mut self,
         project: &Project,
@@ -129,6 +149,7 @@ impl Session {
             problems
         })?;
         let limits = limits?;
+        check_tolerances(project)?;
         if let Some(problem) = not_yet(&model) {
             return Err([problem].into());
         }
@@ -166,6 +187,7 @@ impl Session {
             load: judged.load,
             view: found.view,
             notices: found.notices.clone(),
+            sheet: None,
         })
     }
 
@@ -205,9 +227,13 @@ fn without_notes(project: &Project) -> Project {
     key.setting = Setting::default();
     key.requirements.clear();
     key.title.clear();
+    key.sheet = SheetText::default();
+    key.step_up = StepUpText::default();
+    key.site_check = SiteCheckText::default();
     for row in &mut key.quantities {
         row.unit.clear();
         row.meaning.clear();
+        row.tolerance.clear();
         if row.symbol == key.knob {
             row.value.clear();
         }

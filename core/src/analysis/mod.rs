@@ -20,8 +20,7 @@ use core::cell::{OnceCell, RefCell};
 use dashu_ratio::RBig;
 use dead_time::DeadTime;
 pub use error::AnalysisError;
-pub use rational::AffineParts;
-use rational::Rational;
+pub use rational::{AffineParts, Rational};
 use sampled::Sampled;
 
 /// A loop, analysed.
@@ -96,10 +95,10 @@ impl Analysis {
         Ok(Self { model, findings, method, samples: OnceCell::new(), lanes: RefCell::default() })
     }
 
-    /// D and N of the moving part with their roots, where the loop is a ratio of polynomials and affine in the knob.
-    pub fn affine(&self) -> Option<AffineParts<'_>> {
+    /// The polynomials and their ranges, where the loop is a ratio of polynomials in s.
+    pub fn rational(&self) -> Option<&Rational> {
         match &self.method {
-            Method::Rational(rational) => rational.affine(),
+            Method::Rational(rational) => Some(rational),
             Method::DeadTime(_) | Method::Sampled(_) => None,
         }
     }
@@ -120,10 +119,7 @@ impl Analysis {
                 self.samples.get_or_init(|| samples)
             }
         };
-        let family = match &self.method {
-            Method::Rational(rational) => Some(&rational.family),
-            Method::DeadTime(_) | Method::Sampled(_) => None,
-        };
+        let family = self.rational().map(|rational| &rational.family);
         let ground = Ground { model: &self.model, family, stable, samples };
         let found = lane(&ground, limit)?;
         let mut lanes = self.lanes.borrow_mut();

@@ -138,7 +138,7 @@ impl Partition {
     }
 
     /// The record of a place.
-    fn edge(&self, i: usize) -> Edge {
+    pub fn edge(&self, i: usize) -> Edge {
         let (place, here) = (&self.places[i], &self.at_places[i]);
         let mut omegas: Vec<f64> = place.contacts.iter().filter_map(Contact::omega).collect();
         omegas.sort_by(f64::total_cmp);

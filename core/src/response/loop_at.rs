@@ -105,6 +105,11 @@ impl LoopAt {
         })
     }
 
+    /// The poles of the closed loop, in f64.
+    pub fn poles(&self) -> &[Complex<f64>] {
+        &self.poles
+    }
+
     /// Whether every pole lies left of the axis; exact.
     pub fn is_stable(&self) -> bool {
         *self.stable.get_or_init(|| count(&self.closed).is_ok_and(|count| count.is_stable()))

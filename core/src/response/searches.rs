@@ -5,6 +5,7 @@
 //! envelope; so fast modes do not make small steps where only slow ones matter, and no turn is ever missed.
 
 use super::modes::{Modes, Peaks};
+use alloc::vec::Vec;
 
 /// A mode is expanded over stretches of at most so many radians to each side of the middle.
 const EXPANDED: f64 = 1.0;
@@ -18,6 +19,9 @@ const SHORTEST: f64 = 1e-11;
 
 /// Extremes are right to this part of the answer's largest known value; closer ones are not told apart.
 const PEAK_ERROR: f64 = 1e-13;
+
+/// No peak is looked for where the answer stays this near to its final value: nobody sees it on a record.
+const SETTLED: f64 = 1e-6;
 
 /// Rounding of the sum of modes, as a part of the sum of their sizes.
 const ROUNDING: f64 = 1e-15;
@@ -68,6 +72,15 @@ impl Modes {
         self.search(quiet, &mut reach)?;
         // At the quiet time the level is reached but for rounding.
         Some(reach.found.unwrap_or(quiet))
+    }
+
+    /// Time and value of the first `count` turns at which the answer, taken in the direction of its final value, is highest.
+    /// None where there are not so many before it has settled, or the search meets its cap.
+    pub fn first_peaks(&self, count: usize) -> Option<Vec<(f64, f64)>> {
+        let settled = SETTLED * self.final_value.abs();
+        let mut peaks = FirstPeaks { direction: self.final_value.signum(), count, rising: false, found: Vec::new() };
+        self.search(self.quiet_after(settled.max(f64::MIN_POSITIVE)), &mut peaks)?;
+        (peaks.found.len() == count).then_some(peaks.found)
     }
 
     /// The last time at which |y − y(∞)| is `band`, 0 where it never is more. None where the search meets its cap.
@@ -249,6 +262,41 @@ impl Quest for Extremes {
 
     fn later_first(&self, halves: Option<(&Stretch, &Stretch)>) -> bool {
         halves.is_some_and(|(earlier, later)| self.promise(later) > self.promise(earlier))
+    }
+}
+
+struct FirstPeaks {
+    /// The sign of the final value.
+    direction: f64,
+    /// As many are wanted.
+    count: usize,
+    /// Whether the answer rose on the stretch before.
+    rising: bool,
+    /// Time and value.
+    found: Vec<(f64, f64)>,
+}
+
+impl Quest for FirstPeaks {
+    fn is_dull(&self, _: &Stretch) -> bool {
+        false
+    }
+
+    fn look(&mut self, modes: &Modes, from: f64, to: f64) -> bool {
+        let (before, after) = (modes.value(from), modes.value(to));
+        let rises = (after - before) * self.direction > 0.0;
+        if self.rising && !rises {
+            self.found.push((from, before));
+        }
+        self.rising = rises;
+        self.found.len() == self.count
+    }
+
+    fn take(&mut self, _: &Stretch) -> bool {
+        false
+    }
+
+    fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
+        false
     }
 }
 

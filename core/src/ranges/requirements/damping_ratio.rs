@@ -38,7 +38,7 @@ fn inside(pole: &Root, zeta: f64) -> bool {
 }
 
 /// A and B of a polynomial on the ray.
-fn on_ray(poly: &IntPoly, p: &IBig, c: &IBig) -> (IntPoly, IntPoly) {
+pub fn on_ray(poly: &IntPoly, p: &IBig, c: &IBig) -> (IntPoly, IntPoly) {
     let (mut a, mut b) = (IBig::ONE, IBig::ZERO);
     let (mut first, mut second) = (Vec::new(), Vec::new());
     for coefficient in poly.coefficients() {

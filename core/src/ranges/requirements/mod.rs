@@ -3,7 +3,7 @@
 //! Poles and static errors are judged exactly; what depends on a response over time or frequency is computed at many
 //! knob values and its edges refined.
 
-mod damping_ratio;
+pub mod damping_ratio;
 mod decay_rate;
 mod gain_margin;
 mod kinds;
