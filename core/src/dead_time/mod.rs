@@ -6,11 +6,14 @@
 //! and none is a mere touch.
 
 pub mod delay;
+mod function;
 pub mod gain;
 mod isolation;
 mod partition;
+pub mod poles;
 mod trigonometry;
 
+pub use function::Quasi;
 pub use partition::{Count, DeadTimePartition};
 
 use crate::exact::ExactError;
