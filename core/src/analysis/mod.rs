@@ -14,6 +14,7 @@ use crate::record::{
     Asymptotes, BothSigns, CharacterRange, ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Root, Segment,
     StabilityRange, View,
 };
+use crate::response::Setup;
 use alloc::format;
 use alloc::vec::Vec;
 use core::cell::{OnceCell, RefCell};
@@ -103,6 +104,11 @@ impl Analysis {
         }
     }
 
+    /// For a look at single settings.
+    pub fn setup(&self) -> Setup<'_> {
+        Setup { model: &self.model }
+    }
+
     /// Where a requirement is met; kept for the next time.
     ///
     /// # Errors
@@ -115,12 +121,12 @@ impl Analysis {
         let samples = match self.samples.get() {
             Some(samples) => samples,
             None => {
-                let samples = Samples::new(&self.model, stable)?;
+                let samples = Samples::new(self.setup(), stable)?;
                 self.samples.get_or_init(|| samples)
             }
         };
         let family = self.rational().map(|rational| &rational.family);
-        let ground = Ground { model: &self.model, family, stable, samples };
+        let ground = Ground { model: &self.model, setup: self.setup(), family, stable, samples };
         let found = lane(&ground, limit)?;
         let mut lanes = self.lanes.borrow_mut();
         if lanes.len() >= LANES_KEPT {

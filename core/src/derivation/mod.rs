@@ -19,6 +19,7 @@ use crate::model::{Loop, Variables};
 use crate::ranges::requirements::{Lane, Limit};
 use crate::ranges::{Family, Partition};
 use crate::record::Landmark;
+use crate::response::Setup;
 use crate::sheet::{Derivation, RouthRow, RouthTable, SpecialCase};
 use alloc::format;
 use alloc::string::String;
@@ -50,6 +51,10 @@ impl Source<'_> {
 
     fn affine(&self) -> Option<AffineParts<'_>> {
         self.rational.affine()
+    }
+
+    fn setup(&self) -> Setup<'_> {
+        self.analysis.setup()
     }
 
     fn lane(&self, limit: &Limit) -> Result<Lane, ExactError> {

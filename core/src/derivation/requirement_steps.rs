@@ -30,7 +30,7 @@ pub(super) fn step(analysis: &Source<'_>, limit: &Limit) -> Result<RequirementSt
 }
 
 fn edge(analysis: &Source<'_>, limit: &Limit, border: &Border) -> Result<RequirementEdge, ExactError> {
-    let at = LoopAt::new(&analysis.model, border.bracket.midpoint().to_rational())?;
+    let at = LoopAt::new(analysis.setup(), border.bracket.midpoint().to_rational())?;
     Ok(RequirementEdge { knob: border.value(), pole: pole_on_limit(&at, limit), figure: at.figure(limit.kind).value() })
 }
 

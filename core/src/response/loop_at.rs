@@ -2,6 +2,8 @@
 
 use super::frequency::Frequency;
 use super::modes::{Modes, Peaks};
+use super::motion::Motion;
+use super::open_loop::OpenLoop;
 use crate::exact::complex_roots::{enclose_all, polished};
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
@@ -23,8 +25,8 @@ const TOLD: f64 = 1e-12;
 /// An answer over time, as far as there is one.
 #[derive(Debug)]
 pub enum Answer {
-    /// Modes and extremes.
-    Found(Modes, Peaks),
+    /// The answer and its extremes.
+    Found(Motion, Peaks),
     /// The loop is unstable, or the answer contains an impulse.
     Undefined,
     /// The extremes were not found within the cap on steps.
@@ -32,13 +34,29 @@ pub enum Answer {
 }
 
 impl Answer {
-    /// Modes and extremes, where there are any.
-    pub fn found(&self) -> Option<(&Modes, &Peaks)> {
+    /// The answer and its extremes, where there are any.
+    pub fn found(&self) -> Option<(&Motion, &Peaks)> {
         match self {
-            Self::Found(modes, peaks) => Some((modes, peaks)),
+            Self::Found(motion, peaks) => Some((motion, peaks)),
             _ => None,
         }
     }
+}
+
+impl From<Motion> for Answer {
+    fn from(motion: Motion) -> Self {
+        match motion.peaks() {
+            Some(peaks) => Self::Found(motion, peaks),
+            None => Self::NotComputed,
+        }
+    }
+}
+
+/// A loop with what does not change with the knob.
+#[derive(Clone, Copy, Debug)]
+pub struct Setup<'a> {
+    /// The loop as built.
+    pub model: &'a Loop,
 }
 
 /// The loop at one value of the knob.
@@ -66,8 +84,8 @@ impl LoopAt {
     ///
     /// # Errors
     /// As [`Self::new`].
-    pub fn known_stable(model: &Loop, knob: RBig) -> Result<Self, ExactError> {
-        let at = Self::new(model, knob)?;
+    pub fn known_stable(setup: Setup<'_>, knob: RBig) -> Result<Self, ExactError> {
+        let at = Self::new(setup, knob)?;
         at.stable.get_or_init(|| true);
         Ok(at)
     }
@@ -76,7 +94,8 @@ impl LoopAt {
     ///
     /// # Errors
     /// From the exact methods, where the poles cannot be found.
-    pub fn new(model: &Loop, knob: RBig) -> Result<Self, ExactError> {
+    pub fn new(setup: Setup<'_>, knob: RBig) -> Result<Self, ExactError> {
+        let model = setup.model;
         let [controller, plant, sensor] = [0, 1, 2].map(|i| model.blocks[i].at(&knob));
         let product = |parts: [&IntPoly; 3]| parts[0].times(parts[1]).times(parts[2]);
         let open = BlockAt {
@@ -133,8 +152,9 @@ impl LoopAt {
     }
 
     /// The open loop over frequency. None where the closed loop is unstable.
-    pub fn frequency(&self) -> Option<&Frequency> {
-        self.is_stable().then(|| self.frequency.get_or_init(|| Frequency::new(self)))
+    pub fn frequency(&self) -> Option<&dyn OpenLoop> {
+        let own = || Frequency::of(self.open.clone(), self.output_transfer(), &self.closed, self.poles.clone());
+        self.is_stable().then(|| self.frequency.get_or_init(own) as &dyn OpenLoop)
     }
 
     fn answer(&self, transfer: &BlockAt) -> Answer {
@@ -142,7 +162,7 @@ impl LoopAt {
             return Answer::Undefined;
         }
         let Some(modes) = Modes::of_step(transfer, &self.poles) else { return Answer::Undefined };
-        modes.peaks().map_or(Answer::NotComputed, |peaks| Answer::Found(modes, peaks))
+        Motion::Modes(modes).into()
     }
 
     /// N·h and F·g of command to output: the output is scaled by the sensor's static gain h/g where it has one, so that

@@ -3,9 +3,8 @@
 use super::super::pieces::{Border, Piece, intersection};
 use super::{Ground, Lane, Limit, at_least};
 use crate::exact::{Dyadic, ExactError, Interval};
-use crate::model::Loop;
 use crate::record::Cause;
-use crate::response::{Figure, LoopAt};
+use crate::response::{Figure, LoopAt, Setup};
 use alloc::vec::Vec;
 
 /// ln τ of the sampled knob values, τ as in [`Course`]: close enough that a figure rarely has two turns between two.
@@ -48,13 +47,13 @@ impl Samples {
     ///
     /// # Errors
     /// From the exact methods, where poles cannot be found.
-    pub fn new(model: &Loop, stable: &[Piece]) -> Result<Self, ExactError> {
+    pub fn new(setup: Setup<'_>, stable: &[Piece]) -> Result<Self, ExactError> {
         let mut courses = Vec::new();
         for piece in stable.iter().flat_map(cut_at_zero) {
             let course = Course { piece };
             let mut samples = Vec::new();
             for v in course.values() {
-                if let Some(at) = course.loop_at(model, v)? {
+                if let Some(at) = course.loop_at(setup, v)? {
                     samples.push((v, at));
                 }
             }
@@ -118,14 +117,14 @@ impl Course {
     }
 
     /// The loop at v. None where f64 rounds the knob to an end.
-    fn loop_at(&self, model: &Loop, v: f64) -> Result<Option<LoopAt>, ExactError> {
+    fn loop_at(&self, setup: Setup<'_>, v: f64) -> Result<Option<LoopAt>, ExactError> {
         let Some(knob) = Dyadic::from_f64(self.knob(v)) else { return Ok(None) };
         let knob = knob.round_down(KNOB_BITS).to_rational();
         let at_cut = knob.is_zero();
         if at_cut || !self.piece.surely_holds(&knob) {
             return Ok(None);
         }
-        LoopAt::known_stable(model, knob).map(Some)
+        LoopAt::known_stable(setup, knob).map(Some)
     }
 }
 
@@ -167,8 +166,8 @@ pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactErro
             defined |= figure != Figure::Undefined;
             points.push((*v, judge.room(figure)));
         }
-        judge.look_into_gaps(ground.model, course, &mut points)?;
-        for piece in judge.pieces(ground.model, course, &points)? {
+        judge.look_into_gaps(ground.setup, course, &mut points)?;
+        for piece in judge.pieces(ground.setup, course, &points)? {
             // What ends at the cut on one side goes on at the other.
             match pieces.last_mut() {
                 Some(last) if is_cut(last.to.as_ref()) && is_cut(piece.from.as_ref()) => last.to = piece.to,
@@ -213,8 +212,8 @@ impl Judge<'_> {
         }
     }
 
-    fn room_at(&self, model: &Loop, course: &Course, v: f64) -> Result<Room, ExactError> {
-        Ok(course.loop_at(model, v)?.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind))))
+    fn room_at(&self, setup: Setup<'_>, course: &Course, v: f64) -> Result<Room, ExactError> {
+        Ok(course.loop_at(setup, v)?.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind))))
     }
 
     fn nervousness(&self) -> f64 {
@@ -223,7 +222,12 @@ impl Judge<'_> {
     }
 
     /// Looks between neighbours on the same side of the limit where the figure may jump or turn to the other side.
-    fn look_into_gaps(&self, model: &Loop, course: &Course, points: &mut Vec<(f64, Room)>) -> Result<(), ExactError> {
+    fn look_into_gaps(
+        &self,
+        setup: Setup<'_>,
+        course: &Course,
+        points: &mut Vec<(f64, Room)>,
+    ) -> Result<(), ExactError> {
         let mut all = core::mem::take(points);
         // From left to right: a gap that is halved puts its two halves back on the stack.
         let mut done: Vec<(f64, Room)> = all.first().copied().into_iter().collect();
@@ -234,7 +238,7 @@ impl Judge<'_> {
                 let Some(left) = done.last().copied() else { break };
                 if depth < HALVINGS && doubtful(left.1, right.1, self.nervousness()) {
                     let middle = 0.5 * (left.0 + right.0);
-                    let room = self.room_at(model, course, middle)?;
+                    let room = self.room_at(setup, course, middle)?;
                     stack.push((right, depth + 1));
                     stack.push(((middle, room), depth + 1));
                 } else {
@@ -247,7 +251,7 @@ impl Judge<'_> {
     }
 
     /// The pieces of one course.
-    fn pieces(&self, model: &Loop, course: &Course, points: &[(f64, Room)]) -> Result<Vec<Piece>, ExactError> {
+    fn pieces(&self, setup: Setup<'_>, course: &Course, points: &[(f64, Room)]) -> Result<Vec<Piece>, ExactError> {
         let range = &course.piece;
         let mut pieces = Vec::new();
         // At the range's own ends the sample next to them decides.
@@ -255,10 +259,10 @@ impl Judge<'_> {
         for pair in points.windows(2) {
             match (pair[0].1.is_met(), pair[1].1.is_met()) {
                 (false, true) => {
-                    open = Some(Piece { from: Some(self.edge(model, course, pair[0], pair[1])?), to: None });
+                    open = Some(Piece { from: Some(self.edge(setup, course, pair[0], pair[1])?), to: None });
                 }
                 (true, false) => {
-                    let to = Some(self.edge(model, course, pair[0], pair[1])?);
+                    let to = Some(self.edge(setup, course, pair[0], pair[1])?);
                     pieces.extend(open.take().map(|piece| Piece { to, ..piece }));
                 }
                 _ => {}
@@ -272,7 +276,7 @@ impl Judge<'_> {
     /// a chord step did not halve.
     fn edge(
         &self,
-        model: &Loop,
+        setup: Setup<'_>,
         course: &Course,
         mut low: (f64, Room),
         mut high: (f64, Room),
@@ -292,7 +296,7 @@ impl Judge<'_> {
                 }
                 _ => 0.5 * (low.0 + high.0),
             };
-            let room = self.room_at(model, course, v)?;
+            let room = self.room_at(setup, course, v)?;
             if room.is_met() == low_met {
                 low = (v, room);
             } else {
