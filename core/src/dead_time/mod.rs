@@ -11,6 +11,7 @@ pub mod gain;
 mod isolation;
 mod partition;
 pub mod poles;
+pub mod response;
 mod trigonometry;
 
 pub use function::Quasi;
