@@ -150,9 +150,6 @@ impl Session {
         })?;
         let limits = limits?;
         check_tolerances(project)?;
-        if let Some(problem) = not_yet(&model) {
-            return Err([problem].into());
-        }
         let (setting, scale) = (model.setting.clone(), model.scale.clone());
         let analysis = self.analysis(project, model).map_err(|error| [error.problem()])?;
         let knob = setting.as_ref().and_then(|setting| scale.knob(setting));
@@ -204,21 +201,6 @@ impl Session {
         };
         Ok(&self.last.insert(entry).1)
     }
-}
-
-/// Dead time and sampling are read, but their analysis is still being joined to the rest.
-fn not_yet(model: &model::Loop) -> Option<Problem> {
-    let (field, what) = match &model.sampling {
-        Some(_) => (Field::Sampling, "sampling"),
-        None if !model.open_loop.dead_time.is_none() => (Field::DeadTime, "dead time"),
-        None => return None,
-    };
-    Some(Problem {
-        field,
-        symbol: None,
-        span: None,
-        message: format!("this version does not treat {what} yet: remove it"),
-    })
 }
 
 /// The project without what has no part in the analysis: setting, requirements, title, and notes to the reader.

@@ -143,7 +143,7 @@ impl Analysis {
     pub fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, AnalysisError> {
         match &self.method {
             Method::Rational(rational) => Ok(rational.closed_loop(knob)?),
-            Method::DeadTime(dead_time) => Ok(dead_time.closed_loop(knob)),
+            Method::DeadTime(dead_time) => dead_time.closed_loop(knob),
             Method::Sampled(sampled) => sampled.closed_loop(knob),
         }
     }

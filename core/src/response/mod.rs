@@ -2,6 +2,7 @@
 
 mod altered;
 mod axis;
+mod delayed;
 mod figures;
 mod frequency;
 mod loop_at;
