@@ -6,7 +6,10 @@ use crate::exact::{Dyadic, ExactError, Interval};
 use crate::model::Loop;
 use crate::record::Cause;
 use crate::response::{Figure, LoopAt};
+use alloc::collections::BTreeMap;
+use alloc::rc::Rc;
 use alloc::vec::Vec;
+use core::cell::RefCell;
 
 /// ln τ of the sampled knob values, τ as in [`Course`]: close enough that a figure rarely has two turns between two.
 const FIRST: f64 = -9.0;
@@ -24,6 +27,9 @@ const HALVINGS: usize = 14;
 
 /// Samples added to one course at most.
 const ADDED_CAP: usize = 160;
+
+/// Loops kept between the first samples of one course; limits that are changed again and again would gather more.
+const KEPT: usize = 512;
 
 /// Edges are refined to this relative width; a tenth of what is promised.
 const EDGE_WIDTH: f64 = 1e-7;
@@ -47,7 +53,7 @@ impl Samples {
     pub fn new(model: &Loop, stable: &[Piece]) -> Result<Self, ExactError> {
         let mut courses = Vec::new();
         for piece in stable.iter().flat_map(cut_at_zero) {
-            let course = Course { piece };
+            let course = Course { piece, between: RefCell::default() };
             let mut samples = Vec::new();
             for v in course.values() {
                 if let Some(at) = course.loop_at(model, v)? {
@@ -82,6 +88,8 @@ fn is_cut(border: Option<&Border>) -> bool {
 /// A range of one sign run through by v = ln τ, τ = (q − a)/(b − q); τ = (q − a)/|a| where b is infinite, and alike.
 struct Course {
     piece: Piece,
+    /// The loop between the first samples, by the bits of v: gaps are halved in the same places for several kinds.
+    between: RefCell<BTreeMap<u64, Option<Rc<LoopAt>>>>,
 }
 
 impl Course {
@@ -111,6 +119,20 @@ impl Course {
             // Only a loop that no knob makes unstable has no end at all, and it is cut at 0.
             (None, None) => tau,
         }
+    }
+
+    /// The loop at v, kept for the next kind.
+    fn kept(&self, model: &Loop, v: f64) -> Result<Option<Rc<LoopAt>>, ExactError> {
+        if let Some(known) = self.between.borrow().get(&v.to_bits()) {
+            return Ok(known.clone());
+        }
+        let found = self.loop_at(model, v)?.map(Rc::new);
+        let mut between = self.between.borrow_mut();
+        if between.len() >= KEPT {
+            between.clear();
+        }
+        between.insert(v.to_bits(), found.clone());
+        Ok(found)
     }
 
     /// The loop at v. None where f64 rounds the knob to an end.
@@ -210,7 +232,11 @@ impl Judge<'_> {
     }
 
     fn room_at(&self, model: &Loop, course: &Course, v: f64) -> Result<Room, ExactError> {
-        Ok(course.loop_at(model, v)?.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind))))
+        Ok(self.room_of(course.loop_at(model, v)?.as_ref()))
+    }
+
+    fn room_of(&self, at: Option<&LoopAt>) -> Room {
+        at.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind)))
     }
 
     /// Halves the gaps in which the figure may pass the limit and come back.
@@ -226,7 +252,7 @@ impl Judge<'_> {
                 if k > 0 && doubtful[k - 1] && left_over > 0 {
                     left_over -= 1;
                     let middle = 0.5 * (points[k - 1].0 + point.0);
-                    finer.push((middle, self.room_at(model, course, middle)?));
+                    finer.push((middle, self.room_of(course.kept(model, middle)?.as_deref())));
                 }
                 finer.push(*point);
             }
