@@ -5,7 +5,10 @@ use super::{Ground, Lane, Limit, at_least};
 use crate::exact::{Dyadic, ExactError, Interval};
 use crate::record::Cause;
 use crate::response::{Figure, LoopAt, Setup};
+use alloc::collections::BTreeMap;
+use alloc::rc::Rc;
 use alloc::vec::Vec;
+use core::cell::RefCell;
 
 /// ln τ of the sampled knob values, τ as in [`Course`]: close enough that a figure rarely has two turns between two.
 const FIRST: f64 = -9.0;
@@ -18,15 +21,14 @@ const NEAR_ENDS: [f64; 2] = [13.0, 20.0];
 /// More values towards an infinite end or knob 0, where a loop may change its ways many decades out.
 const FAR_ENDS: [f64; 8] = [12.0, 16.0, 20.0, 26.0, 34.0, 44.0, 56.0, 70.0];
 
-/// Neighbours on one side of the limit are looked between where the nearer one's room is below this part of the change
-/// between them: the figure may turn there.
-const TURNING: f64 = 0.5;
+/// How often a gap between two samples is halved: down to 3e-5 of the knob.
+const HALVINGS: usize = 14;
 
-/// Likewise for settling times, which jump by half an oscillation.
-const JUMPING: f64 = 2.0;
+/// Samples added to one course at most.
+const ADDED_CAP: usize = 160;
 
-/// How often such a gap is halved: down to 1.5 % of the knob.
-const HALVINGS: u32 = 5;
+/// Loops kept between the first samples of one course; limits that are changed again and again would gather more.
+const KEPT: usize = 512;
 
 /// Edges are refined to this relative width; a tenth of what is promised.
 const EDGE_WIDTH: f64 = 1e-7;
@@ -50,7 +52,7 @@ impl Samples {
     pub fn new(setup: Setup<'_>, stable: &[Piece]) -> Result<Self, ExactError> {
         let mut courses = Vec::new();
         for piece in stable.iter().flat_map(cut_at_zero) {
-            let course = Course { piece };
+            let course = Course { piece, between: RefCell::default() };
             let mut samples = Vec::new();
             for v in course.values() {
                 if let Some(at) = course.loop_at(setup, v)? {
@@ -85,6 +87,8 @@ fn is_cut(border: Option<&Border>) -> bool {
 /// A range of one sign run through by v = ln τ, τ = (q − a)/(b − q); τ = (q − a)/|a| where b is infinite, and alike.
 struct Course {
     piece: Piece,
+    /// The loop between the first samples, by the bits of v: gaps are halved in the same places for several kinds.
+    between: RefCell<BTreeMap<u64, Option<Rc<LoopAt>>>>,
 }
 
 impl Course {
@@ -114,6 +118,20 @@ impl Course {
             // Only a loop that no knob makes unstable has no end at all, and it is cut at 0.
             (None, None) => tau,
         }
+    }
+
+    /// The loop at v, kept for the next kind.
+    fn kept(&self, setup: Setup<'_>, v: f64) -> Result<Option<Rc<LoopAt>>, ExactError> {
+        if let Some(known) = self.between.borrow().get(&v.to_bits()) {
+            return Ok(known.clone());
+        }
+        let found = self.loop_at(setup, v)?.map(Rc::new);
+        let mut between = self.between.borrow_mut();
+        if between.len() >= KEPT {
+            between.clear();
+        }
+        between.insert(v.to_bits(), found.clone());
+        Ok(found)
     }
 
     /// The loop at v. None where f64 rounds the knob to an end.
@@ -213,40 +231,37 @@ impl Judge<'_> {
     }
 
     fn room_at(&self, setup: Setup<'_>, course: &Course, v: f64) -> Result<Room, ExactError> {
-        Ok(course.loop_at(setup, v)?.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind))))
+        Ok(self.room_of(course.loop_at(setup, v)?.as_ref()))
     }
 
-    fn nervousness(&self) -> f64 {
-        use crate::project::RequirementKind as Kind;
-        if matches!(self.limit.kind, Kind::SettlingTime2 | Kind::SettlingTime5) { JUMPING } else { TURNING }
+    fn room_of(&self, at: Option<&LoopAt>) -> Room {
+        at.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind)))
     }
 
-    /// Looks between neighbours on the same side of the limit where the figure may jump or turn to the other side.
+    /// Halves the gaps in which the figure may pass the limit and come back.
     fn look_into_gaps(
         &self,
         setup: Setup<'_>,
         course: &Course,
         points: &mut Vec<(f64, Room)>,
     ) -> Result<(), ExactError> {
-        let mut all = core::mem::take(points);
-        // From left to right: a gap that is halved puts its two halves back on the stack.
-        let mut done: Vec<(f64, Room)> = all.first().copied().into_iter().collect();
-        let mut stack: Vec<((f64, Room), u32)> = Vec::new();
-        for point in all.drain(..).skip(1) {
-            stack.push((point, 0));
-            while let Some((right, depth)) = stack.pop() {
-                let Some(left) = done.last().copied() else { break };
-                if depth < HALVINGS && doubtful(left.1, right.1, self.nervousness()) {
-                    let middle = 0.5 * (left.0 + right.0);
-                    let room = self.room_at(setup, course, middle)?;
-                    stack.push((right, depth + 1));
-                    stack.push(((middle, room), depth + 1));
-                } else {
-                    done.push(right);
-                }
+        let mut left_over = ADDED_CAP;
+        for _ in 0..HALVINGS {
+            let doubtful: Vec<bool> = (1..points.len()).map(|k| is_doubtful(points, k)).collect();
+            if !doubtful.contains(&true) {
+                break;
             }
+            let mut finer = Vec::with_capacity(2 * points.len());
+            for (k, point) in points.iter().enumerate() {
+                if k > 0 && doubtful[k - 1] && left_over > 0 {
+                    left_over -= 1;
+                    let middle = 0.5 * (points[k - 1].0 + point.0);
+                    finer.push((middle, self.room_of(course.kept(setup, middle)?.as_deref())));
+                }
+                finer.push(*point);
+            }
+            *points = finer;
         }
-        *points = done;
         Ok(())
     }
 
@@ -311,12 +326,21 @@ impl Judge<'_> {
     }
 }
 
-/// Whether the figure may pass the limit between two neighbours on the same side of it.
-fn doubtful(left: Room, right: Room, part: f64) -> bool {
-    match (left, right) {
-        (Room::By(a), Room::By(b)) => (a >= 0.0) == (b >= 0.0) && (b - a).abs() * part > a.abs().min(b.abs()),
-        // Defined on one side only, yet both met or both not.
-        (Room::By(_), Room::Met(_)) | (Room::Met(_), Room::By(_)) => left.is_met() == right.is_met(),
-        (Room::Met(_), Room::Met(_)) => false,
+/// Whether the figure may pass the limit between two neighbours on the same side of it, k − 1 and k: going on from either
+/// of them as it came from its other neighbour. So a turn is noticed, and a jump as well, behind which the figure goes on
+/// from another value.
+fn is_doubtful(points: &[(f64, Room)], k: usize) -> bool {
+    let (left, right) = (points[k - 1], points[k]);
+    if left.1.is_met() != right.1.is_met() {
+        return false;
     }
+    let width = right.0 - left.0;
+    let crosses = |here: (f64, Room), before: Option<&(f64, Room)>| match (here.1, before) {
+        (Room::By(room), Some((v, Room::By(other)))) => {
+            let ahead = room + (room - other) / (here.0 - v).abs() * width;
+            (ahead >= 0.0) != (room >= 0.0)
+        }
+        _ => false,
+    };
+    crosses(left, k.checked_sub(2).map(|i| &points[i])) || crosses(right, points.get(k + 1))
 }
