@@ -13,13 +13,12 @@ use thirtyfour::By;
 const DOWNLOAD: Duration = Duration::from_secs(10);
 
 /// The one file in the folder, when it is complete.
-async fn saved_file(folder: &Path) -> Result<PathBuf> {
+pub(crate) async fn saved_file(folder: &Path) -> Result<PathBuf> {
     let start = Instant::now();
     while start.elapsed() < DOWNLOAD {
-        let saved = fs::read_dir(folder)?
-            .filter_map(Result::ok)
-            .map(|entry| entry.path())
-            .find(|path| path.extension().is_some_and(|ending| ending == "json"));
+        let saved = fs::read_dir(folder)?.filter_map(Result::ok).map(|entry| entry.path()).find(|path| {
+            path.extension().is_some_and(|ending| ["json", "csv", "svg"].iter().any(|whole| ending == *whole))
+        });
         if let Some(path) = saved {
             return Ok(path);
         }
@@ -30,7 +29,7 @@ async fn saved_file(folder: &Path) -> Result<PathBuf> {
 
 /// Opens a file as a user does; only the browser's own dialogue, which WebDriver does not reach, is replaced: the
 /// picker that the page makes is put where the driver can hand it the file.
-async fn open_file(page: &Page, path: &Path) -> Result<()> {
+pub(crate) async fn open_file(page: &Page, path: &Path) -> Result<()> {
     page.run("HTMLInputElement.prototype.click = function () { document.body.append(this); }", vec![]).await?;
     page.press("Open").await?;
     let picker = page.driver.find(By::Css("input[type=file]")).await?;
