@@ -27,7 +27,11 @@ const REFUSED: [(&str, &str, &str); 11] = [
     ("of the future", r#"'{"format": "stayband-project/2", "machine": {}, "loop": {"blocks": []}}'"#, "version 2"),
     ("a list", "'[1, 2, 3]'", "no JSON object"),
     ("100 MB", "new Uint8Array(100_000_000).fill(32)", "100 MB"),
-    ("a million brackets", r#"'{"title": ' + '['.repeat(900_000) + ']'.repeat(900_000) + '}'"#, "nested"),
+    (
+        "a million brackets",
+        r#"'{"format": "stayband-project/1", "title": ' + '['.repeat(900_000) + ']'.repeat(900_000) + '}'"#,
+        "no project that can be read",
+    ),
     (
         "nested in a field",
         r#"'{"format": "stayband-project/1", "title": ' + '['.repeat(5000) + ']'.repeat(5000) + '}'"#,

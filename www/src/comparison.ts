@@ -1,7 +1,6 @@
 // Another project's ranges below those of the present one, on the same ruler.
 import { button, byId } from "./dom.ts";
 import { Engine } from "./engine.ts";
-import { withUnit } from "./format.ts";
 import { say } from "./message.ts";
 import { settingName, settingUnit } from "./scale.ts";
 import { problemText, type Session } from "./session.ts";
@@ -49,7 +48,7 @@ export class Comparison {
     this.#bar.hidden = other === null;
     if (!other) return;
     const differs = here && scaleWords(here) !== scaleWords(other);
-    const warning = differs ? ` Its settings are ${scaleWords(other)}, these are ${scaleWords(here)}: the same place on the ruler is not the same knob.` : "";
+    const warning = differs ? ` Its setting is ${scaleWords(other)}, this one’s ${scaleWords(here)}: the same place on the ruler is not the same knob.` : "";
     this.#words.textContent = `“Other” is ${other.project.title.trim() || "the untitled project"}.${warning}`;
   }
 }
@@ -59,5 +58,5 @@ function scaleWords(record: Findings): string {
   const { direction, factor } = record.scale;
   const unit = settingUnit(record).trim();
   const knob = direction === "proportional" ? `${factor} × setting` : `${factor} ÷ setting`;
-  return withUnit(`${settingName(record)}${unit && " in"}`, unit) + ` (knob = ${knob})`;
+  return `${settingName(record)}${unit && ` in ${unit}`} (knob = ${knob})`;
 }

@@ -27,7 +27,7 @@ export function locusTable(record: Findings, branches: readonly Branch[]): Cell[
 export function answersTable({ step, load, closedLoop }: Findings): Cell[][] {
   const curves = [
     { name: "output on a step", knob: closedLoop?.knob, curve: step?.curve },
-    ...(step?.atEdges ?? []).map(({ knob, curve }) => ({ name: "output on a step, permitted end", knob, curve })),
+    ...(step?.atEdges ?? []).map(({ knob, curve }) => ({ name: "output on a step at a permitted end", knob, curve })),
     { name: "controller output on a step", knob: closedLoop?.knob, curve: step?.controller },
     { name: "output on a load", knob: closedLoop?.knob, curve: load?.curve },
   ];

@@ -13,7 +13,7 @@ export interface Item {
 export function menu(id: string, items: readonly Item[]): void {
   const place = byId(id, HTMLDetailsElement);
   const lines = items.map(({ name, about, act }) => {
-    const line = html("button", { type: "button" }, html("strong", {}, name), about === undefined ? null : html("span", {}, about));
+    const line = html("button", { type: "button" }, ...(about === undefined ? [name] : [html("strong", {}, name), html("span", {}, about)]));
     line.addEventListener("click", () => {
       place.open = false;
       act();
