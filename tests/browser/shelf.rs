@@ -78,6 +78,39 @@ fn projects_are_kept_side_by_side_and_are_opened_renamed_duplicated_and_deleted_
 }
 
 #[test]
+fn a_file_that_is_opened_again_continues_its_entry_and_what_a_script_opens_is_kept_when_it_is_changed() {
+    on_the_page(|page| async move {
+        keep_loop(&page, "in a file", TWO_LAGS).await?;
+        let drop_again = r#"
+            const given = new DataTransfer();
+            given.items.add(new File([JSON.stringify(window.stayband.project())], "again.json"));
+            document.body.dispatchEvent(new DragEvent("drop", { dataTransfer: given, bubbles: true }));
+        "#;
+        page.run(drop_again, vec![]).await?;
+        page.run_async("const done = arguments[0]; setTimeout(done, 500)", vec![]).await?;
+        let script = r#"
+            const done = arguments[0];
+            const project = window.stayband.project();
+            window.stayband.open({ ...project, title: "of a script" }).then(() => setTimeout(done, 500));
+        "#;
+        page.run_async(script, vec![]).await?;
+        open_list(&page).await?;
+        assert_eq!(titles(&page).await?, json!(["in a file"]));
+        page.run("document.getElementById('projects-close').click()", vec![]).await?;
+        page.type_into("Setting", "3").await?;
+        page.until(
+            "it is kept",
+            "return Object.values(localStorage).some((text) => text.includes('of a script'))",
+            vec![],
+        )
+        .await?;
+        open_list(&page).await?;
+        assert_eq!(titles(&page).await?, json!(["of a script", "in a file"]));
+        Ok(())
+    });
+}
+
+#[test]
 fn another_projects_ranges_are_compared_on_the_same_ruler() {
     on_the_page(|page| async move {
         keep_loop(&page, "weak", TWO_LAGS).await?;

@@ -125,18 +125,25 @@ export class Session {
   }
 
   /**
-   * Opens a project document, JSON text or an object, and keeps it as an entry of its own.
+   * Opens a project document, JSON text or an object, and keeps it: as the entry that holds the same project, if there is
+   * one, else as an entry of its own.
    *
    * Resolves to its answer, which may name problems in its fields. Rejects with a `Refusal`, and changes nothing, where
    * it is no project.
    */
   async open(document: unknown): Promise<Answer> {
     const answer = await this.openUnkept(document);
-    this.#store.keep(this.#place, this.#project);
+    const kept = this.#store.find(this.#project);
+    if (kept) {
+      this.#place = kept.place;
+      this.#store.opened(kept);
+    } else {
+      this.#store.keep(this.#place, this.#project);
+    }
     return answer;
   }
 
-  /** The same for a document that need not be kept before the user changes something, such as a demo. */
+  /** The same for a document that need not be kept before the user changes something: a demo, or one from a script. */
   async openUnkept(document: unknown): Promise<Answer> {
     return this.#queue(() => this.#open(document, { place: Store.newPlace(), wanted: () => true }));
   }

@@ -120,6 +120,12 @@ export class Store {
     return text === null ? null : keptFrom(place, text);
   }
 
+  /** The entry that holds this very project; null where there is none. */
+  find(project: Project): Kept | null {
+    const text = JSON.stringify(project);
+    return this.list().find((kept) => JSON.stringify(kept.project) === text) ?? null;
+  }
+
   /** Remembers that this tab has an entry open, as it stands there now. */
   opened({ place, text }: Pick<Kept, "place" | "text">): void {
     this.#known.set(place, text);
