@@ -16,9 +16,14 @@ export function fileName(title: string): string {
   return (name || "loop") + ENDING;
 }
 
+/** The project as it is written into a file. */
+export function fileDocument(project: Project): string {
+  return `${JSON.stringify(project, null, 2)}\n`;
+}
+
 /** Hands the project to the browser as a download. */
 export function saveFile(project: Project): void {
-  const blob = new Blob([`${JSON.stringify(project, null, 2)}\n`], { type: "application/json" });
+  const blob = new Blob([fileDocument(project)], { type: "application/json" });
   const link = document.createElement("a");
   link.href = URL.createObjectURL(blob);
   link.download = fileName(project.title);
