@@ -1,9 +1,8 @@
 //! The one way through: project in, answer out.
 
-use crate::analysis::Analysis;
-use crate::exact::ExactError;
+use crate::analysis::{Analysis, AnalysisError};
 use crate::judgement::{judge, limits};
-use crate::locus::{Branch, trade};
+use crate::locus::Branch;
 use crate::model;
 use crate::project::{PROJECT_FORMAT, Project, Setting, SheetText, SiteCheckText, StepUpText};
 use crate::record::{Program, RECORD_FORMAT, Reading, Record};
@@ -111,7 +110,7 @@ impl Session {
         match self.record(&project, &reading, program_hash) {
             Ok(record) => {
                 let answer = Answer { reading, problems: Vec::new(), record: Some(record) };
-                let branches = self.last.as_ref().map_or(&[][..], |(_, analysis)| &analysis.branches);
+                let branches = self.last.as_ref().map_or(&[][..], |(_, analysis)| &analysis.findings.branches);
                 Solved { answer, branches, analysis: self.analyses }
             }
             Err(problems) => {
@@ -127,7 +126,8 @@ impl Session {
             let project = &record.project;
             let made =
                 model::build(project).and_then(|model| Ok((model, limits(project)?))).and_then(|(model, limits)| {
-                    sheet(project, project_json, &model, analysis, &limits).map_err(|error| [too_hard(&error)].into())
+                    sheet(project, project_json, &model, analysis, &limits)
+                        .map_err(|error| [AnalysisError::from(error).problem()].into())
                 });
             match made {
                 Ok(sheet) => record.sheet = Some(sheet),
@@ -154,12 +154,13 @@ impl Session {
             return Err([problem].into());
         }
         let (setting, scale) = (model.setting.clone(), model.scale.clone());
-        let analysis = self.analysis(project, model).map_err(|error| [too_hard(&error)])?;
+        let analysis = self.analysis(project, model).map_err(|error| [error.problem()])?;
         let knob = setting.as_ref().and_then(|setting| scale.knob(setting));
         let closed_loop =
-            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
-        let judged = judge(analysis, &limits, &scale, setting.as_ref()).map_err(|error| [too_hard(&error)])?;
-        let affine = analysis.affine();
+            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [error.problem()])?;
+        let judged = judge(analysis, &limits, &scale, setting.as_ref())
+            .map_err(|error| [AnalysisError::from(error).problem()])?;
+        let found = &analysis.findings;
         Ok(Record {
             format: RECORD_FORMAT.to_string(),
             program: Program {
@@ -169,13 +170,14 @@ impl Session {
             project: project.clone(),
             reading: reading.clone(),
             model: model::record(&analysis.model),
-            stability: analysis.stability.clone(),
-            character: analysis.character.clone(),
-            landmarks: analysis.landmarks.clone(),
-            asymptotes: affine.map(|p| trade::for_both_signs(|sign| trade::asymptotes(p.d, p.n, sign))),
-            real_axis: affine.map(|p| trade::for_both_signs(|sign| trade::real_axis(p.d, p.n, p.poles, p.zeros, sign))),
-            poles: analysis.poles.clone(),
-            zeros: analysis.zeros.clone(),
+            timing: model::timing(&analysis.model),
+            stability: found.stability.clone(),
+            character: found.character.clone(),
+            landmarks: found.landmarks.clone(),
+            asymptotes: found.asymptotes.clone(),
+            real_axis: found.real_axis.clone(),
+            poles: found.poles.clone(),
+            zeros: found.zeros.clone(),
             closed_loop,
             scale: scale.record(),
             requirements: judged.requirements,
@@ -183,14 +185,14 @@ impl Session {
             margins: judged.margins,
             step: judged.step,
             load: judged.load,
-            view: analysis.view,
-            notices: analysis.notices.clone(),
+            view: found.view,
+            notices: found.notices.clone(),
             sheet: None,
         })
     }
 
     /// The analysis of this project, kept or new.
-    fn analysis(&mut self, project: &Project, model: model::Loop) -> Result<&Analysis, ExactError> {
+    fn analysis(&mut self, project: &Project, model: model::Loop) -> Result<&Analysis, AnalysisError> {
         let key = without_notes(project);
         let kept = self.last.take().filter(|(last, _)| *last == key);
         let entry = match kept {
@@ -252,9 +254,4 @@ fn read_project(json: &str) -> Result<Project, String> {
         }
         None => format!("this is no Stayband project: its format is \"{}\", not \"{PROJECT_FORMAT}\"", project.format),
     })
-}
-
-fn too_hard(error: &ExactError) -> Problem {
-    let message = format!("this loop could not be solved within the limits of the exact methods: {error}");
-    Problem { field: Field::Loop, symbol: None, span: None, message }
 }

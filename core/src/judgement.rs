@@ -87,7 +87,7 @@ pub fn judge(
     let here = knob.map(|knob| LoopAt::new(&analysis.model, knob)).transpose()?;
     let requirements =
         limits.iter().zip(&lanes).map(|(limit, lane)| requirement(limit, lane, scale, here.as_ref())).collect();
-    let stable = &analysis.stable;
+    let stable = &analysis.findings.stable;
     let controller = controller_range(scale);
     let pieces = permitted(stable, controller.as_ref(), &lanes);
     let advice = suggest(scale, &pieces);

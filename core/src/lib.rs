@@ -8,6 +8,7 @@ extern crate alloc;
 
 pub mod analysis;
 pub mod answer;
+pub mod dead_time;
 pub mod derivation;
 pub mod exact;
 pub mod judgement;
@@ -19,6 +20,7 @@ pub mod project;
 pub mod ranges;
 pub mod record;
 pub mod response;
+pub mod sampled;
 pub mod setting;
 pub mod sheet;
 pub mod site_check;

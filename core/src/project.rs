@@ -310,3 +310,31 @@ pub enum RequirementKind {
     /// The largest controller output after a unit step of the command; at most.
     ControllerPeak,
 }
+
+impl RequirementKind {
+    /// Every kind. The page's table is made from this list, and its compiler refuses one from which a kind is missing.
+    pub const ALL: [Self; 22] = [
+        Self::DampingRatio,
+        Self::DecayRate,
+        Self::NaturalFrequencyMinimum,
+        Self::NaturalFrequencyMaximum,
+        Self::GainMarginUp,
+        Self::GainMarginDown,
+        Self::PhaseMargin,
+        Self::DelayMargin,
+        Self::PeakSensitivity,
+        Self::Bandwidth,
+        Self::Overshoot,
+        Self::Undershoot,
+        Self::RiseTime,
+        Self::SettlingTime2,
+        Self::SettlingTime5,
+        Self::PeakTime,
+        Self::StepError,
+        Self::RampError,
+        Self::ParabolaError,
+        Self::LoadPeak,
+        Self::LoadFinal,
+        Self::ControllerPeak,
+    ];
+}

@@ -1,17 +1,90 @@
-//! The screenshot of the README: `target/page/screenshot.png`, copied to `tests/browser/screenshot.png` by hand.
+//! What the page looks like: every demo on a notebook and on a telephone, by day and by night. The pictures are written
+//! to `target/page/screens/` to be looked at; what can be checked without eyes is checked here.
+//!
+//! The README's is `roller-1440-light.png`, copied to `tests/browser/screenshot.png` by hand.
 
-use crate::page::{file, on_the_page};
+use crate::page::{Page, file, on_the_page_with};
+use anyhow::{Context, Result};
+use serde_json::{Value, json};
 use std::fs;
 
-#[test]
-fn the_first_demo_is_drawn_for_the_readme() {
-    on_the_page(|page| async move {
-        page.run("document.querySelectorAll('#demo-list button')[0].click()", vec![]).await?;
-        let drawn = "return document.querySelectorAll('#plane path').length > 5";
-        page.until("the locus is drawn", drawn, vec![]).await?;
+/// The demos in the order of the menu, as their pictures are called.
+const DEMOS: [&str; 3] = ["roller", "winch", "pump"];
+const NOTEBOOK: (u32, u32) = (1440, 900);
+const TELEPHONE: (u32, u32) = (390, 844);
+
+/// A full page is a larger picture than this; an empty one is smaller.
+const LEAST_BYTES: usize = 20_000;
+
+/// Opens a demo and waits until its pictures are drawn.
+async fn show_demo(page: &Page, index: usize) -> Result<()> {
+    page.run("document.querySelectorAll('#demo-list button')[arguments[0]].click()", vec![json!(index)]).await?;
+    let drawn = r##"
+        const title = window.stayband.record()?.project.title ?? "";
+        const picked = document.querySelectorAll("#demo-list strong")[arguments[0]].textContent.split(" ")[0];
+        return title.startsWith(picked) && document.querySelectorAll("#plane path").length > 5
+            && document.querySelector("#response .curve") !== null;
+    "##;
+    page.until("the demo is drawn", drawn, vec![json!(index)]).await
+}
+
+/// Takes a picture in both schemes, as high as the page.
+async fn take(page: &Page, name: &str, (width, height): (u32, u32)) -> Result<()> {
+    let folder = file()?.with_file_name("screens");
+    fs::create_dir_all(&folder)?;
+    let whole = page.run("return document.documentElement.scrollHeight", vec![]).await?;
+    let height = if width == TELEPHONE.0 { whole } else { json!(height) };
+    resize(page, width, &height).await?;
+    for scheme in ["light", "dark"] {
+        page.prefer("prefers-color-scheme", scheme).await?;
         let picture = page.driver.screenshot_as_png().await?;
-        assert!(picture.len() > 20_000, "{} bytes are no picture of a full page", picture.len());
-        fs::write(file()?.with_file_name("screenshot.png"), picture)?;
+        assert!(picture.len() > LEAST_BYTES, "{} bytes are no picture of a full page", picture.len());
+        fs::write(folder.join(format!("{name}-{width}-{scheme}.png")), picture)?;
+    }
+    Ok(())
+}
+
+async fn resize(page: &Page, width: u32, height: &Value) -> Result<()> {
+    let metrics = json!({ "width": width, "height": height, "deviceScaleFactor": 1, "mobile": false });
+    page.driver.cdp().send_raw("Emulation.setDeviceMetricsOverride", metrics).await?;
+    Ok(())
+}
+
+/// The lowest point of what must be seen, and the width of the page, in CSS pixels.
+async fn extent(page: &Page) -> Result<(f64, f64)> {
+    let script = r#"
+        window.scrollTo(0, 0);
+        const seen = ["headline", "ruler", "plane", "response"].map((id) => document.getElementById(id));
+        return [Math.max(...seen.map((one) => one.getBoundingClientRect().bottom)), document.documentElement.scrollWidth];
+    "#;
+    let found: Value = page.run(script, vec![]).await?;
+    Ok((found[0].as_f64().context("a height")?, found[1].as_f64().context("a width")?))
+}
+
+#[test]
+fn on_a_notebook_answer_ruler_locus_and_step_are_seen_without_scrolling() {
+    on_the_page_with(NOTEBOOK, |page| async move {
+        for (index, name) in DEMOS.iter().enumerate() {
+            show_demo(&page, index).await?;
+            let (bottom, width) = extent(&page).await?;
+            assert!(bottom <= f64::from(NOTEBOOK.1), "{name}: the pictures end at {bottom} px");
+            assert!(width <= f64::from(NOTEBOOK.0), "{name}: the page is {width} px wide");
+            take(&page, name, NOTEBOOK).await?;
+        }
+        Ok(())
+    });
+}
+
+#[test]
+fn on_a_telephone_nothing_is_wider_than_the_screen() {
+    on_the_page_with(TELEPHONE, |page| async move {
+        for (index, name) in DEMOS.iter().enumerate() {
+            resize(&page, TELEPHONE.0, &json!(TELEPHONE.1)).await?;
+            show_demo(&page, index).await?;
+            let (_, width) = extent(&page).await?;
+            assert!(width <= f64::from(TELEPHONE.0), "{name}: the page is {width} px wide");
+            take(&page, name, TELEPHONE).await?;
+        }
         Ok(())
     });
 }

@@ -1,5 +1,10 @@
-//! How long the whole record of an order-10 loop takes in the browser: exact ranges, locus and landmarks, and their way
-//! out of WebAssembly. Printed in milliseconds, and beside it numpy's batched `eigvals` for as many points of the locus.
+//! How long an order-10 loop takes in the browser, printed in milliseconds:
+//!
+//! * the whole record without requirements (exact ranges, locus and landmarks, and their way out of WebAssembly), and
+//!   beside it numpy's batched `eigvals` for as many points of the locus;
+//! * the whole record with every requirement on, so all lanes; it should stay below 100 ms;
+//! * one step of the pointer on the page, from the key press until poles, responses, margins and figures stand in the
+//!   page and are laid out; it should stay below a frame, 16.7 ms.
 //!
 //! `cargo bench --package stayband-tests --bench speed`; needs the built page, Chromium, and numpy in the Python that
 //! the variable PYTHON names. It measures and judges nothing: a slow machine is no fault of the program.
@@ -10,24 +15,17 @@ mod page;
 
 use anyhow::{Context, Result, bail};
 use page::on_the_page;
-use serde_json::Value;
+use serde_json::{Value, json};
 use std::env;
 use std::io::Write;
 use std::path::Path;
 use std::process::{Command, Stdio};
 
-/// Sends the worker one project after another, each with another time constant, so that nothing can be kept from the
-/// one before. Answers with the sorted times, and with the last record and the knobs of its branches.
+/// The project of a run, each with another time constant, so that nothing can be kept from the one before.
 ///
 /// The loop is our own invention: a flexible axis with two resonances and a filtered controller.
-const MEASURE: &str = r#"
-    const [runs, done] = arguments;
-    const textOf = (id) => document.getElementById(id).textContent;
-    const inflate = (text) => {
-        const bytes = Uint8Array.from(atob(text), (character) => character.charCodeAt(0));
-        return new Response(new Blob([bytes]).stream().pipeThrough(new DecompressionStream("deflate-raw"))).arrayBuffer();
-    };
-    const project = (run) => JSON.stringify({
+const PROJECT: &str = r#"
+    const project = (run, requirements) => JSON.stringify({
         format: "stayband-project/1",
         loop: {
             controller: "K (0.3 s + 1)/(tau s + 1)",
@@ -36,10 +34,22 @@ const MEASURE: &str = r#"
         quantities: [{ symbol: "tau", value: `0.02${run}` }],
         knob: "K",
         setting: { value: "100" },
+        requirements,
     });
+"#;
+
+/// Sends the worker one project after another. Answers with the sorted times, and with the last record and the knobs of
+/// its branches.
+const MEASURE: &str = r#"
+    const [runs, requirements, done] = arguments;
+    const textOf = (id) => document.getElementById(id).textContent;
+    const inflate = (text) => {
+        const bytes = Uint8Array.from(atob(text), (character) => character.charCodeAt(0));
+        return new Response(new Blob([bytes]).stream().pipeThrough(new DecompressionStream("deflate-raw"))).arrayBuffer();
+    };
     const times = [];
     const worker = new Worker(URL.createObjectURL(new Blob([textOf("worker-source")])));
-    const ask = () => worker.postMessage({ id: times.length, project: project(times.length) });
+    const ask = () => worker.postMessage({ id: times.length, project: project(times.length, requirements) });
     worker.onerror = (event) => done({ error: event.message });
     worker.onmessage = ({ data }) => {
         if (data.ready) return ask();
@@ -51,29 +61,114 @@ const MEASURE: &str = r#"
     inflate(textOf("engine-wasm")).then((wasm) => worker.postMessage({ wasm, programHash: null }));
 "#;
 
+/// Moves the pointer by keys, one step after the other, and measures each until the answer to it is drawn.
+///
+/// The page draws before the next frame; here a frame comes at once, so that the work is measured and not the waiting
+/// for the screen. Reading a size at the end makes the browser lay everything out.
+const MEASURE_STEPS: &str = r#"
+    const [runs, requirements, done] = arguments;
+    const beat = new MessageChannel();
+    const queue = [];
+    beat.port1.onmessage = () => queue.splice(0).forEach((draw) => draw(performance.now()));
+    window.requestAnimationFrame = (draw) => queue.push(draw) && beat.port2.postMessage(null);
+    const pause = () => new Promise((resolve) => setTimeout(resolve));
+    const drawn = (element) => new Promise((resolve) => {
+        const observer = new MutationObserver(() => (observer.disconnect(), resolve()));
+        observer.observe(element, { childList: true, subtree: true, attributes: true });
+    });
+    const run = async () => {
+        await window.stayband.open(project(0, requirements));
+        await new Promise((resolve) => setTimeout(resolve, 1000));
+        const slider = document.querySelector("[role=slider]");
+        const parts = ["plane", "response", "figures", "poles"].map((id) => document.getElementById(id));
+        const times = [];
+        for (let step = 0; step < runs; step += 1) {
+            const start = performance.now();
+            const all = Promise.all(parts.map(drawn));
+            slider.dispatchEvent(new KeyboardEvent("keydown", { key: step % 2 ? "ArrowLeft" : "ArrowRight", bubbles: true }));
+            await all;
+            document.body.getBoundingClientRect();
+            times.push(performance.now() - start);
+            await pause();
+        }
+        const { project: typed, margins, step } = window.stayband.record();
+        return { times: times.sort((a, b) => a - b), setting: typed.setting.value, complete: margins !== null && step !== null };
+    };
+    run().then(done, (error) => done({ error: String(error) }));
+"#;
+
 /// Enough for a steady median, in a second or two.
 const RUNS: u32 = 300;
+/// The same for what takes longer.
+const FEW_RUNS: u32 = 30;
+
+/// Every requirement with a limit of our own choice, near what the loop has at the setting.
+const REQUIREMENTS: [(&str, &str); 22] = [
+    ("damping-ratio", "0.02"),
+    ("decay-rate", "0.05"),
+    ("natural-frequency-minimum", "0.1"),
+    ("natural-frequency-maximum", "9"),
+    ("gain-margin-up", "3"),
+    ("gain-margin-down", "3"),
+    ("phase-margin", "20"),
+    ("delay-margin", "0.05"),
+    ("peak-sensitivity", "3"),
+    ("bandwidth", "0.05"),
+    ("overshoot", "60"),
+    ("undershoot", "20"),
+    ("rise-time", "30"),
+    ("settling-time-2", "90"),
+    ("settling-time-5", "70"),
+    ("peak-time", "60"),
+    ("step-error", "5"),
+    ("ramp-error", "50"),
+    ("parabola-error", "1000"),
+    ("load-peak", "1"),
+    ("load-final", "1"),
+    ("controller-peak", "9000"),
+];
 
 fn main() {
     on_the_page(|page| async move {
-        let measured = page.run_async(MEASURE, vec![RUNS.into()]).await?;
-        let record = &measured["record"];
-        if record.is_null() {
-            bail!("no record: {measured:#}");
-        }
-        let times: Vec<f64> = measured["times"].as_array().into_iter().flatten().filter_map(Value::as_f64).collect();
-        let median = *times.get(times.len() / 2).context("no times")?;
-        let fastest = *times.first().context("no times")?;
-        let order = record["model"]["order"].as_u64().context("an order")?;
+        let measured = measure(&page, MEASURE, RUNS, json!([])).await?;
+        let order = measured["record"]["model"]["order"].as_u64().context("an order")?;
         let points = measured["knobs"].as_array().map_or(0, Vec::len);
         say(&format!("order {order}, {points} points of the locus, {RUNS} runs in {}", browser_name(&page).await?));
-        say(&format!("whole record in the browser: median {median:.2} ms, fastest {fastest:.2} ms"));
-
+        let whole = report("whole record in the browser", &measured)?;
         let numpy = numpy(&measured)?;
         say(&format!("numpy's batched eigvals for as many points: median {numpy:.2} ms"));
-        say(&format!("ratio: the whole record takes {:.2} of numpy's time", median / numpy));
+        say(&format!("ratio: the whole record takes {:.2} of numpy's time", whole / numpy));
+
+        let all: Value = REQUIREMENTS.iter().map(|(kind, limit)| json!({ "kind": kind, "limit": limit })).collect();
+        let lanes = measure(&page, MEASURE, FEW_RUNS, all.clone()).await?;
+        report("whole record with every requirement on (should be below 100 ms)", &lanes)?;
+        let steps = measure(&page, MEASURE_STEPS, RUNS, json!([])).await?;
+        if steps["complete"] != json!(true) {
+            bail!("the loop has no answer at the setting: {steps:#}");
+        }
+        report("one step of the pointer until everything is drawn (should be below 16.7 ms)", &steps)?;
+        let steps = measure(&page, MEASURE_STEPS, RUNS, all).await?;
+        report("the same with every requirement on", &steps)?;
         Ok(())
     });
+}
+
+/// What a script of this file measured.
+async fn measure(page: &page::Page, script: &str, runs: u32, requirements: Value) -> Result<Value> {
+    let measured = page.run_async(&format!("{PROJECT}{script}"), vec![runs.into(), requirements]).await?;
+    if measured["times"].as_array().is_none_or(Vec::is_empty) || measured["record"].is_null() && script == MEASURE {
+        bail!("no times: {measured:#}");
+    }
+    Ok(measured)
+}
+
+/// Prints the median, the fastest and the slow end of measured times, and returns the median in ms.
+fn report(what: &str, measured: &Value) -> Result<f64> {
+    let times: Vec<f64> = measured["times"].as_array().into_iter().flatten().filter_map(Value::as_f64).collect();
+    let at = |part: usize| times.get((times.len() * part / 100).min(times.len() - 1)).copied().context("no times");
+    let (fastest, median, slow) = (at(0)?, at(50)?, at(95)?);
+    say(&format!("{what}: median {median:.2} ms, fastest {fastest:.2} ms, 95 of 100 below {slow:.2} ms"));
+    Ok(median)
 }
 
 /// Median time in ms that numpy needs for the eigenvalues alone.

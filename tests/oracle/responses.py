@@ -228,7 +228,9 @@ class Answer:
         """The last time at which y is farther than the band from its end; 0 where it never is."""
         end = self.end_exact_number
         room = lambda t: abs(self.exact(t) - end) - band
-        for times, y in self.blocks_back(self.quiet_after(float(band))):
+        quiet = self.quiet_after(float(band))
+        # A turn that just touches the band lies right at the quiet time where one pair is left: begin beyond it.
+        for times, y in self.blocks_back(quiet + OVERLAP * self.step(quiet)):
             found = self.first_inside(times, np.abs(y - self.end) - float(band), room)
             if found is not None:
                 return found
@@ -240,7 +242,7 @@ class Answer:
         first = int(hits[0]) if len(hits) else len(z)
         turns = np.flatnonzero((z[1:-1] >= z[:-2]) & (z[1:-1] > z[2:])) + 1
         for i in turns[turns < first]:
-            if vertex(z[i - 1 : i + 2]) > -2e-3 * (abs(z[i]) + np.ptp(z[i - 1 : i + 2])) - 1e-9 * self.scale:
+            if vertex(z[i - 1 : i + 2]) > -2e-2 * (abs(z[i]) + np.ptp(z[i - 1 : i + 2])) - 1e-9 * self.scale:
                 low, high = sorted((times[i - 1], times[i + 1]))
                 _, top = self.turn(low, high)
                 if room(arb(top)) >= 0:

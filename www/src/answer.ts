@@ -2,9 +2,10 @@
 import { fromRational, printedText } from "./decimal.ts";
 import { counted, figure, listed, withUnit } from "./format.ts";
 import { printedEnds, stableSpans, type PrintedEnd, type StableSpan } from "./ranges.ts";
+import { beyondWords, borderWords } from "./planewords.ts";
 import { nameInSentence } from "./requirements.ts";
 import { limitSpan, onScale, settingName, settingUnit } from "./scale.ts";
-import type { ClosedLoop, Edge, LimitEdge, Record as Findings } from "./types.ts";
+import type { ClosedLoop, Edge, LimitEdge, Plane, Record as Findings } from "./types.ts";
 
 /** An edge of a lane, of stability and character or of a requirement. */
 export type AnyEdge = Edge | LimitEdge;
@@ -79,10 +80,10 @@ export function stabilitySentence(record: Findings): Piece[] {
   const proof = edges.every((edge) => edge.proven) ? "proven" : "not proven";
   if (spans.length === 0) {
     const fixed = record.notices.some((notice) => notice.kind === "unstable-fixed-mode");
-    const reason = fixed ? ": a fixed mode lies on or right of the imaginary axis" : "";
+    const reason = fixed ? `: a fixed mode lies on ${borderWords(record.timing.plane)} or ${beyondWords(record.timing.plane)}` : "";
     return [{ text: `No value of ${knob} makes this loop stable (${proof})${reason}.` }];
   }
-  const exceptions = exceptionPhrase(spans);
+  const exceptions = exceptionPhrase(spans, record.timing.plane);
   const [only] = spans;
   if (spans.length === 1 && only && !only.from && !only.to) {
     return [{ text: `Stable for every value of ${knob}` }, ...exceptions, { text: ` (${proof}).` }];
@@ -114,7 +115,7 @@ export function settingSentence(record: Findings): string {
   const name = settingName(record);
   if (!loop) return `No setting of ${name} is chosen yet: drag the pointer or type one.`;
   const judged = requirementsSentence(record);
-  return `At ${name} = ${withUnit(settingText(record), settingUnit(record))} the loop is ${verdictWords(loop)}.${judged && ` ${judged}`}`;
+  return `At ${name} = ${withUnit(settingText(record), settingUnit(record))} the loop is ${verdictWords(loop, record.timing.plane)}.${judged && ` ${judged}`}`;
 }
 
 /** "All 4 requirements are met." or "Not met: overshoot and damping ratio." */
@@ -127,11 +128,11 @@ export function requirementsSentence({ requirements }: Findings): string {
 }
 
 /** The character of the closed loop in words. */
-export function verdictWords(loop: ClosedLoop): string {
-  if (loop.name === "marginally stable") return `marginally stable: ${counted(loop.axisPoles, "pole")} on the imaginary axis`;
+export function verdictWords(loop: ClosedLoop, plane: Plane): string {
+  if (loop.name === "marginally stable") return `marginally stable: ${counted(loop.axisPoles, "pole")} on ${borderWords(plane)}`;
   if (loop.name !== "unstable") return `stable, ${loop.name}`;
-  if (loop.unstablePoles > 0) return `unstable: ${counted(loop.unstablePoles, "pole")} right of the imaginary axis`;
-  return `unstable: ${counted(loop.axisPoles, "pole")} on the imaginary axis, some repeated`;
+  if (loop.unstablePoles > 0) return `unstable: ${counted(loop.unstablePoles, "pole")} ${beyondWords(plane)}`;
+  return `unstable: ${counted(loop.axisPoles, "pole")} on ${borderWords(plane)}, some repeated`;
 }
 
 /** The setting as typed, with a true minus sign. */
@@ -150,11 +151,11 @@ export function plain(pieces: readonly Piece[]): string {
   return pieces.map((piece) => piece.text).join("");
 }
 
-function exceptionPhrase(spans: readonly StableSpan[]): Piece[] {
+function exceptionPhrase(spans: readonly StableSpan[], plane: Plane): Piece[] {
   const edges = spans.flatMap((span) => span.touching);
   if (edges.length === 0) return [];
   const phrases = edges.map((edge): Phrase => [{ text: figure(edge.value), edge }]);
-  return [{ text: ", except at " }, ...joined(phrases), { text: ", where poles touch the imaginary axis" }];
+  return [{ text: ", except at " }, ...joined(phrases), { text: `, where poles touch ${borderWords(plane)}` }];
 }
 
 function joined(phrases: readonly Phrase[], conjunction: "and" | "or" = "and"): Piece[] {

@@ -26,6 +26,8 @@ export interface Subject {
   /** The stable ranges; infinite ends allowed. */
   readonly stable: readonly (readonly [number, number])[];
   readonly setting: number | null;
+  /** The smallest and the largest setting the controller takes: far beyond them there is nothing to see. */
+  readonly limits?: readonly [number | null, number | null];
 }
 
 /** A tick; minor ones have no label. */
@@ -175,8 +177,12 @@ function logAxis(subject: Subject, sign: 1 | -1): Axis {
   const setting = side(subject.setting === null ? [] : [subject.setting]);
   const middle = setting[0] ?? 1;
   const shown = edges.length > 0 ? [...edges, ...setting] : [middle / 10 ** EMPTY_DECADES, middle * 10 ** EMPTY_DECADES];
-  const low = roundOutwards(Math.min(...shown) / 10 ** MARGIN_DECADES, -1);
-  const high = roundOutwards(Math.max(...shown) * 10 ** MARGIN_DECADES, 1);
+  const [least, most] = (sign === 1 && subject.limits) || [null, null];
+  // Where the controller ends before the edges do, the axis ends with the controller, but never before the setting.
+  const first = Math.min(Math.max(Math.min(...shown) / 10 ** MARGIN_DECADES, least ?? 0), ...setting);
+  const last = Math.max(Math.min(Math.max(...shown) * 10 ** MARGIN_DECADES, most ?? Infinity), ...setting);
+  const low = roundOutwards(first < last ? first : Math.min(...shown), -1);
+  const high = roundOutwards(first < last ? last : Math.max(...shown) * 10 ** MARGIN_DECADES, 1);
   return { scale: "log", domain: sign === 1 ? [low, high] : [-high, -low], linearWithin: low };
 }
 

@@ -3,6 +3,7 @@
 // The page is one file, so the worker is made from the file itself: its script and its WebAssembly stand in two
 // elements that the browser does not run (`worker-source` and `engine-wasm`, put there by the pack program).
 
+import { partText, unpacked } from "./packed.ts";
 import type { Answer, KnobSign, Project } from "./types.ts";
 
 /** The first message to a worker. */
@@ -68,8 +69,8 @@ export class Engine {
   readonly #source: string;
 
   constructor() {
-    this.#wasm = inflate(textOf("engine-wasm"));
-    this.#source = URL.createObjectURL(new Blob([textOf("worker-source")], { type: "text/javascript" }));
+    this.#wasm = unpacked("engine-wasm").then((bytes) => bytes.arrayBuffer());
+    this.#source = URL.createObjectURL(new Blob([partText("worker-source")], { type: "text/javascript" }));
     void this.#start();
   }
 
@@ -197,17 +198,4 @@ export class Engine {
 /** The SHA-256 of this page as the pack program wrote it. */
 function programHash(): string | null {
   return document.querySelector<HTMLMetaElement>('meta[name="program-hash"]')?.content ?? null;
-}
-
-function textOf(id: string): string {
-  const text = document.getElementById(id)?.textContent;
-  if (!text) throw new Error(`The page is damaged: its part "${id}" is missing.`);
-  return text;
-}
-
-/** The bytes of a raw deflate stream written in base64. */
-async function inflate(base64: string): Promise<ArrayBuffer> {
-  const bytes = Uint8Array.from(atob(base64), (character) => character.charCodeAt(0));
-  const stream = new Blob([bytes]).stream().pipeThrough(new DecompressionStream("deflate-raw"));
-  return new Response(stream).arrayBuffer();
 }

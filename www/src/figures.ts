@@ -1,12 +1,12 @@
 // The closed loop at the setting, in figures: those with a limit first, each beside it, then the others, then the poles.
 import { settingText, verdictWords } from "./answer.ts";
 import { byId, html } from "./dom.ts";
-import { dampingOf, figure, knownDigits, pairText, withUnit } from "./format.ts";
+import { capital, figure, knownDigits, pairText, withUnit } from "./format.ts";
 import { limitWords, quantity } from "./reason.ts";
 import { figureOf, KINDS } from "./requirements.ts";
 import { isPlain, settingName, settingUnit } from "./scale.ts";
 import type { Session } from "./session.ts";
-import type { ClosedLoop, Record as Findings, Root } from "./types.ts";
+import type { ClosedLoop, ClosedPole, Record as Findings } from "./types.ts";
 
 /** A row of the table of poles, as text; units stand in the head of the table. */
 export interface PoleRow {
@@ -64,17 +64,18 @@ export function poleRows(loop: ClosedLoop): PoleRow[] {
     .map(poleRow);
 }
 
-function poleRow(root: Root): PoleRow {
-  const { re, im, radius, multiplicity } = root;
-  const { ratio, frequency } = dampingOf(re, im);
-  const digits = Math.min(DIGITS, knownDigits(frequency, radius));
-  const onAxis = Math.abs(re) <= radius;
+function poleRow(pole: ClosedPole): PoleRow {
+  const { re, im, radius, multiplicity, dampingRatio, naturalFrequency } = pole;
+  const digits = Math.min(DIGITS, knownDigits(naturalFrequency, radius));
+  // A sampled pole dies away as the one of the s-plane does that it comes from.
+  const { re: rate, radius: blur } = pole.equivalent ?? pole;
+  const onAxis = Math.abs(rate) <= blur;
   const many = multiplicity > 1 ? ` (${multiplicity} times)` : "";
   return {
     s: pairText(re, im, radius) + many,
-    ratio: ratio === null || frequency <= radius ? "–" : onAxis ? "0" : figure(ratio, digits),
-    frequency: frequency <= radius ? "0" : figure(frequency, digits),
-    time: onAxis ? "∞" : re > 0 ? "grows" : figure(-1 / re, Math.min(DIGITS, knownDigits(re, radius))),
+    ratio: dampingRatio === null ? "–" : figure(dampingRatio, digits),
+    frequency: figure(naturalFrequency, digits),
+    time: onAxis ? "∞" : rate > 0 ? "grows" : figure(-1 / rate, Math.min(DIGITS, knownDigits(rate, blur))),
   };
 }
 
@@ -92,8 +93,8 @@ export function figuresTable(session: Session): void {
     const loop = record.closedLoop;
     figures.hidden = loop === null;
     poles.hidden = loop === null;
-    heading.textContent = loop ? `At ${settingName(record)} ${withUnit(settingText(record), settingUnit(record))}` : "At the setting";
-    verdict.textContent = loop ? `${capital(verdictWords(loop))}.` : "No setting is chosen yet.";
+    heading.textContent = loop ? `At ${settingName(record)} = ${withUnit(settingText(record), settingUnit(record))}` : "At the setting";
+    verdict.textContent = loop ? `${capital(verdictWords(loop, record.timing.plane))}.` : "No setting is chosen yet.";
     figureBody.replaceChildren(...(loop ? figureRows(record) : []).map(figureRow));
     poleBody.replaceChildren(
       ...(loop ? poleRows(loop) : []).map(({ s, ratio, frequency, time }) =>
@@ -115,6 +116,3 @@ function figureRow({ name, here, limit, met }: FigureRow): HTMLTableRowElement {
   );
 }
 
-function capital(text: string): string {
-  return text.charAt(0).toUpperCase() + text.slice(1);
-}

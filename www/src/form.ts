@@ -9,6 +9,7 @@ import { requirementPanel } from "./requirementsform.ts";
 import { isPlain } from "./scale.ts";
 import { scaleForm } from "./scaleform.ts";
 import type { Session, Situation } from "./session.ts";
+import { timingForm } from "./timing.ts";
 import type { Field, Problem, Project, Reading } from "./types.ts";
 
 /** Connects the form with the session. */
@@ -17,6 +18,7 @@ export function loopForm(session: Session): void {
     titleField(session),
     ...BLOCKS.map((block) => blockField(block, session)),
     feedbackField(session),
+    timingForm(session),
     quantitiesTable(byId("quantities", HTMLTableSectionElement), session),
     knobField(session),
     scaleForm(session),

@@ -44,6 +44,11 @@ export function angleText(degrees: number): string {
   return `${figure(Math.round(degrees * 10) / 10)}°`;
 }
 
+/** With a capital letter, to begin a sentence. */
+export function capital(text: string): string {
+  return text.charAt(0).toUpperCase() + text.slice(1);
+}
+
 /** "1 pole", "2 poles": a count with its noun. */
 export function counted(count: number, noun: string): string {
   return `${count} ${noun}${count === 1 ? "" : "s"}`;
@@ -53,10 +58,4 @@ export function counted(count: number, noun: string): string {
 export function listed(items: readonly string[], conjunction: "and" | "or" = "and"): string {
   const last = items.at(-1) ?? "";
   return items.length < 2 ? last : `${items.slice(0, -1).join(", ")} ${conjunction} ${last}`;
-}
-
-/** Damping ratio and natural frequency of the pole at re + j im; the ratio is null at the origin. */
-export function dampingOf(re: number, im: number): { ratio: number | null; frequency: number } {
-  const frequency = Math.hypot(re, im);
-  return { ratio: frequency === 0 ? null : -re / frequency, frequency };
 }

@@ -11,6 +11,7 @@ import {
 } from "./answer.ts";
 import { fromRational, typedText } from "./decimal.ts";
 import { button, byId, html } from "./dom.ts";
+import { capital } from "./format.ts";
 import { withSetting } from "./project.ts";
 import type { Session } from "./session.ts";
 import type { Record as Findings } from "./types.ts";
@@ -44,7 +45,7 @@ export function headline(session: Session, onReason: (edge: AnyEdge, from: Eleme
     const suggested = suggestion(record);
     why.textContent = record ? suggestionReason(record) : "";
     atSetting.textContent = words;
-    notices.replaceChildren(...(record?.notices ?? []).map(({ kind, text }) => html("li", { class: kind }, text)));
+    notices.replaceChildren(...(record?.notices ?? []).map(({ kind, text }) => html("li", { class: kind }, `${capital(text).replace(/\.$/, "")}.`)));
     clearTimeout(timer);
     timer = setTimeout(() => {
       spoken.textContent = situation.stale ? (stale.textContent ?? "") : `${plain(pieces)} ${suggested} ${words}`;

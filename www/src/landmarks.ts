@@ -4,10 +4,11 @@ import { byId, button, html } from "./dom.ts";
 import { angleText, counted, figure, listed, pairText, withUnit } from "./format.ts";
 import { shownSigns } from "./halves.ts";
 import type { Plane } from "./plane.ts";
+import { borderWords } from "./planewords.ts";
 import { withSetting } from "./project.ts";
 import { settingName, settingUnit, toSetting } from "./scale.ts";
 import type { Session, Situation } from "./session.ts";
-import type { KnobSign, Landmark, Record as Findings, Segment } from "./types.ts";
+import type { KnobSign, Landmark, Plane as PolePlane, Record as Findings, Segment } from "./types.ts";
 
 /** Digits of a setting taken from the table; the landmark itself lies between two such numbers. */
 const PICKED_DIGITS = 6;
@@ -42,7 +43,7 @@ export function grouped(landmarks: readonly Landmark[]): LandmarkRow[] {
 }
 
 /** A row in words. */
-export function landmarkWords({ kind, s, angles, multiplicity }: LandmarkRow): string {
+export function landmarkWords({ kind, s, angles, multiplicity }: LandmarkRow, plane: PolePlane): string {
   const together = multiplicity > 2 ? ` (${multiplicity} poles)` : "";
   switch (kind) {
     case "breakaway":
@@ -50,9 +51,11 @@ export function landmarkWords({ kind, s, angles, multiplicity }: LandmarkRow): s
     case "break-in":
       return `joins the real axis${together}`;
     case "axis crossing":
-      return "crosses the imaginary axis";
+      return `crosses ${borderWords(plane)}`;
     case "origin crossing":
-      return "passes the origin";
+      return plane === "z" ? "passes z = 1" : "passes the origin";
+    case "alternation crossing":
+      return "passes z = −1";
     case "departure":
       return `leaves the pole at ${anglesText(angles)}`;
     case "arrival":
@@ -113,7 +116,7 @@ export function landmarksTable(session: Session, plane: Plane): void {
 
 function tableRow(landmark: LandmarkRow, record: Findings, session: Session): HTMLTableRowElement {
   const { knob, s, sign } = landmark;
-  const words = landmarkWords(landmark);
+  const words = landmarkWords(landmark, record.timing.plane);
   const setting = toSetting(record.scale, knob ?? (sign === "positive" ? Infinity : -Infinity));
   const choose = (): void => {
     const text = typedText(roundDigits(fromNumber(setting), PICKED_DIGITS, "nearest"));
@@ -126,9 +129,14 @@ function tableRow(landmark: LandmarkRow, record: Findings, session: Session): HT
     "tr",
     {},
     html("td", {}, words),
-    html("td", { class: "number" }, pairText(s.re, s.im)),
+    html("td", { class: "number", title: equivalentWords(landmark) }, pairText(s.re, s.im)),
     html("td", { class: "number" }, value),
   );
+}
+
+/** "from s = −3 ± 4 j" for a place in the z-plane. */
+function equivalentWords({ equivalent }: Landmark): string | null {
+  return equivalent && `from s = ${pairText(equivalent.re, equivalent.im)}`;
 }
 
 function summary(record: Findings, sign: KnobSign, named: boolean): HTMLElement[] {

@@ -9,7 +9,7 @@ import { printedEnds, stableSpans, verdictOf } from "./ranges.ts";
 import { failing, happening, limitWords } from "./reason.ts";
 import { kindOf } from "./requirements.ts";
 import { limitSpan, onScale } from "./scale.ts";
-import type { CharacterRange, Edge, LimitRange, Record as Findings, RequirementRecord, StabilityRange } from "./types.ts";
+import type { CharacterRange, Edge, LimitRange, Plane, Record as Findings, RequirementRecord, StabilityRange } from "./types.ts";
 
 /** A piece of a lane. */
 export interface Segment {
@@ -46,7 +46,8 @@ export interface Lane {
 export function lanesOf(record: Findings): Lane[] {
   return [
     stabilityLane(record),
-    characterLane(record),
+    // Of a loop with dead time there is none: it has infinitely many pairs of poles.
+    ...(record.character.length > 0 ? [characterLane(record)] : []),
     ...record.requirements.map((requirement) => requirementLane(record, requirement)),
     permittedLane(record),
   ];
@@ -58,7 +59,7 @@ export function stabilityLane(record: Findings): Lane {
   return {
     name: "Stability",
     segments: ranges.map((range) => ({ ...span(range), look: verdictOf(range), words: [stabilityWords(range)] })),
-    edges: inner(ranges),
+    edges: inner(ranges, record.timing.plane),
     text: stableText(ranges),
     empty: "",
   };
@@ -74,7 +75,7 @@ export function characterLane(record: Findings): Lane {
       look: range.pairs === 0 ? "real" : range.pairs === 1 ? "one-pair" : "more-pairs",
       words: characterWords(range),
     })),
-    edges: inner(ranges),
+    edges: inner(ranges, record.timing.plane),
     text: "",
     empty: "",
   };
@@ -139,6 +140,7 @@ function stableText(ranges: readonly StabilityRange[]): string {
 /** "stable", "2 unstable poles", "2 poles on the axis". */
 export function stabilityWords(range: StabilityRange): string {
   if (range.stable) return "stable";
+  if (range.atLeast) return `${range.unstablePoles} or more unstable poles`;
   if (range.unstablePoles > 0) return counted(range.unstablePoles, "unstable pole");
   return `${counted(range.axisPoles, "pole")} on the axis`;
 }
@@ -162,6 +164,6 @@ function span(range: { from: Edge | null; to: Edge | null }): { from: number; to
   return { from: range.from?.value ?? -Infinity, to: range.to?.value ?? Infinity };
 }
 
-function inner(ranges: readonly { to: Edge | null }[]): LaneEdge[] {
-  return ranges.flatMap(({ to }) => (to ? [{ place: to.value, edge: to, words: happening(to) }] : []));
+function inner(ranges: readonly { to: Edge | null }[], plane: Plane): LaneEdge[] {
+  return ranges.flatMap(({ to }) => (to ? [{ place: to.value, edge: to, words: happening(to, plane) }] : []));
 }

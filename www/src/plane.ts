@@ -7,11 +7,11 @@ import { zoom, zoomIdentity, type D3ZoomEvent, type ZoomBehavior, type ZoomTrans
 import { tickText } from "./axis.ts";
 import { fromNumber, roundDigits, typedText } from "./decimal.ts";
 import { byId, html, letterScale, oncePerFrame, setAttributes, svg, watchSize } from "./dom.ts";
-import { dampingOf, figure, pairText, THIN_SPACE, withUnit } from "./format.ts";
+import { figure, pairText, THIN_SPACE, withUnit } from "./format.ts";
 import { clipLine, frameOf, nearestPoint, piecesOf, type BranchLine, type Piece, type Window } from "./locus.ts";
-import { forbiddenOf, type Forbidden } from "./forbidden.ts";
 import { gridOf, onGrid } from "./grid.ts";
 import { withSetting } from "./project.ts";
+import { limitArea, limitsOf, unstableArea } from "./regions.ts";
 import { settingName, settingUnit, toSetting } from "./scale.ts";
 import type { Session, Situation } from "./session.ts";
 import { shownSigns, type HalfChoice } from "./halves.ts";
@@ -196,13 +196,13 @@ export class Plane {
       [right, bottom],
     ]);
     const { x, y } = this.#scales(picture.record);
-    const limits = forbiddenOf(picture.record);
+    const limits = limitsOf(picture.record);
     const still = JSON.stringify([this.#drawn, x.domain(), x.range(), y.domain(), y.range(), letterScale(), limits]);
     // Only the poles at the setting move with the pointer.
     if (still !== this.#still) {
       this.#still = still;
-      this.#drawAxes(x, y);
-      this.#layers.limits.replaceChildren(...limits.map((limit) => forbiddenPart(limit, x, y)));
+      this.#drawAxes(picture.record, x, y);
+      this.#layers.limits.replaceChildren(...limits.map((limit) => limitArea(limit, x, y, clipBox(x, y))));
       this.#layers.locus.replaceChildren(...asymptoteLines(picture, x, y), ...pieceLines(picture.pieces, x, y));
       this.#layers.marks.replaceChildren(...rootMarks(picture, x, y), ...meetingMarks(picture, x, y));
     }
@@ -216,7 +216,7 @@ export class Plane {
     return (SIZES.name + 12 + SIZES.letter * Math.max(...figures.map((text) => text.length), 3)) * letterScale();
   }
 
-  #drawAxes(x: Scale, y: Scale): void {
+  #drawAxes({ timing }: Findings, x: Scale, y: Scale): void {
     const { left, top, right, bottom } = this.#box();
     const scale = letterScale();
     const horizontal = svg("g", { transform: `translate(0 ${bottom})` });
@@ -225,13 +225,14 @@ export class Plane {
     const up = axisLeft<number>(y).ticks(tickCount(bottom - top)).tickSize(left - right).tickPadding(8).tickFormat(tickText);
     select(horizontal).call(across).select(".domain").remove();
     select(vertical).call(up).select(".domain").remove();
+    const unit = timing.plane === "z" ? " of z" : ", 1/s";
     const name = (text: string, place: string): SVGTextElement => svg("text", { class: "axis-name", transform: place }, text);
     this.#layers.axes.replaceChildren(
-      rightHalf(x, left, right, top, bottom),
+      unstableArea(timing.plane, x, y, [left, top, right, bottom]),
       horizontal,
       vertical,
-      name("real part, 1/s", `translate(${(left + right) / 2} ${bottom + 36 * scale})`),
-      name("imaginary part, 1/s", `translate(${12 * scale} ${(top + bottom) / 2}) rotate(-90)`),
+      name(`real part${unit}`, `translate(${(left + right) / 2} ${bottom + 36 * scale})`),
+      name(`imaginary part${unit}`, `translate(${12 * scale} ${(top + bottom) / 2}) rotate(-90)`),
     );
     for (const group of [horizontal, vertical]) select(group).attr("font-size", null).attr("font-family", null).attr("class", "grid");
     this.#layers.back.replaceChildren(
@@ -260,11 +261,15 @@ export class Plane {
     const { re, im, knob } = found.point;
     const { x, y } = this.#scales(record);
     this.#layers.hover.replaceChildren(svg("circle", { class: "hover", cx: x(re), cy: y(im), r: 5 }));
-    const { ratio, frequency } = dampingOf(re, im);
+    // The polar coordinates of the place under the pointer, read off the drawing as x and y are; in the z-plane those of ln z.
+    const { plane, sampling } = record.timing;
+    const size = Math.hypot(re, im);
+    const s = plane === "z" && sampling ? { re: Math.log(size) / sampling.period, im: Math.atan2(im, re) / sampling.period } : { re, im };
+    const frequency = Math.hypot(s.re, s.im);
     const parts = [
-      `s = ${pairText(roundTo(re, frequency), roundTo(im, frequency))}`,
+      `${plane} = ${pairText(roundTo(re, size), roundTo(im, size))}`,
       `${settingName(record)} = ${withUnit(figure(toSetting(record.scale, knob)), settingUnit(record))}`,
-      ratio === null ? "" : `damping ratio ${figure(ratio, 3)}`,
+      frequency === 0 ? "" : `damping ratio ${figure(-s.re / frequency, 3)}`,
       `natural frequency ${figure(frequency, 3)}${THIN_SPACE}rad/s`,
     ];
     this.#readout.replaceChildren(...parts.filter((part) => part !== "").map((part) => html("li", {}, part)));
@@ -290,7 +295,7 @@ function describe({ record, signs, pieces }: Picture): string {
   const good = some("stable") || some("permitted");
   const verdicts = good ? (some("unstable") ? "stable in part" : "stable throughout") : "nowhere stable";
   const permitted = some("permitted") ? ", permitted in part" : "";
-  const limits = forbiddenOf(record).map(({ words }) => words);
+  const limits = limitsOf(record).map(({ words }) => words);
   const drawn = limits.length > 0 ? ` Limits drawn: ${limits.join(", ")}.` : "";
   return `Root locus for ${halves}: ${verdicts}${permitted}.${drawn} Landmarks and poles are listed in the tables.`;
 }
@@ -300,42 +305,11 @@ function roundTo(part: number, whole: number): number {
   return Math.abs(part) < whole * 1e-4 ? 0 : part;
 }
 
-function rightHalf(x: Scale, left: number, right: number, top: number, bottom: number): SVGRectElement {
-  const from = Math.min(right, Math.max(left, x(0)));
-  return svg("rect", { class: "right-half", x: from, y: top, width: right - from, height: bottom - top });
-}
-
 /** A little more than the picture, so that cut ends are not seen. */
 function clipBox(x: Scale, y: Scale): [number, number, number, number] {
   const [left = 0, right = 0] = x.range();
   const [bottom = 0, top = 0] = y.range();
   return [left - 20, top - 20, right + 20, bottom + 20];
-}
-
-/** A limit of a requirement: its area, as large as the picture, and its border. */
-function forbiddenPart(limit: Forbidden, x: Scale, y: Scale): SVGElement {
-  const [left, top, right, bottom] = clipBox(x, y);
-  const [ox, oy] = [x(0), y(0)];
-  const title = svg("title", {}, limit.words);
-  switch (limit.shape) {
-    case "ray": {
-      const far = 2 * Math.hypot(right - left, bottom - top) + Math.hypot(ox - left, oy - top) + Math.hypot(ox - right, oy - bottom);
-      const [dx, dy] = [far * limit.ratio, far * Math.sqrt(1 - limit.ratio ** 2)];
-      const rays = `M${ox - dx} ${oy - dy}L${ox} ${oy}L${ox - dx} ${oy + dy}`;
-      return svg("g", { class: "forbidden" }, title, svg("path", { class: "area", d: `${rays}L${ox + far} ${oy + dy}V${oy - dy}Z` }), svg("path", { class: "border", d: rays }));
-    }
-    case "line": {
-      const at = x(-limit.rate);
-      const from = Math.max(left, Math.min(right, at));
-      const area = svg("rect", { class: "area", x: from, y: top, width: right - from, height: bottom - top });
-      return svg("g", { class: "forbidden" }, title, area, svg("path", { class: "border", d: `M${at} ${top}V${bottom}` }));
-    }
-    case "circle": {
-      const circle = { cx: ox, cy: oy, r: Math.abs(x(limit.radius) - ox) };
-      const area = limit.inside ? svg("circle", { class: "area", ...circle }) : null;
-      return svg("g", { class: "forbidden" }, title, area, svg("circle", { class: "border", ...circle }));
-    }
-  }
 }
 
 function pieceLines(pieces: readonly Piece[], x: Scale, y: Scale): SVGPathElement[] {

@@ -6,6 +6,7 @@ import type {
   Quantity,
   Requirement,
   RequirementKind,
+  SamplingText,
   Setting,
   SheetText,
   SiteCheckText,
@@ -33,6 +34,9 @@ const PLAIN_SETTING: Setting = {
   step: "",
 };
 
+/** A sampling nobody has typed anything into. */
+const EMPTY_SAMPLING: SamplingText = { period: "", delay: "", method: "tustin", prewarp: "" };
+
 /** Nothing that the sheet, the step-up plan and the site check ask for. */
 const PLAIN_SHEET: SheetText = { machine: "", revision: "", date: "", preparedBy: "", checkedBy: "" };
 const PLAIN_STEP_UP: StepUpText = { start: "", ratio: "" };
@@ -46,7 +50,7 @@ export function emptyProject(): Project {
   return {
     format: PROJECT_FORMAT,
     title: "",
-    loop: { controller: "", plant: "", sensor: "1", feedback: "negative" },
+    loop: { controller: "", plant: "", sensor: "1", feedback: "negative", deadTime: "", sampling: null },
     quantities: [],
     knob: "",
     setting: PLAIN_SETTING,
@@ -70,6 +74,16 @@ export function withBlock(project: Project, block: BlockName, text: string): Pro
 /** With another feedback sign. */
 export function withFeedback(project: Project, feedback: Feedback): Project {
   return withLoop(project, { feedback });
+}
+
+/** With another dead time. */
+export function withDeadTime(project: Project, deadTime: string): Project {
+  return withLoop(project, { deadTime });
+}
+
+/** With another part of the sampling, or switched on or off. */
+export function withSampling(project: Project, part: Partial<SamplingText> | null): Project {
+  return withLoop(project, { sampling: part && { ...EMPTY_SAMPLING, ...part } });
 }
 
 /** With another setting. */
@@ -139,7 +153,7 @@ export function completed(given: Project): Project {
   return {
     format: given.format,
     title: given.title ?? empty.title,
-    loop: { ...empty.loop, ...given.loop },
+    loop: { ...empty.loop, ...given.loop, sampling: given.loop.sampling ? { ...EMPTY_SAMPLING, ...given.loop.sampling } : null },
     quantities: (given.quantities ?? []).map((row) => ({ ...PLAIN_QUANTITY, ...row })),
     knob: given.knob,
     setting: { ...empty.setting, ...given.setting },

@@ -3,9 +3,10 @@ import { fromRational, printedText, readDecimal } from "./decimal.ts";
 import type { AnyEdge } from "./answer.ts";
 import { counted, figure, listed, THIN_SPACE, withUnit } from "./format.ts";
 import { kindWords, stabilityWords } from "./lanes.ts";
+import { borderWords } from "./planewords.ts";
 import { kindOf, nameInSentence } from "./requirements.ts";
 import { isPlain, originOf, settingName, settingUnit, toSetting } from "./scale.ts";
-import type { CharacterRange, Edge, LimitEdge, Record as Findings } from "./types.ts";
+import type { CharacterRange, Edge, LimitEdge, Plane, Record as Findings } from "./types.ts";
 
 /** A line of the explanation. */
 export interface ReasonLine {
@@ -14,17 +15,23 @@ export interface ReasonLine {
 }
 
 /** What happens at an edge, in one sentence. */
-export function happening(edge: Edge): string {
+export function happening(edge: Edge, plane: Plane): string {
   switch (edge.kind) {
     case "axis crossing": {
-      const verb = edge.touching ? "touches the imaginary axis and returns" : "crosses the imaginary axis";
+      const border = borderWords(plane);
+      const verb = edge.touching ? `touches ${border} and returns` : `crosses ${border}`;
       const places = edge.omegas.length > 0 ? edge.omegas : edge.omega === null ? [] : [edge.omega];
       const at = listed(places.map((omega) => `±${figure(omega)}${THIN_SPACE}j`));
-      if (places.length > 1) return `Pole pairs reach the imaginary axis at ${at} rad/s.`;
+      if (places.length > 1) return `Pole pairs reach ${border} at ${at} rad/s.`;
       return `A pole pair ${verb} at ${at} rad/s.`;
     }
     case "origin crossing":
+      if (plane === "z") return edge.touching ? "A pole touches the unit circle at z = 1 and returns." : "A pole passes z = 1: nothing holds the output any more.";
       return edge.touching ? "A pole touches the origin, s = 0, and returns." : "A pole passes the origin, s = 0.";
+    case "alternation crossing":
+      return "A pole passes z = −1: the signals change their sign from sample to sample.";
+    case "no dead time":
+      return "There is no dead time here, and there can be none below zero.";
     case "degree drop":
       return "The leading coefficient of the characteristic polynomial vanishes: a pole passes infinity.";
     case "breakaway":
@@ -97,9 +104,9 @@ function stabilityEdge(record: Findings, knob: number): Edge | undefined {
 
 function edgeLines(record: Findings, edge: Edge): ReasonLine[] {
   const knob = record.project.knob;
-  const exactly = `${edge.name}; ${counted(edge.unstablePoles, "unstable pole")}, ${edge.axisPoles} on the imaginary axis`;
+  const exactly = `${edge.name}; ${counted(edge.unstablePoles, "unstable pole")}, ${edge.axisPoles} on ${borderWords(record.timing.plane)}`;
   return [
-    { term: "what happens", text: happening(edge) },
+    { term: "what happens", text: happening(edge, record.timing.plane) },
     ...neighbours(record, edge),
     { term: "exactly there", text: exactly },
     ...(isPlain(record.scale) ? [] : [{ term: "knob there", text: `${knob} = ${withUnit(figure(edge.value, 6), knobUnitOf(record))}` }]),

@@ -1,6 +1,7 @@
-// The kinds of requirements as the page offers them: their names, units, the usual limit, and the figure they limit.
+// The kinds of requirements as the page offers them: their names, the usual limit, and the figure they limit. Units and
+// directions are the core's.
 import { fromNumber, roundDigits, typedText } from "./decimal.ts";
-import type { Record as Findings, Requirement, RequirementKind } from "./types.ts";
+import { REQUIREMENT_FACTS, type Record as Findings, type Requirement, type RequirementKind } from "./types.ts";
 
 /** How the kinds are grouped. */
 export type Group = "Poles" | "Margins" | "Answer to a step" | "Static" | "Load and effort";
@@ -17,31 +18,34 @@ export interface Kind {
   readonly usual?: string;
 }
 
-/** All kinds, in the order in which they are listed. */
-export const KINDS: readonly Kind[] = [
-  { kind: "damping-ratio", group: "Poles", name: "Damping ratio", unit: "", atLeast: true, usual: "0.5" },
-  { kind: "decay-rate", group: "Poles", name: "Decay rate", unit: "1/s", atLeast: true },
-  { kind: "natural-frequency-minimum", group: "Poles", name: "Natural frequency, lower limit", unit: "rad/s", atLeast: true },
-  { kind: "natural-frequency-maximum", group: "Poles", name: "Natural frequency, upper limit", unit: "rad/s", atLeast: false },
-  { kind: "gain-margin-up", group: "Margins", name: "Gain margin upward", unit: "dB", atLeast: true, usual: "6" },
-  { kind: "gain-margin-down", group: "Margins", name: "Gain margin downward", unit: "dB", atLeast: true, usual: "6" },
-  { kind: "phase-margin", group: "Margins", name: "Phase margin", unit: "°", atLeast: true, usual: "45" },
-  { kind: "delay-margin", group: "Margins", name: "Delay margin", unit: "s", atLeast: true },
-  { kind: "peak-sensitivity", group: "Margins", name: "Peak sensitivity", unit: "", atLeast: false, usual: "2" },
-  { kind: "bandwidth", group: "Margins", name: "Bandwidth", unit: "rad/s", atLeast: true },
-  { kind: "overshoot", group: "Answer to a step", name: "Overshoot", unit: "%", atLeast: false, usual: "20" },
-  { kind: "undershoot", group: "Answer to a step", name: "Undershoot", unit: "%", atLeast: false, usual: "10" },
-  { kind: "rise-time", group: "Answer to a step", name: "Rise time, 10 to 90 %", unit: "s", atLeast: false },
-  { kind: "settling-time-2", group: "Answer to a step", name: "Settling time, 2 %", unit: "s", atLeast: false },
-  { kind: "settling-time-5", group: "Answer to a step", name: "Settling time, 5 %", unit: "s", atLeast: false },
-  { kind: "peak-time", group: "Answer to a step", name: "Peak time", unit: "s", atLeast: false },
-  { kind: "step-error", group: "Static", name: "Static error, step", unit: "%", atLeast: false, usual: "5" },
-  { kind: "ramp-error", group: "Static", name: "Static error, ramp", unit: "", atLeast: false },
-  { kind: "parabola-error", group: "Static", name: "Static error, parabola", unit: "", atLeast: false },
-  { kind: "load-peak", group: "Load and effort", name: "Peak deviation, unit load", unit: "", atLeast: false },
-  { kind: "load-final", group: "Load and effort", name: "Final deviation, unit load", unit: "", atLeast: false },
-  { kind: "controller-peak", group: "Load and effort", name: "Peak controller output, unit step", unit: "", atLeast: false },
+/** What the page adds to what the core knows. */
+const NAMES: readonly Omit<Kind, "unit" | "atLeast">[] = [
+  { kind: "damping-ratio", group: "Poles", name: "Damping ratio", usual: "0.5" },
+  { kind: "decay-rate", group: "Poles", name: "Decay rate" },
+  { kind: "natural-frequency-minimum", group: "Poles", name: "Natural frequency, lower limit" },
+  { kind: "natural-frequency-maximum", group: "Poles", name: "Natural frequency, upper limit" },
+  { kind: "gain-margin-up", group: "Margins", name: "Gain margin upward", usual: "6" },
+  { kind: "gain-margin-down", group: "Margins", name: "Gain margin downward", usual: "6" },
+  { kind: "phase-margin", group: "Margins", name: "Phase margin", usual: "45" },
+  { kind: "delay-margin", group: "Margins", name: "Delay margin" },
+  { kind: "peak-sensitivity", group: "Margins", name: "Peak sensitivity", usual: "2" },
+  { kind: "bandwidth", group: "Margins", name: "Bandwidth" },
+  { kind: "overshoot", group: "Answer to a step", name: "Overshoot", usual: "20" },
+  { kind: "undershoot", group: "Answer to a step", name: "Undershoot", usual: "10" },
+  { kind: "rise-time", group: "Answer to a step", name: "Rise time, 10 to 90 %" },
+  { kind: "settling-time-2", group: "Answer to a step", name: "Settling time, 2 %" },
+  { kind: "settling-time-5", group: "Answer to a step", name: "Settling time, 5 %" },
+  { kind: "peak-time", group: "Answer to a step", name: "Peak time" },
+  { kind: "step-error", group: "Static", name: "Static error, step", usual: "5" },
+  { kind: "ramp-error", group: "Static", name: "Static error, ramp" },
+  { kind: "parabola-error", group: "Static", name: "Static error, parabola" },
+  { kind: "load-peak", group: "Load and effort", name: "Peak deviation, unit load" },
+  { kind: "load-final", group: "Load and effort", name: "Final deviation, unit load" },
+  { kind: "controller-peak", group: "Load and effort", name: "Peak controller output, unit step" },
 ];
+
+/** All kinds, in the order in which they are listed. */
+export const KINDS: readonly Kind[] = NAMES.map((entry) => ({ ...entry, ...REQUIREMENT_FACTS[entry.kind] }));
 
 /** The groups in their order. */
 export const GROUPS: readonly Group[] = ["Poles", "Margins", "Answer to a step", "Static", "Load and effort"];
@@ -88,12 +92,12 @@ export function figureOf(kind: RequirementKind, record: Findings): number | null
   const smallest = (values: readonly number[]): number | null => (values.length === 0 ? null : Math.min(...values));
   switch (kind) {
     case "damping-ratio":
-      return smallest(poles.map(({ re, im }) => -re / Math.hypot(re, im)));
+      return smallest(poles.flatMap(({ dampingRatio }) => dampingRatio ?? []));
     case "decay-rate":
       return smallest(poles.map(({ re }) => -re));
     case "natural-frequency-minimum":
     case "natural-frequency-maximum":
-      return smallest(poles.map(({ re, im }) => Math.hypot(re, im)));
+      return smallest(poles.map(({ naturalFrequency }) => naturalFrequency));
     case "gain-margin-up":
       return decibels(margins?.gainUp);
     case "gain-margin-down":

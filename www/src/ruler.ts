@@ -16,7 +16,7 @@ import type { Session, Situation } from "./session.ts";
 import type { Edge, Record as Findings } from "./types.ts";
 
 /** Sizes in pixels at the usual letter size. */
-const SIZES = { inset: 14, lane: 20, gap: 4, axis: 34, foot: 22, names: 164, texts: 124, letter: 7.2, edge: 24, minorTick: 5, majorTick: 9 };
+const SIZES = { inset: 14, lane: 20, gap: 4, axis: 34, foot: 22, names: 180, texts: 124, letter: 7.2, edge: 24, minorTick: 5, majorTick: 9 };
 /** Where the letters of a lane stand, as a part of its height. */
 const BASELINE = 0.72;
 /** Below this width the names of the lanes stand above them and the texts at their right end are left out. */
@@ -241,6 +241,7 @@ function subjectOf(record: Findings, setting: number | null): Parameters<typeof 
     character: ends(character),
     stable: stableSpans(stability).map(({ from, to }) => [from?.value ?? open, to?.value ?? Infinity]),
     setting,
+    limits: [record.scale.minimum, record.scale.maximum],
   };
 }
 

@@ -1,4 +1,4 @@
-// Made by `cargo page` from the types of the core (core/src/project.rs, record.rs, answer.rs). Do not edit.
+// Made by `cargo page` from the types of the core (core/src/project.rs, record/, answer.rs). Do not edit.
 
 /**
  * What Stayband says to a project: a record, or what must be put right before there can be one.
@@ -93,7 +93,7 @@ knob: number,
 /**
  * Poles of the closed loop.
  */
-poles: Array<Root>,
+poles: Array<ClosedPole>,
 /**
  * Poles in the open right half plane; exact.
  */
@@ -106,6 +106,40 @@ axisPoles: number,
  * The trade's word for the kinds of poles; exact.
  */
 name: CharacterName, };
+
+/**
+ * A pole of the closed loop: a [`Root`] with the trade's figures of it.
+ */
+export type ClosedPole = {
+/**
+ * The real part, 1/s.
+ */
+re: number,
+/**
+ * The imaginary part, 1/s; exactly 0 for a real pole.
+ */
+im: number,
+/**
+ * The true pole is no farther than this, 1/s.
+ */
+radius: number,
+/**
+ * How many poles coincide here.
+ */
+multiplicity: number,
+/**
+ * Of a pole in the z-plane the point of the s-plane it comes from, 1/s; the figures below are those of it.
+ */
+equivalent: Point | null,
+/**
+ * −re/|s|: 1 for a stable real pole, 0 on the imaginary axis, negative right of it. None where the pole cannot be
+ * told from the origin.
+ */
+dampingRatio: number | null,
+/**
+ * |s|, rad/s; 0 where the pole cannot be told from the origin.
+ */
+naturalFrequency: number, };
 
 /**
  * Requirements that exclude each other.
@@ -137,6 +171,11 @@ value: Array<number>, };
  * How the knob follows from the setting.
  */
 export type Direction = "proportional" | "reciprocal";
+
+/**
+ * The published methods by which a controller in s becomes one in z.
+ */
+export type Discretisation = "tustin" | "tustin-prewarped" | "backward-difference" | "matched";
 
 /**
  * An end of a range.
@@ -204,7 +243,7 @@ curve: Curve, };
 /**
  * What happens at an edge.
  */
-export type EdgeKind = "axis crossing" | "origin crossing" | "degree drop" | "breakaway" | "break-in" | "repeated pole";
+export type EdgeKind = "axis crossing" | "origin crossing" | "alternation crossing" | "no dead time" | "degree drop" | "breakaway" | "break-in" | "repeated pole";
 
 /**
  * The sign of the feedback.
@@ -214,7 +253,7 @@ export type Feedback = "negative" | "positive";
 /**
  * A field of the form.
  */
-export type Field = "controller" | "plant" | "sensor" | "quantity" | "knob" | "setting" | "requirement" | "loop" | "document";
+export type Field = "controller" | "plant" | "sensor" | "deadTime" | "sampling" | "quantity" | "knob" | "setting" | "requirement" | "loop" | "document";
 
 /**
  * The open loop L(jω), the same number of entries in each.
@@ -264,9 +303,13 @@ export type Landmark = {
  */
 kind: LandmarkKind,
 /**
- * Where it is, 1/s. Of a conjugate pair only the upper one is listed.
+ * Where it is, 1/s; in the z-plane without unit. Of a conjugate pair only the upper one is listed.
  */
 s: Point,
+/**
+ * Of a landmark in the z-plane the point of the s-plane it comes from, 1/s.
+ */
+equivalent: Point | null,
 /**
  * The knob there; None is infinity (arrivals).
  */
@@ -288,7 +331,7 @@ sign: KnobSign, };
 /**
  * What a landmark is.
  */
-export type LandmarkKind = "breakaway" | "break-in" | "departure" | "arrival" | "axis crossing" | "origin crossing";
+export type LandmarkKind = "breakaway" | "break-in" | "departure" | "arrival" | "axis crossing" | "origin crossing" | "alternation crossing";
 
 /**
  * An end of a requirement's or a permitted range.
@@ -364,7 +407,16 @@ sensor: string,
 /**
  * The sign with which the sensor's signal enters the comparison.
  */
-feedback: Feedback, };
+feedback: Feedback,
+/**
+ * The plant's dead time in s, beside those typed into the blocks as e^(−T s): an expression in numbers and quantities.
+ * Empty: none.
+ */
+deadTime: string,
+/**
+ * The controller's sampling. None: the controller works continuously.
+ */
+sampling: SamplingText | null, };
 
 /**
  * Margins of the open loop at one setting.
@@ -412,7 +464,8 @@ phaseCrossings: Array<PhaseCrossing>,
 response: FrequencyResponse, };
 
 /**
- * The characteristic polynomial F(s, q) of the loop, in exact integers; q is the knob.
+ * The characteristic polynomial F(s, q) of the loop, in exact integers; q is the knob. Of a loop with dead time it is the
+ * one without it, of a sampled loop that of the continuous one; there the equation says how the loop differs.
  */
 export type ModelRecord = {
 /**
@@ -448,7 +501,7 @@ text: string, };
 /**
  * What a notice is about.
  */
-export type NoticeKind = "unstable-fixed-mode" | "cancelled-factor" | "knob-without-effect" | "improper-block" | "algebraic-loop" | "not-computed";
+export type NoticeKind = "unstable-fixed-mode" | "cancelled-factor" | "knob-without-effect" | "improper-block" | "algebraic-loop" | "sampling" | "not-computed";
 
 /**
  * Where stability and all requirements agree.
@@ -488,6 +541,11 @@ omega: number,
  * The factor of the loop gain at which −1 is met here.
  */
 factor: number, };
+
+/**
+ * The plane of the poles.
+ */
+export type Plane = "s" | "z";
 
 /**
  * A point of the s-plane, 1/s.
@@ -636,6 +694,10 @@ reading: Reading,
  */
 model: ModelRecord,
 /**
+ * Dead time and sampling.
+ */
+timing: Timing,
+/**
  * The whole real line of the knob, from −∞ to +∞, in ranges with a constant count of unstable poles.
  */
 stability: Array<StabilityRange>,
@@ -781,6 +843,53 @@ radius: number,
 multiplicity: number, };
 
 /**
+ * How the controller samples.
+ */
+export type SamplingRecord = {
+/**
+ * s.
+ */
+period: number,
+/**
+ * The computation delay in sample periods.
+ */
+delay: number,
+/**
+ * How the controller was converted. None where it was typed in z.
+ */
+method: Discretisation | null,
+/**
+ * The stable ranges at other periods, with the period, ascending.
+ */
+byPeriod: Array<StableAtPeriod>,
+/**
+ * The longest period up to which the chosen setting is stable without a break, s. None without a setting, where it is
+ * not stable, or where no limit was found.
+ */
+longestPeriod: number | null, };
+
+/**
+ * How the controller samples, as typed: expressions in numbers and quantities.
+ */
+export type SamplingText = {
+/**
+ * The sample period in s.
+ */
+period: string,
+/**
+ * From a sample to the output computed from it, in sample periods, 0 to 3. Empty: 0.
+ */
+delay: string,
+/**
+ * How a controller in s becomes one in z.
+ */
+method: Discretisation,
+/**
+ * rad/s: where [`Discretisation::TustinPrewarped`] is exact.
+ */
+prewarp: string, };
+
+/**
  * The controller's scale: what setting belongs to what knob.
  */
 export type Scale = {
@@ -868,7 +977,7 @@ from: Edge | null,
  */
 to: Edge | null,
 /**
- * Poles in the open right half plane, with multiplicity.
+ * Poles in the open right half plane, or outside the unit circle, with multiplicity.
  */
 unstablePoles: number,
 /**
@@ -876,9 +985,26 @@ unstablePoles: number,
  */
 axisPoles: number,
 /**
+ * True where there are this many or more: dead time brings ever more of them over the axis as the knob grows.
+ */
+atLeast: boolean,
+/**
  * True where both counts are zero.
  */
 stable: boolean, };
+
+/**
+ * The stable ranges at another sample period.
+ */
+export type StableAtPeriod = {
+/**
+ * s.
+ */
+period: number,
+/**
+ * The ends of the stable ranges of the knob; None is an infinite end.
+ */
+ranges: Array<[number | null, number | null]>, };
 
 /**
  * The answer of the output to a unit step of the command. The output is in the command's units: what the sensor shows
@@ -948,6 +1074,27 @@ knob: number,
 reason: string, };
 
 /**
+ * How the loop's signals travel in time.
+ */
+export type Timing = {
+/**
+ * The plane in which poles, zeros, branches and landmarks of this record lie.
+ */
+plane: Plane,
+/**
+ * The dead time of the whole loop in s, without the sampling's own; the part that does not change with the knob.
+ */
+deadTime: number,
+/**
+ * What one unit of the knob adds to it, s.
+ */
+deadTimePerKnob: number,
+/**
+ * The controller's sampling; None for one that works continuously.
+ */
+sampling: SamplingRecord | null, };
+
+/**
  * A rectangle of the s-plane, 1/s.
  */
 export type View = {
@@ -959,3 +1106,29 @@ re: [number, number],
  * Bottom and top.
  */
 im: [number, number], };
+
+/** Unit of limit and figure, and whether the figure must be at least the limit, for every kind. */
+export const REQUIREMENT_FACTS: { readonly [kind in RequirementKind]: { readonly unit: string; readonly atLeast: boolean } } = {
+  "damping-ratio": { unit: "", atLeast: true },
+  "decay-rate": { unit: "1/s", atLeast: true },
+  "natural-frequency-minimum": { unit: "rad/s", atLeast: true },
+  "natural-frequency-maximum": { unit: "rad/s", atLeast: false },
+  "gain-margin-up": { unit: "dB", atLeast: true },
+  "gain-margin-down": { unit: "dB", atLeast: true },
+  "phase-margin": { unit: "°", atLeast: true },
+  "delay-margin": { unit: "s", atLeast: true },
+  "peak-sensitivity": { unit: "", atLeast: false },
+  "bandwidth": { unit: "rad/s", atLeast: true },
+  "overshoot": { unit: "%", atLeast: false },
+  "undershoot": { unit: "%", atLeast: false },
+  "rise-time": { unit: "s", atLeast: false },
+  "settling-time-2": { unit: "s", atLeast: false },
+  "settling-time-5": { unit: "s", atLeast: false },
+  "peak-time": { unit: "s", atLeast: false },
+  "step-error": { unit: "%", atLeast: false },
+  "ramp-error": { unit: "", atLeast: false },
+  "parabola-error": { unit: "", atLeast: false },
+  "load-peak": { unit: "", atLeast: false },
+  "load-final": { unit: "", atLeast: false },
+  "controller-peak": { unit: "", atLeast: false },
+};

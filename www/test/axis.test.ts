@@ -29,6 +29,15 @@ test("The setting is on the automatic axis, wherever it is but at zero", () => {
   }
 });
 
+test("The axis ends with the controller where edges lie far beyond it, but not before the setting", () => {
+  const band = subject({ stability: [72.7], character: [72.7, 5950], stable: [[72.7, Infinity]], setting: 450 });
+  assert.deepEqual(axisFor(band, "automatic").domain, [20, 20000]);
+  assert.deepEqual(axisFor({ ...band, limits: [10, 1000] }, "automatic").domain, [20, 1000]);
+  assert.deepEqual(axisFor({ ...band, limits: [100, null] }, "automatic").domain, [100, 20000]);
+  assert.deepEqual(axisFor({ ...band, limits: [10, 200] }, "automatic").domain, [20, 500]);
+  assert.deepEqual(axisFor({ ...band, setting: null, limits: [1e5, 1e6] }, "automatic").domain, [50, 20000]);
+});
+
 test("Every edge is on the automatic axis of a range through zero", () => {
   for (const ends of [
     [-1, 12.6],

@@ -1,7 +1,7 @@
 import assert from "node:assert/strict";
 import test from "node:test";
 import { chartOf, readingAt, tableOf, valueAt, type Chart } from "../src/charts.ts";
-import { forbiddenOf } from "../src/forbidden.ts";
+import { limitsOf } from "../src/regions.ts";
 import type { Record as Findings, RequirementKind } from "../src/types.ts";
 import { record, requirement } from "./record.ts";
 
@@ -108,6 +108,20 @@ test("Every picture has a table with the same curves", () => {
 
 test("Requirements on poles are drawn into the s-plane, others are not", () => {
   const kinds = ["damping-ratio", "decay-rate", "natural-frequency-minimum", "natural-frequency-maximum", "overshoot"] as const;
-  const found = forbiddenOf(record([], { requirements: kinds.map((kind) => requirement({ kind, limit: 0.5 })) }));
-  assert.deepEqual(found.map(({ shape }) => shape), ["ray", "line", "circle", "circle"]);
+  const found = limitsOf(record([], { requirements: kinds.map((kind) => requirement({ kind, limit: 0.5 })) }));
+  assert.deepEqual(found.map(({ shape }) => shape), ["ray", "line", "closed", "closed"]);
+});
+
+test("In the z-plane the same requirements are a spiral, a circle and ovals", () => {
+  const kinds = ["damping-ratio", "decay-rate", "natural-frequency-minimum"] as const;
+  const sampling = { period: 0.1, delay: 0, method: null, byPeriod: [], longestPeriod: null };
+  const timing = { plane: "z", deadTime: 0, deadTimePerKnob: 0, sampling } as const;
+  const [spiral, circle, oval] = limitsOf(record([], { timing, requirements: kinds.map((kind) => requirement({ kind, limit: 0.6 })) }));
+  assert.ok(spiral?.shape === "closed" && circle?.shape === "closed" && oval?.shape === "closed");
+  // A pole of damping ratio 0.6 and ω = 10 rad/s: z = e^((−0.6 ± 0.8 j)·10·0.1) has the angle 0.8 and the radius e^−0.6.
+  const radius = (angle: number): number => Math.exp((-0.6 / 0.8) * Math.abs(angle));
+  for (const [re, im] of spiral.points) assert.ok(Math.abs(Math.hypot(re, im) - radius(Math.atan2(im, re))) < 1e-12);
+  for (const [re, im] of circle.points) assert.ok(Math.abs(Math.hypot(re, im) - Math.exp(-0.06)) < 1e-12);
+  for (const [re, im] of oval.points) assert.ok(Math.abs(Math.hypot(Math.log(Math.hypot(re, im)), Math.atan2(im, re)) - 0.06) < 1e-12);
+  assert.deepEqual([spiral.forbids, circle.forbids, oval.forbids], ["outside", "outside", "inside"]);
 });

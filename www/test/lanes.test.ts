@@ -18,7 +18,7 @@ test("The stability lane covers the whole line and names every range", () => {
 });
 
 test("Poles that stay on the axis are not called stable", () => {
-  const range = { from: null, to: null, unstablePoles: 0, axisPoles: 2, stable: false };
+  const range = { from: null, to: null, unstablePoles: 0, axisPoles: 2, atLeast: false, stable: false };
   assert.equal(stabilityWords(range), "2 poles on the axis");
 });
 
@@ -31,12 +31,12 @@ test("The character is named in full where there is room, in short where not", (
 });
 
 test("Every kind of edge says what happens", () => {
-  assert.equal(happening(edge(1, { omegas: [84.6123] })), "A pole pair crosses the imaginary axis at ±84.61\u202fj rad/s.");
-  assert.match(happening(edge(1, { touching: true })), /touches the imaginary axis and returns/);
-  assert.match(happening(edge(1, { omegas: [1, 2] })), /±1\u202fj and ±2\u202fj rad\/s/);
-  assert.match(happening(edge(1, { kind: "origin crossing" })), /origin/);
-  assert.match(happening(edge(1, { kind: "degree drop" })), /infinity/);
-  assert.match(happening(edge(1, { kind: "breakaway" })), /leave the real axis/);
+  assert.equal(happening(edge(1, { omegas: [84.6123] }), "s"), "A pole pair crosses the imaginary axis at ±84.61\u202fj rad/s.");
+  assert.match(happening(edge(1, { touching: true }), "s"), /touches the imaginary axis and returns/);
+  assert.match(happening(edge(1, { omegas: [1, 2] }), "s"), /±1\u202fj and ±2\u202fj rad\/s/);
+  assert.match(happening(edge(1, { kind: "origin crossing" }), "s"), /origin/);
+  assert.match(happening(edge(1, { kind: "degree drop" }), "s"), /infinity/);
+  assert.match(happening(edge(1, { kind: "breakaway" }), "s"), /leave the real axis/);
 });
 
 test("The reason of an edge holds its exact value, its bracket and its proof", () => {

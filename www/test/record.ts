@@ -1,5 +1,5 @@
 // Records for the tests: small, invented, with only what a test needs spelled out.
-import type { CharacterRange, Edge, LimitEdge, LimitRange, Record as Findings, RequirementRecord, Scale, StabilityRange } from "../src/types.ts";
+import type { CharacterRange, ClosedPole, Edge, LimitEdge, LimitRange, Record as Findings, RequirementRecord, Scale, StabilityRange } from "../src/types.ts";
 
 /** An edge at a value; parts may be given otherwise. */
 export function edge(value: number, parts: Partial<Edge> = {}): Edge {
@@ -26,6 +26,7 @@ export function stability(edges: readonly Edge[], unstable: readonly number[]): 
     to: edges[index] ?? null,
     unstablePoles,
     axisPoles: 0,
+    atLeast: false,
     stable: unstablePoles === 0,
   }));
 }
@@ -39,7 +40,7 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
     project: {
       format: "stayband-project/1",
       title: "",
-      loop: { controller: "K", plant: "1/s", sensor: "1", feedback: "negative" },
+      loop: { controller: "K", plant: "1/s", sensor: "1", feedback: "negative", deadTime: "", sampling: null },
       quantities: [{ symbol: "K", value: "", unit: "V", meaning: "" }],
       knob: "K",
       setting: { value: "", name: "", unit: "", direction: "proportional", factor: "", minimum: "", maximum: "", step: "" },
@@ -47,6 +48,7 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
     },
     reading: { controller: null, plant: null, sensor: null, names: ["K"] },
     model: { order: 3, knobDegree: 1, coefficients: [], mathml: "" },
+    timing: { plane: "s", deadTime: 0, deadTimePerKnob: 0, sampling: null },
     stability: ranges,
     character: [whole],
     landmarks: [],
@@ -84,4 +86,9 @@ export function limitRange(from: number | null, to: number | null): LimitRange {
 /** A requirement on the damping ratio, met at the setting. */
 export function requirement(parts: Partial<RequirementRecord> = {}): RequirementRecord {
   return { kind: "damping-ratio", limit: 0.5, atLeast: true, unit: "", ranges: [], proven: true, figure: 0.6, met: true, remark: null, ...parts };
+}
+
+/** A pole of the closed loop. */
+export function pole(re: number, im: number, parts: Partial<ClosedPole> = {}): ClosedPole {
+  return { re, im, radius: 1e-12, multiplicity: 1, equivalent: null, dampingRatio: null, naturalFrequency: 0, ...parts };
 }

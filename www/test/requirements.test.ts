@@ -2,17 +2,17 @@ import assert from "node:assert/strict";
 import test from "node:test";
 import { DEMOS } from "../src/demos.ts";
 import { GROUPS, KINDS, kindOf, nameInSentence, offerFor, PRESETS } from "../src/requirements.ts";
-import type { Project } from "../src/types.ts";
-import { record } from "./record.ts";
+import { REQUIREMENT_FACTS, type Project } from "../src/types.ts";
+import { pole, record } from "./record.ts";
 
 test("Every kind stands once, in a group that is listed", () => {
-  assert.equal(new Set(KINDS.map(({ kind }) => kind)).size, KINDS.length);
+  assert.deepEqual(KINDS.map(({ kind }) => kind).sort(), Object.keys(REQUIREMENT_FACTS).sort());
   assert.ok(KINDS.every(({ group }) => GROUPS.includes(group)));
   assert.deepEqual([nameInSentence("gain-margin-up"), nameInSentence("step-error")], ["gain margin upward", "static error (step)"]);
 });
 
 test("The usual limit is offered, else one that the present loop just meets", () => {
-  const closedLoop = { knob: 37, poles: [{ re: -8.047, im: 0, radius: 0, multiplicity: 1 }], unstablePoles: 0, axisPoles: 0, name: "overdamped" as const };
+  const closedLoop = { knob: 37, poles: [pole(-8.047, 0, { dampingRatio: 1, naturalFrequency: 8.047 })], unstablePoles: 0, axisPoles: 0, name: "overdamped" as const };
   const found = record([], { closedLoop });
   assert.deepEqual(offerFor(kindOf("phase-margin"), found), { limit: "45", source: "usual" });
   assert.deepEqual(offerFor(kindOf("decay-rate"), found), { limit: "8", source: "this loop" });

@@ -4,11 +4,12 @@ import { figureRows, poleRows } from "../src/figures.ts";
 import { shownSigns } from "../src/halves.ts";
 import { asymptoteWords, grouped, landmarkWords, notable, realAxisWords } from "../src/landmarks.ts";
 import type { ClosedLoop, Landmark } from "../src/types.ts";
-import { edge, record, requirement, stability } from "./record.ts";
+import { edge, pole, record, requirement, stability } from "./record.ts";
 
 const landmark = (parts: Partial<Landmark>): Landmark => ({
   kind: "breakaway",
   s: { re: -2, im: 0 },
+  equivalent: null,
   knob: 3,
   multiplicity: 2,
   angle: null,
@@ -39,7 +40,7 @@ test("Branches of simple real poles and zeros get no row, others do", () => {
 });
 
 test("Landmarks are told in the trade's words", () => {
-  const words = (parts: Partial<Landmark>): string[] => grouped([landmark(parts)]).map(landmarkWords);
+  const words = (parts: Partial<Landmark>): string[] => grouped([landmark(parts)]).map((row) => landmarkWords(row, "s"));
   assert.deepEqual(words({}), ["leaves the real axis"]);
   assert.deepEqual(words({ multiplicity: 3 }), ["leaves the real axis (3 poles)"]);
   assert.deepEqual(words({ s: { re: -2, im: 1 } }), ["branches meet"]);
@@ -49,7 +50,7 @@ test("Landmarks are told in the trade's words", () => {
 test("Branches that leave one repeated pole share a row", () => {
   const leaving = (angle: number, re: number): Landmark => landmark({ kind: "departure", angle, s: { re, im: 0 }, knob: 0 });
   const rows = grouped([leaving(90, -20), leaving(-90, -20), leaving(60, -3), landmark({})]);
-  assert.deepEqual(rows.map(landmarkWords), ["leaves the pole at ±90°", "leaves the pole at 60°", "leaves the real axis"]);
+  assert.deepEqual(rows.map((row) => landmarkWords(row, "s")), ["leaves the pole at ±90°", "leaves the pole at 60°", "leaves the real axis"]);
 });
 
 test("Asymptotes and the parts of the real axis are told in one line", () => {
@@ -69,9 +70,9 @@ test("Asymptotes and the parts of the real axis are told in one line", () => {
 test("Poles are listed slowest first, a pair once, with its figures", () => {
   const rows = poleRows(
     loop([
-      { re: -200, im: 0, radius: 1e-12, multiplicity: 1 },
-      { re: -3, im: 4, radius: 1e-12, multiplicity: 1 },
-      { re: -3, im: -4, radius: 1e-12, multiplicity: 1 },
+      pole(-200, 0, { dampingRatio: 1, naturalFrequency: 200 }),
+      pole(-3, 4, { dampingRatio: 0.6, naturalFrequency: 5 }),
+      pole(-3, -4, { dampingRatio: 0.6, naturalFrequency: 5 }),
     ]),
   );
   assert.deepEqual(rows, [
@@ -81,11 +82,12 @@ test("Poles are listed slowest first, a pair once, with its figures", () => {
 });
 
 test("A pole on the axis does not decay, one right of it grows, one at the origin has no damping ratio", () => {
-  const row = (re: number, im: number): ReturnType<typeof poleRows>[number] | undefined =>
-    poleRows(loop([{ re, im, radius: 1e-9, multiplicity: 1 }]))[0];
-  assert.deepEqual([row(1e-12, 5)?.ratio, row(1e-12, 5)?.time], ["0", "∞"]);
-  assert.equal(row(2, 5)?.time, "grows");
-  assert.deepEqual([row(0, 0)?.s, row(0, 0)?.ratio], ["0", "–"]);
+  const row = (...parts: Parameters<typeof pole>): ReturnType<typeof poleRows>[number] | undefined => poleRows(loop([pole(...parts)]))[0];
+  const onAxis = row(0, 5, { radius: 1e-9, dampingRatio: 0, naturalFrequency: 5 });
+  assert.deepEqual([onAxis?.ratio, onAxis?.time], ["0", "∞"]);
+  assert.equal(row(2, 5, { dampingRatio: -0.371, naturalFrequency: 5.385 })?.time, "grows");
+  const origin = row(0, 0, { dampingRatio: null, naturalFrequency: 0 });
+  assert.deepEqual([origin?.s, origin?.ratio, origin?.frequency], ["0", "–", "0"]);
 });
 
 test("The half that is shown is the one of the setting, else the one with stable ranges", () => {
@@ -98,7 +100,7 @@ test("The half that is shown is the one of the setting, else the one with stable
 });
 
 test("Figures with a limit come first, with their verdict; others follow without", () => {
-  const closedLoop = { ...loop([{ re: -3, im: 4, radius: 1e-12, multiplicity: 1 }]), name: "underdamped" as const };
+  const closedLoop = { ...loop([pole(-3, 4, { dampingRatio: 0.6, naturalFrequency: 5 })]), name: "underdamped" as const };
   const rows = figureRows(record([], { closedLoop, requirements: [requirement({ kind: "phase-margin", limit: 45, figure: 41.26, unit: "°", met: false })] }));
   assert.deepEqual(rows[0], { name: "Phase margin", here: "41.3°", limit: "at least 45°", met: false });
   assert.deepEqual(rows.find(({ name }) => name === "Damping ratio"), { name: "Damping ratio", here: "0.6", limit: "", met: null });

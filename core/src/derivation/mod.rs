@@ -16,8 +16,8 @@ mod written;
 use crate::analysis::Analysis;
 use crate::exact::{ExactError, IntPoly};
 use crate::model::Variables;
-use crate::ranges::Family;
 use crate::ranges::requirements::Limit;
+use crate::ranges::{Family, Partition};
 use crate::sheet::{Derivation, RouthRow, RouthTable, SpecialCase};
 use alloc::format;
 use alloc::string::String;
@@ -30,30 +30,40 @@ const ROUTH_ORDER: usize = 8;
 /// Likewise for the order times the degree in the knob, which is the degree of the last elements.
 const ROUTH_DEGREE: usize = 12;
 
-/// The derivation of an analysed loop.
+/// What the derivation speaks of.
+struct Ground<'a> {
+    analysis: &'a Analysis,
+    family: &'a Family,
+    partition: &'a Partition,
+    /// The knob's name.
+    knob: &'a str,
+}
+
+/// The derivation of an analysed loop; None where it is no ratio of polynomials in s.
 ///
 /// # Errors
 /// From the exact methods, when a cap is met.
-pub fn derivation(analysis: &Analysis, limits: &[Limit]) -> Result<Derivation, ExactError> {
-    let family = analysis.family();
+pub fn derivation(analysis: &Analysis, limits: &[Limit]) -> Result<Option<Derivation>, ExactError> {
+    let Some((family, partition)) = analysis.rational() else { return Ok(None) };
     let knob = analysis.model.knob.as_str();
+    let ground = &Ground { analysis, family, partition, knob };
     let names = Variables { main: "s", knob };
     let (routh, routh_remark) = arrays(family, knob);
-    Ok(Derivation {
+    Ok(Some(Derivation {
         affine: family.affine().map(|(d, n)| [d, n].map(|part| written::in_variable(part, "s"))),
         moving: written::polynomial(&written::family(&family.parts), names),
         fixed: (family.fixed.degree() > 0).then(|| written::in_variable(&family.fixed, "s")),
         routh,
         routh_remark,
-        conditions: conditions::conditions(analysis)?,
-        axis: axis::equations(analysis)?,
-        edges: analysis.partition().stability_places().into_iter().map(|i| analysis.partition().edge(i)).collect(),
-        ranges: range_checks::checks(analysis)?,
-        asymptotes: locus_rules::asymptotes(analysis),
-        breakaway: locus_rules::breakaway(analysis)?,
-        directions: locus_rules::directions(analysis),
-        requirements: limits.iter().map(|limit| requirement_steps::step(analysis, limit)).collect::<Result<_, _>>()?,
-    })
+        conditions: conditions::conditions(ground)?,
+        axis: axis::equations(ground)?,
+        edges: partition.stability_places().into_iter().map(|i| partition.edge(i)).collect(),
+        ranges: range_checks::checks(ground)?,
+        asymptotes: locus_rules::asymptotes(ground),
+        breakaway: locus_rules::breakaway(ground)?,
+        directions: locus_rules::directions(ground),
+        requirements: limits.iter().map(|limit| requirement_steps::step(ground, limit)).collect::<Result<_, _>>()?,
+    }))
 }
 
 /// The arrays with the knob in them, or why there are none.

@@ -1,6 +1,6 @@
 //! Whole branches, put together from the stretches between meetings.
 
-use super::meetings::Meeting;
+use super::meetings::Encounters;
 use super::system::System;
 use super::track::{Arrival, Cluster, End, Lost, Stretch, Track, middle, track};
 use super::view::Pixels;
@@ -23,10 +23,8 @@ pub struct LocusInput<'a> {
     pub family: &'a Family,
     /// Places of the knob.
     pub partition: &'a Partition,
-    /// Where branches meet.
-    pub meetings: &'a [Meeting],
-    /// Knob values at which they come near each other.
-    pub close_calls: &'a [f64],
+    /// Where branches meet and come near each other.
+    pub encounters: &'a Encounters,
     /// Fixed modes.
     pub fixed: &'a [Root],
     /// Roots of the moving part at knob 0.
@@ -84,7 +82,7 @@ fn followed(
     let knob = middle(system, &stretch);
     let signed = sign.factor() * knob;
     let inside = |q: f64| q > ends.0.knob && q < ends.1.knob;
-    let wanted = input.partition.places.iter().map(Place::value).chain(input.close_calls.iter().copied());
+    let wanted = input.partition.places.iter().map(Place::value).chain(input.encounters.close_calls.iter().copied());
     stretch.stops = wanted.map(|q| sign.factor() * q).filter(|q| inside(*q)).collect();
     let polynomial = input.family.at_dyadic(&Dyadic::from_f64(signed).ok_or(Lost)?);
     stretch.real = real_poles(input, signed).ok_or(Lost)?;
@@ -124,7 +122,7 @@ fn ends(input: &LocusInput<'_>, sign: KnobSign) -> Vec<End> {
     // F(s, 0) vanishes where the knob is a factor of the whole; the poles then come from infinity or nowhere.
     ends.push(end(0.0, of_roots(input.poles), at_infinity(first), false));
     let mut inner: Vec<End> = Vec::new();
-    for meeting in input.meetings {
+    for meeting in &input.encounters.meetings {
         let knob = sign.factor() * meeting.knob;
         let turn = sign.factor() * meeting.miss;
         let cluster = Cluster { s: meeting.s, multiplicity: meeting.multiplicity, turn };
@@ -279,22 +277,21 @@ fn strands(track: &Track) -> Vec<Strand> {
 mod tests {
     use super::*;
     use crate::exact::complex_roots::roots;
-    use crate::locus::{close_calls, meetings, view};
+    use crate::locus::{encounters, view};
     use crate::record::Point;
 
     /// The branches of D + q·N, as (start, end) pairs, of one sign.
     fn followed_branches(d: &[i64], n: &[i64], sign: KnobSign) -> Vec<Branch> {
         let family = Family::new([IntPoly::from_i64(d), IntPoly::from_i64(n)].into()).expect("not zero");
         let partition = Partition::new(&family).expect("cut");
-        let meetings = meetings(&family, &partition).expect("found");
+        let encounters = encounters(&family, &partition).expect("found");
         let (poles, zeros) = (roots(&family.parts[0]).expect("poles"), roots(&family.parts[1]).expect("zeros"));
         let points = poles.iter().chain(&zeros).map(|r| Point { re: r.re, im: r.im });
         let view = view::frame(points);
         let input = LocusInput {
             family: &family,
             partition: &partition,
-            meetings: &meetings,
-            close_calls: &close_calls(&family, &meetings),
+            encounters: &encounters,
             fixed: &[],
             poles: &poles,
             zeros: &zeros,

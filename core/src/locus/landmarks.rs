@@ -15,6 +15,7 @@ pub fn from_meetings(meetings: &[Meeting]) -> Vec<Landmark> {
         .map(|meeting| Landmark {
             kind: if meeting.leaves_axis { LandmarkKind::Breakaway } else { LandmarkKind::BreakIn },
             s: Point { re: meeting.s.re, im: meeting.s.im },
+            equivalent: None,
             knob: Some(meeting.knob),
             multiplicity: meeting.multiplicity,
             angle: None,
@@ -32,10 +33,18 @@ pub fn from_places(partition: &Partition) -> Vec<Landmark> {
             let (kind, im) = match contact {
                 Contact::Axis { omega } => (LandmarkKind::AxisCrossing, *omega),
                 Contact::Origin => (LandmarkKind::OriginCrossing, 0.0),
-                Contact::DegreeDrop | Contact::RealMeeting { .. } => continue,
+                Contact::DegreeDrop | Contact::Alternation | Contact::RealMeeting { .. } => continue,
             };
             let s = Point { re: 0.0, im };
-            found.push(Landmark { kind, s, knob: Some(knob), multiplicity: 1, angle: None, sign: sign_of_knob(knob) });
+            found.push(Landmark {
+                kind,
+                s,
+                equivalent: None,
+                knob: Some(knob),
+                multiplicity: 1,
+                angle: None,
+                sign: sign_of_knob(knob),
+            });
         }
     }
     found
@@ -51,6 +60,7 @@ pub fn from_roots(d: &IntPoly, n: &IntPoly, poles: &[Root], zeros: &[Root]) -> V
                 found.extend(directions(root, own, other, gain).into_iter().map(|angle| Landmark {
                     kind,
                     s: Point { re: root.re, im: root.im },
+                    equivalent: None,
                     knob,
                     multiplicity: root.multiplicity,
                     angle: Some(angle),
@@ -64,6 +74,7 @@ pub fn from_roots(d: &IntPoly, n: &IntPoly, poles: &[Root], zeros: &[Root]) -> V
     found
 }
 
-fn sign_of_knob(knob: f64) -> KnobSign {
+/// The half of the locus a knob value belongs to.
+pub fn sign_of_knob(knob: f64) -> KnobSign {
     if knob < 0.0 { KnobSign::Negative } else { KnobSign::Positive }
 }

@@ -54,11 +54,53 @@ impl Meeting {
     }
 }
 
-/// All meetings, by growing knob.
+/// Where branches meet, and where they come near each other.
+#[derive(Clone, Debug, Default)]
+pub struct Encounters {
+    /// All meetings, by growing knob.
+    pub meetings: Vec<Meeting>,
+    /// Knob values at which branches come near each other without meeting, good enough to stop there and look: without a
+    /// row in between, two poles that turn away from each other look like two that pass straight on.
+    pub close_calls: Vec<f64>,
+}
+
+/// All encounters of both halves of the locus.
 ///
 /// # Errors
 /// From the exact methods, when a cap is met.
-pub fn meetings(family: &Family, partition: &Partition) -> Result<Vec<Meeting>, ExactError> {
+pub fn encounters(family: &Family, partition: &Partition) -> Result<Encounters, ExactError> {
+    let mut found = Encounters { meetings: real_meetings(partition), close_calls: Vec::new() };
+    match family.affine() {
+        Some((d, n)) => {
+            for candidates in candidates(d, n) {
+                found.meetings.extend(candidates.complex_meetings(d, n)?);
+                found.close_calls.extend(candidates.close_calls());
+            }
+        }
+        None if family.knob_degree() == 0 => {}
+        None => {
+            found.meetings.extend(polynomial::meetings(family)?.into_iter().filter(|m| m.s.im > 0.0).filter_map(|m| {
+                let knob = m.bracket.midpoint().to_f64();
+                (knob != 0.0).then_some(Meeting {
+                    s: m.s,
+                    knob,
+                    multiplicity: m.multiplicity,
+                    leaves_axis: true,
+                    miss: 0.0,
+                })
+            }))
+        }
+    }
+    found.meetings.sort_by(|a, b| a.knob.total_cmp(&b.knob));
+    let meetings = &found.meetings;
+    found.close_calls.retain(|q| !meetings.iter().any(|m| (m.knob - q).abs() <= KNOWN * q.abs()));
+    found.close_calls.sort_by(f64::total_cmp);
+    found.close_calls.dedup_by(|a, b| (*a - *b).abs() <= KNOWN * b.abs());
+    Ok(found)
+}
+
+/// Meetings on the real axis are places of the partition.
+fn real_meetings(partition: &Partition) -> Vec<Meeting> {
     let mut found = Vec::new();
     for (i, place) in partition.places.iter().enumerate() {
         let sign = place.bracket.midpoint().signum();
@@ -74,69 +116,63 @@ pub fn meetings(family: &Family, partition: &Partition) -> Result<Vec<Meeting>, 
             }
         }
     }
-    match family.affine() {
-        Some((d, n)) => found.extend(complex_meetings(d, n)?),
-        None if family.knob_degree() == 0 => {}
-        None => found.extend(polynomial::meetings(family)?.into_iter().filter(|m| m.s.im > 0.0).filter_map(|m| {
-            let knob = m.bracket.midpoint().to_f64();
-            (knob != 0.0).then_some(Meeting {
-                s: m.s,
-                knob,
-                multiplicity: m.multiplicity,
-                leaves_axis: true,
-                miss: 0.0,
-            })
-        })),
-    }
-    found.sort_by(|a, b| a.knob.total_cmp(&b.knob));
-    Ok(found)
+    found
 }
 
-/// The complex roots of W = D′N − DN′ at which q = −D/N is real; the others are the false candidates of dq/ds = 0.
-fn complex_meetings(d: &IntPoly, n: &IntPoly) -> Result<Vec<Meeting>, ExactError> {
-    let mut found = Vec::new();
+/// The roots of one square-free factor of W = D′N − DN′, approximately, with q = −D/N there: branches meet where q is
+/// real. The others are the false candidates of dq/ds = 0.
+struct Candidates {
+    factor: IntPoly,
+    /// How often the factor divides W.
+    order: usize,
+    /// Each root in f64 with its knob; the knob is stationary there, so that it is far more precise than the root.
+    rough: Vec<(Complex<f64>, Option<Complex<f64>>)>,
+}
+
+/// Repeated poles and zeros of the open loop are roots of W too, but of no interest here.
+fn candidates(d: &IntPoly, n: &IntPoly) -> Vec<Candidates> {
+    let mut all = Vec::new();
     for (factor, order) in squarefree_factors(&affine::meeting_polynomial(d, n)) {
-        let factor = without_common_roots(&without_common_roots(&factor, n), d);
-        if factor.degree() < 2 || !may_have_real_knob(&factor, d, n) {
-            continue;
+        // What happens at the origin is on the real axis, and known from the partition.
+        let (factor, _) = without_common_roots(&without_common_roots(&factor, n), d).without_zero_roots();
+        let knob = |s: Complex<f64>| ComplexDyadic::from_f64(s).and_then(|s| negative_ratio_at(d, n, &s));
+        let rough = approximations(&factor).into_iter().map(|s| (s, knob(s))).collect();
+        all.push(Candidates { factor, order, rough });
+    }
+    all
+}
+
+impl Candidates {
+    /// Those in the open upper half plane at which branches meet, or miss each other by less than f64 can follow.
+    fn complex_meetings(&self, d: &IntPoly, n: &IntPoly) -> Result<Vec<Meeting>, ExactError> {
+        let mut found = Vec::new();
+        if !self.may_have_real_knob() {
+            return Ok(found);
         }
-        for disc in enclose(&factor, CANDIDATE_BITS)? {
+        for disc in enclose(&self.factor, CANDIDATE_BITS)? {
             let s = disc.center.to_f64();
             let Some(knob) = negative_ratio_at(d, n, &disc.center).filter(|_| s.im > 0.0) else { continue };
             let meets = knob.im.abs() <= SURELY_REAL * knob.re.abs();
-            let just_misses = order == 1 && knob.im.abs() <= JUST_MISSED * knob.re.abs() && s.im > AWAY * magnitude(s);
+            let just_misses =
+                self.order == 1 && knob.im.abs() <= JUST_MISSED * knob.re.abs() && s.im > AWAY * magnitude(s);
             if meets || just_misses {
                 let miss = if meets { 0.0 } else { knob.im };
-                found.push(Meeting { s, knob: knob.re, multiplicity: order + 1, leaves_axis: true, miss });
+                found.push(Meeting { s, knob: knob.re, multiplicity: self.order + 1, leaves_axis: true, miss });
             }
         }
+        Ok(found)
     }
-    Ok(found)
-}
 
-/// Knob values at which branches come near each other without meeting, good enough to stop there and look: without a row
-/// in between, two poles that turn away from each other look like two that pass straight on.
-pub fn close_calls(family: &Family, meetings: &[Meeting]) -> Vec<f64> {
-    let Some((d, n)) = family.affine() else { return Vec::new() };
-    let (factor, _) = affine::meeting_polynomial(d, n).without_zero_roots();
-    let knobs =
-        approximations(&factor).into_iter().filter_map(|s| negative_ratio_at(d, n, &ComplexDyadic::from_f64(s)?));
-    let known = |q: f64| meetings.iter().any(|m| (m.knob - q).abs() <= KNOWN * q.abs());
-    let mut calls: Vec<f64> = knobs
-        .filter(|q| q.re.is_finite() && q.im.abs() <= CLOSE_CALL * q.re.abs())
-        .map(|q| q.re)
-        .filter(|q| !known(*q))
-        .collect();
-    calls.sort_by(f64::total_cmp);
-    calls.dedup_by(|a, b| (*a - *b).abs() <= KNOWN * b.abs());
-    calls
-}
+    /// A quick look in f64 that spares most loops the enclosing.
+    fn may_have_real_knob(&self) -> bool {
+        self.rough
+            .iter()
+            .any(|(s, knob)| s.im > 1e-9 * s.re.abs() && knob.is_none_or(|q| q.im.abs() <= SURELY_COMPLEX * q.re.abs()))
+    }
 
-/// A quick look in f64 that spares most loops the enclosing.
-fn may_have_real_knob(factor: &IntPoly, d: &IntPoly, n: &IntPoly) -> bool {
-    approximations(factor).iter().any(|s| {
-        let upper = s.im > 1e-9 * s.re.abs();
-        let knob = ComplexDyadic::from_f64(*s).and_then(|s| negative_ratio_at(d, n, &s));
-        upper && knob.is_none_or(|q| q.im.abs() <= SURELY_COMPLEX * q.re.abs())
-    })
+    /// The knobs, where they are nearly real.
+    fn close_calls(&self) -> impl Iterator<Item = f64> {
+        let knobs = self.rough.iter().filter_map(|(_, knob)| *knob);
+        knobs.filter(|q| q.re.is_finite() && q.im.abs() <= CLOSE_CALL * q.re.abs()).map(|q| q.re)
+    }
 }

@@ -9,7 +9,7 @@ pub mod trade;
 pub mod view;
 
 pub use branches::{LocusInput, branches};
-pub use meetings::{Meeting, close_calls, meetings};
+pub use meetings::{Encounters, Meeting, encounters};
 
 use crate::record::KnobSign;
 use alloc::vec::Vec;

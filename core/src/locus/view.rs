@@ -68,23 +68,23 @@ impl Pixels {
         off / (1.0 + 20.0 * self.remoteness(from).min(self.remoteness(to)))
     }
 
-    /// How far the cubic with these end velocities (over a parameter of length 1) bends from its chord, in pixels;
-    /// leniently outside of the view.
+    /// How far the cubic with these end velocities (over a parameter of length 1) leaves its chord, in pixels: sideways,
+    /// or beyond an end where it turns back; leniently outside of the view.
     pub fn sagitta(&self, from: Complex<f64>, to: Complex<f64>, out: Complex<f64>, into: Complex<f64>) -> f64 {
-        let chord = self.scaled(to - from);
+        let (chord, out, into) = (self.scaled(to - from), self.scaled(out), self.scaled(into));
         let length = libm::hypot(chord.re, chord.im);
-        if length == 0.0 {
-            return 0.0;
-        }
-        let across = |z: Complex<f64>| {
-            let z = self.scaled(z);
-            (chord.re * z.im - chord.im * z.re) / length
-        };
+        let unit = if length == 0.0 { Complex::new(1.0, 0.0) } else { chord / length };
         // The Hermite cubic leaves its chord by out·t(1−t)² − into·t²(1−t), t from 0 to 1: at most 4/27 of each
         // velocity, and an eighth of their difference in the middle.
+        let across = |z: Complex<f64>| unit.re * z.im - unit.im * z.re;
         let (a, b) = (across(out), across(into));
         let bend = (0.125 * libm::fabs(a - b)).max(4.0 / 27.0 * libm::fabs(a).max(libm::fabs(b)));
-        bend / (1.0 + 20.0 * self.remoteness(from).min(self.remoteness(to)))
+        // A parabola that ends with a backward velocity has turned by the square of it over twice the acceleration.
+        let along = |z: Complex<f64>| unit.re * z.re + unit.im * z.im;
+        let (a, b) = (along(out), along(into));
+        let backward = a.min(b).min(0.0);
+        let turned = if backward < 0.0 { 0.5 * backward * backward / (libm::fabs(a) + libm::fabs(b)) } else { 0.0 };
+        bend.max(turned) / (1.0 + 20.0 * self.remoteness(from).min(self.remoteness(to)))
     }
 }
 
@@ -112,5 +112,16 @@ mod tests {
             Complex::new(1.0, -4.0),
         );
         assert!((bend - 1.0).abs() < 1e-12, "{bend}");
+    }
+
+    #[test]
+    fn a_parabola_that_turns_back_on_its_chord_leaves_it_at_the_end() {
+        let pixels = Pixels::new(View { re: [-500.0, 500.0], im: [-500.0, 500.0] });
+        // s = 6t − 5t²: from 0 to 1, farthest point 1.8.
+        let real = |x: f64| Complex::new(x, 0.0);
+        let turned = pixels.sagitta(real(0.0), real(1.0), real(6.0), real(-4.0));
+        assert!((turned - 0.8).abs() < 1e-12, "{turned}");
+        // There and back to the same point, a quarter of the velocity away.
+        assert!((pixels.sagitta(real(0.0), real(0.0), real(4.0), real(-4.0)) - 1.0).abs() < 1e-12);
     }
 }

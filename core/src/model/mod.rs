@@ -29,7 +29,7 @@ use crate::answer::{Field, Problem};
 use crate::exact::IntPoly;
 use crate::notation::{self, Expression, NotationError};
 use crate::project::{Direction, Feedback, Project};
-use crate::record::{ModelRecord, Notice, NoticeKind, Reading};
+use crate::record::{ModelRecord, Notice, NoticeKind, Plane, Reading, SamplingRecord, Timing};
 use crate::setting::Scale;
 use alloc::format;
 use alloc::string::{String, ToString};
@@ -334,6 +334,25 @@ fn improper(name: &str, ratio: &Ratio) -> Option<Notice> {
         counted(missing, "filter pole"),
     );
     Some(Notice { kind: NoticeKind::ImproperBlock, text })
+}
+
+/// Dead time and sampling for the record; what depends on the analysis is still empty.
+#[must_use]
+pub fn timing(model: &Loop) -> Timing {
+    let sampling = model.sampling.as_ref().map(|sampling| SamplingRecord {
+        period: sampling.period.to_f64().value(),
+        delay: sampling.delay.to_f64().value(),
+        method: (!sampling.controller_in_z).then_some(sampling.method),
+        by_period: Vec::new(),
+        longest_period: None,
+    });
+    let DeadTime { fixed, per_knob } = &model.open_loop.dead_time;
+    Timing {
+        plane: if sampling.is_some() { Plane::Z } else { Plane::S },
+        dead_time: fixed.to_f64().value(),
+        dead_time_per_knob: per_knob.to_f64().value(),
+        sampling,
+    }
 }
 
 /// The characteristic polynomial for the record.

@@ -156,6 +156,12 @@ impl Ratio {
         Ok(sum.delayed(dead_time.clone()))
     }
 
+    /// As [`Self::polynomials`], without the reason where the numbers are too large.
+    #[must_use]
+    pub fn multiplied_out(&self) -> Option<(KnobPolynomial, KnobPolynomial)> {
+        self.polynomials().ok()
+    }
+
     /// Numerator and denominator over the integers, multiplied out, common factors kept.
     pub(super) fn polynomials(&self) -> Result<(KnobPolynomial, KnobPolynomial), Excess> {
         let (above, below) = (expanded(&self.numerator)?, expanded(&self.denominator)?);

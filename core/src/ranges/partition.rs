@@ -34,7 +34,8 @@ pub struct Partition {
     pub at_places: Vec<Verdict>,
     /// Whether places where real poles meet have been looked for; without them `real` and `pairs` mean nothing.
     pub with_meetings: bool,
-    affine: bool,
+    /// Whether what is said of a place is proven.
+    proven: Vec<bool>,
 }
 
 impl Partition {
@@ -67,7 +68,27 @@ impl Partition {
                 None => between(family, place, &ranges[i], &ranges[i + 1])?,
             });
         }
-        Ok(Self { places, ranges, at_places, with_meetings, affine: family.knob_degree() < 2 })
+        // Of a family of higher degree in the knob an irrational touching edge is told from a near miss by 100 bits, not by
+        // proof.
+        let affine = family.knob_degree() < 2;
+        let touching = |i: usize| ranges[i].half_plane == ranges[i + 1].half_plane;
+        let proven = places.iter().enumerate().map(|(i, p)| affine || !touching(i) || p.exact.is_some()).collect();
+        Ok(Self { places, ranges, at_places, with_meetings, proven })
+    }
+
+    /// From places found elsewhere, without those where real poles meet; `proven` has one entry for each place.
+    pub fn from_parts(places: Vec<Place>, ranges: Vec<Verdict>, at_places: Vec<Verdict>, proven: Vec<bool>) -> Self {
+        Self { places, ranges, at_places, with_meetings: false, proven }
+    }
+
+    /// The verdict at a knob value; in the bracket of a place that of the place.
+    pub fn verdict_at(&self, knob: &RBig) -> &Verdict {
+        let below = |place: &Place| place.bracket.high.to_rational() < *knob;
+        let i = self.places.partition_point(below);
+        match self.places.get(i) {
+            Some(place) if place.bracket.low.to_rational() <= *knob => &self.at_places[i],
+            _ => &self.ranges[i],
+        }
     }
 
     /// The ranges of constant counts of unstable poles.
@@ -78,6 +99,7 @@ impl Partition {
             to: to.map(|i| self.edge(i)),
             unstable_poles: self.ranges[first].half_plane.right,
             axis_poles: self.ranges[first].half_plane.axis,
+            at_least: false,
             stable: self.ranges[first].half_plane.is_stable(),
         })
     }
@@ -130,9 +152,7 @@ impl Partition {
                 None => place.bracket.decimal_bracket(digits),
             },
             exact: place.exact.as_ref().map(crate::exact::dyadic::exact_text),
-            // Of a family of higher degree in the knob an irrational touching edge is told from a near miss by 100 bits, not
-            // by proof.
-            proven: self.affine || !touching || place.exact.is_some(),
+            proven: self.proven[i],
             kind: self.kind(i),
             omega: omegas.first().copied(),
             omegas,
@@ -164,6 +184,8 @@ impl Partition {
             EdgeKind::DegreeDrop
         } else if has(|c| matches!(c, Contact::Axis { .. })) {
             EdgeKind::AxisCrossing
+        } else if has(|c| matches!(c, Contact::Alternation)) {
+            EdgeKind::AlternationCrossing
         } else if has(|c| matches!(c, Contact::Origin)) {
             EdgeKind::OriginCrossing
         } else {
@@ -217,6 +239,8 @@ fn happens_at(family: &Family, place: &Place, q: &RBig) -> bool {
         Contact::RealMeeting { .. } => repeated(),
         Contact::Origin => p.coefficient(0).is_zero(),
         Contact::DegreeDrop => p.degree() < family.moving_order(),
+        // No place of a continuous loop.
+        Contact::Alternation => false,
     })
 }
 
@@ -270,7 +294,8 @@ fn looked_at(family: &Family, place: &Place) -> Result<Verdict, ExactError> {
 }
 
 impl Contact {
-    fn omega(&self) -> Option<f64> {
+    /// rad/s, of a pair on the axis.
+    pub fn omega(&self) -> Option<f64> {
         match self {
             Self::Axis { omega } => Some(*omega),
             _ => None,

@@ -30,6 +30,8 @@ pub enum Contact {
     Origin,
     /// The leading coefficient vanishes.
     DegreeDrop,
+    /// A pole is at z = −1: the loop alternates from sample to sample. Of sampled loops only.
+    Alternation,
     /// Poles meet on the real axis, 1/s.
     RealMeeting {
         /// Where, 1/s.

@@ -10,7 +10,6 @@ use crate::analysis::Analysis;
 use crate::exact::{Dyadic, ExactError};
 use crate::notation;
 use crate::project::{Direction, RequirementKind, StepUpText};
-use crate::ranges::Contact;
 use crate::ranges::permitted::short;
 use crate::ranges::pieces::{Border, Piece};
 use crate::response::LoopAt;
@@ -36,6 +35,9 @@ const ROW_CAP: usize = 60;
 /// Digits of the settings where the controller has no grid.
 const FREE_DIGITS: i32 = 3;
 
+/// The middle of an edge's bracket, rounded in two ways.
+const SAME: f64 = 1e-14;
+
 /// How often the rest of the way to the edge is halved: a sixteenth of it, on a logarithmic scale, is then left.
 const HALVES: usize = 4;
 
@@ -60,6 +62,9 @@ pub struct Ground<'a> {
 /// From the exact methods, when a cap is met.
 pub fn step_up(ground: &Ground<'_>, text: &StepUpText) -> Result<StepUpPlan, ExactError> {
     let without = |remark: &str| StepUpPlan { remarks: [remark.to_string()].into(), edge: None, rows: Vec::new() };
+    if ground.analysis.rational().is_none() {
+        return Ok(without("the step-up plan does not know loops with dead time or sampling yet"));
+    }
     let ratio = match typed_number(&text.ratio) {
         Ok(ratio) => ratio.map_or(USUAL_RATIO, |ratio| ratio.to_f64().value()),
         Err(fault) => return Ok(without(&format!("ratio: {fault}"))),
@@ -72,7 +77,8 @@ pub fn step_up(ground: &Ground<'_>, text: &StepUpText) -> Result<StepUpPlan, Exa
         return Ok(without("choose a setting first: the plan ends there"));
     };
     let knob = ground.scale.knob(&last).filter(|knob| !knob.is_zero());
-    let stable = knob.as_ref().and_then(|knob| ground.analysis.stable.iter().find(|piece| piece.surely_holds(knob)));
+    let stable =
+        knob.as_ref().and_then(|knob| ground.analysis.findings.stable.iter().find(|piece| piece.surely_holds(knob)));
     let (Some(knob), Some(stable)) = (knob, stable) else {
         return Ok(without("the last setting is not stable: choose another one"));
     };
@@ -224,15 +230,10 @@ impl Way<'_> {
     }
 
     fn edge(&self) -> Option<EdgeAhead> {
-        let border = self.ends(self.stable).1?;
-        let partition = self.ground.analysis.partition();
-        let place = partition.places.iter().find(|place| place.bracket.meets(&border.bracket));
-        let omega = place.into_iter().flat_map(|place| &place.contacts).find_map(|contact| match contact {
-            Contact::Axis { omega } => Some(*omega),
-            _ => None,
-        });
+        let knob = self.ends(self.stable).1?.value();
+        let edges = self.ground.analysis.findings.stability.iter().filter_map(|range| range.to.as_ref());
+        let omega = edges.filter(|edge| (edge.value - knob).abs() <= SAME * knob.abs()).find_map(|edge| edge.omega);
         let period = omega.map(|omega| core::f64::consts::TAU / omega);
-        let knob = border.value();
         Some(EdgeAhead { knob, setting: self.ground.scale.setting_f64(knob), omega, period })
     }
 

@@ -12,7 +12,6 @@ use crate::analysis::Analysis;
 use crate::exact::ExactError;
 use crate::notation;
 use crate::project::{Observation, Project, RequirementKind};
-use crate::ranges::Contact;
 use crate::response::LoopAt;
 use crate::setting::Scale;
 use crate::sheet::{Correction, Predicted, SiteCheck};
@@ -66,7 +65,7 @@ pub fn site_check(project: &Project, analysis: &Analysis, scale: &Scale) -> Resu
             let swing = matching::swing(&at, own, Change { gain: 1.0, dead_time: 0.0 })?;
             let predicted = Predicted {
                 period: swing.map(|swing| swing.period),
-                overshoot: swing.map(|swing| swing.overshoot).or_else(|| at.figure(RequirementKind::Overshoot).value()),
+                overshoot: swing.map(|swing| swing.overshoot).or_else(|| overshoot_of(analysis, &at)),
                 setting: None,
             };
             (predicted, matching::from_step(&at, own, overshoot, seen.omega)?)
@@ -94,6 +93,11 @@ pub fn site_check(project: &Project, analysis: &Analysis, scale: &Scale) -> Resu
         remark: corrected.remark,
     };
     Ok(Some(SiteCheck { predicted: Some(predicted), correction: Some(correction), ..told(Vec::new()) }))
+}
+
+/// The overshoot of an answer without a second peak.
+fn overshoot_of(analysis: &Analysis, at: &LoopAt) -> Option<f64> {
+    analysis.rational().and_then(|_| at.figure(RequirementKind::Overshoot).value())
 }
 
 /// The observation in numbers.
@@ -156,12 +160,10 @@ const NOISE: f64 = 0.02;
 fn at_nearest_edge(analysis: &Analysis, scale: &Scale, seen: &Seen) -> Predicted {
     let knob = seen.knob.to_f64().value();
     let mut edges: Vec<(f64, f64)> = Vec::new();
-    for place in &analysis.partition().places {
-        let same_side = place.value() * knob > 0.0;
-        edges.extend(place.contacts.iter().filter(|_| same_side).filter_map(|contact| match contact {
-            Contact::Axis { omega } => Some((place.value(), *omega)),
-            _ => None,
-        }));
+    for edge in analysis.findings.stability.iter().filter_map(|range| range.to.as_ref()) {
+        if edge.value * knob > 0.0 {
+            edges.extend(edge.omegas.iter().map(|omega| (edge.value, *omega)));
+        }
     }
     let distance = |edge: &(f64, f64)| libm::log(edge.0 / knob).abs();
     let nearest = edges.into_iter().min_by(|a, b| distance(a).total_cmp(&distance(b)));

@@ -1,4 +1,4 @@
-//! The TypeScript: packages from the lock file, strict check, one script for the page and one for its worker.
+//! The TypeScript: packages from the lock file, strict check, one script for the page, one that unpacks it, one for the worker.
 
 use crate::places::Places;
 use crate::run::{node_program, read, run};
@@ -14,6 +14,8 @@ const BROWSERS: &str = "--target=chrome109,firefox115,safari16.4";
 pub(crate) struct Scripts {
     /// Runs in the page.
     pub(crate) page: String,
+    /// Unpacks and runs the former.
+    pub(crate) start: String,
     /// Runs in the worker.
     pub(crate) worker: String,
 }
@@ -34,7 +36,11 @@ pub(crate) fn install(places: &Places) -> Result<()> {
 /// Checks the types and bundles both scripts.
 pub(crate) fn build(places: &Places) -> Result<Scripts> {
     run(node_program(&places.www, "tsc").arg("--noEmit"))?;
-    Ok(Scripts { page: bundle(places, "main.ts")?, worker: bundle(places, "worker.ts")? })
+    Ok(Scripts {
+        page: bundle(places, "main.ts")?,
+        start: bundle(places, "start.ts")?,
+        worker: bundle(places, "worker.ts")?,
+    })
 }
 
 fn bundle(places: &Places, entry: &str) -> Result<String> {

@@ -1,8 +1,9 @@
 //! Puts style, scripts and WebAssembly into `www/index.html`.
 //!
-//! The marks of the page, each exactly once: the comments `pack:style`, `pack:worker`, `pack:wasm` and `pack:script`
-//! become elements; `__STYLE_HASH__` and `__SCRIPT_HASH__` in the Content-Security-Policy become the hashes of the one
-//! style sheet and the one script, so that no other may run; `__PROGRAM_HASH__` becomes the SHA-256 of the whole page
+//! The marks of the page, each exactly once: the comments `pack:style`, `pack:worker`, `pack:wasm`, `pack:script` and
+//! `pack:start` become elements. The page's script is packed like the WebAssembly; the short one at `pack:start` unpacks
+//! and runs it. `__STYLE_HASH__`, `__START_HASH__` and `__SCRIPT_HASH__` in the Content-Security-Policy become the hashes
+//! of the one style sheet and these two scripts, so that no other may run; `__PROGRAM_HASH__` becomes the SHA-256 of the whole page
 //! as it is with nothing in that place.
 
 use crate::bundle::Scripts;
@@ -38,19 +39,19 @@ pub(crate) fn assemble(places: &Places, parts: &Parts) -> Result<Page> {
         fs::read_to_string(&path).with_context(|| format!("cannot read {}", path.display()))
     };
     let style = style(&read("style.css")?)?;
-    let script = inline(&parts.scripts.page);
+    let start = inline(&parts.scripts.start);
+    let script = &parts.scripts.page;
     let worker = inline(&parts.scripts.worker);
-    let wasm = STANDARD.encode(deflate(&parts.wasm)?);
-
     let mut html = read("index.html")?;
     html = fill(&html, "__STYLE_HASH__", &policy_hash(&style))?;
-    html = fill(&html, "__SCRIPT_HASH__", &policy_hash(&script))?;
+    html = fill(&html, "__START_HASH__", &policy_hash(&start))?;
+    html = fill(&html, "__SCRIPT_HASH__", &policy_hash(script))?;
     html = fill(&html, "<!-- pack:style -->", &format!("<style>{style}</style>"))?;
-    html = fill(&html, "<!-- pack:script -->", &format!("<script>{script}</script>"))?;
+    html = fill(&html, "<!-- pack:script -->", &packed("page-script", script.as_bytes())?)?;
+    html = fill(&html, "<!-- pack:start -->", &format!("<script>{start}</script>"))?;
     let worker = format!("<script type=\"text/plain\" id=\"worker-source\">{worker}</script>");
     html = fill(&html, "<!-- pack:worker -->", &worker)?;
-    let wasm = format!("<script type=\"application/octet-stream;base64\" id=\"engine-wasm\">{wasm}</script>");
-    html = fill(&html, "<!-- pack:wasm -->", &wasm)?;
+    html = fill(&html, "<!-- pack:wasm -->", &packed("engine-wasm", &parts.wasm)?)?;
 
     let program_hash = hexadecimal(&Sha256::digest(fill(&html, PROGRAM_HASH, "")?));
     let html = fill(&html, PROGRAM_HASH, &program_hash)?;
@@ -58,6 +59,12 @@ pub(crate) fn assemble(places: &Places, parts: &Parts) -> Result<Page> {
         bail!("the page has {} bytes; it must stay below {MOST_BYTES}", html.len());
     }
     Ok(Page { html, program_hash })
+}
+
+/// An element that the browser does not run, with the bytes deflated, in base64.
+fn packed(id: &str, bytes: &[u8]) -> Result<String> {
+    let text = STANDARD.encode(deflate(bytes)?);
+    Ok(format!("<script type=\"application/octet-stream;base64\" id=\"{id}\">{text}</script>"))
 }
 
 /// Puts `value` in the place of `mark`, which must be there once.

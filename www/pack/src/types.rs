@@ -1,4 +1,4 @@
-//! The TypeScript types of project, record and answer, made from the Rust ones.
+//! The TypeScript types of project, record and answer, made from the Rust ones, and the table of requirement kinds.
 //!
 //! `www/src/types.ts` is committed, so that an editor knows the types before the first build; the check makes sure
 //! that it is what the generator makes.
@@ -6,7 +6,8 @@
 use crate::places::Places;
 use anyhow::{Context, Result, bail};
 use stayband_core::answer::Answer;
-use stayband_core::project::Project;
+use stayband_core::project::{Project, RequirementKind};
+use stayband_core::ranges::requirements::{at_least, unit};
 use std::any::TypeId;
 use std::collections::BTreeMap;
 use std::fmt::Write;
@@ -16,7 +17,7 @@ use ts_rs::{Config, TS, TypeVisitor};
 
 /// The head of the generated file.
 const HEAD: &str =
-    "// Made by `cargo page` from the types of the core (core/src/project.rs, record.rs, answer.rs). Do not edit.\n";
+    "// Made by `cargo page` from the types of the core (core/src/project.rs, record/, answer.rs). Do not edit.\n";
 
 /// Writes the types, where they are not already there.
 pub(crate) fn write(places: &Places) -> Result<()> {
@@ -55,8 +56,22 @@ fn generate() -> String {
         // Writing to a string cannot fail.
         let _ = write!(text, "\n{declaration}\n");
     }
+    text.push_str(&requirement_facts());
     // The generator leaves spaces at the ends of lines.
     text.lines().map(|line| format!("{}\n", line.trim_end())).collect()
+}
+
+/// What the core says of every kind of requirement, so that the page need not say it again.
+fn requirement_facts() -> String {
+    let mut text = "\n/** Unit of limit and figure, and whether the figure must be at least the limit, for every kind. */\n\
+        export const REQUIREMENT_FACTS: { readonly [kind in RequirementKind]: { readonly unit: string; readonly atLeast: boolean } } = {\n"
+        .to_owned();
+    for kind in RequirementKind::ALL {
+        // A kind serializes to its name in quotes, and writing to a string cannot fail.
+        let name = serde_json::to_string(&kind).unwrap_or_default();
+        let _ = writeln!(text, "  {name}: {{ unit: {:?}, atLeast: {} }},", unit(kind), at_least(kind));
+    }
+    text + "};\n"
 }
 
 /// The declarations of all types that were visited, and of those they are made of.

@@ -1,87 +1,59 @@
-//! Everything about a loop that does not depend on the chosen setting.
+//! The analysis of a loop that is a ratio of polynomials in s.
 
+use super::{Findings, lost_branches, not_computed};
 use crate::exact::complex_roots::roots;
 use crate::exact::gcd::squarefree_factors;
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
-use crate::locus::{Branch, LocusInput, Meeting, branches, close_calls, landmarks, meetings, view};
+use crate::locus::{LocusInput, Meeting, branches, encounters, landmarks, trade, view};
 use crate::model::{self, KnobPolynomial, Loop};
 use crate::ranges::permitted::short;
-use crate::ranges::pieces::Piece;
-use crate::ranges::requirements::{Ground, Lane, Limit, Samples, lane, stable_pieces};
+use crate::ranges::requirements::stable_pieces;
 use crate::ranges::{Contact, Family, Partition, verdict};
-use crate::record::{
-    CharacterRange, ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Point, Root, StabilityRange, View,
-};
+use crate::record::{ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Point, Root};
 use alloc::format;
 use alloc::string::{String, ToString};
 use alloc::vec::Vec;
-use core::cell::{OnceCell, RefCell};
 use dashu_ratio::RBig;
 
-/// A loop, analysed.
-pub struct Analysis {
-    /// The loop as built from the project.
-    pub model: Loop,
-    family: Family,
-    partition: Partition,
-    /// The whole real line of the knob.
-    pub stability: Vec<StabilityRange>,
-    /// Likewise; empty where it could not be told.
-    pub character: Vec<CharacterRange>,
-    /// The special points.
-    pub landmarks: Vec<Landmark>,
-    /// Poles of the open loop, fixed modes included.
-    pub poles: Vec<Root>,
-    /// Zeros of the open loop, fixed modes included; empty unless affine.
-    pub zeros: Vec<Root>,
+/// What the questions about such a loop need.
+pub(super) struct Rational {
+    /// The characteristic polynomial over the knob.
+    pub(super) family: Family,
+    /// The line of the knob, cut where something happens.
+    pub(super) partition: Partition,
     /// The moving poles and zeros of an affine loop.
     moving: (Vec<Root>, Vec<Root>),
-    /// The default view.
-    pub view: View,
-    /// Warnings, most serious first.
-    pub notices: Vec<Notice>,
-    /// Both halves of the locus.
-    pub branches: Vec<Branch>,
-    /// The stable ranges.
-    pub stable: Vec<Piece>,
-    /// The loop at many settings, computed when the first requirement asks.
-    samples: OnceCell<Samples>,
-    /// Lanes computed so far.
-    lanes: RefCell<Vec<(Limit, Lane)>>,
 }
 
-/// Lanes kept; more than there are kinds, so that a limit may be changed back and forth.
-const LANES_KEPT: usize = 64;
-
-impl Analysis {
+impl Rational {
     /// Analyses a loop.
     ///
     /// # Errors
     /// From the exact methods, when a cap is met before the ranges are proven.
-    pub fn new(model: Loop) -> Result<Self, ExactError> {
+    pub(super) fn analyse(model: &Loop) -> Result<(Findings, Self), ExactError> {
         let polynomial = &model.characteristic;
         let parts = (0..=polynomial.knob_degree()).map(|k| IntPoly::new(polynomial.at_knob_power(k))).collect();
         let family =
             Family::new(parts).unwrap_or(Family { fixed: IntPoly::default(), parts: [IntPoly::from_i64(&[1])].into() });
         let partition = Partition::new(&family)?;
-        let mut notices = notices(&model, &family, &partition)?;
-        let meetings = meetings(&family, &partition);
-        if let Err(error) = &meetings {
+        let mut notices = notices(model, &family, &partition)?;
+        let encounters = encounters(&family, &partition);
+        if let Err(error) = &encounters {
             notices.push(not_computed("breakaway points and the character of the ranges", error));
         }
         let last = &family.parts[family.knob_degree()];
         let moving = (roots(&family.parts[0])?, if family.knob_degree() > 0 { roots(last)? } else { Vec::new() });
-        let found = meetings.as_deref().unwrap_or_default();
-        let landmarks = all_landmarks(&family, &partition, found, &moving);
+        let followed = encounters.is_ok();
+        let encounters = encounters.unwrap_or_default();
+        let landmarks = all_landmarks(&family, &partition, &encounters.meetings, &moving);
         let (poles, zeros) = open_loop(&family, &moving)?;
         let view = view::frame(poles.iter().chain(&zeros).map(place).chain(landmarks.iter().map(|l| l.s)));
         let fixed = roots(&family.fixed)?;
         let input = LocusInput {
             family: &family,
             partition: &partition,
-            meetings: found,
-            close_calls: &close_calls(&family, found),
+            encounters: &encounters,
             fixed: &fixed,
             poles: &moving.0,
             zeros: &moving.1,
@@ -89,84 +61,46 @@ impl Analysis {
         };
         let mut all = Vec::new();
         for sign in KnobSign::BOTH {
-            match branches(&input, sign).filter(|_| meetings.is_ok()) {
+            match branches(&input, sign).filter(|_| followed) {
                 Some(found) => all.extend(found),
                 None => notices.push(lost_branches(sign)),
             }
         }
-        let (stability, character) = (partition.stability(), partition.character());
-        let stable = stable_pieces(&partition);
-        notices.sort_by_key(|notice| notice.kind);
-        Ok(Self {
-            model,
-            family,
-            partition,
-            stability,
-            character,
+        let own = Self { family, partition, moving };
+        let partition = &own.partition;
+        let affine = own.affine();
+        let findings = Findings {
+            stability: partition.stability(),
+            character: partition.character(),
             landmarks,
+            asymptotes: affine.map(|p| trade::for_both_signs(|sign| trade::asymptotes(p.d, p.n, sign))),
+            real_axis: affine.map(|p| trade::for_both_signs(|sign| trade::real_axis(p.d, p.n, p.poles, p.zeros, sign))),
             poles,
             zeros,
-            moving,
             view,
             notices,
             branches: all,
-            stable,
-            samples: OnceCell::new(),
-            lanes: RefCell::default(),
-        })
+            stable: stable_pieces(partition),
+        };
+        Ok((findings, own))
     }
 
     /// D and N of the moving part with their roots, where the loop is affine in the knob.
-    pub fn affine(&self) -> Option<AffineParts<'_>> {
+    pub(super) fn affine(&self) -> Option<AffineParts<'_>> {
         let (d, n) = self.family.affine()?;
         Some(AffineParts { d, n, poles: &self.moving.0, zeros: &self.moving.1 })
-    }
-
-    /// The characteristic polynomial over the knob, its fixed factor taken out.
-    pub fn family(&self) -> &Family {
-        &self.family
-    }
-
-    /// The line of the knob, cut where something happens.
-    pub fn partition(&self) -> &Partition {
-        &self.partition
-    }
-
-    /// Where a requirement is met; kept for the next time.
-    ///
-    /// # Errors
-    /// From the exact methods, when a cap is met.
-    pub fn lane(&self, limit: &Limit) -> Result<Lane, ExactError> {
-        if let Some((_, lane)) = self.lanes.borrow().iter().find(|(known, _)| known == limit) {
-            return Ok(lane.clone());
-        }
-        let samples = match self.samples.get() {
-            Some(samples) => samples,
-            None => {
-                let samples = Samples::new(&self.model, &self.stable)?;
-                self.samples.get_or_init(|| samples)
-            }
-        };
-        let ground = Ground { model: &self.model, family: &self.family, stable: &self.stable, samples };
-        let found = lane(&ground, limit)?;
-        let mut lanes = self.lanes.borrow_mut();
-        if lanes.len() >= LANES_KEPT {
-            lanes.remove(0);
-        }
-        lanes.push((limit.clone(), found.clone()));
-        Ok(found)
     }
 
     /// The closed loop at a value of the knob.
     ///
     /// # Errors
     /// From the exact methods, when a cap is met.
-    pub fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, ExactError> {
+    pub(super) fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, ExactError> {
         let polynomial = self.family.at(knob).times(&self.family.fixed);
         let verdict = verdict(&polynomial, &IntPoly::from_i64(&[1]))?;
         Ok(ClosedLoop {
             knob: knob.to_f64().value(),
-            poles: roots(&polynomial)?,
+            poles: roots(&polynomial)?.into_iter().map(Into::into).collect(),
             unstable_poles: verdict.half_plane.right,
             axis_poles: verdict.half_plane.axis,
             name: verdict.name,
@@ -279,19 +213,4 @@ fn fixed_mode(factor: &IntPoly, knob: &str) -> Result<Notice, ExactError> {
 /// A root in four digits, for a sentence.
 fn written(root: &Root) -> String {
     if root.im == 0.0 { short(root.re) } else { format!("{} ± {} j", short(root.re), short(root.im)) }
-}
-
-fn not_computed(what: &str, error: &ExactError) -> Notice {
-    Notice { kind: NoticeKind::NotComputed, text: format!("{what} could not be computed: {error}") }
-}
-
-fn lost_branches(sign: KnobSign) -> Notice {
-    let half = match sign {
-        KnobSign::Positive => "positive",
-        KnobSign::Negative => "negative",
-    };
-    let text = format!(
-        "the branches of the {half} half of the locus could not be followed with certainty and are not drawn; the ranges are not touched by this"
-    );
-    Notice { kind: NoticeKind::NotComputed, text }
 }
