@@ -12,7 +12,7 @@ from polynomials import at_knob, rational
 
 #: Of a formula that must vanish, relative to the sum of the sizes of its terms: f64 arguments leave some 1e-13, a factor for the
 #: degree of up to 20.
-VANISHING = 1e-11
+VANISHING = Fraction(1, 10**11)
 #: Degrees; angles are sums of arguments of differences.
 ANGLE = 1e-6
 #: Knob values that stand for "any".
@@ -216,7 +216,7 @@ def complex_vanishes(p, s):
     terms = [float(int(p[i]) / Fraction(int(p[p.degree()]))) * unit ** (i - p.degree()) for i in range(p.degree() + 1)]
     z = s / unit
     value = sum(t * z**i for i, t in enumerate(terms))
-    return abs(value) <= VANISHING * sum(abs(t) for t in terms)
+    return abs(value) <= float(VANISHING) * sum(abs(t) for t in terms)
 
 
 def check_directions(case, derivation, report):

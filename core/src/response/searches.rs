@@ -87,9 +87,11 @@ impl Modes {
     /// Time and value of the first `count` turns at which the answer, taken in the direction of its final value, is highest.
     /// None where there are not so many before it has settled, or the search meets its cap.
     pub fn first_peaks(&self, count: usize) -> Option<Vec<(f64, f64)>> {
-        let mut peaks =
-            FirstPeaks { direction: self.final_value.signum(), count, rising: false, found: Vec::with_capacity(count) };
-        self.search(self.quiet_after(SETTLED * self.final_value.abs()), &mut peaks)?;
+        let direction = self.final_value.signum();
+        let seen = SETTLED * self.final_value.abs();
+        let swing = Swing::Down(direction * self.start);
+        let mut peaks = FirstPeaks { direction, seen, count, swing, found: Vec::with_capacity(count) };
+        self.search(self.quiet_after(seen), &mut peaks)?;
         (peaks.found.len() == count).then_some(peaks.found)
     }
 
@@ -298,10 +300,20 @@ impl Quest for FirstReach {
 
 struct FirstPeaks {
     direction: f64,
+    /// Smaller changes are none.
+    seen: f64,
     count: usize,
-    /// Whether the answer rose on the stretch before.
-    rising: bool,
+    swing: Swing,
     found: Vec<(f64, f64)>,
+}
+
+/// Where an answer goes, in the direction of its final value.
+#[derive(Clone, Copy)]
+enum Swing {
+    /// Up; time and value of its highest point.
+    Up(f64, f64),
+    /// Down, or not yet up; its lowest value.
+    Down(f64),
 }
 
 impl Quest for FirstPeaks {
@@ -309,13 +321,18 @@ impl Quest for FirstPeaks {
         false
     }
 
-    fn look(&mut self, modes: &Modes, from: f64, to: f64) -> bool {
-        let (before, after) = (modes.value(from), modes.value(to));
-        let rises = (after - before) * self.direction > 0.0;
-        if self.rising && !rises {
-            self.found.push((from, before));
-        }
-        self.rising = rises;
+    fn look(&mut self, modes: &Modes, _: f64, to: f64) -> bool {
+        let y = self.direction * modes.value(to);
+        self.swing = match self.swing {
+            Swing::Up(_, top) if y >= top => Swing::Up(to, y),
+            Swing::Up(t, top) if top - y > self.seen => {
+                self.found.push((t, self.direction * top));
+                Swing::Down(y)
+            }
+            Swing::Down(low) if y - low > self.seen => Swing::Up(to, y),
+            Swing::Down(low) => Swing::Down(low.min(y)),
+            up @ Swing::Up(..) => up,
+        };
         self.found.len() == self.count
     }
 
