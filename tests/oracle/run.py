@@ -3,6 +3,8 @@
     run.py --binary target/release/records              everything
     run.py --binary … --only 117                        the random loop of seed 117
     run.py --binary … --only requirements-12            the random loop with requirements of seed 12
+    run.py --binary … --only sheet-12                   the sheet of the random loop of seed 12; also sheet-requirements-12
+    run.py --binary … --only site-12                    the machine of seed 12, measured and found again
     run.py --binary … --only "touching edge"            a nasty one by name
     run.py --binary … --self-test                       shows that the checks can fail
 
@@ -24,8 +26,10 @@ sys.path.insert(0, str(Path(__file__).parent.parent / "published"))
 import published
 import requirement_cases
 import requirement_checks
+import check_site
 import selftest
 import selftest_requirements
+import sheet_checks
 import tolerances
 from binary import Records
 from checks import check_case
@@ -85,6 +89,9 @@ def every_job(seeds):
     return (
         [("nasty", case.name) for case in nasty]
         + [("requirements", f"requirements-{seed}") for seed in range(requirement_cases.SEEDS)]
+        + [("sheet", f"sheet-{seed}") for seed in range(sheet_checks.RANDOM)]
+        + [("sheet", f"sheet-requirements-{seed}") for seed in range(sheet_checks.WITH_REQUIREMENTS)]
+        + [("site", f"site-{seed}") for seed in range(check_site.SEEDS)]
         + [("random", seed) for seed in sorted(range(seeds), key=lambda seed: -(seed % 19))]
         + [("published", figure["id"]) for figure in published.figures()]
     )
@@ -101,12 +108,13 @@ def named_jobs(name):
 
 
 RECORDS = None
+SHEETS = None
 
 
 def start_worker(path):
-    """Every worker talks to its own process of the program, and gives up a case that hangs."""
-    global RECORDS
-    RECORDS = Records(path)
+    """Every worker talks to its own processes of the program, and gives up a case that hangs."""
+    global RECORDS, SHEETS
+    RECORDS, SHEETS = Records(path), Records(path, "--sheet")
     signal.signal(signal.SIGALRM, give_up)
 
 
@@ -140,6 +148,15 @@ def checked(job):
         case = requirement_cases.requirement_case(int(key.removeprefix("requirements-")))
         report = requirement_checks.check_case(case, RECORDS)
         result = case.name, case.text, report.passed, report.failures
+    elif kind == "sheet":
+        name = key.removeprefix("sheet-")
+        seed = int(name.removeprefix("requirements-"))
+        case = random_case(seed) if name.isdigit() else requirement_cases.requirement_case(seed)
+        report = sheet_checks.check_case(case, SHEETS)
+        result = key, case.text, report.passed, report.failures
+    elif kind == "site":
+        project, report = check_site.check_site(int(key.removeprefix("site-")), SHEETS)
+        result = key, project, report.passed, report.failures
     else:
         case = random_case(key) if kind == "random" else next(c for c in all_cases() if c.name == key)
         followed = kind == "nasty" or case.loop.order <= ALWAYS_FOLLOWED or key % FOLLOWED_EACH == 0

@@ -16,6 +16,11 @@ export function fileName(title: string, ending: string = ENDING): string {
   return (name || "loop") + ending;
 }
 
+/** The project as it is written into a file. */
+export function fileDocument(project: Project): string {
+  return `${JSON.stringify(project, null, 2)}\n`;
+}
+
 /** Hands a text to the browser as a download. */
 export function download(name: string, type: string, text: string): void {
   const blob = new Blob([text], { type });

@@ -10,18 +10,21 @@ use crate::locus::Branch;
 use crate::model::Loop;
 use crate::ranges::pieces::Piece;
 use crate::ranges::requirements::{Ground, Lane, Limit, Samples, lane};
+use crate::ranges::{Family, Partition};
 use crate::record::{
     Asymptotes, BothSigns, CharacterRange, ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Root, Segment,
     StabilityRange, View,
 };
 use crate::response::Setup;
+use alloc::boxed::Box;
 use alloc::format;
 use alloc::vec::Vec;
 use core::cell::{OnceCell, RefCell};
 use dashu_ratio::RBig;
 use dead_time::DeadTime;
 pub use error::AnalysisError;
-pub use rational::{AffineParts, Rational};
+pub use rational::AffineParts;
+use rational::Rational;
 use sampled::Sampled;
 
 /// A loop, analysed.
@@ -66,7 +69,7 @@ pub struct Findings {
 /// What kind of loop it is, with what its questions need.
 enum Method {
     /// A ratio of polynomials in s.
-    Rational(Rational),
+    Rational(Box<Rational>),
     /// With dead time, controlled continuously.
     DeadTime(DeadTime),
     /// With a sampled controller.
@@ -87,7 +90,7 @@ impl Analysis {
             (findings, Method::Sampled(sampled))
         } else if model.open_loop.dead_time.is_none() {
             let (findings, rational) = Rational::analyse(&model)?;
-            (findings, Method::Rational(rational))
+            (findings, Method::Rational(Box::new(rational)))
         } else {
             let (findings, dead_time) = DeadTime::analyse(&model)?;
             (findings, Method::DeadTime(dead_time))
@@ -96,10 +99,18 @@ impl Analysis {
         Ok(Self { model, findings, method, samples: OnceCell::new(), lanes: RefCell::default() })
     }
 
-    /// The polynomials and their ranges, where the loop is a ratio of polynomials in s.
-    pub fn rational(&self) -> Option<&Rational> {
+    /// D and N of the moving part with their roots, where the loop is a ratio of polynomials and affine in the knob.
+    pub fn affine(&self) -> Option<AffineParts<'_>> {
         match &self.method {
-            Method::Rational(rational) => Some(rational),
+            Method::Rational(rational) => rational.affine(),
+            Method::DeadTime(_) | Method::Sampled(_) => None,
+        }
+    }
+
+    /// The characteristic polynomial over the knob and the line of the knob, where the loop is a ratio of polynomials.
+    pub fn rational(&self) -> Option<(&Family, &Partition)> {
+        match &self.method {
+            Method::Rational(rational) => Some((&rational.family, &rational.partition)),
             Method::DeadTime(_) | Method::Sampled(_) => None,
         }
     }
@@ -125,7 +136,7 @@ impl Analysis {
                 self.samples.get_or_init(|| samples)
             }
         };
-        let family = self.rational().map(|rational| &rational.family);
+        let family = self.rational().map(|(family, _)| family);
         let ground = Ground { model: &self.model, setup: self.setup(), family, stable, samples };
         let found = lane(&ground, limit)?;
         let mut lanes = self.lanes.borrow_mut();

@@ -21,11 +21,11 @@ const SHORTEST: f64 = 1e-11;
 /// Extremes are right to this part of the answer's largest known value; closer ones are not told apart.
 const PEAK_ERROR: f64 = 1e-13;
 
-/// No peak is looked for where the answer stays this near to its final value: nobody sees it on a record.
-const SETTLED: f64 = 1e-6;
-
 /// Rounding of the sum of modes, as a part of the sum of their sizes.
 const ROUNDING: f64 = 1e-15;
+
+/// No peak is looked for where the answer stays this near to its final value: nobody sees it on a record.
+const SETTLED: f64 = 1e-6;
 
 /// Evaluations for one root: chord steps need some eight, halving alone 52.
 const ROOT_CAP: usize = 80;
@@ -75,15 +75,6 @@ impl Modes {
         Some(reach.found.unwrap_or(quiet))
     }
 
-    /// Time and value of the first `count` turns at which the answer, taken in the direction of its final value, is highest.
-    /// None where there are not so many before it has settled, or the search meets its cap.
-    pub fn first_peaks(&self, count: usize) -> Option<Vec<(f64, f64)>> {
-        let settled = SETTLED * self.final_value.abs();
-        let mut peaks = FirstPeaks { direction: self.final_value.signum(), count, rising: false, found: Vec::new() };
-        self.search(self.quiet_after(settled.max(f64::MIN_POSITIVE)), &mut peaks)?;
-        (peaks.found.len() == count).then_some(peaks.found)
-    }
-
     /// The last time at which |y − y(∞)| is `band`, 0 where it never is more. None where the search meets its cap.
     pub fn last_outside(&self, band: f64) -> Option<f64> {
         if band <= 0.0 {
@@ -92,6 +83,17 @@ impl Modes {
         let mut outside = LastOutside { end: self.final_value, band, found: None };
         self.search(self.quiet_after(band), &mut outside)?;
         Some(outside.found.unwrap_or(0.0))
+    }
+
+    /// Time and value of the first `count` turns at which the answer, taken in the direction of its final value, is highest.
+    /// None where there are not so many before it has settled, or the search meets its cap.
+    pub fn first_peaks(&self, count: usize) -> Option<Vec<(f64, f64)>> {
+        let direction = self.final_value.signum();
+        let seen = SETTLED * self.final_value.abs();
+        let swing = Swing::Down(direction * self.start);
+        let mut peaks = FirstPeaks { direction, seen, count, swing, found: Vec::with_capacity(count) };
+        self.search(self.quiet_after(seen), &mut peaks)?;
+        (peaks.found.len() == count).then_some(peaks.found)
     }
 
     /// Looks through the times from 0 to `until`. None where the cap is met.
@@ -268,41 +270,6 @@ impl Quest for Extremes {
     }
 }
 
-struct FirstPeaks {
-    /// The sign of the final value.
-    direction: f64,
-    /// As many are wanted.
-    count: usize,
-    /// Whether the answer rose on the stretch before.
-    rising: bool,
-    /// Time and value.
-    found: Vec<(f64, f64)>,
-}
-
-impl Quest for FirstPeaks {
-    fn is_dull(&self, _: &Stretch) -> bool {
-        false
-    }
-
-    fn look(&mut self, modes: &Modes, from: f64, to: f64) -> bool {
-        let (before, after) = (modes.value(from), modes.value(to));
-        let rises = (after - before) * self.direction > 0.0;
-        if self.rising && !rises {
-            self.found.push((from, before));
-        }
-        self.rising = rises;
-        self.found.len() == self.count
-    }
-
-    fn take(&mut self, _: &Stretch) -> bool {
-        false
-    }
-
-    fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
-        false
-    }
-}
-
 struct FirstReach {
     scale: f64,
     part: f64,
@@ -327,6 +294,53 @@ impl Quest for FirstReach {
     fn take(&mut self, stretch: &Stretch) -> bool {
         self.found = Some(stretch.to);
         true
+    }
+
+    fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
+        false
+    }
+}
+
+struct FirstPeaks {
+    direction: f64,
+    /// Smaller changes are none.
+    seen: f64,
+    count: usize,
+    swing: Swing,
+    found: Vec<(f64, f64)>,
+}
+
+/// Where an answer goes, in the direction of its final value.
+#[derive(Clone, Copy)]
+enum Swing {
+    /// Up; time and value of its highest point.
+    Up(f64, f64),
+    /// Down, or not yet up; its lowest value.
+    Down(f64),
+}
+
+impl Quest for FirstPeaks {
+    fn is_dull(&self, _: &Stretch) -> bool {
+        false
+    }
+
+    fn look(&mut self, modes: &Modes, _: f64, to: f64) -> bool {
+        let y = self.direction * modes.value(to);
+        self.swing = match self.swing {
+            Swing::Up(_, top) if y >= top => Swing::Up(to, y),
+            Swing::Up(t, top) if top - y > self.seen => {
+                self.found.push((t, self.direction * top));
+                Swing::Down(y)
+            }
+            Swing::Down(low) if y - low > self.seen => Swing::Up(to, y),
+            Swing::Down(low) => Swing::Down(low.min(y)),
+            up @ Swing::Up(..) => up,
+        };
+        self.found.len() == self.count
+    }
+
+    fn take(&mut self, _: &Stretch) -> bool {
+        false
     }
 
     fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
