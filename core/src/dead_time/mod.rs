@@ -6,6 +6,7 @@
 //! and none is a mere touch.
 
 pub mod delay;
+pub mod frequency;
 mod function;
 pub mod gain;
 mod isolation;
