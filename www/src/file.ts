@@ -1,5 +1,6 @@
 // Saving to and opening from a file.
 import { LARGEST_PROJECT } from "./link.ts";
+import type { Project } from "./types.ts";
 
 /** How the name of a project's file ends. */
 const ENDING = ".stayband.json";

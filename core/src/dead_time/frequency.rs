@@ -14,6 +14,7 @@ use crate::exact::scaled::Scaled;
 use crate::exact::{ExactError, IntPoly};
 use crate::ranges::Contact;
 use crate::record::{FrequencyResponse, GainCrossing, PhaseCrossing};
+use crate::response::OpenLoop;
 use alloc::vec::Vec;
 use core::cell::OnceCell;
 use core::f64::consts::PI;
@@ -63,6 +64,36 @@ pub struct DelayFrequency {
     bandwidth: OnceCell<Option<f64>>,
 }
 
+impl OpenLoop for DelayFrequency {
+    fn gain_crossings(&self) -> Result<Vec<GainCrossing>, ExactError> {
+        Ok(self.all_gain_crossings().map_err(exact)?.to_vec())
+    }
+
+    fn phase_crossings(&self) -> Result<Vec<PhaseCrossing>, ExactError> {
+        Ok(self.known_phase_crossings().map_err(exact)?.to_vec())
+    }
+
+    fn peak(&self) -> Result<(f64, f64), ExactError> {
+        self.highest_sensitivity().map_err(exact)
+    }
+
+    fn bandwidth(&self) -> Result<Option<f64>, ExactError> {
+        self.first_bandwidth().map_err(exact)
+    }
+
+    fn response(&self) -> Result<FrequencyResponse, ExactError> {
+        self.drawn().map_err(exact)
+    }
+}
+
+/// A cap of these methods, as one of the exact ones.
+fn exact(error: DeadTimeError) -> ExactError {
+    match error {
+        DeadTimeError::Exact(error) => error,
+        _ => ExactError::EdgeNotNarrow,
+    }
+}
+
 impl DelayFrequency {
     /// Of L = above/below·e^(−sT), where 1 + L is the characteristic function of a stable loop (for positive feedback `above`
     /// carries the sign). Command to output is transfer/(below + above·e^(−sT)), but for a dead time. `poles` are known poles
@@ -103,7 +134,7 @@ impl DelayFrequency {
     ///
     /// # Errors
     /// From the exact methods, when a cap is met.
-    pub fn gain_crossings(&self) -> Result<&[GainCrossing], DeadTimeError> {
+    fn all_gain_crossings(&self) -> Result<&[GainCrossing], DeadTimeError> {
         if self.gain_crossings.get().is_none() {
             let omegas = frequencies(&squared(&self.above).minus(&squared(&self.below)))?;
             let found = omegas.into_iter().map(|omega| self.gain_crossing(omega)).collect();
@@ -123,7 +154,7 @@ impl DelayFrequency {
     ///
     /// # Errors
     /// From [`GainFamily::partition`].
-    pub fn phase_crossings(&self) -> Result<&[PhaseCrossing], DeadTimeError> {
+    fn known_phase_crossings(&self) -> Result<&[PhaseCrossing], DeadTimeError> {
         if self.phase_crossings.get().is_none() {
             let family = GainFamily::new(&self.below, &IntPoly::default(), &self.above, &self.dead_time)?;
             let found = phase_crossings(&family.partition()?);
@@ -132,45 +163,11 @@ impl DelayFrequency {
         Ok(self.phase_crossings.get().map_or(&[], Vec::as_slice))
     }
 
-    /// The factor by which the gain may rise; infinite without limit.
-    ///
-    /// # Errors
-    /// As [`Self::phase_crossings`].
-    pub fn gain_up(&self) -> Result<f64, DeadTimeError> {
-        let factors = self.phase_crossings()?.iter().map(|c| c.factor);
-        Ok(factors.filter(|f| *f > 1.0).fold(f64::INFINITY, f64::min))
-    }
-
-    /// The divisor by which the gain may fall; infinite without limit.
-    ///
-    /// # Errors
-    /// As [`Self::phase_crossings`].
-    pub fn gain_down(&self) -> Result<f64, DeadTimeError> {
-        let factors = self.phase_crossings()?.iter().map(|c| c.factor);
-        Ok(factors.filter(|f| *f < 1.0).map(|f| 1.0 / f).fold(f64::INFINITY, f64::min))
-    }
-
-    /// Degrees: the smallest turn of the phase, in either direction, that makes the loop marginal; infinite without one.
-    ///
-    /// # Errors
-    /// As [`Self::gain_crossings`].
-    pub fn phase_margin(&self) -> Result<f64, DeadTimeError> {
-        Ok(self.gain_crossings()?.iter().map(|c| c.phase_margin.abs()).fold(f64::INFINITY, f64::min))
-    }
-
-    /// s: the smallest dead time that, added to the loop's own, makes it marginal; infinite without one.
-    ///
-    /// # Errors
-    /// As [`Self::gain_crossings`].
-    pub fn delay_margin(&self) -> Result<f64, DeadTimeError> {
-        Ok(self.gain_crossings()?.iter().map(|c| c.delay_margin).fold(f64::INFINITY, f64::min))
-    }
-
     /// Where the sensitivity peaks, rad/s, and its peak.
     ///
     /// # Errors
     /// From the exact methods, when a cap is met.
-    pub fn peak(&self) -> Result<(f64, f64), DeadTimeError> {
+    fn highest_sensitivity(&self) -> Result<(f64, f64), DeadTimeError> {
         if self.peak.get().is_none() {
             let found = self.peak_sensitivity()?;
             self.peak.get_or_init(|| found);
@@ -182,7 +179,7 @@ impl DelayFrequency {
     ///
     /// # Errors
     /// From the exact methods, when a cap is met.
-    pub fn bandwidth(&self) -> Result<Option<f64>, DeadTimeError> {
+    fn first_bandwidth(&self) -> Result<Option<f64>, DeadTimeError> {
         if self.bandwidth.get().is_none() {
             let found = self.first_fall()?;
             self.bandwidth.get_or_init(|| found);
@@ -305,10 +302,10 @@ impl DelayFrequency {
     ///
     /// # Errors
     /// As [`Self::gain_crossings`] and [`Self::phase_crossings`].
-    pub fn response(&self) -> Result<FrequencyResponse, DeadTimeError> {
+    fn drawn(&self) -> Result<FrequencyResponse, DeadTimeError> {
         let (low, mut high) = self.radii();
-        let crossings = self.gain_crossings()?.iter().map(|c| c.omega);
-        let crossings: Vec<f64> = crossings.chain(self.phase_crossings()?.iter().map(|c| c.omega)).collect();
+        let crossings = self.all_gain_crossings()?.iter().map(|c| c.omega);
+        let crossings: Vec<f64> = crossings.chain(self.known_phase_crossings()?.iter().map(|c| c.omega)).collect();
         // What the dead time turns more often is only a blur.
         high = crossings.iter().copied().fold((10.0 * high).min(TURNS_DRAWN * 2.0 * PI / self.seconds), f64::max);
         let start = 0.1 * low;

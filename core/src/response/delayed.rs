@@ -2,7 +2,9 @@
 
 use super::loop_at::Answer;
 use super::motion::Motion;
+use super::open_loop::OpenLoop;
 use crate::dead_time::delay::count_at;
+use crate::dead_time::frequency::DelayFrequency;
 use crate::dead_time::response::{Output, to_step};
 use crate::dead_time::{Quasi, poles};
 use crate::exact::IntPoly;
@@ -22,6 +24,7 @@ pub(super) struct Delayed {
     pub(super) total: RBig,
     poles: OnceCell<Vec<Complex<f64>>>,
     answers: OnceCell<Option<[Motion; 3]>>,
+    frequency: OnceCell<DelayFrequency>,
 }
 
 /// The numerators, over the characteristic function, of what is asked: output, load, controller output.
@@ -41,6 +44,7 @@ impl Delayed {
             total,
             poles: OnceCell::new(),
             answers: OnceCell::new(),
+            frequency: OnceCell::new(),
         })
     }
 
@@ -62,6 +66,14 @@ impl Delayed {
                 Ok(all) if slowest.is_finite() => all.iter().map(place).collect(),
                 _ => dominant.iter().map(place).collect(),
             }
+        })
+    }
+
+    /// The open loop over frequency; `transfer` is the numerator of command to output.
+    pub(super) fn frequency(&self, open: &BlockAt, transfer: impl FnOnce() -> IntPoly) -> &dyn OpenLoop {
+        self.frequency.get_or_init(|| {
+            let poles = self.poles(open).iter().copied();
+            DelayFrequency::new(&open.above, &open.below, &self.total, &transfer(), poles)
         })
     }
 

@@ -80,7 +80,7 @@ impl LoopAt {
             Kind::GainMarginDown => frequency().and_then(|f| f.gain_down().ok()).map(decibel).into(),
             Kind::PhaseMargin => frequency().and_then(|f| f.phase_margin().ok()).into(),
             Kind::DelayMargin => frequency().and_then(|f| f.delay_margin().ok()).into(),
-            Kind::PeakSensitivity => frequency().map(|f| f.peak().1).into(),
+            Kind::PeakSensitivity => frequency().and_then(|f| f.peak().ok()).map(|peak| peak.1).into(),
             Kind::Bandwidth => frequency().and_then(|f| f.bandwidth().ok().flatten()).into(),
             Kind::Overshoot => self.output().figure(|m, p| overshoot(m, p).into()),
             Kind::Undershoot => self.output().figure(|m, p| undershoot(m, p).into()),

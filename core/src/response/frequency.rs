@@ -165,8 +165,8 @@ impl OpenLoop for Frequency {
         cached(&self.phase_crossings, || phase_crossings(&self.open))
     }
 
-    fn peak(&self) -> (f64, f64) {
-        *self.peak.get_or_init(|| self.peak_sensitivity())
+    fn peak(&self) -> Result<(f64, f64), ExactError> {
+        Ok(*self.peak.get_or_init(|| self.peak_sensitivity()))
     }
 
     fn bandwidth(&self) -> Result<Option<f64>, ExactError> {

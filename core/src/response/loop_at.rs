@@ -174,9 +174,15 @@ impl LoopAt {
 
     /// The open loop over frequency. None where the closed loop is unstable.
     pub fn frequency(&self) -> Option<&dyn OpenLoop> {
+        if !self.is_stable() {
+            return None;
+        }
+        if let Some(delayed) = &self.delayed {
+            return Some(delayed.frequency(&self.open, || self.output_transfer().above));
+        }
         let own =
             || Frequency::of(self.open.clone(), self.output_transfer(), &self.closed, self.rational_poles.clone());
-        (self.is_stable() && self.delayed.is_none()).then(|| self.frequency.get_or_init(own) as &dyn OpenLoop)
+        Some(self.frequency.get_or_init(own))
     }
 
     /// An answer; of a loop with dead time the one of that number.

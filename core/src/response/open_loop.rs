@@ -19,7 +19,10 @@ pub trait OpenLoop {
     fn phase_crossings(&self) -> Result<Vec<PhaseCrossing>, ExactError>;
 
     /// Where the sensitivity peaks, rad/s, and its peak.
-    fn peak(&self) -> (f64, f64);
+    ///
+    /// # Errors
+    /// From the exact methods, when a cap is met.
+    fn peak(&self) -> Result<(f64, f64), ExactError>;
 
     /// rad/s; infinite where the closed loop never falls 3 dB below its static gain, None where that is zero.
     ///
