@@ -49,13 +49,18 @@ pub struct Frequency {
 impl Frequency {
     /// Of a loop whose closed loop is stable.
     pub(super) fn new(at: &LoopAt) -> Self {
+        Self::of(at.open.clone(), at.output_transfer(), &at.closed, at.poles.clone())
+    }
+
+    /// From the open loop, command to output, and the denominator of the closed loop, whose roots are all left of the axis.
+    pub fn of(open: BlockAt, transfer: BlockAt, closed: &IntPoly, poles: Vec<Complex<f64>>) -> Self {
         Self {
-            open: at.open.clone(),
-            transfer: at.output_transfer(),
-            poles: at.poles.clone(),
-            above: Scaled::new(&at.open.above),
-            below: Scaled::new(&at.open.below),
-            closed: Scaled::new(&at.closed),
+            above: Scaled::new(&open.above),
+            below: Scaled::new(&open.below),
+            closed: Scaled::new(closed),
+            open,
+            transfer,
+            poles,
             gain_crossings: OnceCell::new(),
             phase_crossings: OnceCell::new(),
             peak: OnceCell::new(),

@@ -244,8 +244,12 @@ impl SampledFamily {
     /// F at a rational knob value, times a positive integer, the fixed factors included; middles only.
     pub fn middle_at(&self, q: &RBig) -> IntPoly {
         let parts: Vec<Enclosed> = self.parts.iter().map(Factored::expanded).collect();
-        let moving = at(&parts, q).center;
-        self.fixed.iter().fold(moving, |p, (factor, _)| p.times(&factor.expanded().center))
+        at(&parts, q).center.times(&self.fixed_in_z())
+    }
+
+    /// The middle of the factor that no knob moves.
+    pub fn fixed_in_z(&self) -> IntPoly {
+        self.fixed.iter().fold(IntPoly::from_i64(&[1]), |p, (factor, _)| p.times(&factor.expanded().center))
     }
 }
 

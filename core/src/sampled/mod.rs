@@ -1,14 +1,20 @@
 //! Sampled control without approximation: controllers in z, plants behind a zero-order hold.
 
+pub mod at;
 pub mod controller;
 pub mod enclosed;
 pub mod factored;
 pub mod family;
 pub mod fixed;
+pub mod frequency;
 mod knob_powers;
 pub mod plant;
 pub mod ranges;
+pub mod response;
 
+pub use at::SampledAt;
 pub use controller::{Given, KnobRatio, Method};
 pub use family::{SampledFamily, SampledLoop, Trouble};
+pub use frequency::SampledFrequency;
 pub use ranges::{SampledRanges, ranges};
+pub use response::Answers;

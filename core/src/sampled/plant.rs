@@ -9,9 +9,9 @@
 use super::enclosed::{Enclosed, Unit};
 use super::factored::Factored;
 use super::fixed::{Matrix, fixed, resolvent};
-use crate::exact::IntPoly;
 use crate::exact::gcd::squarefree_part;
 use crate::exact::half_plane::count;
+use crate::exact::{Dyadic, IntPoly};
 use alloc::vec;
 use alloc::vec::Vec;
 use dashu_int::IBig;
@@ -95,6 +95,20 @@ impl Companion {
         let row: Vec<RBig> =
             entries.into_iter().zip(&self.scales).map(|(c, scale)| c * power_of_two(scale - top)).collect();
         (Matrix::from_rationals(order, &row, bits), top - self.scales[order - 1] - self.input_scale)
+    }
+
+    /// The row of [`Self::output`] in f64.
+    pub fn output_f64(&self, above: &[RBig], bits: usize) -> Vec<f64> {
+        let (row, exponent) = self.output(above, bits);
+        row.entries.iter().map(|e| Dyadic::new(e.clone(), exponent - bits as i64).to_f64()).collect()
+    }
+
+    /// The derivative of a signal read by a row, as a row and what the input adds to it.
+    pub fn derivative(&self, row: &[f64]) -> (Vec<f64>, f64) {
+        let order = self.order();
+        let matrix: Vec<f64> = self.augmented(&RBig::ONE).iter().map(|e| e.to_f64().value()).collect();
+        let column = |j: usize| (0..order).map(|i| row[i] * matrix[i * (order + 1) + j]).sum::<f64>();
+        ((0..order).map(column).collect(), column(order))
     }
 }
 

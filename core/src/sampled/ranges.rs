@@ -10,7 +10,9 @@
 //!   roots move continuously: |F(jw)|² ≥ (error)² for all w, which one more count of real roots shows.
 
 use super::enclosed::Enclosed;
+use super::factored::Factored;
 use super::family::{FIRST_BITS, MAXIMUM_BITS, SampledFamily, SampledLoop, Trouble, at};
+use super::knob_powers::middles;
 use crate::exact::complex_roots::roots;
 use crate::exact::gcd::squarefree_part;
 use crate::exact::half_plane::{HalfPlaneCount, count};
@@ -24,6 +26,9 @@ use dashu_ratio::RBig;
 
 /// Edges are enclosed at least this narrowly, relative to their value: below the last bit of f64.
 const EDGE_BITS: i64 = 60;
+
+/// Bits of the middles from which poles and curves are computed: digits enough for eight poles within 1e-4 of each other.
+const DRAWN_BITS: usize = 256;
 
 /// Zones of x are refined to these many bits, one after the other, until the edge is narrow.
 const ZONE_BITS: [i64; 4] = [80, 120, 200, 400];
@@ -45,6 +50,14 @@ pub struct SampledRanges {
     pub unresolved: Vec<f64>,
     /// Bits of the fixed point that were needed.
     pub bits: usize,
+    /// The loop.
+    pub input: SampledLoop,
+    /// The parts of the family with the unit circle as the imaginary axis.
+    pub on_the_axis: Vec<Enclosed>,
+    /// The middles of the parts in z over one power of two, for what is drawn.
+    pub in_z: Vec<IntPoly>,
+    /// The middle of the factor that no knob moves.
+    pub fixed_in_z: IntPoly,
 }
 
 /// Finds the ranges.
@@ -85,7 +98,34 @@ fn ranges_at(input: &SampledLoop, bits: usize) -> Result<SampledRanges, Trouble>
     let ranges = between.into_iter().map(|count| verdict(count, false)).collect();
     let unresolved = found.unresolved.iter().map(|bracket| bracket.midpoint().to_f64()).collect();
     let partition = Partition::from_parts(places, ranges, at_places, proven);
-    Ok(SampledRanges { partition, family, unresolved, bits })
+    let in_z = middles(&family.parts.iter().map(Factored::expanded).collect::<Vec<_>>(), DRAWN_BITS);
+    let fixed_in_z = family.fixed_in_z();
+    Ok(SampledRanges {
+        partition,
+        family,
+        unresolved,
+        bits,
+        input: input.clone(),
+        on_the_axis: parts,
+        in_z,
+        fixed_in_z,
+    })
+}
+
+impl SampledRanges {
+    /// Poles outside of the unit circle (`right`) and on it (`axis`) at a knob value that is not exactly an edge; proven.
+    ///
+    /// # Errors
+    /// [`Trouble::Undecided`] too near to an edge.
+    pub fn count_at(&self, q: &RBig) -> Result<HalfPlaneCount, Trouble> {
+        Ok(certain_count(&at(&self.on_the_axis, q))?.plus(self.family.fixed_count()))
+    }
+
+    /// F in z at a knob value, times a positive number; middles only.
+    pub fn characteristic_at(&self, q: &RBig) -> IntPoly {
+        let parts: Vec<Enclosed> = self.in_z.iter().cloned().map(Enclosed::exact).collect();
+        at(&parts, q).center.times(&self.fixed_in_z)
+    }
 }
 
 /// Places, before they are put in order.
