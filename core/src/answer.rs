@@ -1,12 +1,13 @@
 //! The one way through: project in, answer out.
 
-use crate::analysis::Analysis;
-use crate::exact::ExactError;
+use crate::analysis::{Analysis, AnalysisError};
 use crate::judgement::{judge, limits};
 use crate::locus::Branch;
 use crate::model;
-use crate::project::{PROJECT_FORMAT, Project, Setting};
+use crate::project::{PROJECT_FORMAT, Project, Setting, SheetText, SiteCheckText, StepUpText};
 use crate::record::{Program, RECORD_FORMAT, Reading, Record};
+use crate::sheet::sheet;
+use crate::site_check::check_tolerances;
 use alloc::format;
 use alloc::string::{String, ToString};
 use alloc::vec::Vec;
@@ -118,6 +119,24 @@ impl Session {
         }
     }
 
+    /// Answers a project document as [`Self::solve`] does, with the sheet's part of the record.
+    pub fn sheet(&mut self, project_json: &str, program_hash: Option<&str>) -> Answer {
+        let mut answer = self.solve(project_json, program_hash).answer;
+        if let (Some(record), Some((_, analysis))) = (&mut answer.record, &self.last) {
+            let project = &record.project;
+            let made =
+                model::build(project).and_then(|model| Ok((model, limits(project)?))).and_then(|(model, limits)| {
+                    sheet(project, project_json, &model, analysis, &limits)
+                        .map_err(|error| [AnalysisError::from(error).problem()].into())
+                });
+            match made {
+                Ok(sheet) => record.sheet = Some(sheet),
+                Err(problems) => return Answer { problems, record: None, ..answer },
+            }
+        }
+        answer
+    }
+
     fn record(
         &mut self,
         project: &Project,
@@ -130,15 +149,17 @@ impl Session {
             problems
         })?;
         let limits = limits?;
+        check_tolerances(project)?;
         if let Some(problem) = not_yet(&model) {
             return Err([problem].into());
         }
         let (setting, scale) = (model.setting.clone(), model.scale.clone());
-        let analysis = self.analysis(project, model).map_err(|error| [too_hard(&error)])?;
+        let analysis = self.analysis(project, model).map_err(|error| [error.problem()])?;
         let knob = setting.as_ref().and_then(|setting| scale.knob(setting));
         let closed_loop =
-            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [too_hard(&error)])?;
-        let judged = judge(analysis, &limits, &scale, setting.as_ref()).map_err(|error| [too_hard(&error)])?;
+            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [error.problem()])?;
+        let judged = judge(analysis, &limits, &scale, setting.as_ref())
+            .map_err(|error| [AnalysisError::from(error).problem()])?;
         let found = &analysis.findings;
         Ok(Record {
             format: RECORD_FORMAT.to_string(),
@@ -166,11 +187,12 @@ impl Session {
             load: judged.load,
             view: found.view,
             notices: found.notices.clone(),
+            sheet: None,
         })
     }
 
     /// The analysis of this project, kept or new.
-    fn analysis(&mut self, project: &Project, model: model::Loop) -> Result<&Analysis, ExactError> {
+    fn analysis(&mut self, project: &Project, model: model::Loop) -> Result<&Analysis, AnalysisError> {
         let key = without_notes(project);
         let kept = self.last.take().filter(|(last, _)| *last == key);
         let entry = match kept {
@@ -205,9 +227,13 @@ fn without_notes(project: &Project) -> Project {
     key.setting = Setting::default();
     key.requirements.clear();
     key.title.clear();
+    key.sheet = SheetText::default();
+    key.step_up = StepUpText::default();
+    key.site_check = SiteCheckText::default();
     for row in &mut key.quantities {
         row.unit.clear();
         row.meaning.clear();
+        row.tolerance.clear();
         if row.symbol == key.knob {
             row.value.clear();
         }
@@ -228,9 +254,4 @@ fn read_project(json: &str) -> Result<Project, String> {
         }
         None => format!("this is no Stayband project: its format is \"{}\", not \"{PROJECT_FORMAT}\"", project.format),
     })
-}
-
-fn too_hard(error: &ExactError) -> Problem {
-    let message = format!("this loop could not be solved within the limits of the exact methods: {error}");
-    Problem { field: Field::Loop, symbol: None, span: None, message }
 }

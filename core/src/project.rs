@@ -8,7 +8,7 @@ use serde::{Deserialize, Serialize};
 pub const PROJECT_FORMAT: &str = "stayband-project/1";
 
 /// Everything the user typed.
-#[derive(Clone, Debug, PartialEq, Eq, Serialize, Deserialize)]
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
 #[serde(rename_all = "camelCase", deny_unknown_fields)]
 #[cfg_attr(feature = "types", derive(ts_rs::TS))]
 pub struct Project {
@@ -31,6 +31,81 @@ pub struct Project {
     /// What the loop must do besides being stable.
     #[serde(default)]
     pub requirements: Vec<Requirement>,
+    /// What identifies the printed sheet.
+    #[serde(default)]
+    pub sheet: SheetText,
+    /// How the step-up plan goes.
+    #[serde(default)]
+    pub step_up: StepUpText,
+    /// What was seen on the machine.
+    #[serde(default)]
+    pub site_check: SiteCheckText,
+}
+
+/// What stands at the head of the printed sheet beside the title; notes to the reader.
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "camelCase", deny_unknown_fields)]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct SheetText {
+    /// The machine.
+    #[serde(default)]
+    pub machine: String,
+    /// The revision of the sheet.
+    #[serde(default)]
+    pub revision: String,
+    /// The date, as it shall stand there.
+    #[serde(default)]
+    pub date: String,
+    /// Who made the sheet.
+    #[serde(default)]
+    pub prepared_by: String,
+    /// Who checked it.
+    #[serde(default)]
+    pub checked_by: String,
+}
+
+/// How the step-up plan goes from its first to its last setting.
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "camelCase", deny_unknown_fields)]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct StepUpText {
+    /// The first setting, an exact decimal. Empty: chosen by the plan.
+    #[serde(default)]
+    pub start: String,
+    /// The knob of one row over that of the row before, an exact decimal above 1. Empty: 1.5.
+    #[serde(default)]
+    pub ratio: String,
+}
+
+/// What was seen on the machine, as typed; every number an exact decimal.
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "camelCase", deny_unknown_fields)]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct SiteCheckText {
+    /// What kind of observation it is.
+    #[serde(default)]
+    pub seen: Observation,
+    /// The setting at which it was seen. Empty: nothing was seen yet.
+    #[serde(default)]
+    pub setting: String,
+    /// The period of the oscillation, s; of a step the time from its first to its second peak.
+    #[serde(default)]
+    pub period: String,
+    /// Of a step: the first peak beyond the final value, % of it.
+    #[serde(default)]
+    pub overshoot: String,
+}
+
+/// What kind of observation was made on the machine.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub enum Observation {
+    /// The answer to a step of the command at a known setting.
+    #[default]
+    Step,
+    /// An oscillation that neither grew nor died.
+    Oscillation,
 }
 
 /// The blocks as typed.
@@ -123,6 +198,10 @@ pub struct Quantity {
     /// What the quantity is, as a note to the reader.
     #[serde(default)]
     pub meaning: String,
+    /// How far the true value may be off in either direction: "5 %" of the value, or a plain decimal in its unit. Empty:
+    /// not stated.
+    #[serde(default)]
+    pub tolerance: String,
 }
 
 /// The chosen setting, and the controller's scale on which it stands.

@@ -242,7 +242,7 @@ class Answer:
         first = int(hits[0]) if len(hits) else len(z)
         turns = np.flatnonzero((z[1:-1] >= z[:-2]) & (z[1:-1] > z[2:])) + 1
         for i in turns[turns < first]:
-            if vertex(z[i - 1 : i + 2]) > -2e-3 * (abs(z[i]) + np.ptp(z[i - 1 : i + 2])) - 1e-9 * self.scale:
+            if vertex(z[i - 1 : i + 2]) > -2e-2 * (abs(z[i]) + np.ptp(z[i - 1 : i + 2])) - 1e-9 * self.scale:
                 low, high = sorted((times[i - 1], times[i + 1]))
                 _, top = self.turn(low, high)
                 if room(arb(top)) >= 0:

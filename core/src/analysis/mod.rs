@@ -1,6 +1,9 @@
 //! Everything about a loop that does not depend on the chosen setting.
 
+mod dead_time;
+mod error;
 mod rational;
+mod sampled;
 
 use crate::exact::ExactError;
 use crate::locus::Branch;
@@ -15,8 +18,10 @@ use alloc::format;
 use alloc::vec::Vec;
 use core::cell::{OnceCell, RefCell};
 use dashu_ratio::RBig;
-pub use rational::AffineParts;
-use rational::Rational;
+use dead_time::DeadTime;
+pub use error::AnalysisError;
+pub use rational::{AffineParts, Rational};
+use sampled::Sampled;
 
 /// A loop, analysed.
 pub struct Analysis {
@@ -61,6 +66,10 @@ pub struct Findings {
 enum Method {
     /// A ratio of polynomials in s.
     Rational(Rational),
+    /// With dead time, controlled continuously.
+    DeadTime(DeadTime),
+    /// With a sampled controller.
+    Sampled(Sampled),
 }
 
 /// Lanes kept; more than there are kinds, so that a limit may be changed back and forth.
@@ -70,18 +79,27 @@ impl Analysis {
     /// Analyses a loop.
     ///
     /// # Errors
-    /// From the exact methods, when a cap is met before the ranges are proven.
-    pub fn new(model: Loop) -> Result<Self, ExactError> {
-        let (mut findings, rational) = Rational::analyse(&model)?;
+    /// Where the loop is not treated, or a cap is met before the ranges are proven.
+    pub fn new(model: Loop) -> Result<Self, AnalysisError> {
+        let (mut findings, method) = if let Some(sampling) = &model.sampling {
+            let (findings, sampled) = Sampled::analyse(&model, sampling)?;
+            (findings, Method::Sampled(sampled))
+        } else if model.open_loop.dead_time.is_none() {
+            let (findings, rational) = Rational::analyse(&model)?;
+            (findings, Method::Rational(rational))
+        } else {
+            let (findings, dead_time) = DeadTime::analyse(&model)?;
+            (findings, Method::DeadTime(dead_time))
+        };
         findings.notices.sort_by_key(|notice| notice.kind);
-        let method = Method::Rational(rational);
         Ok(Self { model, findings, method, samples: OnceCell::new(), lanes: RefCell::default() })
     }
 
-    /// D and N of the moving part with their roots, where the loop is a ratio of polynomials and affine in the knob.
-    pub fn affine(&self) -> Option<AffineParts<'_>> {
+    /// The polynomials and their ranges, where the loop is a ratio of polynomials in s.
+    pub fn rational(&self) -> Option<&Rational> {
         match &self.method {
-            Method::Rational(rational) => rational.affine(),
+            Method::Rational(rational) => Some(rational),
+            Method::DeadTime(_) | Method::Sampled(_) => None,
         }
     }
 
@@ -101,9 +119,7 @@ impl Analysis {
                 self.samples.get_or_init(|| samples)
             }
         };
-        let family = match &self.method {
-            Method::Rational(rational) => &rational.family,
-        };
+        let family = self.rational().map(|rational| &rational.family);
         let ground = Ground { model: &self.model, family, stable, samples };
         let found = lane(&ground, limit)?;
         let mut lanes = self.lanes.borrow_mut();
@@ -118,9 +134,11 @@ impl Analysis {
     ///
     /// # Errors
     /// From the exact methods, when a cap is met.
-    pub fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, ExactError> {
+    pub fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, AnalysisError> {
         match &self.method {
-            Method::Rational(rational) => rational.closed_loop(knob),
+            Method::Rational(rational) => Ok(rational.closed_loop(knob)?),
+            Method::DeadTime(dead_time) => Ok(dead_time.closed_loop(knob)),
+            Method::Sampled(sampled) => sampled.closed_loop(knob),
         }
     }
 }

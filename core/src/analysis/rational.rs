@@ -17,9 +17,11 @@ use alloc::vec::Vec;
 use dashu_ratio::RBig;
 
 /// What the questions about such a loop need.
-pub(super) struct Rational {
-    /// The characteristic polynomial over the knob.
-    pub(super) family: Family,
+pub struct Rational {
+    /// The characteristic polynomial over the knob, its fixed factor taken out.
+    pub family: Family,
+    /// The line of the knob, cut where something happens.
+    pub partition: Partition,
     /// The moving poles and zeros of an affine loop.
     moving: (Vec<Root>, Vec<Root>),
 }
@@ -64,8 +66,9 @@ impl Rational {
                 None => notices.push(lost_branches(sign)),
             }
         }
-        let own = Self { family, moving };
-        let affine = own.affine();
+        let stable = stable_pieces(&partition);
+        let own = Self { family, partition, moving };
+        let (partition, affine) = (&own.partition, own.affine());
         let findings = Findings {
             stability: partition.stability(),
             character: partition.character(),
@@ -77,13 +80,13 @@ impl Rational {
             view,
             notices,
             branches: all,
-            stable: stable_pieces(&partition),
+            stable,
         };
         Ok((findings, own))
     }
 
     /// D and N of the moving part with their roots, where the loop is affine in the knob.
-    pub(super) fn affine(&self) -> Option<AffineParts<'_>> {
+    pub fn affine(&self) -> Option<AffineParts<'_>> {
         let (d, n) = self.family.affine()?;
         Some(AffineParts { d, n, poles: &self.moving.0, zeros: &self.moving.1 })
     }

@@ -25,6 +25,17 @@ impl Wide {
         Self { z: Complex::new(mantissa, 0.0), exponent }
     }
 
+    /// From two parts, each a mantissa and a power of two.
+    pub fn from_parts(re: (f64, i64), im: (f64, i64)) -> Self {
+        let exponent = match (re.0 == 0.0, im.0 == 0.0) {
+            (false, false) => re.1.max(im.1),
+            (false, true) => re.1,
+            _ => im.1,
+        };
+        let part = |(mantissa, own): (f64, i64)| libm::ldexp(mantissa, (own - exponent).clamp(-2000, 2000) as i32);
+        Self { z: Complex::new(part(re), part(im)), exponent }.normalised()
+    }
+
     fn normalised(self) -> Self {
         let size = self.z.re.abs().max(self.z.im.abs());
         if size == 0.0 || !size.is_finite() {

@@ -30,7 +30,7 @@ pub fn asymptotes(d: &IntPoly, n: &IntPoly, sign: KnobSign) -> Asymptotes {
 }
 
 /// The sum of the roots.
-fn root_sum(p: &IntPoly) -> RBig {
+pub fn root_sum(p: &IntPoly) -> RBig {
     match p.degree() {
         0 => RBig::ZERO,
         degree => RBig::from_parts_signed(-p.coefficient(degree - 1), p.leading()),

@@ -12,14 +12,33 @@ use dashu_ratio::RBig;
 /// Integers with more digits than this are shown rounded. The record holds them exactly.
 const LONGEST_INTEGER: usize = 12;
 
-/// Digits of a rounded integer.
-const ROUNDED_DIGITS: usize = 6;
+/// How much of a long integer is shown.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Precision {
+    /// Six digits, to be looked at.
+    Screen,
+    /// Ten digits, as many as a pocket calculator takes.
+    Calculator,
+    /// Every digit.
+    Exact,
+}
+
+impl Precision {
+    /// Digits of a rounded integer.
+    fn digits(self) -> usize {
+        match self {
+            Self::Screen => 6,
+            Self::Calculator => 10,
+            Self::Exact => usize::MAX,
+        }
+    }
+}
 
 /// "F(s) = … = 0" as MathML; "≈" where coefficients are shown rounded.
 pub(super) fn equation(polynomial: &KnobPolynomial, knob: &str) -> String {
     let rounded = polynomial.coefficients().iter().flatten().any(is_long);
     let relation = if rounded { Relation::Rounded } else { Relation::Exact };
-    equation_mathml(&expression(polynomial, knob), relation)
+    equation_mathml(&expression(polynomial, Variables { main: "s", knob }, Precision::Screen), relation)
 }
 
 /// A polynomial as text in the notation, for sentences: `s + 1`. Long integers are rounded.
@@ -32,20 +51,37 @@ pub(super) fn equation(polynomial: &KnobPolynomial, knob: &str) -> String {
 /// ```
 #[must_use]
 pub fn formula(polynomial: &KnobPolynomial, knob: &str) -> String {
-    text(&expression(polynomial, knob))
+    text(&expression(polynomial, Variables { main: "s", knob }, Precision::Screen))
 }
 
-fn expression(polynomial: &KnobPolynomial, knob: &str) -> Expression {
+/// The names of the two variables of a polynomial.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Variables<'a> {
+    /// The one by whose powers terms are collected.
+    pub main: &'a str,
+    /// The knob.
+    pub knob: &'a str,
+}
+
+/// A polynomial for display, collected by powers of the main variable.
+#[must_use]
+pub fn expression(polynomial: &KnobPolynomial, names: Variables<'_>, precision: Precision) -> Expression {
     let rows = polynomial.coefficients().iter().enumerate().rev();
-    sum(rows.filter(|(_, row)| !row.is_empty()).map(|(power, row)| coefficient_term(row, power, knob)).collect())
+    let terms: Vec<Term> = rows
+        .filter(|(_, row)| !row.is_empty())
+        .map(|(power, row)| coefficient_term(row, power, names, precision))
+        .collect();
+    if terms.is_empty() { number("0".to_string()) } else { sum(terms) }
 }
 
-/// The term of s^power: one product, or a sum in the knob in brackets.
-fn coefficient_term(row: &[IBig], power: usize, knob: &str) -> Term {
+/// The term of one power of the main variable: one product, or a sum in the knob in brackets.
+fn coefficient_term(row: &[IBig], power: usize, names: Variables<'_>, precision: Precision) -> Term {
+    let knob = names.knob;
     let present: Vec<_> = row.iter().enumerate().rev().filter(|(_, coefficient)| !coefficient.is_zero()).collect();
-    let laplace = (power > 0).then(|| raised(plain(Node::Laplace), power));
+    let main = if names.main == "s" { Node::Laplace } else { Node::Name(names.main.to_string()) };
+    let laplace = (power > 0).then(|| raised(plain(main), power));
     if let [(knob_power, coefficient)] = present.as_slice() {
-        return monomial(coefficient, *knob_power, knob, laplace);
+        return monomial(coefficient, *knob_power, knob, laplace, precision);
     }
     // The sign of the highest power stands before the bracket.
     let negative = present.first().is_some_and(|(_, coefficient)| coefficient.sign() == IntegerSign::Negative);
@@ -53,7 +89,7 @@ fn coefficient_term(row: &[IBig], power: usize, knob: &str) -> Term {
         .into_iter()
         .map(|(knob_power, coefficient)| {
             let coefficient = if negative { -coefficient } else { coefficient.clone() };
-            monomial(&coefficient, knob_power, knob, None)
+            monomial(&coefficient, knob_power, knob, None, precision)
         })
         .collect();
     let bracket = Expression { bracketed: true, ..sum(terms) };
@@ -61,12 +97,12 @@ fn coefficient_term(row: &[IBig], power: usize, knob: &str) -> Term {
 }
 
 /// coefficient · knob^power · rest; a coefficient of 1 is left out where something else stands.
-fn monomial(coefficient: &IBig, power: usize, knob: &str, rest: Option<Expression>) -> Term {
+fn monomial(coefficient: &IBig, power: usize, knob: &str, rest: Option<Expression>, precision: Precision) -> Term {
     let negative = coefficient.sign() == IntegerSign::Negative;
     let size = if negative { -coefficient } else { coefficient.clone() };
     let mut factors = Vec::new();
     if !size.is_one() || (power == 0 && rest.is_none()) {
-        factors.extend(integer(&size));
+        factors.extend(integer(&size, precision));
     }
     if power > 0 {
         factors.push(raised(plain(Node::Name(knob.to_string())), power));
@@ -84,17 +120,18 @@ fn is_long(integer: &IBig) -> bool {
 }
 
 /// A positive integer: as it is, or rounded and with a power of ten.
-fn integer(size: &IBig) -> Vec<Expression> {
+fn integer(size: &IBig, precision: Precision) -> Vec<Expression> {
     let digits = size.to_string();
-    if !is_long(size) {
+    if !is_long(size) || digits.len() <= precision.digits() {
         return [number(digits)].into();
     }
-    let unit = IBig::from(10).pow(digits.len() - ROUNDED_DIGITS);
+    let dropped = digits.len() - precision.digits();
+    let unit = IBig::from(10).pow(dropped);
     // Rounding 999999.5 up gives one digit more; the mantissa then ends in a zero that is dropped with the others.
     let half = &unit / IBig::from(2);
     let mantissa: IBig = (size + half) / &unit;
     let rounded = mantissa.to_string();
-    let exponent = digits.len() - ROUNDED_DIGITS + rounded.len() - 1;
+    let exponent = dropped + rounded.len() - 1;
     let (first, rest) = rounded.split_at(1);
     let rest = rest.trim_end_matches('0');
     let mantissa = if rest.is_empty() { first.to_string() } else { format!("{first}.{rest}") };

@@ -19,7 +19,7 @@ mod scalar;
 mod tests;
 
 pub use dead_time::DeadTime;
-pub use display::formula;
+pub use display::{Precision, Variables, expression, formula};
 pub use factors::Factor;
 pub use polynomial::KnobPolynomial;
 pub use ratio::{BlockAt, Ratio};

@@ -1,7 +1,7 @@
 //! Tests of the model, named by behaviour. All loops are invented.
 
 use super::*;
-use crate::project::{Discretisation, Feedback, LoopText, PROJECT_FORMAT, Quantity, SamplingText, Setting};
+use crate::project::{Discretisation, Feedback, LoopText, PROJECT_FORMAT, Quantity, SamplingText};
 use alloc::vec;
 use dashu_int::IBig;
 use proptest::prelude::*;
@@ -15,12 +15,10 @@ fn project(blocks: [&str; 3], rows: &str, knob: &str) -> Project {
     let [controller, plant, sensor] = blocks.map(String::from);
     Project {
         format: PROJECT_FORMAT.into(),
-        title: String::new(),
         blocks: LoopText { controller, plant, sensor, feedback: Feedback::Negative, ..LoopText::default() },
         quantities: rows.split(';').filter(|row| row.contains('=')).map(row).collect(),
         knob: knob.into(),
-        setting: Setting::default(),
-        requirements: Vec::new(),
+        ..Project::default()
     }
 }
 

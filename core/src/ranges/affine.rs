@@ -37,11 +37,12 @@ pub fn stability_places(d: &IntPoly, n: &IntPoly) -> Result<Vec<Place>, ExactErr
 /// # Errors
 /// From the exact methods, when a cap is met.
 pub fn boundary_places(
-    (d1, d2): &(IntPoly, IntPoly),
-    (n1, n2): &(IntPoly, IntPoly),
+    d: &(IntPoly, IntPoly),
+    n: &(IntPoly, IntPoly),
     contact: impl Fn(f64) -> Contact,
 ) -> Result<Option<Vec<Place>>, ExactError> {
-    let crossing = d2.times(n1).minus(&d1.times(n2));
+    let ((d1, d2), (n1, n2)) = (d, n);
+    let crossing = boundary_polynomial(d, n);
     if crossing.is_zero() {
         return Ok(None);
     }
@@ -60,6 +61,11 @@ pub fn boundary_places(
         places.push(Place::within(bracket, contact(root.to_f64())));
     }
     Ok(Some(places))
+}
+
+/// D2·N1 − D1·N2, whose positive roots are the x of [`boundary_places`].
+pub fn boundary_polynomial((d1, d2): &(IntPoly, IntPoly), (n1, n2): &(IntPoly, IntPoly)) -> IntPoly {
+    d2.times(n1).minus(&d1.times(n2))
 }
 
 /// The place q = −d/n, if n is not zero.

@@ -81,6 +81,16 @@ impl Partition {
         Self { places, ranges, at_places, with_meetings: false, proven }
     }
 
+    /// The verdict at a knob value; in the bracket of a place that of the place.
+    pub fn verdict_at(&self, knob: &RBig) -> &Verdict {
+        let below = |place: &Place| place.bracket.high.to_rational() < *knob;
+        let i = self.places.partition_point(below);
+        match self.places.get(i) {
+            Some(place) if place.bracket.low.to_rational() <= *knob => &self.at_places[i],
+            _ => &self.ranges[i],
+        }
+    }
+
     /// The ranges of constant counts of unstable poles.
     pub fn stability(&self) -> Vec<StabilityRange> {
         let cuts = self.stability_places();
@@ -128,7 +138,7 @@ impl Partition {
     }
 
     /// The record of a place.
-    fn edge(&self, i: usize) -> Edge {
+    pub fn edge(&self, i: usize) -> Edge {
         let (place, here) = (&self.places[i], &self.at_places[i]);
         let mut omegas: Vec<f64> = place.contacts.iter().filter_map(Contact::omega).collect();
         omegas.sort_by(f64::total_cmp);
@@ -284,7 +294,8 @@ fn looked_at(family: &Family, place: &Place) -> Result<Verdict, ExactError> {
 }
 
 impl Contact {
-    fn omega(&self) -> Option<f64> {
+    /// rad/s, of a pair on the axis.
+    pub fn omega(&self) -> Option<f64> {
         match self {
             Self::Axis { omega } => Some(*omega),
             _ => None,

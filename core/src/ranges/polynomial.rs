@@ -97,7 +97,7 @@ pub fn meetings(family: &Family) -> Result<Vec<Meeting>, ExactError> {
 }
 
 /// The discriminant in s, up to a factor, as a polynomial in the knob.
-fn discriminant(family: &Family) -> IntPoly {
+pub fn discriminant(family: &Family) -> IntPoly {
     let order = family.moving_order();
     interpolated(family.knob_degree() * (2 * order).saturating_sub(1), |q| {
         let p = family.at_dyadic(&Dyadic::new(q.clone(), 0));
@@ -156,7 +156,7 @@ fn knob_places(p: &IntPoly, contact: &Contact) -> Result<Vec<Place>, ExactError>
 
 /// The resultant over x of the even and the odd part, as a polynomial in the knob; for a family in s² alone, whose poles
 /// stay on the axis until two of them meet, the discriminant of the even part.
-fn axis_resultant(family: &Family) -> IntPoly {
+pub fn axis_resultant(family: &Family) -> IntPoly {
     let parts: Vec<(IntPoly, IntPoly)> = family.parts.iter().map(IntPoly::axis_parts).collect();
     let even_degree = parts.iter().map(|(e, _)| e.degree()).max().unwrap_or(0);
     let odd_degree = parts.iter().map(|(_, o)| o.degree()).max().unwrap_or(0);

@@ -19,6 +19,7 @@ pub use responses::{
 pub use timing::{Plane, SamplingRecord, StableAtPeriod, Timing, equivalent};
 
 use crate::project::Project;
+use crate::sheet::SheetRecord;
 use alloc::string::String;
 use alloc::vec::Vec;
 use serde::Serialize;
@@ -75,6 +76,8 @@ pub struct Record {
     pub view: View,
     /// Warnings about the loop, most serious first.
     pub notices: Vec<Notice>,
+    /// What the printed sheet needs beside the rest. None unless it was asked for.
+    pub sheet: Option<SheetRecord>,
 }
 
 /// The program that made a record.

@@ -7,9 +7,6 @@ use crate::project::RequirementKind;
 use dashu_ratio::RBig;
 use nalgebra::ComplexField;
 
-/// A static gain below this part of the answer's largest mode is zero but for rounding.
-const NO_FINAL_VALUE: f64 = 1e-12;
-
 /// An excess below this part of the final value is none but for rounding.
 const NO_EXCESS: f64 = 1e-9;
 
@@ -86,12 +83,10 @@ impl LoopAt {
             Kind::Bandwidth => frequency().and_then(|f| f.bandwidth().ok().flatten()).into(),
             Kind::Overshoot => self.output().figure(|m, p| overshoot(m, p).into()),
             Kind::Undershoot => self.output().figure(|m, p| undershoot(m, p).into()),
-            Kind::RiseTime => self.output().figure(|m, p| searched(m, p, rise_time(m))),
-            Kind::SettlingTime2 => {
-                self.output().figure(|m, p| searched(m, p, settling_time(m, SettlingBand::TwoPercent)))
-            }
+            Kind::RiseTime => self.output().figure(|m, _| searched(m, rise_time(m))),
+            Kind::SettlingTime2 => self.output().figure(|m, _| searched(m, settling_time(m, SettlingBand::TwoPercent))),
             Kind::SettlingTime5 => {
-                self.output().figure(|m, p| searched(m, p, settling_time(m, SettlingBand::FivePercent)))
+                self.output().figure(|m, _| searched(m, settling_time(m, SettlingBand::FivePercent)))
             }
             Kind::PeakTime => self.output().figure(|m, p| peak_time(m, p).into()),
             Kind::StepError => match self.static_error(0) {
@@ -141,9 +136,9 @@ impl Answer {
 }
 
 /// A figure that a search may not find; undefined without a final value.
-fn searched(modes: &Modes, peaks: &Peaks, found: Option<f64>) -> Figure {
+fn searched(modes: &Modes, found: Option<f64>) -> Figure {
     match found {
-        _ if !has_final_value(modes, peaks) => Figure::Undefined,
+        _ if !has_final_value(modes) => Figure::Undefined,
         Some(value) => Figure::Value(value),
         None => Figure::NotComputed,
     }
@@ -157,11 +152,12 @@ fn settling_time(modes: &Modes, band: SettlingBand) -> Option<f64> {
 /// s, until the highest point beyond the final value. None without one.
 fn peak_time(modes: &Modes, peaks: &Peaks) -> Option<f64> {
     let (_, time) = if modes.final_value > 0.0 { peaks.highest } else { peaks.lowest };
-    (has_final_value(modes, peaks) && time.is_finite()).then_some(time)
+    (has_final_value(modes) && time.is_finite()).then_some(time)
 }
 
-fn has_final_value(modes: &Modes, peaks: &Peaks) -> bool {
-    modes.final_value.abs() > NO_FINAL_VALUE * largest(peaks)
+/// The final value is the ratio of two exact coefficients, so that zero is zero.
+fn has_final_value(modes: &Modes) -> bool {
+    modes.final_value != 0.0
 }
 
 fn largest(peaks: &Peaks) -> f64 {
@@ -172,14 +168,14 @@ fn largest(peaks: &Peaks) -> f64 {
 fn overshoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
     let end = modes.final_value;
     let beyond = if end > 0.0 { peaks.highest.0 - end } else { end - peaks.lowest.0 };
-    has_final_value(modes, peaks).then(|| percentage(beyond, end))
+    has_final_value(modes).then(|| percentage(beyond, end))
 }
 
 /// % of the final value on the other side of zero.
 fn undershoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
     let end = modes.final_value;
     let opposite = if end > 0.0 { -peaks.lowest.0 } else { peaks.highest.0 };
-    has_final_value(modes, peaks).then(|| percentage(opposite, end))
+    has_final_value(modes).then(|| percentage(opposite, end))
 }
 
 fn percentage(excess: f64, end: f64) -> f64 {

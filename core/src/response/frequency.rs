@@ -4,12 +4,14 @@
 //! Do·Ne = De·No for a real open loop. The smallest margin over all crossings counts; for loops that are unstable at low
 //! gain, or stable in several ranges, gain margins are the distances to the nearest crossing in each direction.
 
+use super::axis::AxisRatio;
 use super::loop_at::LoopAt;
 use crate::exact::gcd::{gcd, squarefree_part, without_common_roots};
 use crate::exact::real_roots::positive_roots;
 use crate::exact::scaled::Scaled;
-use crate::exact::{ExactError, IntPoly};
+use crate::exact::{Dyadic, ExactError, IntPoly};
 use crate::model::BlockAt;
+use crate::numerics::magnitude;
 use crate::record::{FrequencyResponse, GainCrossing, PhaseCrossing};
 use alloc::vec::Vec;
 use core::cell::OnceCell;
@@ -17,8 +19,8 @@ use dashu_int::IBig;
 use dashu_ratio::RBig;
 use nalgebra::{Complex, ComplexField};
 
-/// Frequencies are refined to this many bits.
-const OMEGA_BITS: i64 = 40;
+/// The square of the bandwidth is refined to this many bits.
+const BANDWIDTH_BITS: i64 = 44;
 
 /// Points of a curve for drawing, without those added at poles and crossings.
 const CURVE_POINTS: usize = 240;
@@ -28,6 +30,12 @@ const SEARCH_POINTS: usize = 12;
 
 /// Decades searched and drawn below the slowest and above the fastest pole, zero or crossing.
 const DECADES_BEYOND: f64 = 1.0;
+
+/// Shrinks the place of a peak to 3e-8 of the first interval; its height is then right to rounding.
+const GOLDEN_SECTIONS: usize = 36;
+
+/// Poles whose real part is below this part of the imaginary one make peaks that are looked for at exact frequencies.
+const NARROW: f64 = 1e-6;
 
 /// The open loop over frequency; each part is computed when first asked for.
 #[derive(Debug)]
@@ -40,6 +48,7 @@ pub struct Frequency {
     above: Scaled,
     below: Scaled,
     closed: Scaled,
+    closed_exact: IntPoly,
     gain_crossings: OnceCell<Vec<GainCrossing>>,
     phase_crossings: OnceCell<Vec<PhaseCrossing>>,
     peak: OnceCell<(f64, f64)>,
@@ -58,6 +67,7 @@ impl Frequency {
             above: Scaled::new(&open.above),
             below: Scaled::new(&open.below),
             closed: Scaled::new(closed),
+            closed_exact: closed.clone(),
             open,
             transfer,
             poles,
@@ -74,7 +84,7 @@ impl Frequency {
     /// From the exact methods, when a cap is met.
     pub fn gain_crossings(&self) -> Result<&[GainCrossing], ExactError> {
         if self.gain_crossings.get().is_none() {
-            let found = gain_crossings(&self.open, &self.above, &self.below)?;
+            let found = gain_crossings(&self.open)?;
             self.gain_crossings.get_or_init(|| found);
         }
         Ok(self.gain_crossings.get().map_or(&[], Vec::as_slice))
@@ -161,14 +171,16 @@ impl Frequency {
 
     fn sensitivity(&self, omega: f64) -> f64 {
         let s = Complex::new(0.0, omega);
-        self.below.value(s).over(self.closed.value(s)).to_complex().modulus()
+        magnitude(self.below.value(s).over(self.closed.value(s)).to_complex())
     }
 
     /// The peak of |D/F| over ω ≥ 0, and where.
     fn peak_sensitivity(&self) -> (f64, f64) {
         let range = self.range();
         let mut omegas = grid(range, SEARCH_POINTS);
-        for p in self.poles.iter().filter(|p| p.im > 0.0) {
+        let upper = || self.poles.iter().filter(|p| p.im > 0.0);
+        let narrow: Vec<f64> = upper().filter(|p| -p.re < NARROW * p.im).map(|p| p.im).collect();
+        for p in upper().filter(|p| -p.re >= NARROW * p.im) {
             // A lightly damped pair makes a peak as narrow as its decay rate.
             for k in -6..=6 {
                 omegas.push((p.im + f64::from(k) * 0.5 * p.re).max(0.0));
@@ -185,24 +197,42 @@ impl Frequency {
                 (k == 0 || values[k - 1] <= values[k]) && (k + 1 == omegas.len() || values[k + 1] <= values[k]);
             if is_top {
                 let (low, high) = (omegas[k.saturating_sub(1)], omegas[(k + 1).min(omegas.len() - 1)]);
-                let peak = self.refined_peak(low, high);
+                // Beside a narrow peak the search would end in rounding noise.
+                let noisy = narrow.iter().any(|omega| (low..=high).contains(omega));
+                let peak =
+                    if noisy { (omegas[k], values[k]) } else { highest(low, high, |omega| self.sensitivity(omega)) };
                 if peak.1 > best.1 {
                     best = peak;
                 }
             }
         }
+        for omega in narrow {
+            if let Some(peak) = self.narrow_peak(omega)
+                && peak.1 > best.1
+            {
+                best = peak;
+            }
+        }
         best
     }
 
-    /// The largest sensitivity between two frequencies around one top, by golden sections.
-    fn refined_peak(&self, mut low: f64, mut high: f64) -> (f64, f64) {
-        const GOLDEN: f64 = 0.618_033_988_749_894_9;
-        for _ in 0..36 {
-            let (a, b) = (high - GOLDEN * (high - low), low + GOLDEN * (high - low));
-            if self.sensitivity(a) > self.sensitivity(b) { high = b } else { low = a }
-        }
-        let omega = 0.5 * (low + high);
-        (omega, self.sensitivity(omega))
+    /// The peak at a pole so near to the axis that the rounding of frequencies in f64 shows: looked for at exact ones.
+    fn narrow_peak(&self, omega: f64) -> Option<(f64, f64)> {
+        let exact = Dyadic::from_f64(omega)?;
+        let x = &exact * &exact;
+        // One step of Newton's method from jω: the pole's distance from there, relative to the pole's own accuracy.
+        let step = AxisRatio::new(&self.closed_exact, &self.closed_exact.derivative()).at(&x);
+        let (middle, width) = (-step.im, step.re.abs());
+        let ratio = AxisRatio::new(&self.open.below, &self.closed_exact);
+        let sensitivity = |offset: f64| {
+            let at = Dyadic::from_f64(offset).map_or(exact.clone(), |offset| &exact + &offset);
+            magnitude(ratio.at(&(&at * &at)))
+        };
+        let offsets: Vec<f64> = (-6..=6).map(|k| middle + 0.5 * f64::from(k) * width).collect();
+        let values: Vec<f64> = offsets.iter().map(|offset| sensitivity(*offset)).collect();
+        let top = (1..offsets.len() - 1).max_by(|a, b| values[*a].total_cmp(&values[*b]))?;
+        let (offset, peak) = highest(offsets[top - 1], offsets[top + 1], sensitivity);
+        peak.is_finite().then_some((omega + offset, peak))
     }
 
     /// The open loop for drawing.
@@ -243,6 +273,27 @@ impl Frequency {
     }
 }
 
+/// The place and height of the top between two places around it, by golden sections.
+fn highest(mut low: f64, mut high: f64, value: impl Fn(f64) -> f64) -> (f64, f64) {
+    const GOLDEN: f64 = 0.618_033_988_749_894_9;
+    let (mut a, mut b) = (high - GOLDEN * (high - low), low + GOLDEN * (high - low));
+    let (mut at_a, mut at_b) = (value(a), value(b));
+    for _ in 0..GOLDEN_SECTIONS {
+        if at_a > at_b {
+            high = b;
+            (b, at_b) = (a, at_a);
+            a = high - GOLDEN * (high - low);
+            at_a = value(a);
+        } else {
+            low = a;
+            (a, at_a) = (b, at_b);
+            b = low + GOLDEN * (high - low);
+            at_b = value(b);
+        }
+    }
+    if at_a > at_b { (a, at_a) } else { (b, at_b) }
+}
+
 /// Frequencies evenly spaced on a logarithmic scale.
 fn grid(range: (f64, f64), per_decade: usize) -> Vec<f64> {
     let decades = libm::log10(range.1 / range.0);
@@ -256,30 +307,25 @@ fn squared(p: &IntPoly) -> IntPoly {
     even.times(&even).plus(&odd.times(&odd).times(&IntPoly::from_i64(&[0, 1])))
 }
 
-/// √x for every positive root x.
-fn frequencies(p: &IntPoly) -> Result<Vec<f64>, ExactError> {
-    if p.is_zero() {
-        return Ok(Vec::new());
-    }
-    let p = squarefree_part(p);
-    let mut found = Vec::new();
-    for mut root in positive_roots(&p)? {
-        root.refine_to(&p, OMEGA_BITS)?;
-        found.push(libm::sqrt(root.to_f64()));
-    }
-    Ok(found)
-}
-
-fn gain_crossings(open: &BlockAt, above: &Scaled, below: &Scaled) -> Result<Vec<GainCrossing>, ExactError> {
-    let crossing = |omega: f64| {
-        let s = Complex::new(0.0, omega);
-        let l = above.value(s).over(below.value(s)).to_complex();
+fn gain_crossings(open: &BlockAt) -> Result<Vec<GainCrossing>, ExactError> {
+    let crossing = |(omega, l): (f64, Complex<f64>)| {
         // The turn from −1 to L, in (−180, 180].
         let margin = (-l).argument().to_degrees();
         let lag = if margin > 0.0 { margin } else { margin + 360.0 };
         GainCrossing { omega, phase_margin: margin, delay_margin: lag.to_radians() / omega }
     };
-    Ok(frequencies(&squared(&open.above).minus(&squared(&open.below)))?.into_iter().map(crossing).collect())
+    let found = at_roots(open, &squared(&open.above).minus(&squared(&open.below)))?;
+    Ok(found.into_iter().map(crossing).collect())
+}
+
+/// ω and L(jω) where ω² is a root, ascending.
+fn at_roots(open: &BlockAt, p: &IntPoly) -> Result<Vec<(f64, Complex<f64>)>, ExactError> {
+    if p.is_zero() {
+        return Ok(Vec::new());
+    }
+    let p = squarefree_part(p);
+    let ratio = AxisRatio::new(&open.above, &open.below);
+    positive_roots(&p)?.into_iter().map(|root| ratio.at_root(&p, root)).collect()
 }
 
 fn phase_crossings(open: &BlockAt) -> Result<Vec<PhaseCrossing>, ExactError> {
@@ -293,19 +339,11 @@ fn phase_crossings(open: &BlockAt) -> Result<Vec<PhaseCrossing>, ExactError> {
         found.push(PhaseCrossing { omega: 0.0, factor });
     }
     let crossing = d_odd.times(&n_even).minus(&d_even.times(&n_odd));
-    let parts = [&n_even, &n_odd, &d_even, &d_odd].map(Scaled::new);
     // Where N or D vanishes on the axis the open loop is zero or infinite, and no factor brings it to −1.
     let finite = without_common_roots(&crossing, &gcd(&n_even, &n_odd));
     let crossing = without_common_roots(&finite, &gcd(&d_even, &d_odd));
-    for omega in frequencies(&crossing)? {
-        let x = Complex::new(omega * omega, 0.0);
-        let value = |k: usize| parts[k].value(x);
-        // The quotient with the larger denominator loses fewer digits.
-        let even = value(2).over(value(0)).to_complex().re;
-        let odd = value(3).over(value(1)).to_complex().re;
-        let even_size = value(0).to_complex().modulus();
-        let odd_size = value(1).to_complex().modulus() * omega;
-        let factor = if even_size >= odd_size { -even } else { -odd };
+    for (omega, l) in at_roots(open, &crossing)? {
+        let factor = -(Complex::new(1.0, 0.0) / l).re;
         if factor.is_finite() {
             found.push(PhaseCrossing { omega, factor });
         }
@@ -330,5 +368,8 @@ fn bandwidth(transfer: &BlockAt) -> Result<Option<f64>, ExactError> {
     let above = squared(&transfer.above);
     let below = squared(&transfer.below);
     let difference = above.combined(&(IBig::from(2) * &d0 * &d0), &below, &-(&n0 * &n0));
-    Ok(Some(frequencies(&difference)?.first().copied().unwrap_or(f64::INFINITY)))
+    let difference = squarefree_part(&difference);
+    let Some(mut root) = positive_roots(&difference)?.into_iter().next() else { return Ok(Some(f64::INFINITY)) };
+    root.refine_to(&difference, BANDWIDTH_BITS)?;
+    Ok(Some(libm::sqrt(root.to_f64())))
 }

@@ -2,7 +2,7 @@
 
 use super::frequency::Frequency;
 use super::modes::{Modes, Peaks};
-use crate::exact::complex_roots::polished;
+use crate::exact::complex_roots::{enclose_all, polished};
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
 use crate::model::{BlockAt, Loop};
@@ -11,6 +11,14 @@ use core::cell::OnceCell;
 use dashu_int::IBig;
 use dashu_ratio::RBig;
 use nalgebra::Complex;
+
+/// Poles whose real part is below this part of the imaginary one are enclosed anew, with the two precisions in turn until
+/// the real parts are told: the polished ones are right to about 1e-30 of their magnitude.
+const NEAR_AXIS: f64 = 1e-18;
+const NEAR_AXIS_BITS: [i64; 2] = [160, 640];
+
+/// A real part is told where the disc's radius is below this part of it.
+const TOLD: f64 = 1e-12;
 
 /// An answer over time, as far as there is one.
 #[derive(Debug)]
@@ -80,7 +88,7 @@ impl LoopAt {
         // For positive feedback L below is −(controller·plant·sensor), so that 1 + L stays the denominator.
         let open =
             BlockAt { above: IntPoly::new(open.above.coefficients().iter().map(|c| c * &sign).collect()), ..open };
-        let poles = polished(&closed)?;
+        let poles = poles(&closed)?;
         Ok(Self {
             knob,
             controller,
@@ -95,6 +103,11 @@ impl LoopAt {
             control: OnceCell::new(),
             frequency: OnceCell::new(),
         })
+    }
+
+    /// The poles of the closed loop, in f64.
+    pub fn poles(&self) -> &[Complex<f64>] {
+        &self.poles
     }
 
     /// Whether every pole lies left of the axis; exact.
@@ -143,4 +156,20 @@ impl LoopAt {
         let times = |p: &IntPoly, factor: &IBig| IntPoly::new(p.coefficients().iter().map(|c| c * factor).collect());
         BlockAt { above: times(&above, &gain), below: times(&self.closed, &scale) }
     }
+}
+
+/// The poles, with real parts that keep their digits however near to the axis.
+fn poles(closed: &IntPoly) -> Result<Vec<Complex<f64>>, ExactError> {
+    let mut poles = polished(closed)?;
+    for bits in NEAR_AXIS_BITS {
+        if !poles.iter().any(|p| p.re.abs() < NEAR_AXIS * p.im.abs()) {
+            break;
+        }
+        let discs = enclose_all(closed, bits)?;
+        poles = discs.iter().flat_map(|d| core::iter::repeat_n(d.center.to_f64(), d.multiplicity)).collect();
+        if discs.iter().all(|disc| disc.radius <= TOLD * disc.center.to_f64().re.abs()) {
+            break;
+        }
+    }
+    Ok(poles)
 }

@@ -1,5 +1,7 @@
 //! What the closed loop does at one value of the knob: its answers over time, and its open loop over frequency.
 
+mod altered;
+mod axis;
 mod figures;
 mod frequency;
 mod loop_at;
@@ -7,6 +9,7 @@ mod modes;
 mod searches;
 mod trace;
 
+pub use altered::FirstSwing;
 pub use figures::{Figure, SettlingBand};
 pub use frequency::Frequency;
 pub use loop_at::{Answer, LoopAt};

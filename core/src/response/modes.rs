@@ -115,6 +115,11 @@ impl Modes {
         self.modes.iter().map(|mode| (mode.at(t) * mode.pole).re).sum()
     }
 
+    /// y″(t).
+    pub(super) fn bend(&self, t: f64) -> f64 {
+        self.modes.iter().map(|mode| (mode.at(t) * mode.pole * mode.pole).re).sum()
+    }
+
     /// A bound on |y(τ) − y(∞)| for every τ ≥ t.
     pub(super) fn envelope(&self, t: f64) -> f64 {
         self.modes.iter().map(|mode| mode.size(t)).sum()

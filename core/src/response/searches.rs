@@ -5,6 +5,7 @@
 //! envelope; so fast modes do not make small steps where only slow ones matter, and no turn is ever missed.
 
 use super::modes::{Modes, Peaks};
+use alloc::vec::Vec;
 
 /// A mode is expanded over stretches of at most so many radians to each side of the middle.
 const EXPANDED: f64 = 1.0;
@@ -12,11 +13,15 @@ const EXPANDED: f64 = 1.0;
 /// Stretches looked at in one search before it ends without an answer. Ordinary answers need some hundred.
 const STRETCH_CAP: usize = 60_000;
 
-/// A stretch this short, relative to its end, is monotone but for rounding.
-const SHORTEST: f64 = 1e-14;
+/// A stretch this short, relative to its end, is not halved any more: in f64 the phase of faster modes is blurred, and
+/// the bounds themselves count.
+const SHORTEST: f64 = 1e-11;
 
 /// Extremes are right to this part of the answer's largest known value; closer ones are not told apart.
-const PEAK_ERROR: f64 = 1e-10;
+const PEAK_ERROR: f64 = 1e-13;
+
+/// No peak is looked for where the answer stays this near to its final value: nobody sees it on a record.
+const SETTLED: f64 = 1e-6;
 
 /// Rounding of the sum of modes, as a part of the sum of their sizes.
 const ROUNDING: f64 = 1e-15;
@@ -34,7 +39,22 @@ impl Modes {
         let mut extremes = Extremes { peaks: Peaks { highest, lowest }, end, rounding };
         let quiet = self.quiet_after(extremes.error().max(f64::MIN_POSITIVE));
         self.search(quiet, &mut extremes)?;
-        Some(extremes.peaks)
+        let Peaks { highest, lowest } = extremes.peaks;
+        Some(Peaks { highest: self.at_turn(highest), lowest: self.at_turn(lowest) })
+    }
+
+    /// An extreme whose value is found, moved to the turn beside it: nearer than the error of values, times still differ.
+    fn at_turn(&self, (y, t): (f64, f64)) -> (f64, f64) {
+        if t == 0.0 || !t.is_finite() {
+            return (y, t);
+        }
+        let (slope, bend) = (self.slope(t), self.bend(t));
+        let beyond = t - 2.0 * slope / bend;
+        if !(beyond >= 0.0 && slope * self.slope(beyond) < 0.0) {
+            return (y, t);
+        }
+        let turn = self.turn(t, beyond);
+        (self.value(turn), turn)
     }
 
     /// The first time at which the answer, taken in the direction of its final value, is at `part` < 1 of it. None where
@@ -52,6 +72,15 @@ impl Modes {
         self.search(quiet, &mut reach)?;
         // At the quiet time the level is reached but for rounding.
         Some(reach.found.unwrap_or(quiet))
+    }
+
+    /// Time and value of the first `count` turns at which the answer, taken in the direction of its final value, is highest.
+    /// None where there are not so many before it has settled, or the search meets its cap.
+    pub fn first_peaks(&self, count: usize) -> Option<Vec<(f64, f64)>> {
+        let settled = SETTLED * self.final_value.abs();
+        let mut peaks = FirstPeaks { direction: self.final_value.signum(), count, rising: false, found: Vec::new() };
+        self.search(self.quiet_after(settled.max(f64::MIN_POSITIVE)), &mut peaks)?;
+        (peaks.found.len() == count).then_some(peaks.found)
     }
 
     /// The last time at which |y − y(∞)| is `band`, 0 where it never is more. None where the search meets its cap.
@@ -73,8 +102,12 @@ impl Modes {
                 continue;
             }
             let Stretch { from, to, .. } = stretch;
-            if stretch.is_monotone() || to - from <= SHORTEST * to {
+            if stretch.is_monotone() {
                 if quest.look(self, from, to) {
+                    return Some(());
+                }
+            } else if to - from <= SHORTEST * to {
+                if quest.take(&stretch) {
                     return Some(());
                 }
             } else if stretch.has_one_turn() {
@@ -174,6 +207,9 @@ trait Quest {
     /// Looks at a monotone stretch; true ends the search.
     fn look(&mut self, modes: &Modes, from: f64, to: f64) -> bool;
 
+    /// Takes a stretch by its bounds; true ends the search.
+    fn take(&mut self, stretch: &Stretch) -> bool;
+
     /// Whether the later of two neighbours is looked at first.
     fn later_first(&self, halves: Option<(&Stretch, &Stretch)>) -> bool;
 }
@@ -214,8 +250,53 @@ impl Quest for Extremes {
         false
     }
 
+    fn take(&mut self, stretch: &Stretch) -> bool {
+        if stretch.high > self.peaks.highest.0 {
+            self.peaks.highest = (stretch.high, stretch.to);
+        }
+        if stretch.low < self.peaks.lowest.0 {
+            self.peaks.lowest = (stretch.low, stretch.to);
+        }
+        false
+    }
+
     fn later_first(&self, halves: Option<(&Stretch, &Stretch)>) -> bool {
         halves.is_some_and(|(earlier, later)| self.promise(later) > self.promise(earlier))
+    }
+}
+
+struct FirstPeaks {
+    /// The sign of the final value.
+    direction: f64,
+    /// As many are wanted.
+    count: usize,
+    /// Whether the answer rose on the stretch before.
+    rising: bool,
+    /// Time and value.
+    found: Vec<(f64, f64)>,
+}
+
+impl Quest for FirstPeaks {
+    fn is_dull(&self, _: &Stretch) -> bool {
+        false
+    }
+
+    fn look(&mut self, modes: &Modes, from: f64, to: f64) -> bool {
+        let (before, after) = (modes.value(from), modes.value(to));
+        let rises = (after - before) * self.direction > 0.0;
+        if self.rising && !rises {
+            self.found.push((from, before));
+        }
+        self.rising = rises;
+        self.found.len() == self.count
+    }
+
+    fn take(&mut self, _: &Stretch) -> bool {
+        false
+    }
+
+    fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
+        false
     }
 }
 
@@ -238,6 +319,11 @@ impl Quest for FirstReach {
             self.found = Some(if ends[0].1 >= 0.0 { from } else { root_between(ends[0], ends[1], beyond) });
         }
         self.found.is_some()
+    }
+
+    fn take(&mut self, stretch: &Stretch) -> bool {
+        self.found = Some(stretch.to);
+        true
     }
 
     fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
@@ -265,6 +351,11 @@ impl Quest for LastOutside {
             self.found = Some(root_between(ends[0], ends[1], beyond));
         }
         self.found.is_some()
+    }
+
+    fn take(&mut self, stretch: &Stretch) -> bool {
+        self.found = Some(stretch.to);
+        true
     }
 
     fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {

@@ -6,7 +6,7 @@ use super::frequency::SampledFrequency;
 use super::ranges::SampledRanges;
 use super::response::{Answers, answers};
 use crate::exact::complex_roots::polished;
-use crate::exact::{ExactError, IntPoly};
+use crate::exact::{Dyadic, ExactError, IntPoly};
 use crate::numerics::magnitude;
 use crate::record::{Point, equivalent};
 use alloc::vec::Vec;
@@ -22,8 +22,6 @@ pub struct SampledAt<'a> {
     pub whole: &'a SampledRanges,
     /// The knob.
     pub knob: RBig,
-    /// F in z, times a positive number.
-    pub(super) closed: IntPoly,
     /// Poles of the closed loop in the z-plane.
     pub poles: Vec<Complex<f64>>,
     /// The controller's numerator and denominator in z here.
@@ -39,13 +37,11 @@ impl<'a> SampledAt<'a> {
     /// # Errors
     /// From the exact methods, where the poles cannot be found.
     pub fn new(whole: &'a SampledRanges, knob: RBig) -> Result<Self, ExactError> {
-        let closed = whole.characteristic_at(&knob);
-        let poles = polished(&closed)?;
+        let poles = polished(&whole.characteristic_at(&knob))?;
         let Controls { above, below } = controls(whole, &knob);
         Ok(Self {
             whole,
             knob,
-            closed,
             poles,
             controller: [above, below],
             stable: OnceCell::new(),
@@ -173,6 +169,7 @@ fn at_one(p: &Factored) -> RBig {
     if p.ones > 0 {
         return RBig::ZERO;
     }
-    let sum: IBig = p.rest.center.coefficients().iter().sum();
-    crate::exact::Dyadic::new(sum << p.minus_ones, p.rest.exponent).to_rational()
+    let rest = p.rest();
+    let sum: IBig = rest.center.coefficients().iter().sum();
+    Dyadic::new(sum << p.minus_ones, rest.exponent).to_rational()
 }

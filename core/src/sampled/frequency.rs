@@ -14,6 +14,7 @@ use crate::model::BlockAt;
 use crate::record::{FrequencyResponse, GainCrossing, PhaseCrossing};
 use crate::response::Frequency;
 use alloc::vec::Vec;
+use dashu_ratio::RBig;
 use nalgebra::Complex;
 
 /// Bits of the polynomials in v.
@@ -24,7 +25,12 @@ const BITS: usize = 192;
 pub struct SampledFrequency {
     in_v: Frequency,
     period: f64,
+    /// The sensitivity at z = −1.
+    at_nyquist: f64,
 }
+
+/// A peak within this part of the sensitivity at z = −1 is there.
+const SAME_PEAK: f64 = 1e-9;
 
 impl SampledFrequency {
     /// Of a stable loop.
@@ -45,8 +51,16 @@ impl SampledFrequency {
         let transfer = BlockAt { above: t, below: product(&closed, &extra.from_circle(transfer_order - order)) };
         let one = Complex::new(1.0, 0.0);
         let poles = at.poles.iter().map(|z| (z - one) / (z + one)).filter(|v| v.re.is_finite() && v.im.is_finite());
+        // Not zero: a stable loop has no pole at z = −1.
+        let last = closed.coefficient(order);
+        let ratio = if last.is_zero() {
+            f64::INFINITY
+        } else {
+            RBig::from_parts_signed(d.coefficient(order), last).to_f64().value()
+        };
         let open = BlockAt { above: n, below: d };
-        Self { in_v: Frequency::of(open, transfer, &closed, poles.collect()), period: at.period() }
+        let in_v = Frequency::of(open, transfer, &closed, poles.collect());
+        Self { in_v, period: at.period(), at_nyquist: libm::fabs(ratio) }
     }
 
     /// ω for w = tan(ωh/2).
@@ -117,6 +131,9 @@ impl SampledFrequency {
     /// Where the sensitivity peaks, rad/s, and its peak.
     pub fn peak(&self) -> (f64, f64) {
         let (w, peak) = self.in_v.peak();
+        if peak <= self.at_nyquist * (1.0 + SAME_PEAK) {
+            return (self.nyquist(), self.at_nyquist);
+        }
         (self.omega(w), peak)
     }
 
@@ -158,7 +175,7 @@ fn output(at: &SampledAt<'_>) -> (Factored, Factored) {
     }
     let common = gcd(&input.plant.above, &input.plant.below);
     let over = |p: &IntPoly| p.exactly_over(&common).unwrap_or_else(|| p.clone());
-    let delay = &input.computation + &input.plant_delay;
+    let delay = input.hold_delay() + &input.plant_delay;
     let own = hold(&over(&input.plant.above), &over(&input.plant.below), &input.period, &delay, BITS);
     let constant = |p: &IntPoly| Enclosed::exact(IntPoly::new([p.coefficient(0)].into()));
     let (gain, scale) = (constant(&sensor.above), constant(&sensor.below));

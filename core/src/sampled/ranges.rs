@@ -12,7 +12,6 @@
 use super::enclosed::Enclosed;
 use super::factored::Factored;
 use super::family::{FIRST_BITS, MAXIMUM_BITS, SampledFamily, SampledLoop, Trouble, at};
-use super::knob_powers::middles;
 use crate::exact::complex_roots::roots;
 use crate::exact::gcd::squarefree_part;
 use crate::exact::half_plane::{HalfPlaneCount, count};
@@ -98,7 +97,7 @@ fn ranges_at(input: &SampledLoop, bits: usize) -> Result<SampledRanges, Trouble>
     let ranges = between.into_iter().map(|count| verdict(count, false)).collect();
     let unresolved = found.unresolved.iter().map(|bracket| bracket.midpoint().to_f64()).collect();
     let partition = Partition::from_parts(places, ranges, at_places, proven);
-    let in_z = middles(&family.parts.iter().map(Factored::expanded).collect::<Vec<_>>(), DRAWN_BITS);
+    let in_z = drawn(&family.parts);
     let fixed_in_z = family.fixed_in_z();
     Ok(SampledRanges {
         partition,
@@ -110,6 +109,20 @@ fn ranges_at(input: &SampledLoop, bits: usize) -> Result<SampledRanges, Trouble>
         in_z,
         fixed_in_z,
     })
+}
+
+/// The middles over one power of two.
+fn drawn(parts: &[Factored]) -> Vec<IntPoly> {
+    let middles: Vec<_> = parts.iter().map(|part| part.middle(DRAWN_BITS)).collect();
+    let exponent = middles.iter().filter(|(p, _)| !p.is_zero()).map(|(_, e)| *e).min().unwrap_or(0);
+    let aligned = |(p, e): &(IntPoly, i64)| {
+        if p.is_zero() {
+            IntPoly::default()
+        } else {
+            p.times(&IntPoly::new([IBig::ONE << ((e - exponent) as usize)].into()))
+        }
+    };
+    middles.iter().map(aligned).collect()
 }
 
 impl SampledRanges {
@@ -325,7 +338,7 @@ fn grouped(all: Vec<(usize, RealRoot)>, bounds: &[IntPoly; 2], simple: &[IntPoly
 }
 
 /// The count of roots right of the axis for every member of an enclosure in v, whose degree is certain.
-fn certain_count(p: &Enclosed) -> Result<HalfPlaneCount, Trouble> {
+pub(super) fn certain_count(p: &Enclosed) -> Result<HalfPlaneCount, Trouble> {
     let degree = p.degree();
     let decided = |i: usize| matches!(p.coefficient(i).sign(), Some(1 | -1));
     if !decided(degree) || !decided(0) || !is_clear_of_the_axis(p)? {
@@ -409,7 +422,8 @@ mod tests {
             given: Given::InZ,
             plant: BlockAt { above: p(plant.0), below: p(plant.1) },
             sensor: BlockAt { above: p(&[1]), below: p(&[1]) },
-            computation: &delay * &period,
+            computation: delay,
+            controller_delay: RBig::ZERO,
             period,
             plant_delay: RBig::ZERO,
             sensor_delay: RBig::ZERO,

@@ -12,6 +12,7 @@ use crate::exact::complex_roots::approximations;
 use crate::exact::{Dyadic, IntPoly};
 use crate::numerics::magnitude;
 use crate::response::{Trace, TracePoint};
+use alloc::rc::Rc;
 use alloc::vec;
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
@@ -118,16 +119,46 @@ enum Event {
 struct Part {
     /// s, from the period's start.
     offset: f64,
+    /// s, where the next part begins; None with the next period.
+    end: Option<f64>,
     events: Vec<Event>,
     steps: Vec<Step>,
 }
 
-/// One step of the plant: x⁺ = Φ x + Γ u.
+/// One step of the plant.
 #[derive(Clone, Debug)]
 struct Step {
     length: f64,
-    phi: alloc::rc::Rc<Vec<f64>>,
-    gamma: alloc::rc::Rc<Vec<f64>>,
+    moves: Rc<Moves>,
+}
+
+/// x⁺ = Φ x + Γ u.
+#[derive(Clone, Debug, Default)]
+struct Moves {
+    phi: Vec<f64>,
+    gamma: Vec<f64>,
+}
+
+impl Moves {
+    fn apply(&self, x: &[f64], u: f64, next: &mut [f64]) {
+        let order = x.len();
+        for (i, value) in next.iter_mut().enumerate() {
+            let row = &self.phi[i * order..(i + 1) * order];
+            *value = row.iter().zip(x).map(|(a, x)| a * x).sum::<f64>() + self.gamma[i] * u;
+        }
+    }
+
+    /// Two steps at once.
+    fn doubled(&self) -> Self {
+        let order = self.gamma.len();
+        let phi = (0..order * order)
+            .map(|k| (0..order).map(|j| self.phi[k / order * order + j] * self.phi[j * order + k % order]).sum())
+            .collect();
+        let gamma = (0..order)
+            .map(|i| (0..order).map(|j| self.phi[i * order + j] * self.gamma[j]).sum::<f64>() + self.gamma[i])
+            .collect();
+        Self { phi, gamma }
+    }
 }
 
 /// A row that reads a signal from the plant.
@@ -194,7 +225,7 @@ impl Machine {
             a,
             feedback: input.feedback.to_f64().value(),
             period: input.period.to_f64().value(),
-            computation: input.computation.to_f64().value(),
+            computation: input.hold_delay().to_f64().value(),
         })
     }
 
@@ -213,6 +244,9 @@ impl Machine {
         let mut errors: Vec<f64> = Vec::with_capacity(periods + 1);
         let mut controls: Vec<f64> = Vec::with_capacity(periods + 1);
         let mut output: Vec<TracePoint> = Vec::with_capacity(periods * self.points_in_a_period());
+        for _ in 0..self.early_samples() {
+            self.control(command, 0.0, &mut errors, &mut controls);
+        }
         for k in 0..periods {
             for part in &self.parts {
                 let time = k as f64 * self.period + part.offset;
@@ -224,11 +258,7 @@ impl Machine {
                         Event::Hold(ago) => {
                             held = k.checked_sub(*ago).and_then(|j| controls.get(j).copied()).unwrap_or(held)
                         }
-                        Event::Sample(ahead) => {
-                            // Samples before this one fall before the step.
-                            while controls.len() < k + ahead {
-                                self.control(command, 0.0, &mut errors, &mut controls);
-                            }
+                        Event::Sample(_) => {
                             let here = self.parts_hold_now(part, k, controls.len());
                             let quiet = self.measured.read(&x, if here { pushed } else { held + pushed });
                             let direct = if here { self.measured.direct } else { 0.0 };
@@ -245,18 +275,23 @@ impl Machine {
                     output.push(self.point(time, &x, input));
                 }
                 let mut t = time;
-                for step in &part.steps {
-                    for i in 0..self.order {
-                        let row = &step.phi[i * self.order..(i + 1) * self.order];
-                        next[i] = row.iter().zip(&x).map(|(a, x)| a * x).sum::<f64>() + step.gamma[i] * input;
-                    }
+                // The next part begins exactly where this one ends.
+                let end = part.end.map_or((k + 1) as f64 * self.period, |end| k as f64 * self.period + end);
+                for (i, step) in part.steps.iter().enumerate() {
+                    step.moves.apply(&x, input, &mut next);
                     core::mem::swap(&mut x, &mut next);
-                    t += step.length;
+                    t = if i + 1 == part.steps.len() { end } else { (t + step.length).min(end) };
                     output.push(self.point(t, &x, input));
                 }
             }
         }
         Run { output, control: self.staircase(&controls, periods) }
+    }
+
+    /// Samples whose signal left the plant before the step.
+    fn early_samples(&self) -> usize {
+        let events = self.parts.iter().flat_map(|part| &part.events);
+        events.filter_map(|event| if let Event::Sample(ahead) = event { Some(*ahead) } else { None }).sum()
     }
 
     /// Whether the value computed from the sample at this very event acts at once: no delay at all.
@@ -326,7 +361,7 @@ fn parts(at: &SampledAt<'_>, system: Option<&Companion>, poles: &[f64]) -> Vec<P
         let rest = time - RBig::from(whole.clone()) * period;
         (usize::try_from(&whole).unwrap_or(0), rest)
     };
-    let (ago, hold_at) = split(&(&input.computation + &input.plant_delay));
+    let (ago, hold_at) = split(&(input.hold_delay() + &input.plant_delay));
     let (after, load_at) = split(&input.plant_delay);
     // The sample of period i reads the plant at i·h − T: at offset h·⌈T/h⌉ − T of a period ⌈T/h⌉ before.
     let (whole, rest) = split(&input.sensor_delay);
@@ -335,9 +370,9 @@ fn parts(at: &SampledAt<'_>, system: Option<&Companion>, poles: &[f64]) -> Vec<P
     let own_value = ago == 0 && ahead == 0 && hold_at == sample_at;
     let mut events = vec![(load_at, 0, Event::Load(after)), (sample_at.clone(), 2, Event::Sample(ahead))];
     events.push((hold_at, if own_value { 3 } else { 1 }, Event::Hold(ago)));
-    events.push((RBig::ZERO, 4, Event::Load(usize::MAX)));
     events.sort_by(|a, b| a.0.cmp(&b.0).then(a.1.cmp(&b.1)));
-    let mut offsets: Vec<RBig> = events.iter().map(|e| e.0.clone()).collect();
+    // The first part starts with the period, event or not.
+    let mut offsets: Vec<RBig> = [RBig::ZERO].into_iter().chain(events.iter().map(|e| e.0.clone())).collect();
     offsets.dedup();
     let end = |i: usize| offsets.get(i + 1).unwrap_or(period);
     offsets
@@ -345,6 +380,7 @@ fn parts(at: &SampledAt<'_>, system: Option<&Companion>, poles: &[f64]) -> Vec<P
         .enumerate()
         .map(|(i, offset)| Part {
             offset: offset.to_f64().value(),
+            end: offsets.get(i + 1).map(|end| end.to_f64().value()),
             events: events.iter().filter(|e| e.0 == *offset).map(|e| e.2).collect(),
             steps: steps(&(end(i) - offset), system, poles),
         })
@@ -367,22 +403,23 @@ fn steps(length: &RBig, system: Option<&Companion>, poles: &[f64]) -> Vec<Step> 
     // The first even step: 4 steps of length/4/2^halvings, then 4 of twice that from the same start on, …: each halving's
     // first half is covered by the finer ones.
     let mut all = Vec::new();
-    let finest = &base / RBig::from(STEPS_EACH_HALVING << halvings);
+    let mut current = step(&(&base / RBig::from(STEPS_EACH_HALVING << halvings)), system);
     let mut covered = 0;
-    for level in 0..=halvings {
-        let one = step(&(&finest * RBig::from(1_u32 << level)), system);
-        let steps = STEPS_EACH_HALVING - covered;
-        all.extend(core::iter::repeat_n(one, steps));
+    for _ in 0..=halvings {
+        all.extend(vec![current.clone(); STEPS_EACH_HALVING - covered]);
         covered = STEPS_EACH_HALVING / 2;
+        current = Step { length: 2.0 * current.length, moves: current.moves.doubled().into() };
     }
-    all.extend(vec![step(&base, system); even - 1]);
+    // The last doubling is half an even step.
+    let whole = Step { length: 2.0 * current.length, moves: current.moves.doubled().into() };
+    all.extend(vec![whole; even - 1]);
     all
 }
 
 fn step(length: &RBig, system: Option<&Companion>) -> Step {
-    let (phi, gamma) = system.map_or_else(Default::default, |system| {
+    let moves = system.map_or_else(Moves::default, |system| {
         let (phi, gamma) = system.transition(length, BITS);
-        (phi.to_f64(), gamma.to_f64())
+        Moves { phi: phi.to_f64(), gamma: gamma.to_f64() }
     });
-    Step { length: length.to_f64().value(), phi: phi.into(), gamma: gamma.into() }
+    Step { length: length.to_f64().value(), moves: moves.into() }
 }

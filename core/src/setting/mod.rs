@@ -1,5 +1,6 @@
 //! The controller's own scale: from setting to knob and back, rounding to the safe side, and a suggestion.
 
+pub mod step_up;
 mod suggestion;
 
 pub use suggestion::{Advice, Suggested, controller_range, suggest};

@@ -70,7 +70,7 @@ fn ends(scale: &Scale, piece: &Piece) -> [Option<RBig>; 2] {
 }
 
 /// The scale's step, or that of so many digits of a number where it has none.
-fn step_near(scale: &Scale, setting: &RBig, digits: i32) -> RBig {
+pub(super) fn step_near(scale: &Scale, setting: &RBig, digits: i32) -> RBig {
     if let Some(step) = &scale.step {
         return step.clone();
     }
@@ -81,7 +81,8 @@ fn step_near(scale: &Scale, setting: &RBig, digits: i32) -> RBig {
     if power >= 0 { ten } else { RBig::ONE / ten }
 }
 
-fn with_step(scale: &Scale, step: &RBig) -> Scale {
+/// The scale on another grid.
+pub(super) fn with_step(scale: &Scale, step: &RBig) -> Scale {
     Scale { step: Some(step.clone()), ..scale.clone() }
 }
 

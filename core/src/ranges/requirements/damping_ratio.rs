@@ -13,7 +13,8 @@ use alloc::vec::Vec;
 use dashu_int::IBig;
 
 pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactError> {
-    let Some((d, n)) = ground.family.affine() else { return sampled::lane(ground, limit) };
+    let Some(family) = ground.family else { return sampled::lane(ground, limit) };
+    let Some((d, n)) = family.affine() else { return sampled::lane(ground, limit) };
     let (p, c) = (limit.value.numerator().clone(), IBig::from(limit.value.denominator().clone()));
     let parts = |poly: &IntPoly| on_ray(poly, &p, &c);
     let contact = |_| Contact::Axis { omega: 0.0 };
@@ -25,7 +26,7 @@ pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactErro
     places.extend(super::super::affine::stability_places(d, n)?);
     let zeta = limit.value.to_f64().value();
     judged(ground, limit.kind, places, |q| {
-        let poles = roots(&ground.family.at(q).times(&ground.family.fixed))?;
+        let poles = roots(&family.at(q).times(&family.fixed))?;
         Ok(poles.iter().all(|pole| inside(pole, zeta)))
     })
 }
@@ -37,7 +38,7 @@ fn inside(pole: &Root, zeta: f64) -> bool {
 }
 
 /// A and B of a polynomial on the ray.
-fn on_ray(poly: &IntPoly, p: &IBig, c: &IBig) -> (IntPoly, IntPoly) {
+pub fn on_ray(poly: &IntPoly, p: &IBig, c: &IBig) -> (IntPoly, IntPoly) {
     let (mut a, mut b) = (IBig::ONE, IBig::ZERO);
     let (mut first, mut second) = (Vec::new(), Vec::new());
     for coefficient in poly.coefficients() {

@@ -3,7 +3,7 @@
 //! Poles and static errors are judged exactly; what depends on a response over time or frequency is computed at many
 //! knob values and its edges refined.
 
-mod damping_ratio;
+pub mod damping_ratio;
 mod decay_rate;
 mod gain_margin;
 mod kinds;
@@ -49,8 +49,8 @@ pub struct Lane {
 pub struct Ground<'a> {
     /// The loop as built.
     pub model: &'a Loop,
-    /// Its family over the knob.
-    pub family: &'a Family,
+    /// Its family over the knob; None where it is no ratio of polynomials in s.
+    pub family: Option<&'a Family>,
     /// The stable ranges.
     pub stable: &'a [Piece],
     /// The loop at many knob values of the stable ranges.

@@ -2,7 +2,7 @@
 //! the imaginary axis of v by s = ω(1 + v)/(1 − v).
 
 use super::super::{affine, polynomial};
-use super::{Ground, Lane, Limit, judged};
+use super::{Ground, Lane, Limit, judged, sampled};
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
 use crate::project::RequirementKind;
@@ -10,8 +10,9 @@ use alloc::vec::Vec;
 use dashu_int::IBig;
 
 pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactError> {
+    let Some(family) = ground.family else { return sampled::lane(ground, limit) };
     let (a, c) = (limit.value.numerator().clone(), IBig::from(limit.value.denominator().clone()));
-    let mapped = ground.family.mapped(|p, degree| p.from_circle(&a, &c, degree));
+    let mapped = family.mapped(|p, degree| p.from_circle(&a, &c, degree));
     let places = match mapped.affine() {
         Some((d, n)) => affine::stability_places(d, n)?,
         None if mapped.knob_degree() == 0 => Vec::new(),
@@ -22,8 +23,8 @@ pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactErro
         let count = count(p)?;
         Ok(p.degree() - count.right - count.axis)
     };
-    let order = ground.family.moving_order();
-    let fixed_order = ground.family.fixed.degree();
+    let order = family.moving_order();
+    let fixed_order = family.fixed.degree();
     let fixed_inside = inside(&mapped.fixed)?;
     let fixed_outside = count(&mapped.fixed)?.right;
     let at_least = limit.kind == RequirementKind::NaturalFrequencyMinimum;

@@ -3,7 +3,7 @@
 
 use super::super::EDGE_BITS;
 use super::super::place::{Contact, Place, short_rational};
-use super::{Ground, Lane, Limit, judged};
+use super::{Ground, Lane, Limit, judged, sampled};
 use crate::exact::dyadic::sign_of;
 use crate::exact::gcd::squarefree_part;
 use crate::exact::real_roots::real_roots;
@@ -15,6 +15,10 @@ use dashu_int::IBig;
 use dashu_ratio::RBig;
 
 pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactError> {
+    // Dead time and the conversions of a controller in s leave the static figures as they are.
+    if ground.model.sampling.as_ref().is_some_and(|sampling| sampling.controller_in_z) {
+        return sampled::lane(ground, limit);
+    }
     let ratio = match limit.kind {
         RequirementKind::StepError => ground.model.static_error(0),
         RequirementKind::RampError => ground.model.static_error(1),
