@@ -5,12 +5,17 @@
 
 use super::ranges::SampledRanges;
 use crate::exact::complex_roots::roots;
+use crate::exact::half_plane::HalfPlaneCount;
+use crate::exact::real_roots::count_real;
 use crate::exact::{ExactError, IntPoly};
 use crate::locus::landmarks::{from_meetings, from_roots, sign_of_knob};
 use crate::locus::{Branch, LocusInput, branches, encounters, trade, view};
-use crate::ranges::{Contact, Family, Partition};
-use crate::record::{Asymptotes, BothSigns, KnobSign, Landmark, LandmarkKind, Point, Root, Segment, View, equivalent};
+use crate::ranges::{Contact, Family, Partition, Verdict, affine, merge, samples};
+use crate::record::{
+    Asymptotes, BothSigns, CharacterName, KnobSign, Landmark, LandmarkKind, Point, Root, Segment, View, equivalent,
+};
 use alloc::vec::Vec;
+use dashu_ratio::RBig;
 
 /// Poles and zeros farther out than this are left out of the default view: sampling zeros may lie anywhere on the negative
 /// real axis.
@@ -44,7 +49,7 @@ pub struct SampledLocus {
 pub fn locus(whole: &SampledRanges) -> Result<SampledLocus, ExactError> {
     let nothing = || Family { fixed: IntPoly::default(), parts: [IntPoly::from_i64(&[1])].into() };
     let family = Family::new(whole.in_z.clone()).unwrap_or_else(nothing);
-    let partition = Partition::new(&family)?;
+    let partition = partition(&family, &whole.partition)?;
     let encounters = encounters(&family, &partition)?;
     let fixed_factor = family.fixed.times(&whole.fixed_in_z);
     let affine = family.affine();
@@ -91,6 +96,24 @@ pub fn locus(whole: &SampledRanges) -> Result<SampledLocus, ExactError> {
         view,
         lost,
     })
+}
+
+/// The line of the knob cut where real poles meet, and where poles cross the unit circle so that branches get a vertex
+/// there; with the number of real poles in every range.
+fn partition(family: &Family, sampled: &Partition) -> Result<Partition, ExactError> {
+    let Some((d, n)) = family.affine() else { return Partition::new(family) };
+    let mut places = affine::real_meetings(d, n)?;
+    places.extend(sampled.places.iter().cloned());
+    let places = merge(places);
+    let fixed = count_real(&family.fixed)?;
+    let real = |q: &RBig| {
+        let real = count_real(&family.at(q))? + fixed;
+        Ok(Verdict { half_plane: HalfPlaneCount::default(), real, pairs: 0, name: CharacterName::Unstable })
+    };
+    let ranges = samples(&places).iter().map(real).collect::<Result<Vec<_>, ExactError>>()?;
+    let at_places = ranges[1..].to_vec();
+    let proven = places.iter().map(|_| false).collect();
+    Ok(Partition::from_parts(places, ranges, at_places, proven))
 }
 
 /// The unit circle with what lies near it.

@@ -64,7 +64,12 @@ pub struct SampledRanges {
 /// # Errors
 /// Bad input; a cap; or [`Trouble::Undecided`] where even the highest precision leaves a sign open.
 pub fn ranges(input: &SampledLoop) -> Result<SampledRanges, Trouble> {
-    let mut bits = FIRST_BITS;
+    ranges_from(input, FIRST_BITS)
+}
+
+/// The same, with fewer bits of the fixed point at the first try.
+pub(super) fn ranges_from(input: &SampledLoop, first_bits: usize) -> Result<SampledRanges, Trouble> {
+    let mut bits = first_bits;
     loop {
         match ranges_at(input, bits) {
             Err(Trouble::Undecided) if 2 * bits <= MAXIMUM_BITS => bits *= 2,
@@ -112,7 +117,7 @@ fn ranges_at(input: &SampledLoop, bits: usize) -> Result<SampledRanges, Trouble>
 }
 
 /// The middles over one power of two.
-fn drawn(parts: &[Factored]) -> Vec<IntPoly> {
+pub(super) fn drawn(parts: &[Factored]) -> Vec<IntPoly> {
     let middles: Vec<_> = parts.iter().map(|part| part.middle(DRAWN_BITS)).collect();
     let exponent = middles.iter().filter(|(p, _)| !p.is_zero()).map(|(_, e)| *e).min().unwrap_or(0);
     let aligned = |(p, e): &(IntPoly, i64)| {

@@ -21,7 +21,7 @@ use dashu_ratio::RBig;
 const BITS: usize = 128;
 
 /// Steps for one radian of a mode, roughly: the cubic between two points is then right to 1e-4 of the mode.
-const STEPS_PER_RADIAN: f64 = 2.0;
+const STEPS_PER_RADIAN: f64 = 3.0;
 
 /// Even steps of one part of a period. Modes that would need more are followed only while they are fresh.
 const EVEN_STEPS_CAP: f64 = 32.0;

@@ -46,7 +46,7 @@ fn solved(line: &str) -> Result<Value, String> {
         reply["longestPeriod"] = json!(longest_period(&input, setting));
         clock.lap("longest period");
     }
-    reply["byPeriod"] = json!(by_period(&input));
+    reply["byPeriod"] = json!(by_period(&found));
     clock.lap("by period");
     reply["warnings"] = json!(warnings::of_the_plant(&input));
     reply["milliseconds"] = json!(clock.laps.iter().cloned().collect::<HashMap<_, _>>());
