@@ -10,10 +10,11 @@ use crate::ranges::permitted::{conflict, permitted};
 use crate::ranges::pieces::{Border, Piece};
 use crate::ranges::requirements::{Lane, Limit, at_least, check_limit, describe, meets, unit};
 use crate::record::{
-    Conflict, EdgeCurve, LimitEdge, LimitRange, LoadRecord, Margins, Permitted, PhaseCrossing, RequirementRecord,
-    StepRecord, Suggestion,
+    Conflict, EdgeCurve, LimitEdge, LimitRange, LoadRecord, Margins, Notice, Permitted, PhaseCrossing,
+    RequirementRecord, StepRecord, Suggestion,
 };
 use crate::response::{Figure, LoopAt};
+use crate::sampled::warnings;
 use crate::setting::{Scale, controller_range, suggest, typed};
 use alloc::format;
 use alloc::string::{String, ToString};
@@ -38,6 +39,8 @@ pub struct Judgement {
     pub step: Option<StepRecord>,
     /// At the setting.
     pub load: Option<LoadRecord>,
+    /// Warnings at the setting.
+    pub notices: Vec<Notice>,
 }
 
 /// Reads the requirements of a project.
@@ -108,9 +111,12 @@ pub fn judge(
         conflict,
     };
     let step = here.as_ref().and_then(|here| step(analysis, here, &pieces));
-    let margins = here.as_ref().map(margins).transpose()?.flatten();
+    // What could not be found is not shown; the ranges are not touched by it.
+    let margins = here.as_ref().and_then(|here| margins(here).ok().flatten());
     let load = here.as_ref().and_then(load);
-    Ok(Judgement { requirements, permitted, margins, step, load })
+    let sampled = here.as_ref().and_then(LoopAt::sampled);
+    let notices = sampled.and_then(warnings::of_the_closed_loop).into_iter().collect();
+    Ok(Judgement { requirements, permitted, margins, step, load, notices })
 }
 
 fn requirement(limit: &Limit, lane: &Lane, scale: &Scale, here: Option<&LoopAt>) -> RequirementRecord {

@@ -8,13 +8,14 @@ import argparse
 import json
 import random
 import sys
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from pathlib import Path
 
 sys.path.insert(0, str(Path(__file__).parent))
 
 from binary import NoAnswer, Records
+from sampled_answers import check_answers, check_margins, check_period
 from sampled_truth import Truth, product
 
 SEEDS = 200
@@ -43,8 +44,12 @@ class Case:
     fixed_above: tuple = None
     sensor: list = field(default_factory=lambda: [Fraction(1)])
 
-    def project(self):
-        """The project document."""
+    def at_period(self, period):
+        """The same loop with another sample period."""
+        return replace(self, period=period, delay=self.computation * period + self.dead_time)
+
+    def project(self, setting=None):
+        """The project document; the setting is the knob."""
         variable = "z" if self.method == "in z" else "s"
         text = f"K ({written(self.controller_above, variable)})/({written(self.controller_below, variable)})"
         if self.fixed_above is not None:
@@ -60,7 +65,10 @@ class Case:
             "deadTime": decimal(self.dead_time),
             "sampling": sampling,
         }
-        return json.dumps({"format": "stayband-project/1", "loop": loop, "knob": "K"})
+        document = {"format": "stayband-project/1", "loop": loop, "knob": "K"}
+        if setting is not None:
+            document["setting"] = {"value": decimal(setting)}
+        return json.dumps(document)
 
 
 def decimal(value):
@@ -199,6 +207,42 @@ def inside(edges, k, rng):
     return low + (high - low) * (part * Fraction(98, 100) + Fraction(1, 100))
 
 
+def stable_setting(answer):
+    """A short knob value inside of the first stable range that has one, or None."""
+    for r in answer.get("stability", []):
+        if not r["stable"]:
+            continue
+        low, high = (r[end] and r[end]["value"] for end in ("from", "to"))
+        if low is None and high is None:
+            return Fraction(1)
+        low = low if low is not None else high - max(abs(high), 1)
+        high = high if high is not None else low + max(abs(low), 1)
+        middle = low + 0.4 * (high - low)
+        digits = 2
+        while digits < 16:
+            value = Fraction(f"{middle:.{digits}g}") if middle else Fraction(0)
+            if value and low < value < high and abs(float(value) - middle) < 0.2 * (high - low):
+                return value
+            digits += 1
+    return None
+
+
+def check_setting(case, records, answer):
+    """What is wrong with what is told at a setting."""
+    knob = stable_setting(answer)
+    if knob is None:
+        return [], 0, {}
+    told = records.ask(case.project(knob))
+    faults, checked = [], 0
+    if not told["setting"]["stable"]:
+        faults.append(f"not stable at {float(knob)!r}")
+    for check_part in (check_answers, check_margins):
+        found, count = check_part(case, knob, told["setting"])
+        faults, checked = faults + found, checked + count
+    found, count = check_period(case, knob, told["longestPeriod"])
+    return faults + found, checked + count, told
+
+
 def main():
     parser = argparse.ArgumentParser()
     parser.add_argument("--binary", required=True)
@@ -206,16 +250,21 @@ def main():
     parser.add_argument("--seeds", type=int, default=SEEDS)
     arguments = parser.parse_args()
     records = Records(arguments.binary)
-    passed = failed = edges = 0
+    passed = failed = edges = lost = answered = limited = 0
     slowest = (0, None)
     for seed in [arguments.only] if arguments.only is not None else range(arguments.seeds):
         case = random_case(seed)
         try:
             answer = records.ask(case.project())
             faults, checked = check(case, answer)
+            more, count, told = check_setting(case, records, answer)
+            faults, checked = faults + more, checked + count
+            lost += answer.get("lost", 0)
+            answered += "output" in told.get("setting", {})
+            limited += told.get("longestPeriod") is not None
         except NoAnswer as reason:
             answer, faults, checked = {}, [str(reason)], 0
-        slowest = max(slowest, (answer.get("milliseconds", 0), seed))
+        slowest = max(slowest, (answer.get("milliseconds", {}).get("ranges", 0), seed))
         edges += len(answer.get("stability", [0])) - 1
         passed, failed = passed + checked - len(faults), failed + len(faults)
         if faults or answer.get("unresolved"):
@@ -225,6 +274,7 @@ def main():
             if answer.get("unresolved"):
                 print(f"    unresolved {answer['unresolved']}")
             sys.stdout.flush()
+    print(f"{answered} answers, {limited} longest periods; {lost} halves of the locus lost")
     print(f"{edges} edges; slowest {slowest[0]:.1f} ms (seed {slowest[1]}); {passed} passed, {failed} failed")
     return 1 if failed or not passed else 0
 

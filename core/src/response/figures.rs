@@ -5,6 +5,7 @@ use super::modes::Peaks;
 use super::motion::Motion;
 use crate::exact::IntPoly;
 use crate::project::RequirementKind;
+use crate::sampled::SampledAt;
 use dashu_ratio::RBig;
 use nalgebra::ComplexField;
 
@@ -72,6 +73,9 @@ impl LoopAt {
         }
         let decibel = |factor: f64| 20.0 * libm::log10(factor);
         let frequency = || self.frequency();
+        if let Some(found) = self.sampled().and_then(|sampled| sampled_figure(sampled, kind)) {
+            return found;
+        }
         match kind {
             Kind::DampingRatio => self.over_poles(|p| -p.re / p.modulus()),
             Kind::DecayRate => self.over_poles(|p| -p.re),
@@ -127,6 +131,21 @@ fn static_error(below: &IntPoly, closed: &IntPoly, order: usize) -> Option<RBig>
         return None;
     }
     Some(RBig::from_parts_signed(at(below, order), at(closed, 0)))
+}
+
+/// What a sampled loop says itself: figures of its poles, and static errors.
+fn sampled_figure(sampled: &SampledAt, kind: RequirementKind) -> Option<Figure> {
+    use RequirementKind as Kind;
+    let value = match kind {
+        Kind::DampingRatio => sampled.damping_ratio(),
+        Kind::DecayRate => sampled.decay_rate(),
+        Kind::NaturalFrequencyMinimum | Kind::NaturalFrequencyMaximum => sampled.natural_frequency(),
+        Kind::StepError => 100.0 * sampled.static_error(0).abs(),
+        Kind::RampError => sampled.static_error(1).abs(),
+        Kind::ParabolaError => sampled.static_error(2).abs(),
+        _ => return None,
+    };
+    Some(Some(value).into())
 }
 
 impl Answer {

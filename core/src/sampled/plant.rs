@@ -8,10 +8,10 @@
 
 use super::enclosed::{Enclosed, Unit};
 use super::factored::Factored;
-use super::fixed::{Matrix, fixed, resolvent};
-use crate::exact::IntPoly;
-use crate::exact::gcd::squarefree_part;
+use super::fixed::{Matrix, Resolvent, fixed, resolvent};
+use crate::exact::gcd::{squarefree_factors, squarefree_part};
 use crate::exact::half_plane::count;
+use crate::exact::{Dyadic, IntPoly};
 use alloc::vec;
 use alloc::vec::Vec;
 use dashu_int::IBig;
@@ -96,6 +96,20 @@ impl Companion {
             entries.into_iter().zip(&self.scales).map(|(c, scale)| c * power_of_two(scale - top)).collect();
         (Matrix::from_rationals(order, &row, bits), top - self.scales[order - 1] - self.input_scale)
     }
+
+    /// The row of [`Self::output`] in f64.
+    pub fn output_f64(&self, above: &[RBig], bits: usize) -> Vec<f64> {
+        let (row, exponent) = self.output(above, bits);
+        row.entries.iter().map(|e| Dyadic::new(e.clone(), exponent - bits as i64).to_f64()).collect()
+    }
+
+    /// The derivative of a signal read by a row, as a row and what the input adds to it.
+    pub fn derivative(&self, row: &[f64]) -> (Vec<f64>, f64) {
+        let order = self.order();
+        let matrix: Vec<f64> = self.augmented(&RBig::ONE).iter().map(|e| e.to_f64().value()).collect();
+        let column = |j: usize| (0..order).map(|i| row[i] * matrix[i * (order + 1) + j]).sum::<f64>();
+        ((0..order).map(column).collect(), column(order))
+    }
 }
 
 /// 2^exponent.
@@ -146,15 +160,7 @@ pub fn hold(above: &IntPoly, below: &IntPoly, period: &RBig, delay: &RBig, bits:
     let system = Companion::new(below, period);
     let (phi, gamma) = system.transition(period, bits);
     let found = resolvent(&phi);
-    let monic = |mut low: Vec<IBig>, top: IBig| {
-        low.push(top);
-        IntPoly::new(low)
-    };
-    let characteristic = Enclosed {
-        center: monic(found.coefficients.clone(), IBig::ONE << bits),
-        radius: IntPoly::new(found.radii.clone()),
-        exponent: -(bits as i64),
-    };
+    let characteristic = characteristic(&found, bits);
     let (direct, remainder) = direct_part(above, below);
     let (row, exponent) = system.output(&remainder, bits);
     let read = |gamma: &Matrix| numerator(&row, &found.adjugate, gamma, exponent);
@@ -172,7 +178,7 @@ pub fn hold(above: &IntPoly, below: &IntPoly, period: &RBig, delay: &RBig, bits:
     };
     Held {
         above: known_zeros(sum.plus(&direct), above, below, &(&fraction / period)),
-        below: known_poles(characteristic, below, whole + usize::from(late)),
+        below: known_poles(characteristic, below, period, whole + usize::from(late)),
     }
 }
 
@@ -201,13 +207,44 @@ fn numerator(row: &Matrix, adjugate: &[Matrix], gamma: &Matrix, exponent: i64) -
     }
 }
 
-/// The poles that are known without error: integrators, delays, and that undamped pairs stay on the circle.
-fn known_poles(characteristic: Enclosed, below: &IntPoly, delays: usize) -> Factored {
+/// The poles that are known without error: integrators, delays, repeated ones, and undamped pairs, which stay on the circle.
+fn known_poles(characteristic: Enclosed, below: &IntPoly, period: &RBig, delays: usize) -> Factored {
     let (rest, integrators) = below.without_zero_roots();
+    if squarefree_part(&rest).degree() < rest.degree() {
+        return Factored {
+            zeros: delays,
+            ones: integrators,
+            ..taken_along(&rest, period, -characteristic.exponent as usize)
+        };
+    }
     let plain = Factored { zeros: delays, ..Factored::plain(characteristic) };
     let found = (0..integrators).fold(plain, |p, _| p.with_root(Unit::Plus));
-    let pairs = count(&squarefree_part(&rest)).map_or(0, |count| count.axis / 2);
-    Factored { circle_pairs: pairs, ..found }
+    Factored { circle_pairs: undamped_pairs(&rest), ..found }
+}
+
+/// The polynomial with a root e^(r h) for every root r of p, which does not vanish at 0; leading coefficient 1.
+pub fn taken_along(p: &IntPoly, period: &RBig, bits: usize) -> Factored {
+    let mut factors = Vec::new();
+    for (factor, multiplicity) in squarefree_factors(p) {
+        let (phi, _) = Companion::new(&factor, period).transition(period, bits);
+        factors.extend(vec![characteristic(&resolvent(&phi), bits); multiplicity]);
+    }
+    if factors.is_empty() {
+        factors.push(Enclosed::one());
+    }
+    Factored { zeros: 0, ones: 0, minus_ones: 0, factors, circle_pairs: undamped_pairs(p) }
+}
+
+/// Different pairs of roots on the imaginary axis away from 0.
+fn undamped_pairs(p: &IntPoly) -> usize {
+    count(&squarefree_part(p)).map_or(0, |count| count.axis / 2)
+}
+
+/// det(zI − Φ).
+fn characteristic(found: &Resolvent, bits: usize) -> Enclosed {
+    let mut center = found.coefficients.clone();
+    center.push(IBig::ONE << bits);
+    Enclosed { center: IntPoly::new(center), radius: IntPoly::new(found.radii.clone()), exponent: -(bits as i64) }
 }
 
 /// The zeros that are known without error. A zero at s = 0 stays one at z = 1. A strictly proper plant with G(−s) = G(s)

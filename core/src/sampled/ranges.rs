@@ -10,6 +10,7 @@
 //!   roots move continuously: |F(jw)|² ≥ (error)² for all w, which one more count of real roots shows.
 
 use super::enclosed::Enclosed;
+use super::factored::Factored;
 use super::family::{FIRST_BITS, MAXIMUM_BITS, SampledFamily, SampledLoop, Trouble, at};
 use crate::exact::complex_roots::roots;
 use crate::exact::gcd::squarefree_part;
@@ -24,6 +25,9 @@ use dashu_ratio::RBig;
 
 /// Edges are enclosed at least this narrowly, relative to their value: below the last bit of f64.
 const EDGE_BITS: i64 = 60;
+
+/// Bits of the middles from which poles and curves are computed: digits enough for eight poles within 1e-4 of each other.
+const DRAWN_BITS: usize = 256;
 
 /// Zones of x are refined to these many bits, one after the other, until the edge is narrow.
 const ZONE_BITS: [i64; 4] = [80, 120, 200, 400];
@@ -45,6 +49,14 @@ pub struct SampledRanges {
     pub unresolved: Vec<f64>,
     /// Bits of the fixed point that were needed.
     pub bits: usize,
+    /// The loop.
+    pub input: SampledLoop,
+    /// The parts of the family with the unit circle as the imaginary axis.
+    pub on_the_axis: Vec<Enclosed>,
+    /// The middles of the parts in z over one power of two, for what is drawn.
+    pub in_z: Vec<IntPoly>,
+    /// The middle of the factor that no knob moves.
+    pub fixed_in_z: IntPoly,
 }
 
 /// Finds the ranges.
@@ -52,7 +64,12 @@ pub struct SampledRanges {
 /// # Errors
 /// Bad input; a cap; or [`Trouble::Undecided`] where even the highest precision leaves a sign open.
 pub fn ranges(input: &SampledLoop) -> Result<SampledRanges, Trouble> {
-    let mut bits = FIRST_BITS;
+    ranges_from(input, FIRST_BITS)
+}
+
+/// The same, with fewer bits of the fixed point at the first try.
+pub(super) fn ranges_from(input: &SampledLoop, first_bits: usize) -> Result<SampledRanges, Trouble> {
+    let mut bits = first_bits;
     loop {
         match ranges_at(input, bits) {
             Err(Trouble::Undecided) if 2 * bits <= MAXIMUM_BITS => bits *= 2,
@@ -85,7 +102,48 @@ fn ranges_at(input: &SampledLoop, bits: usize) -> Result<SampledRanges, Trouble>
     let ranges = between.into_iter().map(|count| verdict(count, false)).collect();
     let unresolved = found.unresolved.iter().map(|bracket| bracket.midpoint().to_f64()).collect();
     let partition = Partition::from_parts(places, ranges, at_places, proven);
-    Ok(SampledRanges { partition, family, unresolved, bits })
+    let in_z = drawn(&family.parts);
+    let fixed_in_z = family.fixed_in_z();
+    Ok(SampledRanges {
+        partition,
+        family,
+        unresolved,
+        bits,
+        input: input.clone(),
+        on_the_axis: parts,
+        in_z,
+        fixed_in_z,
+    })
+}
+
+/// The middles over one power of two.
+pub(super) fn drawn(parts: &[Factored]) -> Vec<IntPoly> {
+    let middles: Vec<_> = parts.iter().map(|part| part.middle(DRAWN_BITS)).collect();
+    let exponent = middles.iter().filter(|(p, _)| !p.is_zero()).map(|(_, e)| *e).min().unwrap_or(0);
+    let aligned = |(p, e): &(IntPoly, i64)| {
+        if p.is_zero() {
+            IntPoly::default()
+        } else {
+            p.times(&IntPoly::new([IBig::ONE << ((e - exponent) as usize)].into()))
+        }
+    };
+    middles.iter().map(aligned).collect()
+}
+
+impl SampledRanges {
+    /// Poles outside of the unit circle (`right`) and on it (`axis`) at a knob value that is not exactly an edge; proven.
+    ///
+    /// # Errors
+    /// [`Trouble::Undecided`] too near to an edge.
+    pub fn count_at(&self, q: &RBig) -> Result<HalfPlaneCount, Trouble> {
+        Ok(certain_count(&at(&self.on_the_axis, q))?.plus(self.family.fixed_count()))
+    }
+
+    /// F in z at a knob value, times a positive number; middles only.
+    pub fn characteristic_at(&self, q: &RBig) -> IntPoly {
+        let parts: Vec<Enclosed> = self.in_z.iter().cloned().map(Enclosed::exact).collect();
+        at(&parts, q).center.times(&self.fixed_in_z)
+    }
 }
 
 /// Places, before they are put in order.
@@ -285,7 +343,7 @@ fn grouped(all: Vec<(usize, RealRoot)>, bounds: &[IntPoly; 2], simple: &[IntPoly
 }
 
 /// The count of roots right of the axis for every member of an enclosure in v, whose degree is certain.
-fn certain_count(p: &Enclosed) -> Result<HalfPlaneCount, Trouble> {
+pub(super) fn certain_count(p: &Enclosed) -> Result<HalfPlaneCount, Trouble> {
     let degree = p.degree();
     let decided = |i: usize| matches!(p.coefficient(i).sign(), Some(1 | -1));
     if !decided(degree) || !decided(0) || !is_clear_of_the_axis(p)? {
@@ -369,7 +427,8 @@ mod tests {
             given: Given::InZ,
             plant: BlockAt { above: p(plant.0), below: p(plant.1) },
             sensor: BlockAt { above: p(&[1]), below: p(&[1]) },
-            computation: &delay * &period,
+            computation: delay,
+            controller_delay: RBig::ZERO,
             period,
             plant_delay: RBig::ZERO,
             sensor_delay: RBig::ZERO,
