@@ -328,7 +328,8 @@ class Half:
             except Lost:
                 return False
             before, away = away, abs(place - meeting.place)
-            if away > before * APPROACH:
+            # Beside a pole and a zero that nearly cancel a root may stand still until the very end.
+            if away > before * APPROACH and away > tolerances.VERTEX_PLACE * float(self.scale(s)):
                 return False
         return False
 
