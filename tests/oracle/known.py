@@ -1,5 +1,5 @@
 """Deviations that are known and not yet mended, by the name of the case. They are printed in every run, and so is one that has
-gone away. The seeds 148 and 208, whose branches pass each other nearer than f64 tells, are not among those followed."""
+gone away."""
 
 #: Where a turn of the answer just touches the band, core and oracle place the jump of a settling time up to about 1e-4 of the knob
 #: apart; beside it a margin or a peak at a sharp corner. Which of the two is right is open.
