@@ -103,7 +103,7 @@ pub fn judge(
         suggested: advice.suggested.map(|s| Suggestion {
             setting: typed(&s.setting),
             knob: s.knob.to_f64().value(),
-            reason: s.reason.to_string(),
+            reason: s.reason,
         }),
         conflict,
     };
