@@ -106,7 +106,7 @@ pub fn judge(
         suggested: advice.suggested.map(|s| Suggestion {
             setting: typed(&s.setting),
             knob: s.knob.to_f64().value(),
-            reason: s.reason.to_string(),
+            reason: s.reason,
         }),
         conflict,
     };
@@ -287,5 +287,21 @@ mod tests {
         let found = record(ROLLER, "{}", r#"{"kind": "ramp-error", "limit": "1"}"#);
         assert!(found.requirements[0].ranges.is_empty());
         assert!(found.requirements[0].remark.as_deref().is_some_and(|text| text.contains("one integrator")));
+    }
+
+    #[test]
+    fn a_range_much_narrower_than_the_samples_is_found_with_its_jump() {
+        // K/(s(s + 1)): the overshoot touches the band of 2 % at x = ln 50/π, ζ = x/√(1 + x²), K = 1/(4ζ²), where the
+        // settling time is shortest and jumps.
+        let axis = r#"{"controller": "K", "plant": "1/(s (s + 1))"}"#;
+        let x = libm::log(50.0) / core::f64::consts::PI;
+        let touching = (1.0 + x * x) / (4.0 * x * x);
+        let beside = format!(r#"{{"value": "{}"}}"#, touching * (1.0 - 1e-4));
+        let settled = record(axis, &beside, "").step.and_then(|step| step.settling_time2).expect("settles");
+        let limit = format!(r#"{{"kind": "settling-time-2", "limit": "{settled}"}}"#);
+        let ranges = record(axis, "{}", &limit).requirements.remove(0).ranges;
+        let [range] = &ranges[..] else { panic!("{ranges:?}") };
+        let ends = [&range.from, &range.to].map(|end| end.as_ref().map_or(f64::NAN, |edge| edge.knob / touching - 1.0));
+        assert!((ends[0] + 1e-4).abs() < 1e-7 && ends[1].abs() < 1e-7, "{ends:?}");
     }
 }

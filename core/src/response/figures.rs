@@ -114,7 +114,9 @@ impl LoopAt {
         }
     }
 
-    /// The static error at the comparison, |lim s·E(s)| for the command 1/s^(order + 1) and E = D/F·1/s^(order + 1).
+    /// The static error at the comparison, |lim s·E(s)| for the command 1/s^(order + 1) and E = D/F·1/s^(order + 1): the
+    /// command minus (with positive feedback, plus) what the sensor shows. On a ramp or a parabola the output's own error
+    /// differs from it where the sensor lags: for C·P = k/s and H = 1/(τs + 1) it is 1/k − τ, here it is 1/k.
     fn static_error(&self, order: usize) -> Figure {
         match static_error(&self.open.below, &self.closed, order) {
             Some(error) => Figure::Value(error.to_f64().value().abs()),
