@@ -1,5 +1,6 @@
 // Saving to and opening from a file.
 import { LARGEST_PROJECT } from "./link.ts";
+import type { Project } from "./types.ts";
 
 /** How the name of a project's file ends. */
 const ENDING = ".stayband.json";
@@ -14,6 +15,11 @@ export function fileName(title: string, ending: string = ENDING): string {
     .slice(0, 80)
     .trim();
   return (name || "loop") + ending;
+}
+
+/** The project as it is written into a file. */
+export function fileDocument(project: Project): string {
+  return `${JSON.stringify(project, null, 2)}\n`;
 }
 
 /** Hands a text to the browser as a download. */

@@ -2,7 +2,7 @@
 import { byId } from "./dom.ts";
 import { DEMOS } from "./demos.ts";
 import { copy } from "./exports.ts";
-import { download, fileName, fileText, pickFile } from "./file.ts";
+import { download, fileDocument, fileName, fileText, pickFile } from "./file.ts";
 import { linkPart } from "./link.ts";
 import { menu } from "./menu.ts";
 import { say } from "./message.ts";
@@ -55,7 +55,7 @@ function saving(session: Session, store: Store, press: (id: string, act: () => v
   const nameOf = (): string => names.get(session.place) ?? fileName(session.situation.project.title);
   const save = (): void => {
     const { project } = session.situation;
-    download(nameOf(), "application/json", `${JSON.stringify(project, null, 2)}\n`);
+    download(nameOf(), "application/json", fileDocument(project));
     store.saved(project);
   };
   press("save", save);
