@@ -15,3 +15,4 @@ mod picture;
 mod pointer;
 mod recovery;
 mod requirements;
+mod sheet;

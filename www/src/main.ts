@@ -8,6 +8,7 @@ import { headline } from "./headline.ts";
 import { landmarksTable } from "./landmarks.ts";
 import { carriesProject, projectText } from "./link.ts";
 import { messageBar, say } from "./message.ts";
+import { Paper } from "./paper.ts";
 import { Plane } from "./plane.ts";
 import { Responses } from "./responses.ts";
 import { Ruler } from "./ruler.ts";
@@ -15,6 +16,9 @@ import { offerScripting } from "./script.ts";
 import { Session } from "./session.ts";
 import { Store } from "./store.ts";
 import { openDocument, tools } from "./tools.ts";
+import { sheetPanel } from "./sheet.ts";
+import { siteCheckPanel } from "./sitecheck.ts";
+import { stepUpPanel } from "./stepup.ts";
 import { reasonPanel } from "./why.ts";
 
 function start(): void {
@@ -29,11 +33,15 @@ function start(): void {
   landmarksTable(session, new Plane(session));
   new Responses(session);
   figuresTable(session);
+  const paper = new Paper(engine, session);
+  stepUpPanel(paper);
+  siteCheckPanel(session, paper);
+  sheetPanel(paper);
   roomForPictures();
   tools(session);
   busySign(engine, session);
   session.onFailure((message) => say(message, "trouble"));
-  offerScripting(session);
+  offerScripting(session, paper);
   window.addEventListener("hashchange", () => void openLink(session));
   void openFirst(session, store);
   showHash();
