@@ -84,7 +84,7 @@ pub fn judge(
 ) -> Result<Judgement, ExactError> {
     let lanes = limits.iter().map(|limit| analysis.lane(limit)).collect::<Result<Vec<_>, _>>()?;
     let knob = setting.and_then(|setting| scale.knob(setting));
-    let here = knob.map(|knob| LoopAt::new(&analysis.model, knob)).transpose()?;
+    let here = knob.map(|knob| LoopAt::new(analysis.setup(), knob)).transpose()?;
     let requirements =
         limits.iter().zip(&lanes).map(|(limit, lane)| requirement(limit, lane, scale, here.as_ref())).collect();
     let stable = &analysis.findings.stable;
@@ -159,10 +159,10 @@ fn margins(here: &LoopAt) -> Result<Option<Margins>, ExactError> {
         gain_down: finite(found.gain_down()?),
         phase: finite(found.phase_margin()?),
         delay: finite(found.delay_margin()?),
-        peak_sensitivity: found.peak().1,
-        peak_frequency: found.peak().0,
+        peak_sensitivity: found.peak()?.1,
+        peak_frequency: found.peak()?.0,
         bandwidth: found.bandwidth()?.and_then(finite),
-        gain_crossings: found.gain_crossings()?.to_vec(),
+        gain_crossings: found.gain_crossings()?,
         phase_crossings: found.phase_crossings()?.iter().filter(at_finite).copied().collect(),
         response: found.response()?,
     }))
@@ -176,7 +176,7 @@ fn step(analysis: &Analysis, here: &LoopAt, pieces: &[Piece]) -> Option<StepReco
     let borders = chosen.into_iter().flat_map(|piece| [&piece.from, &piece.to]).flatten();
     let at_edges: Vec<LoopAt> = borders
         .filter(|border| border.cause != crate::record::Cause::Stability)
-        .filter_map(|border| LoopAt::new(&analysis.model, border.bracket.midpoint().to_rational()).ok())
+        .filter_map(|border| LoopAt::new(analysis.setup(), border.bracket.midpoint().to_rational()).ok())
         .collect();
     let horizons = at_edges.iter().filter_map(|at| at.output().found()).map(|(modes, _)| modes.horizon());
     let end = horizons.fold(own, f64::max).min(LONGEST * own);
@@ -189,7 +189,7 @@ fn step(analysis: &Analysis, here: &LoopAt, pieces: &[Piece]) -> Option<StepReco
         curve: modes.curve(end),
         at_edges: at_edges.iter().filter_map(edge_curve).collect(),
         controller: here.control().found().map(|(modes, _)| modes.curve(end)),
-        final_value: modes.final_value,
+        final_value: modes.final_value(),
         overshoot: figure(RequirementKind::Overshoot),
         undershoot: figure(RequirementKind::Undershoot),
         rise_time: figure(RequirementKind::RiseTime),
@@ -203,7 +203,7 @@ fn step(analysis: &Analysis, here: &LoopAt, pieces: &[Piece]) -> Option<StepReco
 fn load(here: &LoopAt) -> Option<LoadRecord> {
     let (modes, _) = here.load().found()?;
     let peak = here.figure(RequirementKind::LoadPeak).value()?;
-    Some(LoadRecord { curve: modes.curve(modes.horizon()), peak, final_value: modes.final_value })
+    Some(LoadRecord { curve: modes.curve(modes.horizon()), peak, final_value: modes.final_value() })
 }
 
 #[cfg(test)]

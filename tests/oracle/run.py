@@ -23,7 +23,6 @@ from pathlib import Path
 sys.path.insert(0, str(Path(__file__).parent))
 sys.path.insert(0, str(Path(__file__).parent.parent / "published"))
 
-import known
 import published
 import requirement_cases
 import requirement_checks
@@ -62,7 +61,7 @@ def main():
                 passed, failed = passed + counts[0], failed + counts[1]
         if not arguments.self_test:
             for seconds, missing, result in pool.imap_unordered(run_job, jobs, chunksize=1):
-                counts = show(known_or(result))
+                counts = show(result)
                 passed, failed, undrawn = passed + counts[0], failed + counts[1], undrawn + missing
                 slowest = sorted([*slowest, (seconds, result[0])], reverse=True)[:SLOWEST]
     if undrawn > tolerances.UNDRAWN * max(arguments.seeds, 100):
@@ -72,19 +71,6 @@ def main():
     print(f"{time.monotonic() - started:.0f} s")
     print(f"{passed} passed, {failed} failed")
     return 1 if failed or not passed else 0
-
-
-def known_or(result):
-    """The result, with the failures of a known deviation taken out; one that has gone away is said, so that it is taken off the list."""
-    name, project, passed, failures = result
-    reason = known.DEVIATIONS.get(name)
-    if reason is None:
-        return result
-    if not failures:
-        print(f"known: {name}: gone, take it off known.py")
-        return result
-    print(f"known: {name}: {len(failures)} of {passed + len(failures)} checks fail: {reason}")
-    return name, project, passed, []
 
 
 def parse():

@@ -157,7 +157,7 @@ function edgeTable({ edges }: Derivation, knob: string): HTMLElement[] {
     edge.exact === null ? figure(edge.value, DIGITS) : `${figure(edge.value, DIGITS)} = ${edge.exact.replace("-", "−")} exactly`,
     edge.bracket.map((text) => text.replace("-", "−")).join(" … "),
     edge.omega === null ? "–" : figure(edge.omega, DIGITS),
-    happening(edge),
+    happening(edge, "s"),
     edge.proven ? "proven" : "not proven",
   ]);
   return [html("p", {}, "The edges with the decimal numbers between which they surely lie:"), plainTable([knob, "bracket", "ω, rad/s", "what happens", ""], rows)];

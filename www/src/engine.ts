@@ -106,6 +106,12 @@ export class Engine {
     for (const request of dropped) request.resolve(null);
   }
 
+  /** Ends the worker: this engine is not asked again. */
+  end(): void {
+    this.#take();
+    this.#end();
+  }
+
   /** Calls back with true when an answer takes long enough to say so, and with false when that is over. */
   onBusy(listener: (busy: boolean) => void): void {
     this.#busyListeners.push(listener);

@@ -20,7 +20,7 @@ export function siteCheckPanel(session: Session, paper: Paper): void {
   paper.onSheet((record) => {
     const check = record?.sheet.siteCheck;
     const corrected = check?.correction?.project;
-    const open = corrected ? button("Open the corrected project", () => session.replace(completed(corrected))) : null;
+    const open = corrected ? button("Open the corrected project", () => void session.open(completed(corrected))) : null;
     place.replaceChildren(...(record && check ? [...checkParts(record, check), ...(open ? [open] : [])] : []));
   });
 }

@@ -15,6 +15,7 @@ use crate::record::{
     Asymptotes, BothSigns, CharacterRange, ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Root, Segment,
     StabilityRange, View,
 };
+use crate::response::Setup;
 use alloc::boxed::Box;
 use alloc::format;
 use alloc::vec::Vec;
@@ -114,6 +115,11 @@ impl Analysis {
         }
     }
 
+    /// For a look at single settings.
+    pub fn setup(&self) -> Setup<'_> {
+        Setup { model: &self.model }
+    }
+
     /// Where a requirement is met; kept for the next time.
     ///
     /// # Errors
@@ -126,15 +132,12 @@ impl Analysis {
         let samples = match self.samples.get() {
             Some(samples) => samples,
             None => {
-                let samples = Samples::new(&self.model, stable)?;
+                let samples = Samples::new(self.setup(), stable)?;
                 self.samples.get_or_init(|| samples)
             }
         };
-        let family = match &self.method {
-            Method::Rational(rational) => Some(&rational.family),
-            Method::DeadTime(_) | Method::Sampled(_) => None,
-        };
-        let ground = Ground { model: &self.model, family, stable, samples };
+        let family = self.rational().map(|(family, _)| family);
+        let ground = Ground { model: &self.model, setup: self.setup(), family, stable, samples };
         let found = lane(&ground, limit)?;
         let mut lanes = self.lanes.borrow_mut();
         if lanes.len() >= LANES_KEPT {
@@ -151,7 +154,7 @@ impl Analysis {
     pub fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, AnalysisError> {
         match &self.method {
             Method::Rational(rational) => Ok(rational.closed_loop(knob)?),
-            Method::DeadTime(dead_time) => Ok(dead_time.closed_loop(knob)),
+            Method::DeadTime(dead_time) => dead_time.closed_loop(knob),
             Method::Sampled(sampled) => sampled.closed_loop(knob),
         }
     }

@@ -18,7 +18,7 @@ use dashu_ratio::RBig;
 
 /// What the questions about such a loop need.
 pub(super) struct Rational {
-    /// The characteristic polynomial over the knob.
+    /// The characteristic polynomial over the knob, its fixed factor taken out.
     pub(super) family: Family,
     /// The line of the knob, cut where something happens.
     pub(super) partition: Partition,
@@ -66,9 +66,9 @@ impl Rational {
                 None => notices.push(lost_branches(sign)),
             }
         }
+        let stable = stable_pieces(&partition);
         let own = Self { family, partition, moving };
-        let partition = &own.partition;
-        let affine = own.affine();
+        let (partition, affine) = (&own.partition, own.affine());
         let findings = Findings {
             stability: partition.stability(),
             character: partition.character(),
@@ -80,7 +80,7 @@ impl Rational {
             view,
             notices,
             branches: all,
-            stable: stable_pieces(partition),
+            stable,
         };
         Ok((findings, own))
     }

@@ -6,11 +6,16 @@
 //! and none is a mere touch.
 
 pub mod delay;
+pub mod frequency;
+mod function;
 pub mod gain;
 mod isolation;
 mod partition;
+pub mod poles;
+pub mod response;
 mod trigonometry;
 
+pub use function::Quasi;
 pub use partition::{Count, DeadTimePartition};
 
 use crate::exact::ExactError;

@@ -29,7 +29,7 @@ pub(super) fn step(ground: &Ground<'_>, limit: &Limit) -> Result<RequirementStep
 }
 
 fn edge(ground: &Ground<'_>, limit: &Limit, border: &Border) -> Result<RequirementEdge, ExactError> {
-    let at = LoopAt::new(&ground.analysis.model, border.bracket.midpoint().to_rational())?;
+    let at = LoopAt::new(ground.analysis.setup(), border.bracket.midpoint().to_rational())?;
     Ok(RequirementEdge { knob: border.value(), pole: pole_on_limit(&at, limit), figure: at.figure(limit.kind).value() })
 }
 

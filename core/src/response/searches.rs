@@ -5,6 +5,7 @@
 //! envelope; so fast modes do not make small steps where only slow ones matter, and no turn is ever missed.
 
 use super::modes::{Modes, Peaks};
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
 
 /// A mode is expanded over stretches of at most so many radians to each side of the middle.
@@ -138,7 +139,7 @@ impl Modes {
         let (middle, h) = (0.5 * (from + to), 0.5 * (to - from));
         let (mut y, mut slope, mut bend, mut third) = (self.final_value, 0.0, 0.0, 0.0);
         let mut long = [0.0; 3];
-        for mode in &self.modes {
+        for mode in self.modes.iter().filter(|mode| from < mode.dead_after) {
             let rate = mode.rate;
             if rate * h <= EXPANDED {
                 let z = mode.at(middle);
@@ -146,7 +147,9 @@ impl Modes {
                 y += z.re;
                 slope += first.re;
                 bend += (first * mode.pole).re;
-                third += mode.size(from) * rate * rate * rate;
+                // Back at `from` it is larger by e^(−σh) ≤ 1 + (e − 1)·|σ|h.
+                let size = magnitude(z) * (1.0 - (core::f64::consts::E - 1.0) * mode.pole.re * h);
+                third += size * rate * rate * rate;
             } else {
                 let size = mode.size(from);
                 long[0] += size;

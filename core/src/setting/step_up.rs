@@ -239,7 +239,7 @@ impl Way<'_> {
 
     fn row(&self, setting: &RBig, edge: Option<&EdgeAhead>) -> Result<StepUpRow, ExactError> {
         let knob = self.ground.scale.knob(setting).unwrap_or(RBig::ZERO);
-        let at = LoopAt::new(&self.ground.analysis.model, knob.clone())?;
+        let at = LoopAt::new(self.ground.analysis.setup(), knob.clone())?;
         let swing = Swing::least_damped(at.poles());
         let value = knob.to_f64().value();
         let stop = match edge.filter(|edge| edge.omega.is_some()) {
@@ -270,7 +270,7 @@ impl Way<'_> {
         for _ in 0..HALVES {
             at = self.sign() * libm::sqrt(at * edge);
             let Some(q) = Dyadic::from_f64(at) else { return Ok(None) };
-            let there = LoopAt::new(&self.ground.analysis.model, q.round_down(KNOB_BITS).to_rational())?;
+            let there = LoopAt::new(self.ground.analysis.setup(), q.round_down(KNOB_BITS).to_rational())?;
             let swing = Swing::least_damped(there.poles()).filter(|swing| swing.decay() > decay);
             if let Some(swing) = swing {
                 return Ok(Some(StopSign { period: swing.period(), decay: swing.decay() }));

@@ -57,7 +57,7 @@ pub fn site_check(project: &Project, analysis: &Analysis, scale: &Scale) -> Resu
         Ok(seen) => seen,
         Err(remarks) => return Ok(Some(told(remarks))),
     };
-    let at = LoopAt::new(&analysis.model, seen.knob.clone())?;
+    let at = LoopAt::new(analysis.setup(), seen.knob.clone())?;
     let own = analysis.model.open_loop.dead_time.at(&seen.knob).to_f64().value();
     let (predicted, change) = match seen.overshoot {
         None => (at_nearest_edge(analysis, scale, &seen), from_oscillation(&at, own, seen.omega)),
