@@ -17,4 +17,5 @@ mod picture;
 mod pointer;
 mod recovery;
 mod requirements;
+mod sheet;
 mod shelf;

@@ -219,5 +219,5 @@ function requirement({ kind, condition, equation: text, proven, edges }: Require
     edge.pole ? pairText(edge.pole.re, edge.pole.im) : "–",
     edge.figure === null ? "–" : `${figure(edge.figure, 6)}${unit && THIN_SPACE}${unit}`,
   ]);
-  return [head, ...(text ? [html("p", { class: "equation" }, formula(text.mathml))] : []), ...(rows.length > 0 ? [plainTable([knob, "pole on the limit, 1/s", "figure there"], rows)] : [])];
+  return [head, ...(text ? [html("p", { class: "equation" }, formula(text.mathml))] : []), ...(rows.length > 0 ? [plainTable([knob, "pole on the limit, 1/s", "figure there, or beside a jump"], rows)] : [])];
 }

@@ -10,6 +10,7 @@ import { headline } from "./headline.ts";
 import { landmarksTable } from "./landmarks.ts";
 import { carriesProject, projectText } from "./link.ts";
 import { messageBar, say } from "./message.ts";
+import { Paper } from "./paper.ts";
 import { projectList } from "./projects.ts";
 import { Plane } from "./plane.ts";
 import { Responses } from "./responses.ts";
@@ -18,6 +19,9 @@ import { offerScripting } from "./script.ts";
 import { Session } from "./session.ts";
 import { Store, type Kept, type Trouble } from "./store.ts";
 import { openDocument, tools } from "./tools.ts";
+import { sheetPanel } from "./sheet.ts";
+import { siteCheckPanel } from "./sitecheck.ts";
+import { stepUpPanel } from "./stepup.ts";
 import { reasonPanel } from "./why.ts";
 
 function start(): void {
@@ -32,6 +36,10 @@ function start(): void {
   landmarksTable(session, new Plane(session));
   new Responses(session);
   figuresTable(session);
+  const paper = new Paper(engine, session);
+  stepUpPanel(paper);
+  siteCheckPanel(session, paper);
+  sheetPanel(paper);
   roomForPictures();
   tools(session, store);
   exportMenu(session);
@@ -39,7 +47,7 @@ function start(): void {
   keepingSigns(store);
   busySign(engine, session);
   session.onFailure((message) => say(message, "trouble"));
-  offerScripting(session);
+  offerScripting(session, paper);
   window.addEventListener("hashchange", () => void openLink(session));
   void openFirst(session, store);
   showHash();

@@ -42,18 +42,19 @@ export class Paper {
     this.#listeners.push(listener);
   }
 
-  /** Brings the sheet up to date now. */
-  async refresh(): Promise<void> {
+  /** Brings the sheet up to date now; null where there is none, or something newer was asked for. */
+  async refresh(): Promise<SheetFindings | null> {
     clearTimeout(this.#timer);
     const { project } = this.#session.situation;
-    if (this.#answered === project) return;
+    if (this.#answered === project) return this.#record;
     this.#asked = project;
     const reply = await this.#engine.sheet(fileDocument(project)).catch(() => null);
-    if (!reply || this.#asked !== project) return;
+    if (!reply || this.#asked !== project) return null;
     const { record } = reply.answer;
     this.#answered = project;
     this.#record = record?.sheet ? { ...record, sheet: record.sheet } : null;
     this.#tell();
+    return this.#record;
   }
 
   #wake(pause: number): void {

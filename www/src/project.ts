@@ -143,7 +143,7 @@ export function withKnob(project: Project, knob: string, present: string = proje
 export function rowsOf(project: Project, names: readonly string[]): { row: Quantity; used: boolean }[] {
   const rowOf = (symbol: string): Quantity =>
     project.quantities.find((row) => row.symbol === symbol) ?? { ...PLAIN_QUANTITY, symbol };
-  const unused = project.quantities.filter((row) => !names.includes(row.symbol) && (row.value || row.unit || row.meaning));
+  const unused = project.quantities.filter((row) => !names.includes(row.symbol) && (row.value || row.unit || row.tolerance || row.meaning));
   return [...names.map((name) => ({ row: rowOf(name), used: true })), ...unused.map((row) => ({ row, used: false }))];
 }
 

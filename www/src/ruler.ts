@@ -95,29 +95,17 @@ export class Ruler {
 
   #drawBase(record: Findings, axis: Axis, layout: Layout): void {
     const { left, length, scale, pitch } = layout;
-    const position = positionOn(axis, length);
     const lanes = this.#lanes;
-    const height = SIZES.axis * scale + lanes.length * pitch + SIZES.foot * scale;
+    const height = heightOf(lanes, layout);
     const names = lanes.map(({ name }) => name).join(", ");
     setAttributes(this.#picture, { viewBox: `0 0 ${layout.width} ${height}`, width: layout.width, height });
     setAttributes(this.#picture, { "aria-label": `Axis of settings with the lanes ${names}` });
-    const ticks = svg("g", { class: "ticks", transform: `translate(${left} ${SIZES.axis * scale - 4})` });
-    drawTicks(ticks, axis, position, layout);
     const catcher = svg("rect", { class: "catcher", x: left, y: 0, width: length, height });
-    const rows = lanes.map((lane, index) => {
-      const y = SIZES.axis * scale + index * pitch;
-      return svg(
-        "g",
-        { transform: `translate(0 ${y})` },
-        ...laneParts(lane, axis, position, layout),
-        laneText(lane.text, layout),
-      );
-    });
     const edges = lanes.map((lane, index) => {
       const top = SIZES.axis * scale + (index + 1) * pitch - (SIZES.lane + SIZES.gap) * scale;
       return this.#edgeMarks(lane, axis, layout, top, record);
     });
-    this.#base.replaceChildren(ticks, ...rows, catcher, ...edges);
+    this.#base.replaceChildren(...axisAndLanes(lanes, axis, layout), catcher, ...edges);
   }
 
   #edgeMarks(lane: Lane, axis: Axis, layout: Layout, top: number, record: Findings): SVGGElement {
@@ -238,6 +226,36 @@ export class Ruler {
     const { project } = this.#session.situation;
     this.#session.change(withSetting(project, typedText(setting)), "setting");
   }
+}
+
+/** The ruler at a width of its own, for the sheet: nothing on it can be moved. */
+export function rulerPicture(record: Findings, width: number): SVGSVGElement {
+  const layout = layoutFor(width);
+  const lanes = lanesOf(record);
+  const setting = settingNumber(record.project);
+  const axis = axisFor(subjectOf(record, null, setting), "automatic");
+  const height = heightOf(lanes, layout);
+  const x = setting !== null && onAxis(axis, setting) ? layout.left + positionOn(axis, layout.length)(setting) : null;
+  const top = SIZES.axis * layout.scale;
+  const stem = x === null ? null : svg("g", { class: "pointer" }, svg("line", { x1: x, x2: x, y1: top - 10, y2: height - SIZES.foot * layout.scale }));
+  const label = `Axis of settings with the lanes ${lanes.map(({ name }) => name).join(", ")}`;
+  return svg("svg", { class: "ruler", viewBox: `0 0 ${width} ${height}`, role: "img", "aria-label": label }, ...axisAndLanes(lanes, axis, layout), stem);
+}
+
+function heightOf(lanes: readonly Lane[], { scale, pitch }: Layout): number {
+  return SIZES.axis * scale + lanes.length * pitch + SIZES.foot * scale;
+}
+
+function axisAndLanes(lanes: readonly Lane[], axis: Axis, layout: Layout): SVGGElement[] {
+  const { left, length, scale, pitch } = layout;
+  const position = positionOn(axis, length);
+  const ticks = svg("g", { class: "ticks", transform: `translate(${left} ${SIZES.axis * scale - 4})` });
+  drawTicks(ticks, axis, position, layout);
+  const rows = lanes.map((lane, index) => {
+    const place = `translate(0 ${SIZES.axis * scale + index * pitch})`;
+    return svg("g", { transform: place }, ...laneParts(lane, axis, position, layout), laneText(lane.text, layout));
+  });
+  return [ticks, ...rows];
 }
 
 /** What the axis has to show for a record. */

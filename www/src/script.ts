@@ -1,4 +1,5 @@
 // What people who script the page can use.
+import type { Paper } from "./paper.ts";
 import { problemText, type Session } from "./session.ts";
 import type { Project, Record as Findings } from "./types.ts";
 
@@ -10,6 +11,7 @@ import type { Project, Record as Findings } from "./types.ts";
  *   no project changes nothing; a project with problems in its fields is opened and shows them.
  * - `record()` is the newest record, the one on the screen, or null while there is none.
  * - `project()` is the project as it stands in the form.
+ * - `sheet()` works out what the printed sheet needs; the promise holds the record with it, or null while there is none.
  *
  * Both documents are described in DEVELOPERS.md of the project.
  */
@@ -17,6 +19,7 @@ export interface Scripting {
   open(project: Project | string): Promise<Findings>;
   record(): Findings | null;
   project(): Project;
+  sheet(): Promise<Findings | null>;
 }
 
 declare global {
@@ -26,7 +29,7 @@ declare global {
 }
 
 /** Offers the session to scripts. */
-export function offerScripting(session: Session): void {
+export function offerScripting(session: Session, paper: Paper): void {
   window.stayband = {
     async open(project) {
       const { record, problems } = await session.openUnkept(project);
@@ -35,5 +38,6 @@ export function offerScripting(session: Session): void {
     },
     record: () => session.situation.good?.record ?? null,
     project: () => session.situation.project,
+    sheet: () => paper.refresh(),
   };
 }

@@ -10,6 +10,7 @@ import { limitWords } from "./reason.ts";
 import { kindOf } from "./requirements.ts";
 import { chartPicture } from "./responses.ts";
 import { permittedLane, requirementLane } from "./lanes.ts";
+import { rulerPicture } from "./ruler.ts";
 import { settingName, settingUnit } from "./scale.ts";
 import { checkParts } from "./sitecheck.ts";
 import { planParts } from "./stepup.ts";
@@ -17,6 +18,9 @@ import { planParts } from "./stepup.ts";
 /** The size of a picture of a response, in its own units; it is scaled to the paper. */
 const PICTURE = { width: 620, height: 250 };
 const TWO_PANES = { width: 620, height: 400 };
+
+/** The width of the ruler, likewise. */
+const RULER = 720;
 
 /** Keeps the sheet in step and connects its button. */
 export function sheetPanel(paper: Paper): void {
@@ -50,7 +54,7 @@ export function sheetParts(record: SheetFindings): HTMLElement[] {
     ...section("Answer", ...answerParts(record)),
     ...section("The loop", ...loopParts(record)),
     ...(record.project.requirements.length > 0 ? section("Requirements", requirementTable(record)) : []),
-    ...section("Ranges", copy("ruler-place")),
+    ...section("Ranges", html("figure", {}, rulerPicture(record, RULER))),
     ...section("Root locus", html("figure", {}, copy("plane")), copy("landmarks", "table"), copy("landmarks-more")),
     ...(record.closedLoop ? section(byId("figures-heading", HTMLElement).textContent ?? "", copy("figures-verdict"), copy("figures-table"), copy("poles-table")) : []),
     ...responseParts(record),

@@ -7,7 +7,7 @@ use crate::exact::{ExactError, IntPoly};
 use crate::locus::trade::{asymptotes as lines, directions as angles, for_both_signs, gain_sign, root_sum};
 use crate::ranges::permitted::short;
 use crate::ranges::{Contact, affine, polynomial};
-use crate::record::{LandmarkKind, Point, Root};
+use crate::record::{Landmark, LandmarkKind, Point, Root};
 use crate::sheet::{AngleTerm, AsymptoteStep, Breakaway, Candidate, DirectionStep};
 use alloc::format;
 use alloc::string::{String, ToString};
@@ -47,21 +47,36 @@ pub(super) fn breakaway(ground: &Ground<'_>) -> Result<Option<Breakaway>, ExactE
     let equation = written::equation(&w, "s");
     let candidates = match w.degree() {
         0 => Vec::new(),
-        _ => roots(&w)?.iter().filter(|root| root.im >= 0.0).map(|root| candidate(ground, (d, n), root)).collect(),
+        _ => {
+            let found: Vec<Root> = roots(&w)?.into_iter().filter(|root| root.im >= 0.0).collect();
+            found.iter().map(|root| candidate(ground, (d, n), root, meeting_at(ground, root, &found))).collect()
+        }
     };
     Ok(Some(Breakaway { equation, discriminant: false, candidates }))
 }
 
+fn distance(root: &Root, s: Point) -> f64 {
+    libm::hypot(s.re - root.re, s.im - root.im)
+}
+
+/// The meeting to which this root is nearer than all others.
+fn meeting_at<'a>(ground: &Ground<'a>, root: &Root, all: &[Root]) -> Option<&'a Landmark> {
+    let is_meeting = |l: &&Landmark| matches!(l.kind, LandmarkKind::Breakaway | LandmarkKind::BreakIn);
+    let is_here = |l: &&Landmark| {
+        let own = distance(root, l.s);
+        own <= SAME * libm::hypot(root.re, root.im) && all.iter().all(|other| distance(other, l.s) >= own)
+    };
+    ground.analysis.findings.landmarks.iter().filter(is_meeting).find(is_here)
+}
+
 /// What a root of D′·N − D·N′ is.
-fn candidate(ground: &Ground<'_>, (d, n): (&IntPoly, &IntPoly), root: &Root) -> Candidate {
-    let near = |s: Point| libm::hypot(s.re - root.re, s.im - root.im) <= SAME * libm::hypot(root.re, root.im);
-    let is_meeting = |kind: LandmarkKind| matches!(kind, LandmarkKind::Breakaway | LandmarkKind::BreakIn);
-    let landmark = ground.analysis.findings.landmarks.iter().find(|l| is_meeting(l.kind) && near(l.s));
+fn candidate(ground: &Ground<'_>, (d, n): (&IntPoly, &IntPoly), root: &Root, meeting: Option<&Landmark>) -> Candidate {
+    let near = |s: Point| distance(root, s) <= SAME * libm::hypot(root.re, root.im);
     let here = |roots: &[Root]| roots.iter().any(|r| near(Point { re: r.re, im: r.im }));
     let parts = ground.analysis.affine();
     let at = ComplexDyadic::from_f64(Complex::new(root.re, root.im));
     let knob = at.and_then(|z| negative_ratio_at(d, n, &z));
-    let (value, kept, reason): (Option<f64>, bool, String) = match landmark {
+    let (value, kept, reason): (Option<f64>, bool, String) = match meeting {
         Some(l) => {
             let what = if l.kind == LandmarkKind::Breakaway { "breakaway point" } else { "break-in point" };
             (l.knob, true, format!("{what}, {} poles meet", l.multiplicity))
