@@ -44,10 +44,10 @@ const BOUND_CAP: usize = 4000;
 /// The loop: its parts have no common root.
 #[derive(Clone, Debug)]
 pub struct GainFamily {
-    a: IntPoly,
-    b0: IntPoly,
-    b1: IntPoly,
-    dead_time: RBig,
+    pub(super) a: IntPoly,
+    pub(super) b0: IntPoly,
+    pub(super) b1: IntPoly,
+    pub(super) dead_time: RBig,
     /// The common factor of the parts as given; its roots are the fixed modes.
     pub fixed: IntPoly,
 }

@@ -28,7 +28,7 @@ const SEGMENT_CAP: usize = 60_000;
 const SETTLED: f64 = 1e-8;
 
 /// The error of the cubics between two points, beside the output's largest distance from rest so far.
-const CUBIC_ERROR: f64 = 1e-9;
+const CUBIC_ERROR: f64 = 2e-10;
 
 /// Points of one segment at most: the error falls with the fourth power, so that 12 of them reach 5e-5/384 of the fastest mode.
 const POINTS_CAP: usize = 12;
