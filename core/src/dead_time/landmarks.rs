@@ -3,6 +3,7 @@
 use super::gain::GainFamily;
 use super::plane::Plane;
 use super::{DeadTimeError, DeadTimePartition};
+use crate::locus::landmarks::sign_of_knob;
 use crate::ranges::Contact;
 use crate::record::{KnobSign, Landmark, LandmarkKind, Point, Root, View};
 use alloc::vec::Vec;
@@ -28,6 +29,7 @@ pub fn landmarks(
             s: Point { re: meeting.s, im: 0.0 },
             knob: Some(meeting.knob),
             multiplicity: meeting.multiplicity,
+            equivalent: None,
             angle: None,
             sign: meeting.sign(),
         });
@@ -38,6 +40,7 @@ pub fn landmarks(
             s: Point { re: root.re, im: root.im },
             knob,
             multiplicity: root.multiplicity,
+            equivalent: None,
             angle: Some(angle.to_degrees()),
             sign,
         }));
@@ -53,7 +56,8 @@ pub fn landmarks(
     Ok(found)
 }
 
-fn crossings(partition: &DeadTimePartition) -> Vec<Landmark> {
+/// Every crossing of the axis and passage through the origin.
+pub fn crossings(partition: &DeadTimePartition) -> Vec<Landmark> {
     let mut found = Vec::new();
     for place in &partition.places {
         let knob = place.value();
@@ -62,12 +66,13 @@ fn crossings(partition: &DeadTimePartition) -> Vec<Landmark> {
                 Contact::Axis { omega } => (LandmarkKind::AxisCrossing, *omega),
                 _ => (LandmarkKind::OriginCrossing, 0.0),
             };
-            let sign = if knob < 0.0 { KnobSign::Negative } else { KnobSign::Positive };
+            let sign = sign_of_knob(knob);
             found.push(Landmark {
                 kind,
                 s: Point { re: 0.0, im },
                 knob: Some(knob),
                 multiplicity: 1,
+                equivalent: None,
                 angle: None,
                 sign,
             });
