@@ -380,6 +380,32 @@ mod tests {
     }
 
     #[test]
+    fn repeated_complex_poles_are_left_on_both_signs() {
+        // (s² + 2s + 2)² (s + 3)
+        let d = IntPoly::from_i64(&[2, 2, 1]);
+        let d = d.times(&d).times(&IntPoly::from_i64(&[3, 1]));
+        let coefficients: Vec<i64> =
+            d.coefficients().iter().map(|c| i64::try_from(c.clone()).expect("short")).collect();
+        for sign in KnobSign::BOTH {
+            assert_eq!(followed_branches(&coefficients, &[1], sign).len(), 5);
+        }
+    }
+
+    #[test]
+    fn a_pole_passes_others_that_hardly_move() {
+        // 10^18 (s + 1)(s + 2) + 1 + q·10^18 s (s + 1)(s + 2): the pole near −1/q comes within 10^-9 of those near −1 and −2.
+        let e18 = 1_000_000_000_000_000_000;
+        for sign in KnobSign::BOTH {
+            let branches = followed_branches(&[2 * e18 + 1, 3 * e18, e18], &[0, 2 * e18, 3 * e18, e18], sign);
+            assert_eq!(branches.len(), 3);
+            let ends = branches.iter().filter_map(|branch| branch.points.last());
+            let mut places: Vec<f64> = ends.map(|end| libm::round(end.re)).collect();
+            places.sort_by(f64::total_cmp);
+            assert_eq!(places, [-2.0, -1.0, 0.0]);
+        }
+    }
+
+    #[test]
     fn a_zero_next_to_a_pole_takes_its_branch_on_both_signs() {
         // 1000 (s + 1.001)/((s + 1)(s + 2)(s + 5))
         for sign in KnobSign::BOTH {
