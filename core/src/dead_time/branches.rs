@@ -49,6 +49,9 @@ const ARRIVED: f64 = 0.25;
 /// Points of a stretch of the real axis.
 const REAL_POINTS: usize = 24;
 
+/// A point this near to the branch, in pixels, is on it.
+const ON_BRANCH: f64 = 1e-3;
+
 /// Newton steps across a branch.
 const CORRECTIONS: usize = 3;
 
@@ -140,10 +143,10 @@ fn entries(
         if done >= 1.0 {
             return Ok(());
         }
-        let mut step = (SIDE_TURN / (length * magnitude(before.rate)).max(SIDE_TURN)).min(1.0 - done);
+        let mut step = (SIDE_TURN / (length * before.turning).max(SIDE_TURN)).min(1.0 - done);
         let mut here = plane.at(from + way * (done + step));
         // Where the rate grows on the way, a shorter step.
-        while magnitude(here.rate) * length * step > 2.0 * SIDE_TURN && step > 1e-12 {
+        while here.turning * length * step > 2.0 * SIDE_TURN && step > 1e-12 {
             step *= 0.5;
             here = plane.at(from + way * (done + step));
         }
@@ -313,8 +316,9 @@ impl Follower<'_> {
             s -= Complex::new(0.0, off) / knob.rate;
         }
         let knob = self.plane.at(s);
-        let good = (knob.value * sign.factor()).argument().abs() < 1e-6;
+        let off = (knob.value * sign.factor()).argument().abs();
         let rate = magnitude(knob.rate);
+        let good = off < LARGEST_BEND && off < ON_BRANCH * self.pixel * rate;
         (good && rate.is_finite() && rate > 0.0).then(|| Here {
             s,
             knob: knob.value.re,

@@ -19,7 +19,8 @@ const SAME: f64 = 1e-5;
 /// The s-plane of a loop, with its special points in a rectangle.
 #[derive(Clone, Debug)]
 pub(super) struct Plane {
-    start: Quasi,
+    a: Vec<f64>,
+    b0: Vec<f64>,
     b1: Vec<f64>,
     dead_time: f64,
     /// The rectangle.
@@ -48,6 +49,9 @@ pub(super) struct RealMeeting {
 pub(super) struct Knob {
     pub(super) value: Complex<f64>,
     pub(super) rate: Complex<f64>,
+    /// How fast the two parts of q turn, each by itself, 1/(1/s): where B0 is large q hardly turns, but its imaginary part
+    /// changes its sign as often as the small part turns.
+    pub(super) turning: f64,
 }
 
 /// The roots of A + B·e^(−Ts) in a rectangle; without a delayed part they are those of a polynomial, with exact multiplicities.
@@ -63,12 +67,13 @@ impl Plane {
     pub(super) fn new(family: &GainFamily, view: &View) -> Result<Self, DeadTimeError> {
         let [a, b0, b1] = scaled([&family.a, &family.b0, &family.b1]);
         let dead_time = family.dead_time.to_f64().value();
-        let view = View { re: [view.re[0].max(-poles::LARGEST_EXPONENT / dead_time), view.re[1]], im: view.im };
-        let start = Quasi { a, b: b0, dead_time };
+        let far = poles::LARGEST_EXPONENT / dead_time;
+        let view = View { re: [view.re[0].max(-far), view.re[1].min(far)], im: view.im };
         let mut plane = Self {
             poles: roots_in_view(&family.a, &family.b0, &family.dead_time, &view)?,
             zeros: if family.b1.is_zero() { Vec::new() } else { roots(&family.b1)? },
-            start,
+            a,
+            b0,
             b1,
             dead_time,
             view,
@@ -84,10 +89,18 @@ impl Plane {
     }
 
     pub(super) fn at(&self, s: Complex<f64>) -> Knob {
-        let start = self.start.at(s);
-        let (b1, slope, _) = horner(&self.b1, s, magnitude(s));
-        let value = -start.value * (s * self.dead_time).exp() / b1;
-        Knob { value, rate: start.rate() - slope / b1 + self.dead_time }
+        let modulus = magnitude(s);
+        let at = |p: &[f64]| horner(p, s, modulus);
+        let ((a, da, _), (b0, db0, _), (b1, db1, _)) = (at(&self.a), at(&self.b0), at(&self.b1));
+        let lead = (s * self.dead_time).exp();
+        let sum = a * lead + b0;
+        let undelayed = da / a + self.dead_time - db1 / b1;
+        let delayed = if self.b0.is_empty() { 0.0 } else { magnitude(db0 / b0 - db1 / b1) };
+        Knob {
+            value: -sum / b1,
+            rate: ((da + a * self.dead_time) * lead + db0) / sum - db1 / b1,
+            turning: magnitude(undelayed).max(delayed),
+        }
     }
 
     /// q at a point of the real axis.

@@ -50,7 +50,9 @@ fn answer(task: &Value) -> Result<Value, DeadTimeError> {
         }
         Some("response") => response(task, &poly("a"), &poly("b"), &time),
         Some("margins") => {
-            let f = DelayFrequency::new(&poly("above"), &poly("below"), &time, &poly("transfer"), []);
+            let closed = poles::dominant(&Quasi::new(&poly("below"), &poly("above"), &time))?;
+            let resonances = closed.iter().map(|r| nalgebra::Complex::new(r.re, r.im));
+            let f = DelayFrequency::new(&poly("above"), &poly("below"), &time, &poly("transfer"), resonances);
             Ok(json!({
                 "gainUp": f.gain_up()?, "gainDown": f.gain_down()?, "phase": f.phase_margin()?,
                 "delay": f.delay_margin()?, "peak": f.peak()?, "bandwidth": f.bandwidth()?,
@@ -97,7 +99,8 @@ fn polynomial(value: &Value) -> IntPoly {
     IntPoly::new(value.as_array().map_or_else(Vec::new, |all| all.iter().map(integer).collect()))
 }
 
+/// [numerator, denominator]; 1 where there is none.
 fn rational(value: &Value) -> dashu_ratio::RBig {
-    let part = |i: usize| value[i].to_string().parse::<dashu_int::IBig>().unwrap_or_default();
+    let part = |i: usize| value[i].to_string().parse::<dashu_int::IBig>().unwrap_or(dashu_int::IBig::ONE);
     dashu_ratio::RBig::from_parts_signed(part(0), part(1))
 }
