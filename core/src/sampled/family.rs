@@ -24,7 +24,7 @@ pub const MAXIMUM_BITS: usize = 1024;
 const PREWARP_LIMIT: u32 = 314;
 
 /// The longest delay that is treated, in sample periods: every period adds a pole.
-const MAXIMUM_DELAY_PERIODS: u32 = 60;
+const MAXIMUM_DELAY_PERIODS: u32 = 40;
 
 /// Everything about a loop with a sampled controller.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -162,7 +162,7 @@ impl SampledLoop {
             );
         }
         if self.delay() > &self.period * RBig::from(MAXIMUM_DELAY_PERIODS) {
-            return Some("the dead time is longer than 60 sample periods: type a longer sample period");
+            return Some("the dead time is longer than 40 sample periods: type a longer sample period");
         }
         None
     }

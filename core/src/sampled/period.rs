@@ -18,6 +18,9 @@ use dashu_ratio::RBig;
 /// The periods at which ranges are shown beside the loop's own, as fractions of it.
 const PARTS: [(u32, u32); 7] = [(1, 4), (1, 2), (3, 4), (1, 1), (3, 2), (2, 1), (4, 1)];
 
+/// Other periods are looked at while the whole delay is no longer than this many of them: each adds a pole.
+const LANE_DELAY_PERIODS: u32 = 12;
+
 /// Bits of the fixed point at the first try for other periods. The counts are as proven as with more; where these do not
 /// decide, more are taken.
 const LANE_BITS: usize = 128;
@@ -41,8 +44,8 @@ const SEARCH_BITS: usize = 96;
 /// Bits to which a period that is tried is rounded.
 const PERIOD_BITS: usize = 53;
 
-/// The stable ranges at some periods around the loop's own, ascending. Periods at which the loop cannot be treated are left
-/// out.
+/// The stable ranges at some periods around the loop's own, ascending. Periods that are short against
+/// the dead time, or at which the loop cannot be treated, are left out.
 pub fn by_period(whole: &SampledRanges) -> Vec<StableAtPeriod> {
     let input = &whole.input;
     let mut found = Vec::new();
@@ -51,6 +54,8 @@ pub fn by_period(whole: &SampledRanges) -> Vec<StableAtPeriod> {
         let seconds = period.to_f64().value();
         let ranges = if above == below {
             Some(stable_ranges(&whole.partition))
+        } else if input.delay() > &period * RBig::from(LANE_DELAY_PERIODS) {
+            None
         } else {
             ranges_from(&input.at_period(period), LANE_BITS).ok().map(|at| stable_ranges(&at.partition))
         };

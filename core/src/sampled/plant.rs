@@ -9,6 +9,7 @@
 use super::enclosed::{Enclosed, Unit};
 use super::factored::Factored;
 use super::fixed::{Matrix, Resolvent, fixed, resolvent};
+use super::ranges::zones;
 use crate::exact::gcd::{squarefree_factors, squarefree_part};
 use crate::exact::half_plane::count;
 use crate::exact::{Dyadic, IntPoly};
@@ -247,22 +248,28 @@ fn characteristic(found: &Resolvent, bits: usize) -> Enclosed {
     Enclosed { center: IntPoly::new(center), radius: IntPoly::new(found.radii.clone()), exponent: -(bits as i64) }
 }
 
-/// The zeros that are known without error. A zero at s = 0 stays one at z = 1. A strictly proper plant with G(−s) = G(s)
-/// has G(1/z) = z·G(z) without delay, and one with G(−s) = −G(s) has G(1/z) = −z²·G(z) with half a period of it: both
-/// vanish at z = −1.
+/// The zeros that are known without error. A zero at s = 0 stays one at z = 1. A strictly proper plant with G(−s) = ±G(s)
+/// keeps a symmetry: G(1/z) = ±z·G(z) without delay, and ∓z²·G(z) with half a period of it. Where the sign so demands,
+/// it vanishes at z = −1, and zeros that lie on the unit circle cannot leave it one by one.
 fn known_zeros(sum: Enclosed, above: &IntPoly, below: &IntPoly, fraction: &RBig) -> Factored {
     let plain = Factored::plain(sum);
-    let strictly = above.degree() < below.degree();
+    let blocks_constants = above.coefficient(0).is_zero() && !above.is_zero();
+    let with_one = |p: Factored| if blocks_constants { p.with_root(Unit::Plus) } else { p };
     let half = *fraction == RBig::from_parts(IBig::ONE, 2u8.into());
-    let symmetric = |sign: &IBig| {
-        let mirrored = above.mirrored().times(below);
-        let own = above.times(&below.mirrored());
-        mirrored == IntPoly::new(own.coefficients().iter().map(|c| c * sign).collect())
-    };
-    let at_minus_one =
-        strictly && ((fraction.is_zero() && symmetric(&IBig::ONE)) || (half && symmetric(&IBig::NEG_ONE)));
-    let found = if at_minus_one { plain.with_root(Unit::Minus) } else { plain };
-    if above.coefficient(0).is_zero() && !above.is_zero() { found.with_root(Unit::Plus) } else { found }
+    if above.degree() >= below.degree() || !(fraction.is_zero() || half) {
+        return with_one(plain);
+    }
+    let mirrored = above.mirrored().times(below);
+    let own = above.times(&below.mirrored());
+    let (even, odd) = (mirrored == own, mirrored == own.negated());
+    if !even && !odd {
+        return with_one(plain);
+    }
+    let found = with_one(if even != half { plain.with_root(Unit::Minus) } else { plain });
+    // What remains is symmetric: an even polynomial in v.
+    let (in_x, _) = found.rest().from_circle(found.rest().degree()).axis_parts();
+    let pairs = zones(&in_x).map_or(0, |zones| zones.iter().filter(|zone| zone.crosses).count());
+    Factored { circle_pairs: pairs, ..found }
 }
 
 #[cfg(test)]
@@ -363,6 +370,16 @@ mod tests {
         assert!((dc - 1.0).abs() < 1e-12, "{dc}");
         assert!((below[2] + libm::exp(-0.01) + libm::exp(-10.0)).abs() < 1e-15);
         assert!(worst < 1e-40, "{worst}");
+    }
+
+    #[test]
+    fn zeros_of_a_symmetric_plant_stay_on_the_circle() {
+        // (s² + 4)/(s² (s² + 1)): a pair of zeros on the circle, and one at −1.
+        let held = hold(&p(&[4, 0, 1]), &p(&[0, 0, 1, 0, 1]), &rational(1, 5), &RBig::ZERO, 192);
+        assert_eq!((held.above.circle_pairs, held.above.minus_ones), (1, 1));
+        // (s² + 4)/(s (s² + 1)): without the one at −1.
+        let held = hold(&p(&[4, 0, 1]), &p(&[0, 1, 0, 1]), &rational(1, 5), &RBig::ZERO, 192);
+        assert_eq!((held.above.circle_pairs, held.above.minus_ones), (1, 0));
     }
 
     #[test]

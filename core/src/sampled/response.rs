@@ -38,8 +38,14 @@ const SETTLED: f64 = 1e-5;
 /// The deviation from the final value, over the last tenth, that is still settled, as a part of the largest.
 const REMAINING: f64 = 1e-4;
 
-/// Points of one answer before it is given up: a loop this near to its edge is no answer to look at.
-const POINTS_CAP: usize = 400_000;
+/// Sample periods before an answer is given up: the sampling is then far faster than the loop, or the loop nearly unstable.
+const PERIODS_CAP: f64 = 300_000.0;
+
+/// Points of one answer that are kept. Where there would be more, whole periods are left out evenly behind the first ones.
+const POINTS_KEPT: usize = 60_000;
+
+/// The first periods, in which fast modes are alive, are kept in any case.
+const FIRST_PERIODS: usize = 200;
 
 /// Answers to unit steps.
 #[derive(Debug)]
@@ -60,7 +66,7 @@ pub(super) fn answers(at: &SampledAt) -> Option<Answers> {
     let lead = (input.delay() / &input.period).to_f64().value();
     // Repeated poles decay more slowly at first.
     let periods = libm::ceil(1.25 * periods + 2.0 * lead + 2.0 * at.poles.len() as f64) + 2.0;
-    if periods * machine.points_in_a_period() as f64 > POINTS_CAP as f64 {
+    if periods > PERIODS_CAP {
         return None;
     }
     let sensor = at_rest(&input.sensor.above, &input.sensor.below);
@@ -243,7 +249,9 @@ impl Machine {
         let (mut held, mut pushed) = (0.0, 0.0);
         let mut errors: Vec<f64> = Vec::with_capacity(periods + 1);
         let mut controls: Vec<f64> = Vec::with_capacity(periods + 1);
-        let mut output: Vec<TracePoint> = Vec::with_capacity(periods * self.points_in_a_period());
+        let every = periods * self.points_in_a_period() / POINTS_KEPT + 1;
+        let kept = |k: usize| k < FIRST_PERIODS || k.is_multiple_of(every);
+        let mut output: Vec<TracePoint> = Vec::with_capacity(periods.div_ceil(every) * self.points_in_a_period());
         for _ in 0..self.early_samples() {
             self.control(command, 0.0, &mut errors, &mut controls);
         }
@@ -268,7 +276,7 @@ impl Machine {
                 }
                 let input = held + pushed;
                 let changed = libm::fabs(input - before) > 0.0;
-                if changed || output.is_empty() {
+                if kept(k) && (changed || output.is_empty()) {
                     if !output.is_empty() {
                         output.push(self.point(time, &x, before));
                     }
@@ -281,11 +289,13 @@ impl Machine {
                     step.moves.apply(&x, input, &mut next);
                     core::mem::swap(&mut x, &mut next);
                     t = if i + 1 == part.steps.len() { end } else { (t + step.length).min(end) };
-                    output.push(self.point(t, &x, input));
+                    if kept(k) {
+                        output.push(self.point(t, &x, input));
+                    }
                 }
             }
         }
-        Run { output, control: self.staircase(&controls, periods) }
+        Run { output, control: self.staircase(&controls, periods, every) }
     }
 
     /// Samples whose signal left the plant before the step.
@@ -321,11 +331,12 @@ impl Machine {
     }
 
     /// What the hold puts out.
-    fn staircase(&self, controls: &[f64], periods: usize) -> Vec<TracePoint> {
+    fn staircase(&self, controls: &[f64], periods: usize, every: usize) -> Vec<TracePoint> {
         let flat = |time: f64, value: f64| TracePoint { time, value, slope: 0.0 };
         let mut points = vec![flat(0.0, 0.0)];
         let mut before = 0.0;
-        for (k, u) in controls.iter().take(periods).enumerate() {
+        let kept = |k: &usize| *k < FIRST_PERIODS || k.is_multiple_of(every);
+        for (k, u) in controls.iter().take(periods).enumerate().filter(|(k, _)| kept(k)) {
             let time = k as f64 * self.period + self.computation;
             points.extend([flat(time, before), flat(time, *u)]);
             before = *u;
