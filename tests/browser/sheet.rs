@@ -33,10 +33,10 @@ async fn open_sheet(page: &Page, demo: usize) -> Result<Value> {
     page.type_into("Machine", "Test bench 4").await?;
     page.type_into("Revision", "B").await?;
     page.type_into("Prepared by", "R. Okafor").await?;
-    let drawn = r#"
+    let drawn = r##"
         const dd = [...document.querySelectorAll("#sheet-page .identification dd")].map((one) => one.textContent);
         return dd.includes("R. Okafor") && document.getElementById("paper").getAttribute("aria-busy") === null;
-    "#;
+    "##;
     page.until("the sheet is drawn", drawn, vec![]).await?;
     page.run_async("const done = arguments[0]; window.stayband.sheet().then(done)", vec![]).await
 }
@@ -115,7 +115,10 @@ fn check_figures(text: &str, record: &Value) -> Result<()> {
     for path in predicted {
         for value in values(record, path) {
             // Three digits, rounded.
-            ensure!(printed.iter().any(|p| (p - value).abs() <= 6e-3 * value.abs()), "{path:?}: {value} is not on the sheet");
+            ensure!(
+                printed.iter().any(|p| (p - value).abs() <= 6e-3 * value.abs()),
+                "{path:?}: {value} is not on the sheet"
+            );
         }
     }
     Ok(())
@@ -133,9 +136,25 @@ fn check_words(text: &str, record: &Value) -> Result<()> {
         sheet["projectHash"].as_str().context("a hash")?.to_owned(),
     ];
     let headings = [
-        "Test bench 4", "R. Okafor", "Checked by", "Answer", "The loop", "Requirements", "Ranges", "Root locus",
-        "Derivation for a check by hand", "Routh array", "Edges of stability", "Asymptotes", "Breakaway", "Step-up plan",
-        "seen: overshoot", "What this rests on", "proven", "computed", "sudden motion",
+        "Test bench 4",
+        "R. Okafor",
+        "Checked by",
+        "Answer",
+        "The loop",
+        "Requirements",
+        "Ranges",
+        "Root locus",
+        "Derivation for a check by hand",
+        "Routh array",
+        "Edges of stability",
+        "Asymptotes",
+        "Breakaway",
+        "Step-up plan",
+        "seen: overshoot",
+        "What this rests on",
+        "proven",
+        "computed",
+        "sudden motion",
     ];
     wanted.extend(headings.map(str::to_owned));
     for edge in sheet["derivation"]["edges"].as_array().context("edges")? {
@@ -208,12 +227,15 @@ fn the_plan_follows_its_ratio_and_the_site_check_offers_a_corrected_project() {
             vec![],
         )
         .await?;
-        page.run("document.getElementById('step-up').open = true; document.getElementById('site-check').open = true", vec![])
-            .await?;
+        page.run(
+            "document.getElementById('step-up').open = true; document.getElementById('site-check').open = true",
+            vec![],
+        )
+        .await?;
         page.type_into("Ratio from row to row", "2").await?;
         page.until(
             "the plan has four rows",
-            r#"return [...document.querySelectorAll("#step-up-plan tbody th")].map((one) => one.textContent).join() === "172,344,688,690""#,
+            r##"return [...document.querySelectorAll("#step-up-plan tbody th")].map((one) => one.textContent).join() === "172,344,688,690""##,
             vec![],
         )
         .await?;

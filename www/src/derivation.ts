@@ -27,10 +27,13 @@ function pieces(nodes: readonly ChildNode[]): Element[] {
     if (/^[+−=≈]$/.test(node.textContent ?? "") && (groups.at(-1)?.length ?? 0) > 0) groups.push([]);
     groups.at(-1)?.push(node);
   }
-  return groups.map((group) => {
+  return groups.map((group, index) => {
     const math = document.createElementNS(MATHML, "math");
     const row = document.createElementNS(MATHML, "mrow");
     row.append(...group);
+    // A sign that begins a piece stands between two terms all the same.
+    const [first] = row.children;
+    if (index > 0 && first?.localName === "mo") first.setAttribute("form", "infix");
     math.append(row);
     return math;
   });
@@ -55,7 +58,7 @@ function spaced(parts: readonly Element[]): Content[] {
   return parts.flatMap((part, index) => (index > 0 ? [" ", part] : [part]));
 }
 
-function equation(left: string, text: Formula, right = " = 0"): HTMLElement {
+function equation(left: string, text: Formula, right = "\u00a0=\u00a00"): HTMLElement {
   return html("p", { class: "equation" }, left, formula(text.mathml), right);
 }
 

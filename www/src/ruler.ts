@@ -239,7 +239,7 @@ export function rulerPicture(record: Findings, width: number): SVGSVGElement {
   const top = SIZES.axis * layout.scale;
   const stem = x === null ? null : svg("g", { class: "pointer" }, svg("line", { x1: x, x2: x, y1: top - 10, y2: height - SIZES.foot * layout.scale }));
   const label = `Axis of settings with the lanes ${lanes.map(({ name }) => name).join(", ")}`;
-  return svg("svg", { class: "ruler", viewBox: `0 0 ${width} ${height}`, role: "img", "aria-label": label }, ...axisAndLanes(lanes, axis, layout), stem);
+  return svg("svg", { viewBox: `0 0 ${width} ${height}`, role: "img", "aria-label": label }, ...axisAndLanes(lanes, axis, layout), stem);
 }
 
 function heightOf(lanes: readonly Lane[], { scale, pitch }: Layout): number {

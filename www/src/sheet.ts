@@ -2,6 +2,7 @@
 import { answerSentence, plain, settingSentence, stabilitySentence, suggestionReason } from "./answer.ts";
 import { CAUTION } from "./caution.ts";
 import { chartOf, type ChartName } from "./charts.ts";
+import { fromNumber, printedText, roundDigits } from "./decimal.ts";
 import { derivationParts, formula } from "./derivation.ts";
 import { byId, html, type Content } from "./dom.ts";
 import { withUnit } from "./format.ts";
@@ -11,7 +12,7 @@ import { kindOf } from "./requirements.ts";
 import { chartPicture } from "./responses.ts";
 import { permittedLane, requirementLane } from "./lanes.ts";
 import { rulerPicture } from "./ruler.ts";
-import { settingName, settingUnit } from "./scale.ts";
+import { isPlain, settingName, settingUnit } from "./scale.ts";
 import { checkParts } from "./sitecheck.ts";
 import { planParts } from "./stepup.ts";
 
@@ -19,6 +20,8 @@ import { planParts } from "./stepup.ts";
 const PICTURE = { width: 620, height: 250 };
 const TWO_PANES = { width: 620, height: 400 };
 
+/** Digits of an end of a range. */
+const END_DIGITS = 6;
 /** The width of the ruler, likewise. */
 const RULER = 720;
 
@@ -103,7 +106,9 @@ function loopParts(record: SheetFindings): HTMLElement[] {
     `${feedback === "positive" ? "Positive" : "Negative"} feedback.`,
     deadTime.trim() ? `Dead time of the plant: ${deadTime} s.` : "",
     sampling ? `Sampled with the period ${sampling.period} s, delay ${sampling.delay || "0"} periods.` : "",
-    `The knob is ${project.knob}; ${project.knob} = ${project.setting.factor.trim() || "1"} ${scale.direction === "reciprocal" ? "÷" : "×"} ${settingName(record)}${settingUnit(record) && ` in ${settingUnit(record)}`}.`,
+    isPlain(scale)
+      ? `The knob is ${project.knob}; the setting ${settingName(record)} is the knob itself.`
+      : `The knob is ${project.knob}; ${project.knob} = ${project.setting.factor.trim() || "1"} ${scale.direction === "reciprocal" ? "÷" : "×"} ${settingName(record)}${settingUnit(record) && ` in ${settingUnit(record)}`}.`,
   ];
   const rows = project.quantities.map(({ symbol, value, unit, tolerance, meaning }) => [symbol, symbol === project.knob ? "the knob" : value, unit, tolerance && `± ${tolerance}`, meaning]);
   return [
@@ -121,7 +126,7 @@ function table(heads: readonly string[], rows: readonly (readonly Content[])[]):
 
 function requirementTable(record: SheetFindings): HTMLElement {
   const unit = settingUnit(record);
-  const spans = (segments: ReturnType<typeof requirementLane>["segments"]): string => segments.map(({ from, to }) => `${short(from)} to ${short(to)}`).join("; ");
+  const spans = (segments: ReturnType<typeof requirementLane>["segments"]): string => segments.map(({ from, to }) => `${inside(from, "up")} to ${inside(to, "down")}`).join("; ");
   const rows = record.requirements.map((requirement) => {
     const lane = requirementLane(record, requirement);
     const met = requirement.met === null ? "–" : requirement.met ? "✓ met" : "✗ not met";
@@ -132,8 +137,9 @@ function requirementTable(record: SheetFindings): HTMLElement {
   return table(["requirement", "limit", `met for ${withUnit(settingName(record), unit && `(${unit})`)}`, "", "at the setting"], rows);
 }
 
-function short(value: number): string {
-  return Number.isFinite(value) ? String(Number(value.toPrecision(6))).replace("-", "−") : value < 0 ? "−∞" : "∞";
+/** An end of a range, rounded inward. */
+function inside(value: number, direction: "up" | "down"): string {
+  return Number.isFinite(value) ? printedText(roundDigits(fromNumber(value), END_DIGITS, direction)) : value < 0 ? "−∞" : "∞";
 }
 
 function responseParts(record: SheetFindings): HTMLElement[] {
