@@ -145,6 +145,9 @@ def random_case(seed):
     period = short(rng, 0.02 / fastest, 3 / fastest)
     computation = rng.choice([Fraction(0), Fraction(0), Fraction(1, 2), Fraction(1), Fraction(3, 2), Fraction(23, 10), Fraction(3)])
     dead_time = rng.choice([Fraction(0), Fraction(0), short(rng, 0.1, 5) * period])
+    if seed % 20 == 7:
+        # Many periods of dead time: counted by crossings.
+        dead_time = short(rng, 8, 20) * period
     prewarp = Fraction(round(float(1 / period))) if method == "tustin-prewarped" else None
     if prewarp is not None and prewarp == 0:
         prewarp = Fraction(1, 10) / Fraction(round(float(period) + 1))

@@ -29,6 +29,10 @@ pub struct SampledFrequency {
     at_nyquist: f64,
 }
 
+/// Where a pole or zero of the open loop lies on the circle, its phase jumps: the middles of the enclosures put a crossing
+/// there, with a factor beyond these.
+const POSSIBLE: core::ops::Range<f64> = 1e-25..1e25;
+
 /// A peak within this part of the sensitivity at z = −1 is there.
 const SAME_PEAK: f64 = 1e-9;
 
@@ -91,7 +95,7 @@ impl SampledFrequency {
     /// # Errors
     /// From the exact methods, when a cap is met.
     pub fn phase_crossings(&self) -> Result<Vec<PhaseCrossing>, ExactError> {
-        let found = self.in_v.phase_crossings()?.iter();
+        let found = self.in_v.phase_crossings()?.iter().filter(|c| POSSIBLE.contains(&c.factor));
         Ok(found.map(|c| PhaseCrossing { omega: self.omega(c.omega), factor: c.factor }).collect())
     }
 
@@ -100,7 +104,8 @@ impl SampledFrequency {
     /// # Errors
     /// As [`Self::phase_crossings`].
     pub fn gain_up(&self) -> Result<f64, ExactError> {
-        self.in_v.gain_up()
+        let factors = self.phase_crossings()?.into_iter().map(|c| c.factor);
+        Ok(factors.filter(|f| *f > 1.0).fold(f64::INFINITY, f64::min))
     }
 
     /// The divisor by which the gain may fall; infinite without limit.
@@ -108,7 +113,8 @@ impl SampledFrequency {
     /// # Errors
     /// As [`Self::phase_crossings`].
     pub fn gain_down(&self) -> Result<f64, ExactError> {
-        self.in_v.gain_down()
+        let factors = self.phase_crossings()?.into_iter().map(|c| c.factor);
+        Ok(factors.filter(|f| *f < 1.0).map(|f| 1.0 / f).fold(f64::INFINITY, f64::min))
     }
 
     /// Degrees; infinite without a crossing.
