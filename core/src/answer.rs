@@ -11,7 +11,7 @@ use crate::site_check::check_tolerances;
 use alloc::format;
 use alloc::string::{String, ToString};
 use alloc::vec::Vec;
-use serde::Serialize;
+use serde::{Deserialize, Serialize};
 
 /// What Stayband says to a project: a record, or what must be put right before there can be one.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -150,14 +150,11 @@ impl Session {
         })?;
         let limits = limits?;
         check_tolerances(project)?;
-        if let Some(problem) = not_yet(&model) {
-            return Err([problem].into());
-        }
         let (setting, scale) = (model.setting.clone(), model.scale.clone());
         let analysis = self.analysis(project, model).map_err(|error| [error.problem()])?;
         let knob = setting.as_ref().and_then(|setting| scale.knob(setting));
         let closed_loop =
-            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [error.problem()])?;
+            knob.as_ref().map(|knob| analysis.closed_loop(knob)).transpose().map_err(|error| [error.problem()])?;
         let judged = judge(analysis, &limits, &scale, setting.as_ref())
             .map_err(|error| [AnalysisError::from(error).problem()])?;
         let found = &analysis.findings;
@@ -170,7 +167,7 @@ impl Session {
             project: project.clone(),
             reading: reading.clone(),
             model: model::record(&analysis.model),
-            timing: model::timing(&analysis.model),
+            timing: analysis.timing(knob.as_ref()),
             stability: found.stability.clone(),
             character: found.character.clone(),
             landmarks: found.landmarks.clone(),
@@ -186,7 +183,7 @@ impl Session {
             step: judged.step,
             load: judged.load,
             view: found.view,
-            notices: found.notices.clone(),
+            notices: [found.notices.clone(), judged.notices].concat(),
             sheet: None,
         })
     }
@@ -204,21 +201,6 @@ impl Session {
         };
         Ok(&self.last.insert(entry).1)
     }
-}
-
-/// Dead time and sampling are read, but their analysis is still being joined to the rest.
-fn not_yet(model: &model::Loop) -> Option<Problem> {
-    let (field, what) = match &model.sampling {
-        Some(_) => (Field::Sampling, "sampling"),
-        None if !model.open_loop.dead_time.is_none() => (Field::DeadTime, "dead time"),
-        None => return None,
-    };
-    Some(Problem {
-        field,
-        symbol: None,
-        span: None,
-        message: format!("this version does not treat {what} yet: remove it"),
-    })
 }
 
 /// The project without what has no part in the analysis: setting, requirements, title, and notes to the reader.
@@ -241,17 +223,24 @@ fn without_notes(project: &Project) -> Project {
     key
 }
 
-/// Reads a project document; the message says what is wrong with it.
+/// What is read of any document first.
+#[derive(Deserialize)]
+struct Head {
+    format: String,
+}
+
+/// Reads a project document; the message says what is wrong with it. The format comes first: a later version may have
+/// fields of which nothing is known here.
 fn read_project(json: &str) -> Result<Project, String> {
-    let project: Project =
-        serde_json::from_str(json).map_err(|error| format!("this is no project that can be read: {error}"))?;
-    if project.format == PROJECT_FORMAT {
-        return Ok(project);
+    let unreadable = |error: serde_json::Error| format!("this is no project that can be read: {error}");
+    let Head { format } = serde_json::from_str(json).map_err(unreadable)?;
+    if format == PROJECT_FORMAT {
+        return serde_json::from_str(json).map_err(unreadable);
     }
-    Err(match project.format.strip_prefix("stayband-project/") {
+    Err(match format.strip_prefix("stayband-project/") {
         Some(version) => {
             format!("this project has version {version}; this Stayband reads version 1: open it with a newer Stayband")
         }
-        None => format!("this is no Stayband project: its format is \"{}\", not \"{PROJECT_FORMAT}\"", project.format),
+        None => format!("this is no Stayband project: its format is \"{format}\", not \"{PROJECT_FORMAT}\""),
     })
 }

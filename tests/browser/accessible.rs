@@ -50,6 +50,26 @@ fn the_page_with_a_mistake_has_no_accessibility_fault() {
 }
 
 #[test]
+fn the_lists_and_dialogs_have_no_accessibility_fault() {
+    on_the_page(|page| async move {
+        type_feed_drive(&page).await?;
+        page.type_into("Title", "kept").await?;
+        page.press("New").await?;
+        type_feed_drive(&page).await?;
+        page.press("Projects").await?;
+        page.until("both are listed", "return document.querySelectorAll('#project-rows tr').length === 2", vec![])
+            .await?;
+        assert_accessible(&page).await?;
+        page.run("document.getElementById('projects-close').click()", vec![]).await?;
+        page.press("Save as").await?;
+        assert_accessible(&page).await?;
+        page.run("document.getElementById('save-as-close').click()", vec![]).await?;
+        page.run("document.getElementById('export').open = true", vec![]).await?;
+        assert_accessible(&page).await
+    });
+}
+
+#[test]
 fn dark_colours_have_no_accessibility_fault() {
     on_the_page(|page| async move {
         let colour = "return getComputedStyle(document.body).backgroundColor";

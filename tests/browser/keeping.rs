@@ -13,13 +13,12 @@ use thirtyfour::By;
 const DOWNLOAD: Duration = Duration::from_secs(10);
 
 /// The one file in the folder, when it is complete.
-async fn saved_file(folder: &Path) -> Result<PathBuf> {
+pub(crate) async fn saved_file(folder: &Path) -> Result<PathBuf> {
     let start = Instant::now();
     while start.elapsed() < DOWNLOAD {
-        let saved = fs::read_dir(folder)?
-            .filter_map(Result::ok)
-            .map(|entry| entry.path())
-            .find(|path| path.extension().is_some_and(|ending| ending == "json"));
+        let saved = fs::read_dir(folder)?.filter_map(Result::ok).map(|entry| entry.path()).find(|path| {
+            path.extension().is_some_and(|ending| ["json", "csv", "svg"].iter().any(|whole| ending == *whole))
+        });
         if let Some(path) = saved {
             return Ok(path);
         }
@@ -30,7 +29,7 @@ async fn saved_file(folder: &Path) -> Result<PathBuf> {
 
 /// Opens a file as a user does; only the browser's own dialogue, which WebDriver does not reach, is replaced: the
 /// picker that the page makes is put where the driver can hand it the file.
-async fn open_file(page: &Page, path: &Path) -> Result<()> {
+pub(crate) async fn open_file(page: &Page, path: &Path) -> Result<()> {
     page.run("HTMLInputElement.prototype.click = function () { document.body.append(this); }", vec![]).await?;
     page.press("Open").await?;
     let picker = page.driver.find(By::Css("input[type=file]")).await?;
@@ -151,5 +150,44 @@ fn undo_takes_the_last_change_back_and_redo_makes_it_again() {
         page.shows("answer", "to 60").await?;
         page.press("Redo").await?;
         page.shows("answer", "to 110").await
+    });
+}
+
+/// Changes every input and choice of the form, one after the other, and takes each change back.
+const CHANGE_AND_UNDO: &str = r##"
+    const before = JSON.stringify(window.stayband.project());
+    for (const part of document.querySelectorAll("#scale, #add-requirement")) part.open = true;
+    const labelled = (control) => control.labels?.[0]?.textContent.trim() || control.getAttribute("aria-label") || control.id;
+    const names = [...document.querySelectorAll("#title, #loop input, #loop select:not(#conversion)")].map(labelled);
+    const find = (name) => [...document.querySelectorAll("#title, #loop input, #loop select")].find((one) => labelled(one) === name);
+    const wrong = [];
+    for (const name of names) {
+        const control = find(name);
+        if (control.type === "checkbox") control.click();
+        else {
+            if (control.tagName === "SELECT") control.selectedIndex = (control.selectedIndex + 1) % control.options.length;
+            else control.value += "7";
+            for (const kind of ["input", "change"]) control.dispatchEvent(new Event(kind, { bubbles: true }));
+        }
+        if (JSON.stringify(window.stayband.project()) === before) wrong.push(`${name} changes nothing`);
+        document.getElementById("undo").click();
+        if (JSON.stringify(window.stayband.project()) !== before) wrong.push(`${name} is not undone`);
+        document.getElementById("redo").click();
+        if (JSON.stringify(window.stayband.project()) === before) wrong.push(`${name} is not redone`);
+        document.getElementById("undo").click();
+    }
+    return { wrong, count: names.length };
+"##;
+
+#[test]
+fn a_change_of_every_input_is_undone_and_redone() {
+    on_the_page(|page| async move {
+        // The pump has two names besides its knob, a scale and requirements.
+        page.run("document.querySelectorAll('#demo-list button')[2].click()", vec![]).await?;
+        page.shows("answer", "646").await?;
+        let found = page.run(CHANGE_AND_UNDO, vec![]).await?;
+        assert_eq!(found["wrong"], json!([]));
+        assert!(found["count"].as_u64() > Some(40), "few inputs were tried: {found}");
+        Ok(())
     });
 }

@@ -52,11 +52,11 @@ async fn resize(page: &Page, width: u32, height: &Value) -> Result<()> {
 
 /// The lowest point of what must be seen, and the width of the page, in CSS pixels.
 async fn extent(page: &Page) -> Result<(f64, f64)> {
-    let script = r#"
+    let script = r##"
         window.scrollTo(0, 0);
-        const seen = ["headline", "ruler", "plane", "response"].map((id) => document.getElementById(id));
+        const seen = [...document.querySelectorAll("#headline, #ruler, #plane, .legend, #response, #response-choice")];
         return [Math.max(...seen.map((one) => one.getBoundingClientRect().bottom)), document.documentElement.scrollWidth];
-    "#;
+    "##;
     let found: Value = page.run(script, vec![]).await?;
     Ok((found[0].as_f64().context("a height")?, found[1].as_f64().context("a width")?))
 }
@@ -87,4 +87,31 @@ fn on_a_telephone_nothing_is_wider_than_the_screen() {
         }
         Ok(())
     });
+}
+
+#[test]
+fn the_list_of_projects_the_menu_and_a_comparison_fit_on_both_screens() {
+    for window in [NOTEBOOK, TELEPHONE] {
+        on_the_page_with(window, move |page| async move {
+            for index in 0..DEMOS.len() {
+                show_demo(&page, index).await?;
+                // A demo is kept once something is changed.
+                page.type_into("Setting", "25").await?;
+                page.shows("answer-setting", "= 25").await?;
+            }
+            page.press("Projects").await?;
+            let fits = r#"
+                const inside = ({ left, right }) => left >= 0 && right <= document.documentElement.clientWidth;
+                const parts = [...document.querySelectorAll(arguments[0])];
+                return parts.length >= arguments[1] && parts.every((part) => inside(part.getBoundingClientRect()));
+            "#;
+            page.until("three projects fit", fits, vec![json!("#projects, #project-rows button"), json!(12)]).await?;
+            take(&page, "projects", window).await?;
+            page.run("document.querySelectorAll('#project-rows [aria-label^=Compare]')[1].click()", vec![]).await?;
+            page.shows("comparison", "Other").await?;
+            page.run("document.getElementById('export').open = true", vec![]).await?;
+            page.until("the menu fits", fits, vec![json!("#export-list, #export-list button"), json!(9)]).await?;
+            take(&page, "comparison", window).await
+        });
+    }
 }

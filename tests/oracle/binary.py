@@ -1,4 +1,4 @@
-"""The program `records`: a project in, answer and branches out, one line of JSON each."""
+"""The program `records`: a project in, answer and branches (with `--sheet`: answer with sheet) out, one line of JSON each."""
 
 import json
 import select
@@ -15,15 +15,15 @@ class NoAnswer(RuntimeError):
 class Records:
     """A running program; it is started anew after it ended or hung."""
 
-    def __init__(self, path):
-        self.path = path
+    def __init__(self, path, *arguments):
+        self.command = [path, *arguments]
         self.process = None
 
     def ask(self, project_text):
         """The answer to a project: `{"answer": …, "branches": […]}`."""
         if self.process is None or self.process.poll() is not None:
             self.process = subprocess.Popen(
-                [self.path], stdin=subprocess.PIPE, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True, encoding="utf-8"
+                self.command, stdin=subprocess.PIPE, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True, encoding="utf-8"
             )
         try:
             self.process.stdin.write(project_text + "\n")

@@ -3,6 +3,8 @@
     run.py --binary target/release/records              everything
     run.py --binary … --only 117                        the random loop of seed 117
     run.py --binary … --only requirements-12            the random loop with requirements of seed 12
+    run.py --binary … --only sheet-12                   the sheet of the random loop of seed 12; also sheet-requirements-12
+    run.py --binary … --only site-12                    the machine of seed 12, measured and found again
     run.py --binary … --only "touching edge"            a nasty one by name
     run.py --binary … --self-test                       shows that the checks can fail
 
@@ -21,13 +23,13 @@ from pathlib import Path
 sys.path.insert(0, str(Path(__file__).parent))
 sys.path.insert(0, str(Path(__file__).parent.parent / "published"))
 
-import known
 import published
 import requirement_cases
 import requirement_checks
+import check_site
 import selftest
 import selftest_requirements
-import tolerances
+import sheet_checks
 from binary import Records
 from checks import check_case
 from generator import random_case
@@ -50,37 +52,21 @@ def main():
     arguments = parse()
     started = time.monotonic()
     jobs = named_jobs(arguments.only) if arguments.only else every_job(arguments.seeds)
-    passed, failed, undrawn, slowest = 0, 0, 0, []
+    passed, failed, slowest = 0, 0, []
     with multiprocessing.Pool(arguments.workers, initializer=start_worker, initargs=(arguments.binary,)) as pool:
         if arguments.self_test or not arguments.only:
             for test in (selftest, selftest_requirements):
                 counts = show(pool.apply(run_self_test, (test.__name__,)))
                 passed, failed = passed + counts[0], failed + counts[1]
         if not arguments.self_test:
-            for seconds, missing, result in pool.imap_unordered(run_job, jobs, chunksize=1):
-                counts = show(known_or(result))
-                passed, failed, undrawn = passed + counts[0], failed + counts[1], undrawn + missing
+            for seconds, result in pool.imap_unordered(run_job, jobs, chunksize=1):
+                counts = show(result)
+                passed, failed = passed + counts[0], failed + counts[1]
                 slowest = sorted([*slowest, (seconds, result[0])], reverse=True)[:SLOWEST]
-    if undrawn > tolerances.UNDRAWN * max(arguments.seeds, 100):
-        failed += 1
-        print(f"{undrawn} halves of the locus could not be followed: too many")
     print("slowest: " + ", ".join(f"{name} {seconds:.1f} s" for seconds, name in slowest))
     print(f"{time.monotonic() - started:.0f} s")
     print(f"{passed} passed, {failed} failed")
     return 1 if failed or not passed else 0
-
-
-def known_or(result):
-    """The result, with the failures of a known deviation taken out; one that has gone away is said, so that it is taken off the list."""
-    name, project, passed, failures = result
-    reason = known.DEVIATIONS.get(name)
-    if reason is None:
-        return result
-    if not failures:
-        print(f"known: {name}: gone, take it off known.py")
-        return result
-    print(f"known: {name}: {len(failures)} of {passed + len(failures)} checks fail: {reason}")
-    return name, project, passed, []
 
 
 def parse():
@@ -99,6 +85,9 @@ def every_job(seeds):
     return (
         [("nasty", case.name) for case in nasty]
         + [("requirements", f"requirements-{seed}") for seed in range(requirement_cases.SEEDS)]
+        + [("sheet", f"sheet-{seed}") for seed in range(sheet_checks.RANDOM)]
+        + [("sheet", f"sheet-requirements-{seed}") for seed in range(sheet_checks.WITH_REQUIREMENTS)]
+        + [("site", f"site-{seed}") for seed in range(check_site.SEEDS)]
         + [("random", seed) for seed in sorted(range(seeds), key=lambda seed: -(seed % 19))]
         + [("published", figure["id"]) for figure in published.figures()]
     )
@@ -115,12 +104,13 @@ def named_jobs(name):
 
 
 RECORDS = None
+SHEETS = None
 
 
 def start_worker(path):
-    """Every worker talks to its own process of the program, and gives up a case that hangs."""
-    global RECORDS
-    RECORDS = Records(path)
+    """Every worker talks to its own processes of the program, and gives up a case that hangs."""
+    global RECORDS, SHEETS
+    RECORDS, SHEETS = Records(path), Records(path, "--sheet")
     signal.signal(signal.SIGALRM, give_up)
 
 
@@ -133,20 +123,19 @@ def run_self_test(name):
 
 
 def run_job(job):
-    """Seconds of the processor, halves of the locus that are not drawn, and (name, project, passed, failures)."""
+    """Seconds of the processor, and (name, project, passed, failures)."""
     started = time.process_time()
     signal.alarm(PATIENCE)
     try:
-        undrawn, result = checked(job)
+        result = checked(job)
     except TimeoutError as reason:
-        undrawn, result = 0, (str(job[1]), "", 0, [("the check", "to end", str(reason))])
+        result = (str(job[1]), "", 0, [("the check", "to end", str(reason))])
     signal.alarm(0)
-    return time.process_time() - started, undrawn, result
+    return time.process_time() - started, result
 
 
 def checked(job):
-    """Halves of the locus that are not drawn, and (name, project, passed, failures)."""
-    undrawn = 0
+    """(name, project, passed, failures)."""
     kind, key = job
     if kind == "published":
         result = published.check(key, RECORDS)
@@ -154,13 +143,21 @@ def checked(job):
         case = requirement_cases.requirement_case(int(key.removeprefix("requirements-")))
         report = requirement_checks.check_case(case, RECORDS)
         result = case.name, case.text, report.passed, report.failures
+    elif kind == "sheet":
+        name = key.removeprefix("sheet-")
+        seed = int(name.removeprefix("requirements-"))
+        case = random_case(seed) if name.isdigit() else requirement_cases.requirement_case(seed)
+        report = sheet_checks.check_case(case, SHEETS)
+        result = key, case.text, report.passed, report.failures
+    elif kind == "site":
+        project, report = check_site.check_site(int(key.removeprefix("site-")), SHEETS)
+        result = key, project, report.passed, report.failures
     else:
         case = random_case(key) if kind == "random" else next(c for c in all_cases() if c.name == key)
         followed = kind == "nasty" or case.loop.order <= ALWAYS_FOLLOWED or key % FOLLOWED_EACH == 0
         report = check_case(case, RECORDS, with_branches=followed)
-        undrawn = report.undrawn if kind == "random" else 0
         result = case.name, case.text, report.passed, report.failures
-    return undrawn, result
+    return result
 
 
 def show(result):

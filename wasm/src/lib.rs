@@ -3,7 +3,8 @@
 //!
 //! The messages, as the page sees them (`www/src/engine.ts`):
 //!
-//! * in: `{ id: number, project: string }`, the project as JSON;
+//! * in: `{ id: number, project: string, sheet?: true }`, the project as JSON; with `sheet` the record holds what the
+//!   printed sheet needs, and there are no branches;
 //! * out: `{ id, analysis, answer, branches, milliseconds }`, where `analysis` is a number that changes with
 //!   everything but the setting, `branches` is a list of `{ sign, points }`, and `points` is a `Float64Array` of
 //!   real part, imaginary part and knob, vertex by vertex.

@@ -16,15 +16,18 @@ pub(crate) struct Request {
     pub(crate) id: f64,
     /// The project as JSON.
     pub(crate) project: String,
+    /// Whether the record shall hold what the printed sheet needs; the branches are then left out.
+    pub(crate) with_sheet: bool,
 }
 
 impl Request {
-    /// Reads `{ id, project }`.
+    /// Reads `{ id, project, sheet }`.
     pub(crate) fn read(message: &JsValue) -> Result<Self, JsValue> {
         let id = Reflect::get(message, &"id".into())?.as_f64();
         let project = Reflect::get(message, &"project".into())?.as_string();
+        let with_sheet = Reflect::get(message, &"sheet".into())?.is_truthy();
         match (id, project) {
-            (Some(id), Some(project)) => Ok(Self { id, project }),
+            (Some(id), Some(project)) => Ok(Self { id, project, with_sheet }),
             _ => Err(JsValue::from_str("a request is { id: number, project: string }")),
         }
     }

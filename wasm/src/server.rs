@@ -29,7 +29,7 @@ pub(crate) fn serve(program_hash: Option<String>) -> Result<(), JsValue> {
     // The page is told that the worker stopped; what went wrong stands on the browser's console.
     std::panic::set_hook(Box::new(|panic| console::error_1(&panic.to_string().into())));
     let mut server = Server { scope: scope.clone(), clock, session: Session::new(), program_hash };
-    server.reply_to(&Request { id: 0.0, project: WARM_UP.to_owned() })?;
+    server.reply_to(&Request { id: 0.0, project: WARM_UP.to_owned(), with_sheet: false })?;
 
     let handler = Closure::<dyn FnMut(MessageEvent) -> Result<(), JsValue>>::new(move |event: MessageEvent| {
         let reply = server.reply_to(&Request::read(&event.data())?)?;
@@ -45,6 +45,14 @@ impl Server {
     /// Solves and converts; the time of both is in the reply.
     fn reply_to(&mut self, request: &Request) -> Result<Reply, JsValue> {
         let start = self.clock.now();
+        if request.with_sheet {
+            let answer = self.session.sheet(&request.project, self.program_hash.as_deref());
+            let reply = Reply::new(request.id, 0)?;
+            reply.put_answer(&answer)?;
+            reply.put_branches(&[])?;
+            reply.put_milliseconds(self.clock.now() - start)?;
+            return Ok(reply);
+        }
         let solved = self.session.solve(&request.project, self.program_hash.as_deref());
         let reply = Reply::new(request.id, solved.analysis)?;
         reply.put_answer(&solved.answer)?;

@@ -32,7 +32,10 @@ export interface Reply {
 /** A project on its way to an answer. */
 interface Request {
   readonly id: number;
-  readonly project: Project;
+  /** The project as JSON text. */
+  readonly text: string;
+  /** True where the record shall hold what the printed sheet needs. */
+  readonly sheet: boolean;
   resolve(reply: Reply | null): void;
   reject(error: Error): void;
 }
@@ -56,6 +59,8 @@ export class Engine {
   #current: Request | null = null;
   /** Next. */
   #waiting: Request | null = null;
+  /** Next where nothing else waits: the newest project whose sheet is wanted. */
+  #sheet: Request | null = null;
   #nextId = 1;
   #busyTimer: ReturnType<typeof setTimeout> | undefined;
   #busy = false;
@@ -76,7 +81,19 @@ export class Engine {
   solve(project: Project): Promise<Reply | null> {
     return new Promise((resolve, reject) => {
       this.#waiting?.resolve(null);
-      this.#waiting = { id: this.#nextId++, project, resolve, reject };
+      this.#waiting = { id: this.#nextId++, text: JSON.stringify(project), sheet: false, resolve, reject };
+      this.#send();
+    });
+  }
+
+  /**
+   * The answer to a project document with the sheet's part of the record and no branches. It waits until no other project
+   * does, and is null where a newer sheet or `stop` made it useless.
+   */
+  sheet(text: string): Promise<Reply | null> {
+    return new Promise((resolve, reject) => {
+      this.#sheet?.resolve(null);
+      this.#sheet = { id: this.#nextId++, text, sheet: true, resolve, reject };
       this.#send();
     });
   }
@@ -87,6 +104,12 @@ export class Engine {
     if (dropped.length === 0) return;
     void this.#start();
     for (const request of dropped) request.resolve(null);
+  }
+
+  /** Ends the worker: this engine is not asked again. */
+  end(): void {
+    this.#take();
+    this.#end();
   }
 
   /** Calls back with true when an answer takes long enough to say so, and with false when that is over. */
@@ -119,14 +142,15 @@ export class Engine {
   }
 
   #send(): void {
-    if (!this.#waiting) return;
+    const request = this.#waiting ?? this.#sheet;
+    if (!request) return;
     if (!this.#worker) void this.#start();
     if (!this.#ready || this.#current) return;
-    const request = this.#waiting;
-    this.#waiting = null;
+    if (request.sheet) this.#sheet = null;
+    else this.#waiting = null;
     this.#current = request;
     this.#busyTimer = setTimeout(() => this.#setBusy(true), BUSY_AFTER);
-    this.#worker?.postMessage({ id: request.id, project: JSON.stringify(request.project) });
+    this.#worker?.postMessage({ id: request.id, project: request.text, sheet: request.sheet });
   }
 
   #receive(worker: Worker, message: Message): void {
@@ -156,9 +180,10 @@ export class Engine {
 
   /** Takes all open requests away from the worker. */
   #take(): Request[] {
-    const open = [this.#current, this.#waiting].filter((request) => request !== null);
+    const open = [this.#current, this.#waiting, this.#sheet].filter((request) => request !== null);
     this.#current = null;
     this.#waiting = null;
+    this.#sheet = null;
     this.#rest();
     return open;
   }

@@ -2,10 +2,11 @@
 import { LARGEST_PROJECT } from "./link.ts";
 import type { Project } from "./types.ts";
 
+/** How the name of a project's file ends. */
 const ENDING = ".stayband.json";
 
 /** A file name from a title: letters, digits and a few signs that every file system takes. */
-export function fileName(title: string): string {
+export function fileName(title: string, ending: string = ENDING): string {
   const name = title
     .normalize("NFC")
     .replace(/[^\p{L}\p{N}()_.,-]+/gu, " ")
@@ -13,15 +14,20 @@ export function fileName(title: string): string {
     .replace(/^[.\s]+/, "")
     .slice(0, 80)
     .trim();
-  return (name || "loop") + ENDING;
+  return (name || "loop") + ending;
 }
 
-/** Hands the project to the browser as a download. */
-export function saveFile(project: Project): void {
-  const blob = new Blob([`${JSON.stringify(project, null, 2)}\n`], { type: "application/json" });
+/** The project as it is written into a file. */
+export function fileDocument(project: Project): string {
+  return `${JSON.stringify(project, null, 2)}\n`;
+}
+
+/** Hands a text to the browser as a download. */
+export function download(name: string, type: string, text: string): void {
+  const blob = new Blob([text], { type });
   const link = document.createElement("a");
   link.href = URL.createObjectURL(blob);
-  link.download = fileName(project.title);
+  link.download = name;
   link.click();
   // The browser reads the blob after this turn; a minute is ample, and then the memory is free again.
   setTimeout(() => URL.revokeObjectURL(link.href), 60_000);

@@ -53,6 +53,14 @@ export function lanesOf(record: Findings): Lane[] {
   ];
 }
 
+/**
+ * The lanes of another project that is compared with the present one. Their edges are not to be asked for reasons: those
+ * are given on the scale of the present project.
+ */
+export function otherLanes(other: Findings): Lane[] {
+  return [stabilityLane(other), permittedLane(other)].map((lane) => ({ ...lane, name: `Other: ${lane.name.toLowerCase()}`, edges: [] }));
+}
+
 /** The stability lane. */
 export function stabilityLane(record: Findings): Lane {
   const ranges = onScale(record).stability;

@@ -1,5 +1,17 @@
 // Changes of the project. Each returns a new project and leaves the old one as it was, so that it can be undone.
-import type { Feedback, LoopText, Project, Quantity, Requirement, RequirementKind, SamplingText, Setting } from "./types.ts";
+import type {
+  Feedback,
+  LoopText,
+  Project,
+  Quantity,
+  Requirement,
+  RequirementKind,
+  SamplingText,
+  Setting,
+  SheetText,
+  SiteCheckText,
+  StepUpText,
+} from "./types.ts";
 
 /** The blocks that are typed. */
 export type BlockName = "controller" | "plant" | "sensor";
@@ -25,6 +37,14 @@ const PLAIN_SETTING: Setting = {
 /** A sampling nobody has typed anything into. */
 const EMPTY_SAMPLING: SamplingText = { period: "", delay: "", method: "tustin", prewarp: "" };
 
+/** Nothing that the sheet, the step-up plan and the site check ask for. */
+const PLAIN_SHEET: SheetText = { machine: "", revision: "", date: "", preparedBy: "", checkedBy: "" };
+const PLAIN_STEP_UP: StepUpText = { start: "", ratio: "" };
+const PLAIN_SITE_CHECK: SiteCheckText = { seen: "step", setting: "", period: "", overshoot: "" };
+
+/** A quantity of which only the symbol is known. */
+const PLAIN_QUANTITY: Omit<Quantity, "symbol"> = { value: "", unit: "", meaning: "", tolerance: "" };
+
 /** A project nobody has typed anything into. */
 export function emptyProject(): Project {
   return {
@@ -35,6 +55,9 @@ export function emptyProject(): Project {
     knob: "",
     setting: PLAIN_SETTING,
     requirements: [],
+    sheet: PLAIN_SHEET,
+    stepUp: PLAIN_STEP_UP,
+    siteCheck: PLAIN_SITE_CHECK,
   };
 }
 
@@ -95,7 +118,7 @@ export function withoutRequirement(project: Project, kind: RequirementKind): Pro
 /** With another value, unit or meaning for a quantity; a row is made where there is none. */
 export function withQuantity(project: Project, symbol: string, part: Partial<Omit<Quantity, "symbol">>): Project {
   const known = project.quantities.some((row) => row.symbol === symbol);
-  const rows = known ? project.quantities : [...project.quantities, { symbol, value: "", unit: "", meaning: "" }];
+  const rows = known ? project.quantities : [...project.quantities, { ...PLAIN_QUANTITY, symbol }];
   return { ...project, quantities: rows.map((row) => (row.symbol === symbol ? { ...row, ...part } : row)) };
 }
 
@@ -119,23 +142,25 @@ export function withKnob(project: Project, knob: string, present: string = proje
 /** The names of the loop that have no row yet get one in the table; rows of names that are gone stay while they hold something. */
 export function rowsOf(project: Project, names: readonly string[]): { row: Quantity; used: boolean }[] {
   const rowOf = (symbol: string): Quantity =>
-    project.quantities.find((row) => row.symbol === symbol) ?? { symbol, value: "", unit: "", meaning: "" };
-  const unused = project.quantities.filter((row) => !names.includes(row.symbol) && (row.value || row.unit || row.meaning));
+    project.quantities.find((row) => row.symbol === symbol) ?? { ...PLAIN_QUANTITY, symbol };
+  const unused = project.quantities.filter((row) => !names.includes(row.symbol) && (row.value || row.unit || row.tolerance || row.meaning));
   return [...names.map((name) => ({ row: rowOf(name), used: true })), ...unused.map((row) => ({ row, used: false }))];
 }
 
 /** A project as an older or scripted document may give it, with everything that may be left out filled in. */
 export function completed(given: Project): Project {
   const empty = emptyProject();
-  const quantity = { value: "", unit: "", meaning: "" };
   return {
     format: given.format,
     title: given.title ?? empty.title,
     loop: { ...empty.loop, ...given.loop, sampling: given.loop.sampling ? { ...EMPTY_SAMPLING, ...given.loop.sampling } : null },
-    quantities: (given.quantities ?? []).map((row) => ({ ...quantity, ...row })),
+    quantities: (given.quantities ?? []).map((row) => ({ ...PLAIN_QUANTITY, ...row })),
     knob: given.knob,
     setting: { ...empty.setting, ...given.setting },
     requirements: given.requirements ?? empty.requirements,
+    sheet: { ...empty.sheet, ...given.sheet },
+    stepUp: { ...empty.stepUp, ...given.stepUp },
+    siteCheck: { ...empty.siteCheck, ...given.siteCheck },
   };
 }
 

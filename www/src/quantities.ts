@@ -10,6 +10,7 @@ interface Row {
   readonly elements: readonly HTMLTableRowElement[];
   readonly value: HTMLInputElement;
   readonly unit: HTMLInputElement;
+  readonly tolerance: HTMLInputElement;
   readonly meaning: HTMLInputElement;
   readonly knobNote: HTMLElement;
   readonly unusedNote: HTMLElement;
@@ -58,7 +59,7 @@ function place(body: HTMLTableSectionElement, order: readonly HTMLTableRowElemen
 }
 
 function makeRow(symbol: string, session: Session): Row {
-  const field = (name: "value" | "unit" | "meaning"): HTMLInputElement => {
+  const field = (name: "value" | "unit" | "tolerance" | "meaning"): HTMLInputElement => {
     const input = html("input", { type: "text", "aria-label": `${name} of ${symbol}`, autocomplete: "off", spellcheck: "false" });
     input.dataset["symbol"] = symbol;
     input.addEventListener("input", () => {
@@ -69,6 +70,7 @@ function makeRow(symbol: string, session: Session): Row {
   const value = field("value");
   value.inputMode = "decimal";
   const unit = field("unit");
+  const tolerance = field("tolerance");
   const meaning = field("meaning");
   const knobNote = html("span", { class: "note" }, "the knob");
   const remove = button("Remove", () => session.change(withoutQuantity(session.situation.project, symbol), `row ${symbol}`), {
@@ -83,17 +85,20 @@ function makeRow(symbol: string, session: Session): Row {
     html("th", { scope: "row" }, symbol),
     html("td", {}, value, knobNote),
     html("td", {}, unit),
+    html("td", {}, tolerance),
     html("td", {}, meaning, unusedNote),
   );
-  const below = html("tr", { class: "below" }, html("td", { colspan: 4 }, problems));
-  return { elements: [main, below], value, unit, meaning, knobNote, unusedNote, problems };
+  const below = html("tr", { class: "below" }, html("td", { colspan: 5 }, problems));
+  return { elements: [main, below], value, unit, tolerance, meaning, knobNote, unusedNote, problems };
 }
 
 function fillRow(row: Row, quantity: Quantity, { knob, used }: { knob: boolean; used: boolean }): void {
   setValue(row.value, quantity.value);
   setValue(row.unit, quantity.unit);
+  setValue(row.tolerance, quantity.tolerance);
   setValue(row.meaning, quantity.meaning);
   row.value.hidden = knob;
+  row.tolerance.hidden = knob;
   row.knobNote.hidden = !knob;
   row.unusedNote.hidden = used;
 }

@@ -208,6 +208,13 @@ function ticksOf({ yDomain: [low, high], yStep }: Pane, height: number): number[
   return Array.from({ length: Math.floor(high / step) - first + 1 }, (_, index) => (first + index) * step);
 }
 
+/** A picture without its readings, for the sheet. */
+export function chartPicture(chart: Chart, size: { width: number; height: number }): SVGSVGElement {
+  const panes = layOut(chart, size);
+  const parts = panes.flatMap((drawn, index) => paneParts(drawn, chart, index, index === panes.length - 1));
+  return svg("svg", { class: "chart", viewBox: `0 0 ${size.width} ${size.height}`, role: "img", "aria-label": chart.title }, ...parts);
+}
+
 function paneParts(drawn: Drawn, chart: Chart | null, index: number, last: boolean): SVGElement[] {
   if (!chart) return [];
   const { pane, x, y, box } = drawn;

@@ -8,7 +8,7 @@ import { fromNumber, fromRational, typedText, type Decimal } from "./decimal.ts"
 import { byId, letterScale, oncePerFrame, setAttributes, svg, watchSize } from "./dom.ts";
 import { figure, withUnit } from "./format.ts";
 import { gridOf, onGrid, stepOnGrid } from "./grid.ts";
-import { lanesOf, type Lane, type Segment } from "./lanes.ts";
+import { lanesOf, otherLanes, type Lane, type Segment } from "./lanes.ts";
 import { settingNumber, withSetting } from "./project.ts";
 import { stableSpans } from "./ranges.ts";
 import { limitSpan, onScale, settingName, settingUnit } from "./scale.ts";
@@ -48,6 +48,8 @@ export class Ruler {
   #dragging = false;
   #drawn = "";
   #lanes: readonly Lane[] = [];
+  /** The record of another project, for comparison. */
+  #other: Findings | null = null;
 
   constructor(session: Session, onReason: (edge: AnyEdge, from: Element) => void) {
     this.#session = session;
@@ -64,20 +66,27 @@ export class Ruler {
     session.onChange((situation) => this.show(situation));
   }
 
+  /** Shows the ranges of another project below the present ones; null takes them away. */
+  compare(other: Findings | null): void {
+    this.#other = other;
+    this.#drawn = "";
+    this.show(this.#session.situation);
+  }
+
   /** Draws what has changed. */
   show({ good, project }: Situation): void {
     if (!good || this.#width === 0) return;
     const record = good.record;
     const setting = settingNumber(project);
     // The axis stands still while the pointer is dragged along it.
-    if (!this.#dragging || !this.#axis) this.#axis = axisFor(subjectOf(record, setting), this.#choice.value as AxisChoice);
+    if (!this.#dragging || !this.#axis) this.#axis = axisFor(subjectOf(record, this.#other, setting), this.#choice.value as AxisChoice);
     const layout = layoutFor(this.#width);
     // The figures at the setting change with every step of the pointer, the lanes do not.
     const required = record.requirements.map(({ kind, limit, ranges }) => [kind, limit, ranges]);
     const judged = JSON.stringify([record.scale, required, record.permitted, this.#axis]);
     const drawn = [good.picture, settingUnit(record), settingName(record), this.#width, layout.scale, judged].join();
     if (drawn !== this.#drawn) {
-      this.#lanes = lanesOf(record);
+      this.#lanes = [...lanesOf(record), ...(this.#other ? otherLanes(this.#other) : [])];
       this.#drawBase(record, this.#axis, layout);
       this.#drawn = drawn;
     }
@@ -86,29 +95,17 @@ export class Ruler {
 
   #drawBase(record: Findings, axis: Axis, layout: Layout): void {
     const { left, length, scale, pitch } = layout;
-    const position = positionOn(axis, length);
     const lanes = this.#lanes;
-    const height = SIZES.axis * scale + lanes.length * pitch + SIZES.foot * scale;
+    const height = heightOf(lanes, layout);
     const names = lanes.map(({ name }) => name).join(", ");
     setAttributes(this.#picture, { viewBox: `0 0 ${layout.width} ${height}`, width: layout.width, height });
     setAttributes(this.#picture, { "aria-label": `Axis of settings with the lanes ${names}` });
-    const ticks = svg("g", { class: "ticks", transform: `translate(${left} ${SIZES.axis * scale - 4})` });
-    drawTicks(ticks, axis, position, layout);
     const catcher = svg("rect", { class: "catcher", x: left, y: 0, width: length, height });
-    const rows = lanes.map((lane, index) => {
-      const y = SIZES.axis * scale + index * pitch;
-      return svg(
-        "g",
-        { transform: `translate(0 ${y})` },
-        ...laneParts(lane, axis, position, layout),
-        laneText(lane.text, layout),
-      );
-    });
     const edges = lanes.map((lane, index) => {
       const top = SIZES.axis * scale + (index + 1) * pitch - (SIZES.lane + SIZES.gap) * scale;
       return this.#edgeMarks(lane, axis, layout, top, record);
     });
-    this.#base.replaceChildren(ticks, ...rows, catcher, ...edges);
+    this.#base.replaceChildren(...axisAndLanes(lanes, axis, layout), catcher, ...edges);
   }
 
   #edgeMarks(lane: Lane, axis: Axis, layout: Layout, top: number, record: Findings): SVGGElement {
@@ -231,13 +228,44 @@ export class Ruler {
   }
 }
 
+/** The ruler at a width of its own, for the sheet: nothing on it can be moved. */
+export function rulerPicture(record: Findings, width: number): SVGSVGElement {
+  const layout = layoutFor(width);
+  const lanes = lanesOf(record);
+  const setting = settingNumber(record.project);
+  const axis = axisFor(subjectOf(record, null, setting), "automatic");
+  const height = heightOf(lanes, layout);
+  const x = setting !== null && onAxis(axis, setting) ? layout.left + positionOn(axis, layout.length)(setting) : null;
+  const top = SIZES.axis * layout.scale;
+  const stem = x === null ? null : svg("g", { class: "pointer" }, svg("line", { x1: x, x2: x, y1: top - 10, y2: height - SIZES.foot * layout.scale }));
+  const label = `Axis of settings with the lanes ${lanes.map(({ name }) => name).join(", ")}`;
+  return svg("svg", { class: "ruler", viewBox: `0 0 ${width} ${height}`, role: "img", "aria-label": label }, ...axisAndLanes(lanes, axis, layout), stem);
+}
+
+function heightOf(lanes: readonly Lane[], { scale, pitch }: Layout): number {
+  return SIZES.axis * scale + lanes.length * pitch + SIZES.foot * scale;
+}
+
+function axisAndLanes(lanes: readonly Lane[], axis: Axis, layout: Layout): SVGGElement[] {
+  const { left, length, scale, pitch } = layout;
+  const position = positionOn(axis, length);
+  const ticks = svg("g", { class: "ticks", transform: `translate(${left} ${SIZES.axis * scale - 4})` });
+  drawTicks(ticks, axis, position, layout);
+  const rows = lanes.map((lane, index) => {
+    const place = `translate(0 ${SIZES.axis * scale + index * pitch})`;
+    return svg("g", { transform: place }, ...laneParts(lane, axis, position, layout), laneText(lane.text, layout));
+  });
+  return [ticks, ...rows];
+}
+
 /** What the axis has to show for a record. */
-function subjectOf(record: Findings, setting: number | null): Parameters<typeof axisFor>[0] {
+function subjectOf(record: Findings, other: Findings | null, setting: number | null): Parameters<typeof axisFor>[0] {
   const { stability, character } = onScale(record);
+  const otherStability = other ? onScale(other).stability : [];
   const open = record.scale.direction === "reciprocal" ? 0 : -Infinity;
   const ends = (ranges: readonly { to: Edge | null }[]): number[] => ranges.flatMap(({ to }) => (to ? [to.value] : []));
   return {
-    stability: ends(stability),
+    stability: [...ends(stability), ...ends(otherStability)],
     character: ends(character),
     stable: stableSpans(stability).map(({ from, to }) => [from?.value ?? open, to?.value ?? Infinity]),
     setting,

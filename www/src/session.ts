@@ -1,8 +1,9 @@
 // The session: the project, the newest answer and the last good one, and every way in which they change.
+import { parsed, Refusal } from "./document.ts";
 import type { Engine, Reply } from "./engine.ts";
 import { History } from "./history.ts";
 import { completed, emptyProject } from "./project.ts";
-import type { Store } from "./store.ts";
+import { Store, type Kept, type Place } from "./store.ts";
 import type { Answer, Problem, Project, Record as Findings } from "./types.ts";
 
 /** A reply with a record. */
@@ -23,8 +24,18 @@ export interface Situation {
   readonly stale: boolean;
 }
 
-/** A document that cannot be opened; the message says why. */
-export class Refusal extends Error {}
+/** A project with the entry of the store in which it is kept. */
+interface Step {
+  readonly project: Project;
+  readonly place: Place;
+}
+
+/** How a document is opened. */
+interface Opening {
+  readonly place: Place;
+  /** False where opening is given up because something else came first. */
+  wanted(): boolean;
+}
 
 /** How often opening a document is tried again when typing overtakes it. */
 const MOST_TRIES = 20;
@@ -36,10 +47,11 @@ const NOTHING = emptyProject();
 export class Session {
   readonly #engine: Engine;
   readonly #store: Store;
-  readonly #history = new History();
+  readonly #history = new History<Step>();
   readonly #listeners: ((situation: Situation) => void)[] = [];
   readonly #failures: ((message: string) => void)[] = [];
   #project: Project = NOTHING;
+  #place: Place = Store.newPlace();
   #answer: Answer | null = null;
   #good: Good | null = null;
   /** True where the newest project got no answer, because it was stopped or the engine broke. */
@@ -61,6 +73,11 @@ export class Session {
     return { project: this.#project, answer: this.#answer, good: this.#good, stale };
   }
 
+  /** The entry of the store in which the project is kept, or will be. */
+  get place(): Place {
+    return this.#store.placeOf(this.#place);
+  }
+
   /** True where there is something to undo, to redo. */
   get steps(): { readonly back: boolean; readonly forth: boolean } {
     return { back: this.#history.canUndo, forth: this.#history.canRedo };
@@ -79,7 +96,7 @@ export class Session {
   /** Changes the project; quick changes of the same field are undone together. */
   change(project: Project, field: string): void {
     if (project === this.#project) return;
-    this.#history.note(this.#project, field, Date.now());
+    this.#history.note(this.#step, field, Date.now());
     this.#take(project);
   }
 
@@ -90,46 +107,68 @@ export class Session {
 
   /** Back to the project before the last change. */
   undo(): void {
-    const project = this.#history.undo(this.#project);
-    if (project) this.#take(project);
+    this.#go(this.#history.undo(this.#step));
   }
 
   /** Forth again. */
   redo(): void {
-    const project = this.#history.redo(this.#project);
-    if (project) this.#take(project);
+    this.#go(this.#history.redo(this.#step));
   }
 
-  /** Puts another project in place of the present one. */
+  /** Begins an empty project. It is kept when something is typed into it. */
+  beginEmpty(): void {
+    this.#begin();
+    this.#ask(emptyProject());
+  }
+
+  /** Puts another project in place of the present one, and keeps it as an entry of its own. */
   replace(project: Project): void {
-    this.#history.note(this.#project, null, Date.now());
-    this.#answer = null;
-    this.#good = null;
+    this.#begin();
     this.#take(project);
   }
 
   /**
-   * Opens a project document: JSON text or an object.
+   * Opens a project document, JSON text or an object, and keeps it: as the entry that holds the same project, if there is
+   * one, else as an entry of its own.
    *
    * Resolves to its answer, which may name problems in its fields. Rejects with a `Refusal`, and changes nothing, where
    * it is no project.
    */
   async open(document: unknown): Promise<Answer> {
-    const answer = await this.#queue(() => this.#open(document, () => true));
-    this.#store.keep(this.#project);
+    const answer = await this.openUnkept(document);
+    const kept = this.#store.find(this.#project);
+    if (kept) {
+      this.#place = kept.place;
+      this.#store.opened(kept);
+    } else {
+      this.#store.keep(this.#place, this.#project);
+    }
+    return answer;
+  }
+
+  /** The same for a document that need not be kept before the user changes something: a demo, or one from a script. */
+  async openUnkept(document: unknown): Promise<Answer> {
+    return this.#queue(() => this.#open(document, { place: Store.newPlace(), wanted: () => true }));
+  }
+
+  /** Opens an entry of the store. Rejects like `open`. */
+  async openKept({ place, text, project }: Kept): Promise<Answer> {
+    const answer = await this.#queue(() => this.#open(project, { place, wanted: () => true }));
+    this.#store.opened({ place, text });
     return answer;
   }
 
   /**
-   * Opens a document to begin with. It is kept when the user changes something.
+   * Opens a document to begin with: an entry of the store, or a demo.
    *
    * Resolves to false where something else came first. Rejects like `open`.
    */
-  async begin(document: unknown): Promise<boolean> {
+  async begin(document: unknown, kept?: Kept): Promise<boolean> {
     const untouched = (): boolean => this.#project === NOTHING;
     return this.#queue(async () => {
       try {
-        await this.#open(document, untouched);
+        await this.#open(document, { place: kept?.place ?? this.#place, wanted: untouched });
+        if (kept) this.#store.opened(kept);
         return true;
       } catch (error) {
         // The form is there to be used all the same.
@@ -155,7 +194,7 @@ export class Session {
     return result;
   }
 
-  async #open(document: unknown, wanted: () => boolean): Promise<Answer> {
+  async #open(document: unknown, { place, wanted }: Opening): Promise<Answer> {
     const project = parsed(document);
     const engines = this.#engines;
     for (let tries = 0; tries < MOST_TRIES && engines === this.#engines && wanted(); tries += 1) {
@@ -164,8 +203,9 @@ export class Session {
       const refused = reply.answer.problems.filter((problem) => problem.field === "document");
       if (refused.length > 0) throw new Refusal(problemText(refused));
       // Before the first answer there is nothing to come back to.
-      if (this.#answer) this.#history.note(this.#project, null, Date.now());
+      if (this.#answer) this.#history.note(this.#step, null, Date.now());
       this.#project = completed(project);
+      this.#place = place;
       this.#good = null;
       this.#receive(reply);
       return reply.answer;
@@ -173,9 +213,33 @@ export class Session {
     throw new Refusal("it was stopped or overtaken by something newer");
   }
 
+  get #step(): Step {
+    return { project: this.#project, place: this.#place };
+  }
+
+  /** A project that has nothing to do with the present one comes next. */
+  #begin(): void {
+    this.#history.note(this.#step, null, Date.now());
+    this.#answer = null;
+    this.#good = null;
+    this.#place = Store.newPlace();
+  }
+
+  #go(step: Step | null): void {
+    if (!step) return;
+    this.#place = step.place;
+    this.#take(step.project);
+  }
+
+  /** Makes a project the present one, and keeps it. */
   #take(project: Project): void {
+    this.#store.keep(this.#place, project);
+    this.#ask(project);
+  }
+
+  /** Makes a project the present one, and asks for its answer. */
+  #ask(project: Project): void {
     this.#project = project;
-    this.#store.keep(project);
     this.#tell();
     this.#engine.solve(project).then(
       (reply) => {
@@ -207,19 +271,4 @@ export class Session {
 /** Problems as one line. */
 export function problemText(problems: readonly Problem[]): string {
   return problems.map((problem) => problem.message).join("; ");
-}
-
-function parsed(document: unknown): Project {
-  let value: unknown;
-  try {
-    // An object goes through text as well: what the caller does to it later is then of no effect.
-    value = JSON.parse(typeof document === "string" ? document : JSON.stringify(document));
-  } catch {
-    throw new Refusal("it is no JSON text, so no Stayband project");
-  }
-  if (typeof value !== "object" || value === null || Array.isArray(value)) {
-    throw new Refusal("it is no JSON object, so no Stayband project");
-  }
-  // What it holds is checked by the core, which refuses a wrong document with a problem of the field `document`.
-  return value as Project;
 }

@@ -1,18 +1,20 @@
 // The buttons of the header: new, open, save, link, demos, undo, redo.
-import { byId, html } from "./dom.ts";
+import { byId } from "./dom.ts";
 import { DEMOS } from "./demos.ts";
-import { fileText, pickFile, saveFile } from "./file.ts";
+import { copy } from "./exports.ts";
+import { download, fileDocument, fileName, fileText, pickFile } from "./file.ts";
 import { linkPart } from "./link.ts";
+import { menu } from "./menu.ts";
 import { say } from "./message.ts";
-import { emptyProject } from "./project.ts";
 import type { Session } from "./session.ts";
+import type { Place, Store } from "./store.ts";
 
 /** Connects the buttons with the session. */
-export function tools(session: Session): void {
+export function tools(session: Session, store: Store): void {
   const press = (id: string, act: () => void): void => byId(id, HTMLButtonElement).addEventListener("click", act);
-  press("new", () => session.replace(emptyProject()));
+  press("new", () => session.beginEmpty());
   press("open", () => void openDocument("The file", () => openFile(session)));
-  press("save", () => saveFile(session.situation.project));
+  saving(session, store, press);
   press("link", () => void copyLink(session));
   press("undo", () => session.undo());
   press("redo", () => session.redo());
@@ -22,7 +24,8 @@ export function tools(session: Session): void {
     byId("undo", HTMLButtonElement).disabled = !session.steps.back;
     byId("redo", HTMLButtonElement).disabled = !session.steps.forth;
   });
-  demoMenu(session);
+  const demo = (document: unknown) => (): void => void openDocument("The demo", () => session.openUnkept(document));
+  menu("demos", DEMOS.map(({ name, shows, document }) => ({ name, about: shows, act: demo(document) })));
   undoKeys(session);
   dropFiles(session);
 }
@@ -44,35 +47,35 @@ async function openFile(session: Session): Promise<void> {
   if (text !== null) await session.open(text);
 }
 
-async function copyLink(session: Session): Promise<void> {
-  const link = location.href.replace(/#.*$/s, "") + (await linkPart(session.situation.project));
-  try {
-    await navigator.clipboard.writeText(link);
-    say("The link to this project is copied. It holds the whole project; nothing is stored elsewhere.");
-  } catch {
-    say("Copy this link; it holds the whole project:", "news", link);
-  }
+/** Save, and Save as, which asks for the file's name; the name then stays with the project. */
+function saving(session: Session, store: Store, press: (id: string, act: () => void) => void): void {
+  const dialog = byId("save-as", HTMLDialogElement);
+  const field = byId("file-name", HTMLInputElement);
+  const names = new Map<Place, string>();
+  const nameOf = (): string => names.get(session.place) ?? fileName(session.situation.project.title);
+  const save = (): void => {
+    const { project } = session.situation;
+    download(nameOf(), "application/json", fileDocument(project));
+    store.saved(project);
+  };
+  press("save", save);
+  press("save-as-open", () => {
+    field.value = nameOf();
+    dialog.showModal();
+    field.select();
+  });
+  press("save-as-close", () => dialog.close());
+  byId("save-as-form", HTMLFormElement).addEventListener("submit", (event) => {
+    event.preventDefault();
+    names.set(session.place, fileName(field.value.replace(/(\.stayband)?\.json$/i, "")));
+    dialog.close();
+    save();
+  });
 }
 
-function demoMenu(session: Session): void {
-  const menu = byId("demos", HTMLDetailsElement);
-  const list = byId("demo-list", HTMLElement);
-  for (const demo of DEMOS) {
-    const item = html("button", { type: "button" }, html("strong", {}, demo.name), html("span", {}, demo.shows));
-    item.addEventListener("click", () => {
-      menu.open = false;
-      void openDocument("The demo", () => session.open(demo.document));
-    });
-    list.append(html("li", {}, item));
-  }
-  menu.addEventListener("keydown", (event) => {
-    if (event.key !== "Escape" || !menu.open) return;
-    menu.open = false;
-    menu.querySelector("summary")?.focus();
-  });
-  document.addEventListener("pointerdown", (event) => {
-    if (event.target instanceof Node && !menu.contains(event.target)) menu.open = false;
-  });
+async function copyLink(session: Session): Promise<void> {
+  const link = location.href.replace(/#.*$/s, "") + (await linkPart(session.situation.project));
+  await copy(link, "The link to this project is copied. It holds the whole project; nothing is stored elsewhere.");
 }
 
 /** Undo and redo by keys; in a field the browser's own undo comes first. */
@@ -89,11 +92,19 @@ function undoKeys(session: Session): void {
 
 /** A file dropped on the page is opened like a picked one, instead of leaving the page. */
 function dropFiles(session: Session): void {
-  document.addEventListener("dragover", (event) => event.preventDefault());
-  document.addEventListener("drop", (event) => {
-    const file = event.dataTransfer?.files[0];
-    if (!file) return;
+  const sign = (shown: boolean): boolean => document.body.classList.toggle("dropping", shown);
+  document.addEventListener("dragover", (event) => {
     event.preventDefault();
-    void openDocument("The file", async () => session.open(await fileText(file)));
+    sign(event.dataTransfer?.types.includes("Files") ?? false);
+  });
+  document.addEventListener("dragleave", ({ relatedTarget }) => relatedTarget === null && sign(false));
+  document.addEventListener("drop", (event) => {
+    event.preventDefault();
+    sign(false);
+    const files = event.dataTransfer?.files ?? [];
+    const [file] = files;
+    if (!file) return;
+    if (files.length > 1) say("Only one file is opened at a time: drop them one by one.", "trouble");
+    else void openDocument(`“${file.name}”`, async () => session.open(await fileText(file)));
   });
 }

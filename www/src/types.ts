@@ -1,6 +1,40 @@
 // Made by `cargo page` from the types of the core (core/src/project.rs, record/, answer.rs). Do not edit.
 
 /**
+ * What tolerances allow at the observed frequency, to first order: the sum of what each quantity does alone.
+ */
+export type Allowed = {
+/**
+ * Smallest and largest factor of the loop gain.
+ */
+gain: [number, number],
+/**
+ * Smallest and largest lag, as a dead time in s.
+ */
+deadTime: [number, number], };
+
+/**
+ * The line from another pole or zero.
+ */
+export type AngleTerm = {
+/**
+ * Where it begins.
+ */
+s: Point,
+/**
+ * Whether a pole is there; else a zero.
+ */
+pole: boolean,
+/**
+ * How many.
+ */
+multiplicity: number,
+/**
+ * Degrees, of one.
+ */
+angle: number, };
+
+/**
  * What Stayband says to a project: a record, or what must be put right before there can be one.
  */
 export type Answer = {
@@ -16,6 +50,27 @@ problems: Array<Problem>,
  * The result; None where there are problems.
  */
 record: Record | null, };
+
+/**
+ * The asymptotes.
+ */
+export type AsymptoteStep = {
+/**
+ * Moving poles and zeros of the open loop.
+ */
+counts: [number, number],
+/**
+ * Their sums, exact.
+ */
+sums: [string, string],
+/**
+ * The centroid, exact; None without asymptotes.
+ */
+centroid: string | null,
+/**
+ * As the record has them.
+ */
+lines: BothSigns<Asymptotes>, };
 
 /**
  * The straight lines the branches approach.
@@ -35,6 +90,31 @@ centroid: number | null,
 angles: Array<number>, };
 
 /**
+ * F(jω, q) = 0 in its real and its imaginary part.
+ */
+export type AxisEquations = {
+/**
+ * What the square of ω is called.
+ */
+variable: string,
+/**
+ * The real part, of x = ω² and the knob.
+ */
+even: Formula,
+/**
+ * The imaginary part over ω, likewise.
+ */
+odd: Formula,
+/**
+ * The knob eliminated: a polynomial in x. None unless affine, and where it vanishes identically.
+ */
+eliminated: Formula | null,
+/**
+ * Its real roots x, as s = jω where x > 0.
+ */
+candidates: Array<Candidate>, };
+
+/**
  * A value for each sign of the knob.
  */
 export type BothSigns<T> = {
@@ -46,6 +126,48 @@ positive: T,
  * Knob from 0 to −∞.
  */
 negative: T, };
+
+/**
+ * Where poles meet.
+ */
+export type Breakaway = {
+/**
+ * D′·N − D·N′, a polynomial in s, of an affine loop; else the discriminant of F, a polynomial in the knob.
+ */
+equation: Formula,
+/**
+ * Whether the equation is the discriminant.
+ */
+discriminant: boolean,
+/**
+ * Its roots, of a conjugate pair the upper one; of the discriminant the real ones.
+ */
+candidates: Array<Candidate>, };
+
+/**
+ * A solution, kept or rejected.
+ */
+export type Candidate = {
+/**
+ * The knob. None: infinite.
+ */
+knob: number | null,
+/**
+ * The point of the s-plane, where it is known.
+ */
+s: Point | null,
+/**
+ * How often it is a root of the equation.
+ */
+multiplicity: number,
+/**
+ * Whether it is what was sought.
+ */
+kept: boolean,
+/**
+ * What it is, or why it was rejected.
+ */
+reason: string, };
 
 /**
  * What fails behind an edge.
@@ -130,7 +252,7 @@ multiplicity: number,
 /**
  * Of a pole in the z-plane the point of the s-plane it comes from, 1/s; the figures below are those of it.
  */
-equivalent: Point | null,
+equivalent: EquivalentPole | null,
 /**
  * −re/|s|: 1 for a stable real pole, 0 on the imaginary axis, negative right of it. None where the pole cannot be
  * told from the origin.
@@ -140,6 +262,28 @@ dampingRatio: number | null,
  * |s|, rad/s; 0 where the pole cannot be told from the origin.
  */
 naturalFrequency: number, };
+
+/**
+ * An equation in the knob, with its real solutions.
+ */
+export type Condition = {
+/**
+ * What the solutions mean.
+ */
+kind: ConditionKind,
+/**
+ * This polynomial in the knob is zero.
+ */
+equation: Formula,
+/**
+ * The real solutions, ascending.
+ */
+candidates: Array<Candidate>, };
+
+/**
+ * What the solutions of a condition mean.
+ */
+export type ConditionKind = "origin" | "degree-drop" | "row-of-zeros";
 
 /**
  * Requirements that exclude each other.
@@ -155,6 +299,43 @@ requirements: Array<RequirementKind>,
 text: string, };
 
 /**
+ * A correction of the model: the loop gain times a factor, and a dead time more.
+ */
+export type Correction = {
+/**
+ * The factor of the loop gain.
+ */
+gain: number,
+/**
+ * The added dead time, s. Below zero the machine is faster than the model.
+ */
+deadTime: number,
+/**
+ * What the stated tolerances allow; None where none are stated.
+ */
+allowed: Allowed | null,
+/**
+ * Whether the correction lies within. None where no tolerances are stated.
+ */
+within: boolean | null,
+/**
+ * The project with the correction put in; None where that cannot be written down.
+ */
+project: Project | null,
+/**
+ * The stable ranges of the corrected project: ends in the knob, None for infinite ones.
+ */
+stable: Array<[number | null, number | null]>,
+/**
+ * The permitted settings of the corrected project, as in the record.
+ */
+permitted: Array<[string | null, string | null]>,
+/**
+ * Why there are no new ranges, or what is left out in them.
+ */
+remark: string | null, };
+
+/**
  * A curve over time.
  */
 export type Curve = {
@@ -168,9 +349,91 @@ time: Array<number>,
 value: Array<number>, };
 
 /**
+ * The derivation for a check by hand.
+ */
+export type Derivation = {
+/**
+ * D and N of the moving part F = D + q·N of the characteristic polynomial; None unless affine.
+ */
+affine: [Formula, Formula] | null,
+/**
+ * The moving part of the characteristic polynomial.
+ */
+moving: Formula,
+/**
+ * The factor that no knob moves, where there is one.
+ */
+fixed: Formula | null,
+/**
+ * The Routh arrays with the knob in them: that of the moving part, and, where it ends early, the one used instead.
+ */
+routh: Array<RouthTable>,
+/**
+ * Why there is no Routh array with the knob in it.
+ */
+routhRemark: string | null,
+/**
+ * The equations whose solutions are the edges.
+ */
+conditions: Array<Condition>,
+/**
+ * On the imaginary axis.
+ */
+axis: AxisEquations | null,
+/**
+ * The edges between the ranges of stability, ascending.
+ */
+edges: Array<Edge>,
+/**
+ * The count of every range, by the Routh array at one number.
+ */
+ranges: Array<RangeCheck>,
+/**
+ * Asymptotes; None unless affine.
+ */
+asymptotes: AsymptoteStep | null,
+/**
+ * Where poles meet.
+ */
+breakaway: Breakaway | null,
+/**
+ * Angles at complex poles and zeros; empty unless affine.
+ */
+directions: Array<DirectionStep>,
+/**
+ * The requirements, in the project's order.
+ */
+requirements: Array<RequirementStep>, };
+
+/**
  * How the knob follows from the setting.
  */
 export type Direction = "proportional" | "reciprocal";
+
+/**
+ * The angle of departure from a pole, or of arrival at a zero.
+ */
+export type DirectionStep = {
+/**
+ * Departure or arrival.
+ */
+kind: LandmarkKind,
+/**
+ * The pole or zero, in the upper half plane.
+ */
+s: Point,
+/**
+ * How many coincide.
+ */
+multiplicity: number,
+/**
+ * The angles of the lines from the other poles and zeros to it.
+ */
+terms: Array<AngleTerm>,
+/**
+ * The directions for each sign of the knob, degrees.
+ */
+angles: BothSigns<Array<number>>, };
 
 /**
  * The published methods by which a controller in s becomes one in z.
@@ -228,6 +491,27 @@ axisPoles: number,
 name: CharacterName, };
 
 /**
+ * The edge a plan moves towards.
+ */
+export type EdgeAhead = {
+/**
+ * The knob there.
+ */
+knob: number,
+/**
+ * The setting there; None where the scale has none.
+ */
+setting: number | null,
+/**
+ * rad/s of the oscillation that begins there; None where the answer drifts away without one.
+ */
+omega: number | null,
+/**
+ * Its period, s.
+ */
+period: number | null, };
+
+/**
  * A curve at another setting, for comparison.
  */
 export type EdgeCurve = {
@@ -246,6 +530,23 @@ curve: Curve, };
 export type EdgeKind = "axis crossing" | "origin crossing" | "alternation crossing" | "no dead time" | "degree drop" | "breakaway" | "break-in" | "repeated pole";
 
 /**
+ * The pole of the s-plane that a pole of the z-plane comes from.
+ */
+export type EquivalentPole = {
+/**
+ * The real part, 1/s.
+ */
+re: number,
+/**
+ * The imaginary part, 1/s.
+ */
+im: number,
+/**
+ * The true pole is no farther than this, 1/s.
+ */
+radius: number, };
+
+/**
  * The sign of the feedback.
  */
 export type Feedback = "negative" | "positive";
@@ -254,6 +555,19 @@ export type Feedback = "negative" | "positive";
  * A field of the form.
  */
 export type Field = "controller" | "plant" | "sensor" | "deadTime" | "sampling" | "quantity" | "knob" | "setting" | "requirement" | "loop" | "document";
+
+/**
+ * A formula.
+ */
+export type Formula = {
+/**
+ * For display: integers of more than 12 digits are rounded to 10.
+ */
+mathml: string,
+/**
+ * In the notation of the blocks, exact.
+ */
+text: string, };
 
 /**
  * The open loop L(jω), the same number of entries in each.
@@ -504,6 +818,11 @@ text: string, };
 export type NoticeKind = "unstable-fixed-mode" | "cancelled-factor" | "knob-without-effect" | "improper-block" | "algebraic-loop" | "sampling" | "not-computed";
 
 /**
+ * What kind of observation was made on the machine.
+ */
+export type Observation = "step" | "oscillation";
+
+/**
  * Where stability and all requirements agree.
  */
 export type Permitted = {
@@ -559,6 +878,23 @@ re: number,
  * The imaginary part.
  */
 im: number, };
+
+/**
+ * What the model says to the observed setting.
+ */
+export type Predicted = {
+/**
+ * s: of the step between its first two peaks; of the oscillation at the nearest edge ahead.
+ */
+period: number | null,
+/**
+ * %; of a step.
+ */
+overshoot: number | null,
+/**
+ * The setting of the nearest edge ahead; of an oscillation.
+ */
+setting: number | null, };
 
 /**
  * Something to be put right in the project, with the place and what to type instead.
@@ -625,7 +961,19 @@ setting: Setting,
 /**
  * What the loop must do besides being stable.
  */
-requirements: Array<Requirement>, };
+requirements: Array<Requirement>,
+/**
+ * What identifies the printed sheet.
+ */
+sheet: SheetText,
+/**
+ * How the step-up plan goes.
+ */
+stepUp: StepUpText,
+/**
+ * What was seen on the machine.
+ */
+siteCheck: SiteCheckText, };
 
 /**
  * A named quantity of the loop.
@@ -646,7 +994,49 @@ unit: string,
 /**
  * What the quantity is, as a note to the reader.
  */
-meaning: string, };
+meaning: string,
+/**
+ * How far the true value may be off in either direction: "5 %" of the value, or a plain decimal in its unit. Empty:
+ * not stated.
+ */
+tolerance: string, };
+
+/**
+ * A range of the knob, checked at one number by the Routh array.
+ */
+export type RangeCheck = {
+/**
+ * The knob, exact.
+ */
+sample: string,
+/**
+ * The first column, to six digits, rounded down.
+ */
+firstColumn: Array<string>,
+/**
+ * The a of (s + a)·F(s), where the column is that of this product's array.
+ */
+addedPole: number | null,
+/**
+ * Changes of sign. None where no array came to its end.
+ */
+changes: number | null,
+/**
+ * Poles on the axis, from the auxiliary polynomial.
+ */
+onAxis: number | null,
+/**
+ * Powers of s whose rows were zero.
+ */
+zeroRows: Array<number>,
+/**
+ * Poles right of the axis as the ranges claim them, fixed modes included.
+ */
+unstablePoles: number,
+/**
+ * Of them fixed modes.
+ */
+fixedUnstable: number, };
 
 /**
  * What was read from the typed blocks, for display.
@@ -760,7 +1150,11 @@ view: View,
 /**
  * Warnings about the loop, most serious first.
  */
-notices: Array<Notice>, };
+notices: Array<Notice>,
+/**
+ * What the printed sheet needs beside the rest. None unless it was asked for.
+ */
+sheet: SheetRecord | null, };
 
 /**
  * One requirement with its limit.
@@ -774,6 +1168,23 @@ kind: RequirementKind,
  * The limit, an exact decimal in the kind's unit, as typed.
  */
 limit: string, };
+
+/**
+ * An edge that a requirement sets.
+ */
+export type RequirementEdge = {
+/**
+ * The knob.
+ */
+knob: number,
+/**
+ * The pole that is on the limit there, where poles decide.
+ */
+pole: Point | null,
+/**
+ * The figure there, in the requirement's unit.
+ */
+figure: number | null, };
 
 /**
  * What can be required. Speeds and times are those of the output for a unit step of the command.
@@ -822,6 +1233,31 @@ met: boolean | null,
 remark: string | null, };
 
 /**
+ * A requirement's governing equation.
+ */
+export type RequirementStep = {
+/**
+ * What is required.
+ */
+kind: RequirementKind,
+/**
+ * The condition in words.
+ */
+condition: string,
+/**
+ * The expression the condition speaks of.
+ */
+equation: Formula | null,
+/**
+ * True where the edges are solutions of the equation, proven; false where they were found by computing the figure.
+ */
+proven: boolean,
+/**
+ * The edges that the requirement sets.
+ */
+edges: Array<RequirementEdge>, };
+
+/**
  * A root with the radius of a disc that surely holds it.
  */
 export type Root = {
@@ -841,6 +1277,36 @@ radius: number,
  * How many roots coincide here.
  */
 multiplicity: number, };
+
+/**
+ * A row of a Routh array.
+ */
+export type RouthRow = {
+/**
+ * The power of s the row begins with.
+ */
+power: number,
+/**
+ * The elements in lowest terms.
+ */
+elements: Array<Formula>,
+/**
+ * What is special about the row.
+ */
+special: SpecialCase | null, };
+
+/**
+ * A Routh array.
+ */
+export type RouthTable = {
+/**
+ * The a of (s + a)·F(s), where the array is that of this product.
+ */
+addedPole: number | null,
+/**
+ * The rows, highest power first.
+ */
+rows: Array<RouthRow>, };
 
 /**
  * How the controller samples.
@@ -965,6 +1431,103 @@ maximum: string,
 step: string, };
 
 /**
+ * The sheet's own part of the record.
+ */
+export type SheetRecord = {
+/**
+ * SHA-256 of the project document as it was handed in, byte for byte.
+ */
+projectHash: string,
+/**
+ * The derivation for a check by hand. None where it does not apply; `remark` says why.
+ */
+derivation: Derivation | null,
+/**
+ * Why there is no derivation.
+ */
+remark: string | null,
+/**
+ * The way from a low setting to the last one.
+ */
+stepUp: StepUpPlan,
+/**
+ * What the observation on the machine says about the model. None while nothing was entered.
+ */
+siteCheck: SiteCheck | null, };
+
+/**
+ * What stands at the head of the printed sheet beside the title; notes to the reader.
+ */
+export type SheetText = {
+/**
+ * The machine.
+ */
+machine: string,
+/**
+ * The revision of the sheet.
+ */
+revision: string,
+/**
+ * The date, as it shall stand there.
+ */
+date: string,
+/**
+ * Who made the sheet.
+ */
+preparedBy: string,
+/**
+ * Who checked it.
+ */
+checkedBy: string, };
+
+/**
+ * What the observation on the machine says about the model.
+ */
+export type SiteCheck = {
+/**
+ * What was observed.
+ */
+seen: Observation,
+/**
+ * What must be put right, or why nothing was found.
+ */
+remarks: Array<string>,
+/**
+ * What the model says to the same setting.
+ */
+predicted: Predicted | null,
+/**
+ * The correction that explains the observation.
+ */
+correction: Correction | null, };
+
+/**
+ * What was seen on the machine, as typed; every number an exact decimal.
+ */
+export type SiteCheckText = {
+/**
+ * What kind of observation it is.
+ */
+seen: Observation,
+/**
+ * The setting at which it was seen. Empty: nothing was seen yet.
+ */
+setting: string,
+/**
+ * The period of the oscillation, s; of a step the time from its first to its second peak.
+ */
+period: string,
+/**
+ * Of a step: the first peak beyond the final value, % of it.
+ */
+overshoot: string, };
+
+/**
+ * A special case of the Routh array.
+ */
+export type SpecialCase = { "kind": "zero-row", "auxiliary": Formula } | { "kind": "zero-first-element" };
+
+/**
  * A range of the knob with a constant count of unstable poles. Its ends do not belong to it.
  */
 export type StabilityRange = {
@@ -1055,6 +1618,99 @@ peakTime: number | null,
  * The largest controller output. None where the controller is improper.
  */
 controllerPeak: number | null, };
+
+/**
+ * A plan of settings from a low one to the last.
+ */
+export type StepUpPlan = {
+/**
+ * What must be known before the plan is used.
+ */
+remarks: Array<string>,
+/**
+ * The edge the plan moves towards.
+ */
+edge: EdgeAhead | null,
+/**
+ * The rows, from the first to the last setting. Empty where there is no plan; the remarks say why.
+ */
+rows: Array<StepUpRow>, };
+
+/**
+ * A row of a step-up plan.
+ */
+export type StepUpRow = {
+/**
+ * The setting, an exact decimal.
+ */
+setting: string,
+/**
+ * The knob there.
+ */
+knob: number,
+/**
+ * Whether all requirements are met there.
+ */
+permitted: boolean,
+/**
+ * % of the final value.
+ */
+overshoot: number | null,
+/**
+ * rad/s of the least damped pole pair; None where all poles are real.
+ */
+omega: number | null,
+/**
+ * Its period, s.
+ */
+period: number | null,
+/**
+ * Its damping ratio.
+ */
+damping: number | null,
+/**
+ * Each swing over the one before, one period earlier.
+ */
+decay: number | null,
+/**
+ * Settling time to 2 %, s.
+ */
+settling: number | null,
+/**
+ * By what factor the knob may still be multiplied; None without an edge ahead.
+ */
+room: number | null,
+/**
+ * What means stop.
+ */
+stop: StopSign | null, };
+
+/**
+ * How the step-up plan goes from its first to its last setting.
+ */
+export type StepUpText = {
+/**
+ * The first setting, an exact decimal. Empty: chosen by the plan.
+ */
+start: string,
+/**
+ * The knob of one row over that of the row before, an exact decimal above 1. Empty: 1.5.
+ */
+ratio: string, };
+
+/**
+ * An oscillation that means stop: that of the setting on the way from the row to the edge: halfway,
+ * on a logarithmic scale, or nearer to the edge where the loop is better damped halfway.
+ */
+export type StopSign = {
+/**
+ * The period, s.
+ */
+period: number,
+/**
+ * Each swing over the one before.
+ */
+decay: number, };
 
 /**
  * A suggested setting.

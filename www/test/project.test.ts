@@ -51,7 +51,7 @@ test("Only a part that says so carries a project", () => {
 });
 
 test("Undo goes back step by step, and redo forth again", () => {
-  const history = new History();
+  const history = new History<Project>();
   history.note(titled("a"), "title", 0);
   history.note(titled("b"), "knob", 100);
   assert.equal(history.undo(titled("c"))?.title, "b");
@@ -63,7 +63,7 @@ test("Undo goes back step by step, and redo forth again", () => {
 });
 
 test("Letters typed without a pause are undone together, those after a pause are not", () => {
-  const history = new History();
+  const history = new History<Project>();
   history.note(titled(""), "title", 0);
   history.note(titled("a"), "title", 300);
   history.note(titled("ab"), "title", 600);
@@ -73,7 +73,7 @@ test("Letters typed without a pause are undone together, those after a pause are
 });
 
 test("A change after undo leaves nothing to redo", () => {
-  const history = new History();
+  const history = new History<Project>();
   history.note(titled("a"), "title", 0);
   history.undo(titled("b"));
   history.note(titled("a"), "title", 10_000);

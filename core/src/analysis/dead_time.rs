@@ -3,27 +3,36 @@
 use super::{AnalysisError, Findings};
 use crate::answer::Field;
 use crate::dead_time::gain::GainFamily;
-use crate::dead_time::{DeadTimePartition, delay};
+use crate::dead_time::{DeadTimeError, DeadTimePartition, Quasi, branches, delay, landmarks, poles};
 use crate::exact::complex_roots::roots;
 use crate::exact::dyadic::{exact_text, rational_bracket};
 use crate::exact::{ExactError, IntPoly, Interval};
-use crate::locus::view;
+use crate::locus::{Branch, view};
 use crate::model::Loop;
 use crate::ranges::pieces::{Border, Piece};
-use crate::record::{Cause, CharacterName, ClosedLoop, Edge, EdgeKind, Point, Root, StabilityRange};
-use alloc::string::ToString;
+use crate::record::{
+    Cause, CharacterName, ClosedLoop, Edge, EdgeKind, Landmark, Notice, NoticeKind, Point, Root, StabilityRange, View,
+};
+use alloc::format;
+use alloc::string::{String, ToString};
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
 
 /// Digits of a bracket's decimals.
 const BRACKET_DIGITS: u32 = 19;
 
+/// Poles are listed in a rectangle this many times as large as the default view.
+const AROUND: f64 = 2.0;
+
 /// Bits of the bracket of the first knob value.
 const EDGE_BITS: usize = 200;
 
 /// What the questions about such a loop need.
 pub(super) struct DeadTime {
+    parts: Parts,
+    time: crate::model::DeadTime,
     partition: DeadTimePartition,
+    view: View,
 }
 
 /// The parts of the characteristic function, by what moves them.
@@ -59,6 +68,17 @@ impl Parts {
         Ok(Self::Delay { d: part(&below, 0), n: signed(part(&above, 0)) })
     }
 
+    /// The undelayed and the delayed part at a value of the knob, fixed factors included.
+    fn at(&self, knob: &RBig) -> (IntPoly, IntPoly) {
+        match self {
+            Self::Gain(family) => {
+                let (a, b) = family.at(knob);
+                (a.times(&family.fixed), b.times(&family.fixed))
+            }
+            Self::Delay { d, n } => (d.clone(), n.clone()),
+        }
+    }
+
     fn partition(&self, model: &Loop) -> Result<DeadTimePartition, AnalysisError> {
         match self {
             Self::Gain(family) => Ok(family.partition()?),
@@ -83,25 +103,36 @@ impl DeadTime {
         let crossings = partition.places.iter().flat_map(|place| &place.contacts).filter_map(|contact| contact.omega());
         let crossings = crossings.map(|im| Point { re: 0.0, im });
         let roots = poles.iter().chain(&zeros).map(|root| Point { re: root.re, im: root.im });
+        let view = view::frame(roots.chain(crossings));
+        let mut notices = model.notices.clone();
+        let (landmarks, branches) = drawn(&parts, &partition, &view).unwrap_or_else(|reason| {
+            let text = format!("the branches of the locus are not drawn: {reason}; the ranges are not touched by this");
+            notices.push(Notice { kind: NoticeKind::NotComputed, text });
+            (landmarks::crossings(&partition), Vec::new())
+        });
         let start = first_knob(&model.open_loop.dead_time);
         let findings = Findings {
             stability: stability(&partition, start.as_ref()),
             character: Vec::new(),
-            landmarks: Vec::new(),
+            landmarks,
             asymptotes: None,
             real_axis: None,
-            view: view::frame(roots.chain(crossings)),
+            view,
             poles,
             zeros,
-            notices: model.notices.clone(),
-            branches: Vec::new(),
+            notices,
+            branches,
             stable: stable_pieces(&partition, start.as_ref()),
         };
-        Ok((findings, Self { partition }))
+        let time = model.open_loop.dead_time.clone();
+        Ok((findings, Self { parts, time, partition, view }))
     }
 
-    /// The closed loop at a value of the knob.
-    pub(super) fn closed_loop(&self, knob: &RBig) -> ClosedLoop {
+    /// The closed loop at a value of the knob, with every pole in the default view and around it.
+    ///
+    /// # Errors
+    /// Where the poles cannot be found.
+    pub(super) fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, AnalysisError> {
         let count = match self.partition.locate(knob) {
             Ok(range) => self.partition.ranges[range],
             Err(place) => self.partition.at_places[place],
@@ -112,14 +143,42 @@ impl DeadTime {
             (0, _) => CharacterName::MarginallyStable,
             _ => CharacterName::Unstable,
         };
-        ClosedLoop {
+        let (a, b) = self.parts.at(knob);
+        let time = self.time.at(knob);
+        let poles = if time > RBig::ZERO {
+            poles::in_view(&Quasi::new(&a, &b, &time), &self.around())?
+        } else {
+            roots(&a.plus(&b))?
+        };
+        Ok(ClosedLoop {
             knob: knob.to_f64().value(),
-            poles: Vec::new(),
+            poles: poles.into_iter().map(Into::into).collect(),
             unstable_poles: count.right,
             axis_poles: count.axis,
             name,
-        }
+        })
     }
+
+    /// What the page shows of the plane: it widens the view to equal scales.
+    fn around(&self) -> View {
+        let wider = |[low, high]: [f64; 2]| {
+            let (middle, half) = (0.5 * (low + high), 0.5 * (high - low) * AROUND);
+            [middle - half, middle + half]
+        };
+        View { re: wider(self.view.re), im: wider(self.view.im) }
+    }
+}
+
+/// Landmarks and branches.
+///
+/// # Errors
+/// Why there are no branches.
+fn drawn(parts: &Parts, partition: &DeadTimePartition, view: &View) -> Result<(Vec<Landmark>, Vec<Branch>), String> {
+    let Parts::Gain(family) = parts else {
+        return Err("the knob is the dead time, and poles come from infinity as it grows from zero".to_string());
+    };
+    let told = |error: DeadTimeError| error.to_string();
+    Ok((landmarks::landmarks(family, partition, view).map_err(told)?, branches::branches(family, view).map_err(told)?))
 }
 
 /// Poles and zeros of the open loop; zeros where the knob is a factor of it.

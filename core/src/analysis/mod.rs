@@ -7,20 +7,24 @@ mod sampled;
 
 use crate::exact::ExactError;
 use crate::locus::Branch;
-use crate::model::Loop;
+use crate::model::{self, Loop};
 use crate::ranges::pieces::Piece;
 use crate::ranges::requirements::{Ground, Lane, Limit, Samples, lane};
+use crate::ranges::{Family, Partition};
 use crate::record::{
     Asymptotes, BothSigns, CharacterRange, ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Root, Segment,
-    StabilityRange, View,
+    StabilityRange, Timing, View,
 };
+use crate::response::Setup;
+use alloc::boxed::Box;
 use alloc::format;
 use alloc::vec::Vec;
 use core::cell::{OnceCell, RefCell};
 use dashu_ratio::RBig;
 use dead_time::DeadTime;
 pub use error::AnalysisError;
-pub use rational::{AffineParts, Rational};
+pub use rational::AffineParts;
+use rational::Rational;
 use sampled::Sampled;
 
 /// A loop, analysed.
@@ -65,7 +69,7 @@ pub struct Findings {
 /// What kind of loop it is, with what its questions need.
 enum Method {
     /// A ratio of polynomials in s.
-    Rational(Rational),
+    Rational(Box<Rational>),
     /// With dead time, controlled continuously.
     DeadTime(DeadTime),
     /// With a sampled controller.
@@ -86,7 +90,7 @@ impl Analysis {
             (findings, Method::Sampled(sampled))
         } else if model.open_loop.dead_time.is_none() {
             let (findings, rational) = Rational::analyse(&model)?;
-            (findings, Method::Rational(rational))
+            (findings, Method::Rational(Box::new(rational)))
         } else {
             let (findings, dead_time) = DeadTime::analyse(&model)?;
             (findings, Method::DeadTime(dead_time))
@@ -95,11 +99,30 @@ impl Analysis {
         Ok(Self { model, findings, method, samples: OnceCell::new(), lanes: RefCell::default() })
     }
 
-    /// The polynomials and their ranges, where the loop is a ratio of polynomials in s.
-    pub fn rational(&self) -> Option<&Rational> {
+    /// D and N of the moving part with their roots, where the loop is a ratio of polynomials and affine in the knob.
+    pub fn affine(&self) -> Option<AffineParts<'_>> {
         match &self.method {
-            Method::Rational(rational) => Some(rational),
+            Method::Rational(rational) => rational.affine(),
             Method::DeadTime(_) | Method::Sampled(_) => None,
+        }
+    }
+
+    /// The characteristic polynomial over the knob and the line of the knob, where the loop is a ratio of polynomials.
+    pub fn rational(&self) -> Option<(&Family, &Partition)> {
+        match &self.method {
+            Method::Rational(rational) => Some((&rational.family, &rational.partition)),
+            Method::DeadTime(_) | Method::Sampled(_) => None,
+        }
+    }
+
+    /// For a look at single settings.
+    pub fn setup(&self) -> Setup<'_> {
+        Setup {
+            model: &self.model,
+            sampled: match &self.method {
+                Method::Sampled(sampled) => Some(&sampled.ranges),
+                _ => None,
+            },
         }
     }
 
@@ -115,12 +138,12 @@ impl Analysis {
         let samples = match self.samples.get() {
             Some(samples) => samples,
             None => {
-                let samples = Samples::new(&self.model, stable)?;
+                let samples = Samples::new(self.setup(), stable)?;
                 self.samples.get_or_init(|| samples)
             }
         };
-        let family = self.rational().map(|rational| &rational.family);
-        let ground = Ground { model: &self.model, family, stable, samples };
+        let family = self.rational().map(|(family, _)| family);
+        let ground = Ground { model: &self.model, setup: self.setup(), family, stable, samples };
         let found = lane(&ground, limit)?;
         let mut lanes = self.lanes.borrow_mut();
         if lanes.len() >= LANES_KEPT {
@@ -130,6 +153,16 @@ impl Analysis {
         Ok(found)
     }
 
+    /// Dead time and sampling for the record.
+    pub fn timing(&self, knob: Option<&RBig>) -> Timing {
+        let mut timing = model::timing(&self.model);
+        if let (Method::Sampled(sampled), Some(record)) = (&self.method, &mut timing.sampling) {
+            record.by_period = sampled.by_period();
+            record.longest_period = knob.and_then(|knob| sampled.longest_period(knob));
+        }
+        timing
+    }
+
     /// The closed loop at a value of the knob.
     ///
     /// # Errors
@@ -137,7 +170,7 @@ impl Analysis {
     pub fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, AnalysisError> {
         match &self.method {
             Method::Rational(rational) => Ok(rational.closed_loop(knob)?),
-            Method::DeadTime(dead_time) => Ok(dead_time.closed_loop(knob)),
+            Method::DeadTime(dead_time) => dead_time.closed_loop(knob),
             Method::Sampled(sampled) => sampled.closed_loop(knob),
         }
     }

@@ -17,11 +17,11 @@ use alloc::vec::Vec;
 use dashu_ratio::RBig;
 
 /// What the questions about such a loop need.
-pub struct Rational {
+pub(super) struct Rational {
     /// The characteristic polynomial over the knob, its fixed factor taken out.
-    pub family: Family,
+    pub(super) family: Family,
     /// The line of the knob, cut where something happens.
-    pub partition: Partition,
+    pub(super) partition: Partition,
     /// The moving poles and zeros of an affine loop.
     moving: (Vec<Root>, Vec<Root>),
 }
@@ -86,7 +86,7 @@ impl Rational {
     }
 
     /// D and N of the moving part with their roots, where the loop is affine in the knob.
-    pub fn affine(&self) -> Option<AffineParts<'_>> {
+    pub(super) fn affine(&self) -> Option<AffineParts<'_>> {
         let (d, n) = self.family.affine()?;
         Some(AffineParts { d, n, poles: &self.moving.0, zeros: &self.moving.1 })
     }

@@ -1,7 +1,6 @@
 //! F(jω, q) = 0: its real and imaginary part, and, where the knob can be eliminated, the equation for ω².
 
-use super::Source;
-use super::written;
+use super::{Ground, written};
 use crate::exact::gcd::squarefree_factors;
 use crate::exact::real_roots::real_roots;
 use crate::exact::{ExactError, IntPoly};
@@ -16,12 +15,12 @@ use alloc::vec::Vec;
 /// A frequency found here is that of a place within this part: both come from the same root, refined differently.
 const SAME: f64 = 1e-12;
 
-pub(super) fn equations(analysis: &Source<'_>) -> Result<Option<AxisEquations>, ExactError> {
-    let family = analysis.family();
+pub(super) fn equations(ground: &Ground<'_>) -> Result<Option<AxisEquations>, ExactError> {
+    let family = ground.family;
     if family.knob_degree() == 0 || family.moving_order() == 0 {
         return Ok(None);
     }
-    let knob = analysis.model.knob.as_str();
+    let knob = ground.knob;
     let variable = written::fresh(["x", "y"], knob);
     let parts: Vec<(IntPoly, IntPoly)> = family.parts.iter().map(IntPoly::axis_parts).collect();
     let shown = |pick: fn(&(IntPoly, IntPoly)) -> IntPoly| {
@@ -39,24 +38,24 @@ pub(super) fn equations(analysis: &Source<'_>) -> Result<Option<AxisEquations>, 
         even: shown(|part| part.0.clone()),
         odd: shown(|part| part.1.clone()),
         eliminated,
-        candidates: if crossing.degree() > 0 { candidates(analysis, &crossing)? } else { Vec::new() },
+        candidates: if crossing.degree() > 0 { candidates(ground, &crossing)? } else { Vec::new() },
     }))
 }
 
-fn candidates(analysis: &Source<'_>, crossing: &IntPoly) -> Result<Vec<Candidate>, ExactError> {
+fn candidates(ground: &Ground<'_>, crossing: &IntPoly) -> Result<Vec<Candidate>, ExactError> {
     let mut found: Vec<(f64, Candidate)> = Vec::new();
     for (factor, multiplicity) in squarefree_factors(crossing) {
         for mut root in real_roots(&factor)? {
             root.refine_to(&factor, EDGE_BITS)?;
             let x = root.to_f64();
-            found.push((x, candidate(analysis, x, multiplicity)));
+            found.push((x, candidate(ground, x, multiplicity)));
         }
     }
     found.sort_by(|a, b| a.0.total_cmp(&b.0));
     Ok(found.into_iter().map(|(_, candidate)| candidate).collect())
 }
 
-fn candidate(analysis: &Source<'_>, x: f64, multiplicity: usize) -> Candidate {
+fn candidate(ground: &Ground<'_>, x: f64, multiplicity: usize) -> Candidate {
     let omega = libm::sqrt(x.abs());
     let of = |knob: Option<f64>, s: Point, kept: bool, reason: &str| Candidate {
         knob,
@@ -69,7 +68,7 @@ fn candidate(analysis: &Source<'_>, x: f64, multiplicity: usize) -> Candidate {
         Contact::Axis { omega: known } => (known - omega).abs() <= SAME * omega,
         _ => false,
     };
-    let place = analysis.partition().places.iter().find(|place| place.contacts.iter().any(here));
+    let place = ground.partition.places.iter().find(|place| place.contacts.iter().any(here));
     let on_axis = Point { re: 0.0, im: omega };
     if x < 0.0 {
         return of(None, Point { re: omega, im: 0.0 }, false, "rejected: ω² is negative, so that ω is not real");

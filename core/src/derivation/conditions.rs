@@ -1,8 +1,7 @@
 //! The three equations in the knob whose solutions hold every edge of stability: a pole at the origin, a pole at infinity,
 //! poles opposite each other.
 
-use super::Source;
-use super::written;
+use super::{Ground, written};
 use crate::exact::gcd::{squarefree_factors, squarefree_part};
 use crate::exact::real_roots::real_roots;
 use crate::exact::{ExactError, IntPoly, Interval};
@@ -11,8 +10,8 @@ use crate::sheet::{Candidate, Condition, ConditionKind};
 use alloc::string::ToString;
 use alloc::vec::Vec;
 
-pub(super) fn conditions(analysis: &Source<'_>) -> Result<Vec<Condition>, ExactError> {
-    let family = analysis.family();
+pub(super) fn conditions(ground: &Ground<'_>) -> Result<Vec<Condition>, ExactError> {
+    let family = ground.family;
     let order = family.moving_order();
     let mut equations = Vec::new();
     if order > 0 && family.knob_degree() > 0 {
@@ -24,15 +23,15 @@ pub(super) fn conditions(analysis: &Source<'_>) -> Result<Vec<Condition>, ExactE
         .into_iter()
         .filter(|(_, p)| p.degree() > 0)
         .map(|(kind, p)| {
-            let candidates = candidates(analysis, kind, &p)?;
-            let equation = written::equation(&p, &analysis.model.knob);
+            let candidates = candidates(ground, kind, &p)?;
+            let equation = written::equation(&p, ground.knob);
             Ok(Condition { kind, equation, candidates })
         })
         .collect()
 }
 
 /// The real roots, each compared with the places of the partition: what is no place is no edge.
-fn candidates(analysis: &Source<'_>, kind: ConditionKind, p: &IntPoly) -> Result<Vec<Candidate>, ExactError> {
+fn candidates(ground: &Ground<'_>, kind: ConditionKind, p: &IntPoly) -> Result<Vec<Candidate>, ExactError> {
     let mut found = Vec::new();
     let whole = squarefree_part(p);
     let factors = squarefree_factors(p);
@@ -42,14 +41,14 @@ fn candidates(analysis: &Source<'_>, kind: ConditionKind, p: &IntPoly) -> Result
             .iter()
             .find(|(factor, _)| factor.over_interval(&root.bracket).sign().is_none_or(|sign| sign == 0))
             .map_or(1, |(_, multiplicity)| *multiplicity);
-        let (kept, reason) = verdict(analysis, kind, &root.bracket);
+        let (kept, reason) = verdict(ground, kind, &root.bracket);
         found.push(Candidate { knob: Some(root.to_f64()), s: None, multiplicity, kept, reason: reason.to_string() });
     }
     Ok(found)
 }
 
-fn verdict(analysis: &Source<'_>, kind: ConditionKind, bracket: &Interval) -> (bool, &'static str) {
-    let partition = analysis.partition();
+fn verdict(ground: &Ground<'_>, kind: ConditionKind, bracket: &Interval) -> (bool, &'static str) {
+    let partition = ground.partition;
     let wanted = |contact: &Contact| match kind {
         ConditionKind::Origin => matches!(contact, Contact::Origin),
         ConditionKind::DegreeDrop => matches!(contact, Contact::DegreeDrop),

@@ -1,14 +1,13 @@
 //! Asymptotes, breakaway points and angles, as they are worked out by hand.
 
-use super::Source;
-use super::written;
+use super::{Ground, written};
 use crate::exact::complex_roots::{ComplexDyadic, negative_ratio_at, roots};
 use crate::exact::dyadic::exact_text;
 use crate::exact::{ExactError, IntPoly};
 use crate::locus::trade::{asymptotes as lines, directions as angles, for_both_signs, gain_sign, root_sum};
 use crate::ranges::permitted::short;
 use crate::ranges::{Contact, affine, polynomial};
-use crate::record::{LandmarkKind, Point, Root};
+use crate::record::{Landmark, LandmarkKind, Point, Root};
 use crate::sheet::{AngleTerm, AsymptoteStep, Breakaway, Candidate, DirectionStep};
 use alloc::format;
 use alloc::string::{String, ToString};
@@ -20,8 +19,8 @@ use nalgebra::Complex;
 /// to different widths.
 const SAME: f64 = 1e-9;
 
-pub(super) fn asymptotes(analysis: &Source<'_>) -> Option<AsymptoteStep> {
-    let parts = analysis.affine()?;
+pub(super) fn asymptotes(ground: &Ground<'_>) -> Option<AsymptoteStep> {
+    let parts = ground.analysis.affine()?;
     let (poles, zeros) = (parts.d.degree(), parts.n.degree());
     let sums = [parts.d, parts.n].map(root_sum);
     let count = poles.abs_diff(zeros);
@@ -34,35 +33,50 @@ pub(super) fn asymptotes(analysis: &Source<'_>) -> Option<AsymptoteStep> {
     })
 }
 
-pub(super) fn breakaway(analysis: &Source<'_>) -> Result<Option<Breakaway>, ExactError> {
-    let family = analysis.family();
-    let knob = analysis.model.knob.as_str();
+pub(super) fn breakaway(ground: &Ground<'_>) -> Result<Option<Breakaway>, ExactError> {
+    let family = ground.family;
+    let knob = ground.knob;
     if family.knob_degree() == 0 {
         return Ok(None);
     }
     let Some((d, n)) = family.affine() else {
         let equation = written::equation(&polynomial::discriminant(family), knob);
-        return Ok(Some(Breakaway { equation, discriminant: true, candidates: meetings(analysis) }));
+        return Ok(Some(Breakaway { equation, discriminant: true, candidates: meetings(ground) }));
     };
     let w = affine::meeting_polynomial(d, n);
     let equation = written::equation(&w, "s");
     let candidates = match w.degree() {
         0 => Vec::new(),
-        _ => roots(&w)?.iter().filter(|root| root.im >= 0.0).map(|root| candidate(analysis, (d, n), root)).collect(),
+        _ => {
+            let found: Vec<Root> = roots(&w)?.into_iter().filter(|root| root.im >= 0.0).collect();
+            found.iter().map(|root| candidate(ground, (d, n), root, meeting_at(ground, root, &found))).collect()
+        }
     };
     Ok(Some(Breakaway { equation, discriminant: false, candidates }))
 }
 
+fn distance(root: &Root, s: Point) -> f64 {
+    libm::hypot(s.re - root.re, s.im - root.im)
+}
+
+/// The meeting to which this root is nearer than all others.
+fn meeting_at<'a>(ground: &Ground<'a>, root: &Root, all: &[Root]) -> Option<&'a Landmark> {
+    let is_meeting = |l: &&Landmark| matches!(l.kind, LandmarkKind::Breakaway | LandmarkKind::BreakIn);
+    let is_here = |l: &&Landmark| {
+        let own = distance(root, l.s);
+        own <= SAME * libm::hypot(root.re, root.im) && all.iter().all(|other| distance(other, l.s) >= own)
+    };
+    ground.analysis.findings.landmarks.iter().filter(is_meeting).find(is_here)
+}
+
 /// What a root of D′·N − D·N′ is.
-fn candidate(analysis: &Source<'_>, (d, n): (&IntPoly, &IntPoly), root: &Root) -> Candidate {
-    let near = |s: Point| libm::hypot(s.re - root.re, s.im - root.im) <= SAME * libm::hypot(root.re, root.im);
-    let is_meeting = |kind: LandmarkKind| matches!(kind, LandmarkKind::Breakaway | LandmarkKind::BreakIn);
-    let landmark = analysis.landmarks.iter().find(|l| is_meeting(l.kind) && near(l.s));
+fn candidate(ground: &Ground<'_>, (d, n): (&IntPoly, &IntPoly), root: &Root, meeting: Option<&Landmark>) -> Candidate {
+    let near = |s: Point| distance(root, s) <= SAME * libm::hypot(root.re, root.im);
     let here = |roots: &[Root]| roots.iter().any(|r| near(Point { re: r.re, im: r.im }));
-    let parts = analysis.affine();
+    let parts = ground.analysis.affine();
     let at = ComplexDyadic::from_f64(Complex::new(root.re, root.im));
     let knob = at.and_then(|z| negative_ratio_at(d, n, &z));
-    let (value, kept, reason): (Option<f64>, bool, String) = match landmark {
+    let (value, kept, reason): (Option<f64>, bool, String) = match meeting {
         Some(l) => {
             let what = if l.kind == LandmarkKind::Breakaway { "breakaway point" } else { "break-in point" };
             (l.knob, true, format!("{what}, {} poles meet", l.multiplicity))
@@ -97,14 +111,16 @@ fn sign(value: f64) -> char {
 }
 
 /// Where poles of a polynomial knob meet: the real roots of the discriminant at which they do, from the landmarks.
-fn meetings(analysis: &Source<'_>) -> Vec<Candidate> {
+fn meetings(ground: &Ground<'_>) -> Vec<Candidate> {
     let repeated = |contact: &Contact| matches!(contact, Contact::RealMeeting { .. });
-    let at_zero = analysis
-        .partition()
+    let at_zero = ground
+        .partition
         .places
         .iter()
         .any(|place| place.contacts.iter().any(repeated) && place.bracket.midpoint().signum() == 0);
-    let mut found: Vec<Candidate> = analysis
+    let mut found: Vec<Candidate> = ground
+        .analysis
+        .findings
         .landmarks
         .iter()
         .filter(|l| matches!(l.kind, LandmarkKind::Breakaway | LandmarkKind::BreakIn))
@@ -124,8 +140,8 @@ fn meetings(analysis: &Source<'_>) -> Vec<Candidate> {
 }
 
 /// The angles at complex poles and zeros; those at real ones are 0 or 180 degrees.
-pub(super) fn directions(analysis: &Source<'_>) -> Vec<DirectionStep> {
-    let Some(parts) = analysis.affine() else { return Vec::new() };
+pub(super) fn directions(ground: &Ground<'_>) -> Vec<DirectionStep> {
+    let Some(parts) = ground.analysis.affine() else { return Vec::new() };
     let mut found = Vec::new();
     for (kind, own, other) in
         [(LandmarkKind::Departure, parts.poles, parts.zeros), (LandmarkKind::Arrival, parts.zeros, parts.poles)]

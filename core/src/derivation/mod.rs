@@ -13,12 +13,11 @@ mod requirement_steps;
 pub mod routh;
 mod written;
 
-use crate::analysis::{AffineParts, Analysis, Rational};
+use crate::analysis::Analysis;
 use crate::exact::{ExactError, IntPoly};
-use crate::model::{Loop, Variables};
-use crate::ranges::requirements::{Lane, Limit};
+use crate::model::Variables;
+use crate::ranges::requirements::Limit;
 use crate::ranges::{Family, Partition};
-use crate::record::Landmark;
 use crate::sheet::{Derivation, RouthRow, RouthTable, SpecialCase};
 use alloc::format;
 use alloc::string::String;
@@ -31,42 +30,23 @@ const ROUTH_ORDER: usize = 8;
 /// Likewise for the order times the degree in the knob, which is the degree of the last elements.
 const ROUTH_DEGREE: usize = 12;
 
-/// An analysed loop whose characteristic equation is a polynomial.
-struct Source<'a> {
+/// What the derivation speaks of.
+struct Ground<'a> {
     analysis: &'a Analysis,
-    rational: &'a Rational,
-    model: &'a Loop,
-    landmarks: &'a [Landmark],
+    family: &'a Family,
+    partition: &'a Partition,
+    /// The knob's name.
+    knob: &'a str,
 }
 
-impl Source<'_> {
-    fn family(&self) -> &Family {
-        &self.rational.family
-    }
-
-    fn partition(&self) -> &Partition {
-        &self.rational.partition
-    }
-
-    fn affine(&self) -> Option<AffineParts<'_>> {
-        self.rational.affine()
-    }
-
-    fn lane(&self, limit: &Limit) -> Result<Lane, ExactError> {
-        self.analysis.lane(limit)
-    }
-}
-
-/// The derivation of an analysed loop; None where its characteristic equation is no polynomial in s.
+/// The derivation of an analysed loop; None where it is no ratio of polynomials in s.
 ///
 /// # Errors
 /// From the exact methods, when a cap is met.
 pub fn derivation(analysis: &Analysis, limits: &[Limit]) -> Result<Option<Derivation>, ExactError> {
-    let Some(rational) = analysis.rational() else { return Ok(None) };
-    let (model, landmarks) = (&analysis.model, analysis.findings.landmarks.as_slice());
-    let analysis = &Source { analysis, rational, model, landmarks };
-    let family = analysis.family();
+    let Some((family, partition)) = analysis.rational() else { return Ok(None) };
     let knob = analysis.model.knob.as_str();
+    let ground = &Ground { analysis, family, partition, knob };
     let names = Variables { main: "s", knob };
     let (routh, routh_remark) = arrays(family, knob);
     Ok(Some(Derivation {
@@ -75,14 +55,14 @@ pub fn derivation(analysis: &Analysis, limits: &[Limit]) -> Result<Option<Deriva
         fixed: (family.fixed.degree() > 0).then(|| written::in_variable(&family.fixed, "s")),
         routh,
         routh_remark,
-        conditions: conditions::conditions(analysis)?,
-        axis: axis::equations(analysis)?,
-        edges: analysis.partition().stability_places().into_iter().map(|i| analysis.partition().edge(i)).collect(),
-        ranges: range_checks::checks(analysis)?,
-        asymptotes: locus_rules::asymptotes(analysis),
-        breakaway: locus_rules::breakaway(analysis)?,
-        directions: locus_rules::directions(analysis),
-        requirements: limits.iter().map(|limit| requirement_steps::step(analysis, limit)).collect::<Result<_, _>>()?,
+        conditions: conditions::conditions(ground)?,
+        axis: axis::equations(ground)?,
+        edges: partition.stability_places().into_iter().map(|i| partition.edge(i)).collect(),
+        ranges: range_checks::checks(ground)?,
+        asymptotes: locus_rules::asymptotes(ground),
+        breakaway: locus_rules::breakaway(ground)?,
+        directions: locus_rules::directions(ground),
+        requirements: limits.iter().map(|limit| requirement_steps::step(ground, limit)).collect::<Result<_, _>>()?,
     }))
 }
 

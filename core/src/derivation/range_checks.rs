@@ -1,6 +1,6 @@
 //! Every range of stability, counted anew by the Routh array at one number.
 
-use super::Source;
+use super::Ground;
 use super::routh::{Row, Special, told};
 use crate::exact::dyadic::{decimal_below, exact_text};
 use crate::exact::half_plane::count;
@@ -14,8 +14,8 @@ use dashu_ratio::RBig;
 /// Digits of an element.
 const DIGITS: u32 = 6;
 
-pub(super) fn checks(analysis: &Source<'_>) -> Result<Vec<RangeCheck>, ExactError> {
-    let (family, partition) = (analysis.family(), analysis.partition());
+pub(super) fn checks(ground: &Ground<'_>) -> Result<Vec<RangeCheck>, ExactError> {
+    let (family, partition) = (ground.family, ground.partition);
     let cuts = partition.stability_places();
     let places: Vec<_> = cuts.iter().map(|i| partition.places[*i].clone()).collect();
     let fixed_unstable = count(&family.fixed)?.right;

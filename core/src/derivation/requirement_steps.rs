@@ -1,8 +1,7 @@
 //! Each requirement's governing equation, and its edges with what makes them checkable: the pole on the limit, or the
 //! figure.
 
-use super::Source;
-use super::written;
+use super::{Ground, written};
 use crate::exact::ExactError;
 use crate::model::{KnobPolynomial, StaticRatio, Variables};
 use crate::project::RequirementKind as Kind;
@@ -20,17 +19,17 @@ use alloc::vec::Vec;
 use dashu_int::IBig;
 use nalgebra::Complex;
 
-pub(super) fn step(analysis: &Source<'_>, limit: &Limit) -> Result<RequirementStep, ExactError> {
-    let lane = analysis.lane(limit)?;
-    let (condition, equation) = governing(analysis, limit);
+pub(super) fn step(ground: &Ground<'_>, limit: &Limit) -> Result<RequirementStep, ExactError> {
+    let lane = ground.analysis.lane(limit)?;
+    let (condition, equation) = governing(ground, limit);
     let borders = lane.pieces.iter().flat_map(|piece| [&piece.from, &piece.to]).flatten();
     let own = borders.filter(|border| border.cause == Cause::Requirement(limit.kind));
-    let edges = own.map(|border| edge(analysis, limit, border)).collect::<Result<Vec<_>, _>>()?;
+    let edges = own.map(|border| edge(ground, limit, border)).collect::<Result<Vec<_>, _>>()?;
     Ok(RequirementStep { kind: limit.kind, condition, equation, proven: lane.proven, edges })
 }
 
-fn edge(analysis: &Source<'_>, limit: &Limit, border: &Border) -> Result<RequirementEdge, ExactError> {
-    let at = LoopAt::new(&analysis.model, border.bracket.midpoint().to_rational())?;
+fn edge(ground: &Ground<'_>, limit: &Limit, border: &Border) -> Result<RequirementEdge, ExactError> {
+    let at = LoopAt::new(ground.analysis.setup(), border.bracket.midpoint().to_rational())?;
     Ok(RequirementEdge { knob: border.value(), pole: pole_on_limit(&at, limit), figure: at.figure(limit.kind).value() })
 }
 
@@ -50,8 +49,8 @@ fn pole_on_limit(at: &LoopAt, limit: &Limit) -> Option<Point> {
 }
 
 /// The condition in words and the expression it speaks of.
-fn governing(analysis: &Source<'_>, limit: &Limit) -> (String, Option<Formula>) {
-    let (family, model) = (analysis.family(), &analysis.model);
+fn governing(ground: &Ground<'_>, limit: &Limit) -> (String, Option<Formula>) {
+    let (family, model) = (ground.family, &ground.analysis.model);
     let knob = model.knob.as_str();
     let value = short(limit.value.to_f64().value());
     let (a, c) = (limit.value.numerator().clone(), IBig::from(limit.value.denominator().clone()));

@@ -81,6 +81,7 @@ fn pade(dead_time: &RBig) -> (IntPoly, IntPoly) {
 mod tests {
     use super::*;
     use crate::exact::scaled::Scaled;
+    use crate::response::Setup;
 
     #[test]
     fn the_approximation_turns_the_phase_like_a_dead_time() {
@@ -92,5 +93,19 @@ mod tests {
             let off = value - exact;
             assert!(libm::hypot(off.re, off.im) < 1e-6, "{omega_t}: {value} {exact}");
         }
+    }
+
+    #[test]
+    fn the_first_swing_of_a_pair_follows_the_formulas() {
+        // 1/(s² + 2ζs + 1), ζ = 0.2, closed by L = 1/(s(s + 2ζ)): overshoot e^(−πζ/√(1 − ζ²)), peaks 2π/√(1 − ζ²) apart.
+        let json =
+            r#"{"format": "stayband-project/1", "loop": {"controller": "K", "plant": "1/(s (s + 0.4))"}, "knob": "K"}"#;
+        let project = serde_json::from_str(json).expect("a project");
+        let model = crate::model::build(&project).expect("a loop");
+        let at = LoopAt::new(Setup::from(&model), RBig::ONE).expect("poles");
+        let swing = at.altered_swing(&RBig::ONE, &RBig::ZERO).expect("poles").expect("a swing");
+        let root = libm::sqrt(1.0 - 0.04);
+        assert!((swing.overshoot - 100.0 * libm::exp(-core::f64::consts::PI * 0.2 / root)).abs() < 1e-6, "{swing:?}");
+        assert!((swing.period - core::f64::consts::TAU / root).abs() < 1e-6, "{swing:?}");
     }
 }

@@ -1,9 +1,11 @@
 //! The figures that requirements speak of, at one value of the knob.
 
 use super::loop_at::{Answer, LoopAt};
-use super::modes::{Modes, Peaks};
+use super::modes::Peaks;
+use super::motion::Motion;
 use crate::exact::IntPoly;
 use crate::project::RequirementKind;
+use crate::sampled::SampledAt;
 use dashu_ratio::RBig;
 use nalgebra::ComplexField;
 
@@ -71,6 +73,9 @@ impl LoopAt {
         }
         let decibel = |factor: f64| 20.0 * libm::log10(factor);
         let frequency = || self.frequency();
+        if let Some(found) = self.sampled().and_then(|sampled| sampled_figure(sampled, kind)) {
+            return found;
+        }
         match kind {
             Kind::DampingRatio => self.over_poles(|p| -p.re / p.modulus()),
             Kind::DecayRate => self.over_poles(|p| -p.re),
@@ -79,7 +84,7 @@ impl LoopAt {
             Kind::GainMarginDown => frequency().and_then(|f| f.gain_down().ok()).map(decibel).into(),
             Kind::PhaseMargin => frequency().and_then(|f| f.phase_margin().ok()).into(),
             Kind::DelayMargin => frequency().and_then(|f| f.delay_margin().ok()).into(),
-            Kind::PeakSensitivity => frequency().map(|f| f.peak().1).into(),
+            Kind::PeakSensitivity => frequency().and_then(|f| f.peak().ok()).map(|peak| peak.1).into(),
             Kind::Bandwidth => frequency().and_then(|f| f.bandwidth().ok().flatten()).into(),
             Kind::Overshoot => self.output().figure(|m, p| overshoot(m, p).into()),
             Kind::Undershoot => self.output().figure(|m, p| undershoot(m, p).into()),
@@ -96,17 +101,22 @@ impl LoopAt {
             Kind::RampError => self.static_error(1),
             Kind::ParabolaError => self.static_error(2),
             Kind::LoadPeak => self.load().figure(|_, p| Figure::Value(largest(p))),
-            Kind::LoadFinal => self.load().figure(|m, _| Figure::Value(m.final_value.abs())),
+            Kind::LoadFinal => self.load().figure(|m, _| Figure::Value(m.final_value().abs())),
             Kind::ControllerPeak => self.control().figure(|_, p| Figure::Value(largest(p))),
         }
     }
 
-    /// The smallest value over all poles.
+    /// The smallest value over all poles; of a sampled loop over those of the s-plane that they come from.
     fn over_poles(&self, value: impl Fn(&nalgebra::Complex<f64>) -> f64) -> Figure {
-        Some(self.poles.iter().map(value).fold(f64::INFINITY, f64::min)).into()
+        match self.poles() {
+            [] => Figure::NotComputed,
+            poles => Some(poles.iter().map(value).fold(f64::INFINITY, f64::min)).into(),
+        }
     }
 
-    /// The static error at the comparison, |lim s·E(s)| for the command 1/s^(order + 1) and E = D/F·1/s^(order + 1).
+    /// The static error at the comparison, |lim s·E(s)| for the command 1/s^(order + 1) and E = D/F·1/s^(order + 1): the
+    /// command minus (with positive feedback, plus) what the sensor shows. On a ramp or a parabola the output's own error
+    /// differs from it where the sensor lags: for C·P = k/s and H = 1/(τs + 1) it is 1/k − τ, here it is 1/k.
     fn static_error(&self, order: usize) -> Figure {
         match static_error(&self.open.below, &self.closed, order) {
             Some(error) => Figure::Value(error.to_f64().value().abs()),
@@ -125,10 +135,25 @@ fn static_error(below: &IntPoly, closed: &IntPoly, order: usize) -> Option<RBig>
     Some(RBig::from_parts_signed(at(below, order), at(closed, 0)))
 }
 
+/// What a sampled loop says itself: figures of its poles, and static errors.
+fn sampled_figure(sampled: &SampledAt, kind: RequirementKind) -> Option<Figure> {
+    use RequirementKind as Kind;
+    let value = match kind {
+        Kind::DampingRatio => sampled.damping_ratio(),
+        Kind::DecayRate => sampled.decay_rate(),
+        Kind::NaturalFrequencyMinimum | Kind::NaturalFrequencyMaximum => sampled.natural_frequency(),
+        Kind::StepError => 100.0 * sampled.static_error(0).abs(),
+        Kind::RampError => sampled.static_error(1).abs(),
+        Kind::ParabolaError => sampled.static_error(2).abs(),
+        _ => return None,
+    };
+    Some(Some(value).into())
+}
+
 impl Answer {
-    fn figure(&self, make: impl Fn(&Modes, &Peaks) -> Figure) -> Figure {
+    fn figure(&self, make: impl Fn(&Motion, &Peaks) -> Figure) -> Figure {
         match self {
-            Self::Found(modes, peaks) => make(modes, peaks),
+            Self::Found(motion, peaks) => make(motion, peaks),
             Self::Undefined => Figure::Undefined,
             Self::NotComputed => Figure::NotComputed,
         }
@@ -136,28 +161,28 @@ impl Answer {
 }
 
 /// A figure that a search may not find; undefined without a final value.
-fn searched(modes: &Modes, found: Option<f64>) -> Figure {
+fn searched(motion: &Motion, found: Option<f64>) -> Figure {
     match found {
-        _ if !has_final_value(modes) => Figure::Undefined,
+        _ if !has_final_value(motion) => Figure::Undefined,
         Some(value) => Figure::Value(value),
         None => Figure::NotComputed,
     }
 }
 
 /// s, until the output stays within the band. None where the search meets its cap, or there is no final value.
-fn settling_time(modes: &Modes, band: SettlingBand) -> Option<f64> {
-    modes.last_outside(band.part() * modes.final_value.abs())
+fn settling_time(motion: &Motion, band: SettlingBand) -> Option<f64> {
+    motion.last_outside(band.part() * motion.final_value().abs())
 }
 
 /// s, until the highest point beyond the final value. None without one.
-fn peak_time(modes: &Modes, peaks: &Peaks) -> Option<f64> {
-    let (_, time) = if modes.final_value > 0.0 { peaks.highest } else { peaks.lowest };
-    (has_final_value(modes) && time.is_finite()).then_some(time)
+fn peak_time(motion: &Motion, peaks: &Peaks) -> Option<f64> {
+    let (_, time) = if motion.final_value() > 0.0 { peaks.highest } else { peaks.lowest };
+    (has_final_value(motion) && time.is_finite()).then_some(time)
 }
 
 /// The final value is the ratio of two exact coefficients, so that zero is zero.
-fn has_final_value(modes: &Modes) -> bool {
-    modes.final_value != 0.0
+fn has_final_value(motion: &Motion) -> bool {
+    motion.final_value() != 0.0
 }
 
 fn largest(peaks: &Peaks) -> f64 {
@@ -165,17 +190,17 @@ fn largest(peaks: &Peaks) -> f64 {
 }
 
 /// % of the final value beyond it.
-fn overshoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
-    let end = modes.final_value;
+fn overshoot(motion: &Motion, peaks: &Peaks) -> Option<f64> {
+    let end = motion.final_value();
     let beyond = if end > 0.0 { peaks.highest.0 - end } else { end - peaks.lowest.0 };
-    has_final_value(modes).then(|| percentage(beyond, end))
+    has_final_value(motion).then(|| percentage(beyond, end))
 }
 
 /// % of the final value on the other side of zero.
-fn undershoot(modes: &Modes, peaks: &Peaks) -> Option<f64> {
-    let end = modes.final_value;
+fn undershoot(motion: &Motion, peaks: &Peaks) -> Option<f64> {
+    let end = motion.final_value();
     let opposite = if end > 0.0 { -peaks.lowest.0 } else { peaks.highest.0 };
-    has_final_value(modes).then(|| percentage(opposite, end))
+    has_final_value(motion).then(|| percentage(opposite, end))
 }
 
 fn percentage(excess: f64, end: f64) -> f64 {
@@ -184,23 +209,25 @@ fn percentage(excess: f64, end: f64) -> f64 {
 }
 
 /// s, from 10 % to 90 % of the final value.
-fn rise_time(modes: &Modes) -> Option<f64> {
-    Some(modes.first_reach(0.9)? - modes.first_reach(0.1)?)
+fn rise_time(motion: &Motion) -> Option<f64> {
+    Some(motion.first_reach(0.9)? - motion.first_reach(0.1)?)
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
     use crate::model::BlockAt;
+    use crate::response::Modes;
     use nalgebra::Complex;
 
     /// ωn²/(s² + 2ζωn s + ωn²), ωn = 1.
-    fn second_order(damping: f64) -> Modes {
+    fn second_order(damping: f64) -> Motion {
         let tenths = libm::round(10.0 * damping) as i64;
         let transfer = BlockAt { above: IntPoly::from_i64(&[5]), below: IntPoly::from_i64(&[5, tenths, 5]) };
         let zeta = tenths as f64 / 10.0;
         let im = libm::sqrt(1.0 - zeta * zeta);
-        Modes::of_step(&transfer, &[Complex::new(-zeta, im), Complex::new(-zeta, -im)]).expect("proper")
+        let modes = Modes::of_step(&transfer, &[Complex::new(-zeta, im), Complex::new(-zeta, -im)]);
+        Motion::Modes(modes.expect("proper"))
     }
 
     #[test]

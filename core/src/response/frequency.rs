@@ -5,7 +5,7 @@
 //! gain, or stable in several ranges, gain margins are the distances to the nearest crossing in each direction.
 
 use super::axis::AxisRatio;
-use super::loop_at::LoopAt;
+use super::open_loop::OpenLoop;
 use crate::exact::gcd::{gcd, squarefree_part, without_common_roots};
 use crate::exact::real_roots::positive_roots;
 use crate::exact::scaled::Scaled;
@@ -56,101 +56,21 @@ pub struct Frequency {
 }
 
 impl Frequency {
-    /// Of a loop whose closed loop is stable.
-    pub(super) fn new(at: &LoopAt) -> Self {
-        Self::of(at.open.clone(), at.output_transfer(), &at.closed, at.poles.clone())
-    }
-
     /// From the open loop, command to output, and the denominator of the closed loop, whose roots are all left of the axis.
     pub fn of(open: BlockAt, transfer: BlockAt, closed: &IntPoly, poles: Vec<Complex<f64>>) -> Self {
         Self {
             above: Scaled::new(&open.above),
             below: Scaled::new(&open.below),
             closed: Scaled::new(closed),
-            closed_exact: closed.clone(),
             open,
             transfer,
             poles,
+            closed_exact: closed.clone(),
             gain_crossings: OnceCell::new(),
             phase_crossings: OnceCell::new(),
             peak: OnceCell::new(),
             bandwidth: OnceCell::new(),
         }
-    }
-
-    /// Where |L| = 1, ascending.
-    ///
-    /// # Errors
-    /// From the exact methods, when a cap is met.
-    pub fn gain_crossings(&self) -> Result<&[GainCrossing], ExactError> {
-        if self.gain_crossings.get().is_none() {
-            let found = gain_crossings(&self.open)?;
-            self.gain_crossings.get_or_init(|| found);
-        }
-        Ok(self.gain_crossings.get().map_or(&[], Vec::as_slice))
-    }
-
-    /// Where L is real and negative, ascending.
-    ///
-    /// # Errors
-    /// From the exact methods, when a cap is met.
-    pub fn phase_crossings(&self) -> Result<&[PhaseCrossing], ExactError> {
-        if self.phase_crossings.get().is_none() {
-            let found = phase_crossings(&self.open)?;
-            self.phase_crossings.get_or_init(|| found);
-        }
-        Ok(self.phase_crossings.get().map_or(&[], Vec::as_slice))
-    }
-
-    /// The factor by which the gain may rise; infinite without limit.
-    ///
-    /// # Errors
-    /// As [`Self::phase_crossings`].
-    pub fn gain_up(&self) -> Result<f64, ExactError> {
-        let factors = self.phase_crossings()?.iter().map(|c| c.factor);
-        Ok(factors.filter(|f| *f > 1.0).fold(f64::INFINITY, f64::min))
-    }
-
-    /// The divisor by which the gain may fall; infinite without limit.
-    ///
-    /// # Errors
-    /// As [`Self::phase_crossings`].
-    pub fn gain_down(&self) -> Result<f64, ExactError> {
-        let factors = self.phase_crossings()?.iter().map(|c| c.factor);
-        Ok(factors.filter(|f| *f < 1.0).map(|f| 1.0 / f).fold(f64::INFINITY, f64::min))
-    }
-
-    /// Degrees: the smallest turn of the phase, in either direction, that makes the loop marginal; infinite without one.
-    ///
-    /// # Errors
-    /// As [`Self::gain_crossings`].
-    pub fn phase_margin(&self) -> Result<f64, ExactError> {
-        Ok(self.gain_crossings()?.iter().map(|c| c.phase_margin.abs()).fold(f64::INFINITY, f64::min))
-    }
-
-    /// s: the smallest added dead time that makes the loop marginal; infinite without one.
-    ///
-    /// # Errors
-    /// As [`Self::gain_crossings`].
-    pub fn delay_margin(&self) -> Result<f64, ExactError> {
-        Ok(self.gain_crossings()?.iter().map(|c| c.delay_margin).fold(f64::INFINITY, f64::min))
-    }
-
-    /// Where the sensitivity peaks, rad/s, and its peak.
-    pub fn peak(&self) -> (f64, f64) {
-        *self.peak.get_or_init(|| self.peak_sensitivity())
-    }
-
-    /// rad/s; infinite where the closed loop never falls 3 dB, None where its static gain is zero.
-    ///
-    /// # Errors
-    /// From the exact methods, when a cap is met.
-    pub fn bandwidth(&self) -> Result<Option<f64>, ExactError> {
-        if self.bandwidth.get().is_none() {
-            let found = bandwidth(&self.transfer)?;
-            self.bandwidth.get_or_init(|| found);
-        }
-        Ok(self.bandwidth.get().copied().flatten())
     }
 
     /// The frequencies between which something happens, a decade beyond on both sides.
@@ -234,16 +154,33 @@ impl Frequency {
         let (offset, peak) = highest(offsets[top - 1], offsets[top + 1], sensitivity);
         peak.is_finite().then_some((omega + offset, peak))
     }
+}
 
-    /// The open loop for drawing.
-    ///
-    /// # Errors
-    /// As [`Self::gain_crossings`].
-    pub fn response(&self) -> Result<FrequencyResponse, ExactError> {
+impl OpenLoop for Frequency {
+    fn gain_crossings(&self) -> Result<Vec<GainCrossing>, ExactError> {
+        cached(&self.gain_crossings, || gain_crossings(&self.open))
+    }
+
+    fn phase_crossings(&self) -> Result<Vec<PhaseCrossing>, ExactError> {
+        cached(&self.phase_crossings, || phase_crossings(&self.open))
+    }
+
+    fn peak(&self) -> Result<(f64, f64), ExactError> {
+        Ok(*self.peak.get_or_init(|| self.peak_sensitivity()))
+    }
+
+    fn bandwidth(&self) -> Result<Option<f64>, ExactError> {
+        cached(&self.bandwidth, || bandwidth(&self.transfer))
+    }
+
+    fn response(&self) -> Result<FrequencyResponse, ExactError> {
         let range = self.range();
         let mut omegas = grid(range, (CURVE_POINTS as f64 / libm::log10(range.1 / range.0)) as usize + 1);
-        let crossings =
-            self.gain_crossings()?.iter().map(|c| c.omega).chain(self.phase_crossings()?.iter().map(|c| c.omega));
+        let crossings = self
+            .gain_crossings()?
+            .into_iter()
+            .map(|c| c.omega)
+            .chain(self.phase_crossings()?.into_iter().map(|c| c.omega));
         let resonances = self.poles.iter().map(|p| p.im);
         omegas.extend(crossings.chain(resonances).filter(|w| *w > range.0 && w.is_finite()));
         omegas.sort_by(f64::total_cmp);
@@ -270,6 +207,17 @@ impl Frequency {
             response.phase.push(phase);
         }
         Ok(response)
+    }
+}
+
+/// The value in the cell, computed where it is empty.
+fn cached<T: Clone>(cell: &OnceCell<T>, compute: impl FnOnce() -> Result<T, ExactError>) -> Result<T, ExactError> {
+    match cell.get() {
+        Some(known) => Ok(known.clone()),
+        None => {
+            let found = compute()?;
+            Ok(cell.get_or_init(|| found).clone())
+        }
     }
 }
 
@@ -372,4 +320,21 @@ fn bandwidth(transfer: &BlockAt) -> Result<Option<f64>, ExactError> {
     let Some(mut root) = positive_roots(&difference)?.into_iter().next() else { return Ok(Some(f64::INFINITY)) };
     root.refine_to(&difference, BANDWIDTH_BITS)?;
     Ok(Some(libm::sqrt(root.to_f64())))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_resonance_narrower_than_f64_keeps_its_margins() {
+        // L = K·s/(s² + 1), K = 1e-20: |L| = 1 on both sides of ω = 1, 5e-21 away, where L = ±j.
+        let (above, below) = (IntPoly::from_i64(&[0, 1]), IntPoly::from_i64(&[1, 0, 1]));
+        let ten_to_20 = IBig::from(10).pow(20);
+        let open =
+            BlockAt { above, below: IntPoly::new(below.coefficients().iter().map(|c| c * &ten_to_20).collect()) };
+        let found = gain_crossings(&open).expect("found");
+        let margins: Vec<f64> = found.iter().map(|c| c.phase_margin).collect();
+        assert!(margins.len() == 2 && margins.iter().all(|m| (m.abs() - 90.0).abs() < 1e-9), "{margins:?}");
+    }
 }

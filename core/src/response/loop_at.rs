@@ -1,11 +1,16 @@
 //! The loop at one value of the knob, with what is computed of it kept for the next question.
 
+use super::delayed::{self, Delayed, Numerators};
 use super::frequency::Frequency;
 use super::modes::{Modes, Peaks};
+use super::motion::Motion;
+use super::open_loop::OpenLoop;
 use crate::exact::complex_roots::{enclose_all, polished};
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
 use crate::model::{BlockAt, Loop};
+use crate::sampled::{Answers, SampledAt, SampledRanges};
+use alloc::rc::Rc;
 use alloc::vec::Vec;
 use core::cell::OnceCell;
 use dashu_int::IBig;
@@ -23,8 +28,8 @@ const TOLD: f64 = 1e-12;
 /// An answer over time, as far as there is one.
 #[derive(Debug)]
 pub enum Answer {
-    /// Modes and extremes.
-    Found(Modes, Peaks),
+    /// The answer and its extremes.
+    Found(Motion, Peaks),
     /// The loop is unstable, or the answer contains an impulse.
     Undefined,
     /// The extremes were not found within the cap on steps.
@@ -32,12 +37,37 @@ pub enum Answer {
 }
 
 impl Answer {
-    /// Modes and extremes, where there are any.
-    pub fn found(&self) -> Option<(&Modes, &Peaks)> {
+    /// The answer and its extremes, where there are any.
+    pub fn found(&self) -> Option<(&Motion, &Peaks)> {
         match self {
-            Self::Found(modes, peaks) => Some((modes, peaks)),
+            Self::Found(motion, peaks) => Some((motion, peaks)),
             _ => None,
         }
+    }
+}
+
+impl From<Motion> for Answer {
+    fn from(motion: Motion) -> Self {
+        match motion.peaks() {
+            Some(peaks) => Self::Found(motion, peaks),
+            None => Self::NotComputed,
+        }
+    }
+}
+
+/// A loop with what does not change with the knob.
+#[derive(Clone, Copy, Debug)]
+pub struct Setup<'a> {
+    /// The loop as built.
+    pub model: &'a Loop,
+    /// What is known of it where its controller samples.
+    pub sampled: Option<&'a Rc<SampledRanges>>,
+}
+
+impl<'a> From<&'a Loop> for Setup<'a> {
+    /// Of a loop whose controller works continuously.
+    fn from(model: &'a Loop) -> Self {
+        Self { model, sampled: None }
     }
 }
 
@@ -53,7 +83,10 @@ pub struct LoopAt {
     pub(super) open: BlockAt,
     /// D ± N; not reduced.
     pub(super) closed: IntPoly,
-    pub(super) poles: Vec<Complex<f64>>,
+    /// Of the loop without dead time; empty where it has some.
+    rational_poles: Vec<Complex<f64>>,
+    delayed: Option<Delayed>,
+    sampled: Option<SampledAt>,
     stable: OnceCell<bool>,
     output: OnceCell<Answer>,
     load: OnceCell<Answer>,
@@ -66,9 +99,12 @@ impl LoopAt {
     ///
     /// # Errors
     /// As [`Self::new`].
-    pub fn known_stable(model: &Loop, knob: RBig) -> Result<Self, ExactError> {
-        let at = Self::new(model, knob)?;
+    pub fn known_stable(setup: Setup<'_>, knob: RBig) -> Result<Self, ExactError> {
+        let at = Self::new(setup, knob)?;
         at.stable.get_or_init(|| true);
+        if let Some(sampled) = &at.sampled {
+            sampled.is_known_stable();
+        }
         Ok(at)
     }
 
@@ -76,7 +112,8 @@ impl LoopAt {
     ///
     /// # Errors
     /// From the exact methods, where the poles cannot be found.
-    pub fn new(model: &Loop, knob: RBig) -> Result<Self, ExactError> {
+    pub fn new(setup: Setup<'_>, knob: RBig) -> Result<Self, ExactError> {
+        let model = setup.model;
         let [controller, plant, sensor] = [0, 1, 2].map(|i| model.blocks[i].at(&knob));
         let product = |parts: [&IntPoly; 3]| parts[0].times(parts[1]).times(parts[2]);
         let open = BlockAt {
@@ -88,7 +125,11 @@ impl LoopAt {
         // For positive feedback L below is −(controller·plant·sensor), so that 1 + L stays the denominator.
         let open =
             BlockAt { above: IntPoly::new(open.above.coefficients().iter().map(|c| c * &sign).collect()), ..open };
-        let poles = poles(&closed)?;
+        let sampled = setup.sampled.map(|whole| SampledAt::new(whole, knob.clone())).transpose()?;
+        let times = model.blocks.each_ref().map(|block| block.dead_time.at(&knob));
+        let delayed = if sampled.is_none() { Delayed::new(times) } else { None };
+        let continuous = sampled.is_none() && delayed.is_none();
+        let rational_poles = if continuous { poles(&closed)? } else { Vec::new() };
         Ok(Self {
             knob,
             controller,
@@ -96,7 +137,9 @@ impl LoopAt {
             sensor,
             open,
             closed,
-            poles,
+            rational_poles,
+            delayed,
+            sampled,
             stable: OnceCell::new(),
             output: OnceCell::new(),
             load: OnceCell::new(),
@@ -105,57 +148,119 @@ impl LoopAt {
         })
     }
 
-    /// The poles of the closed loop, in f64.
+    /// The sampled loop, where the controller samples.
+    pub fn sampled(&self) -> Option<&SampledAt> {
+        self.sampled.as_ref()
+    }
+
+    /// The poles of the closed loop in the s-plane, in f64; none of a sampled one; with dead time those that shape its answers. Empty where they were not found.
     pub fn poles(&self) -> &[Complex<f64>] {
-        &self.poles
+        match &self.delayed {
+            Some(delayed) => delayed.poles(&self.open),
+            None => &self.rational_poles,
+        }
     }
 
     /// Whether every pole lies left of the axis; exact.
     pub fn is_stable(&self) -> bool {
-        *self.stable.get_or_init(|| count(&self.closed).is_ok_and(|count| count.is_stable()))
+        *self.stable.get_or_init(|| match (&self.sampled, &self.delayed) {
+            (Some(sampled), _) => sampled.is_stable(),
+            (_, Some(delayed)) => delayed.is_stable(&self.open),
+            _ => count(&self.closed).is_ok_and(|count| count.is_stable()),
+        })
     }
 
     /// The answer of the output, in the command's units, to a unit step of the command.
     pub fn output(&self) -> &Answer {
-        self.output.get_or_init(|| self.answer(&self.output_transfer()))
+        self.output.get_or_init(|| self.answer(0, || self.output_transfer()))
     }
 
     /// The answer of the output to a unit step at the plant's input.
     pub fn load(&self) -> &Answer {
-        let above = || self.plant.above.times(&self.controller.below).times(&self.sensor.below);
-        self.load.get_or_init(|| self.answer(&BlockAt { above: above(), below: self.closed.clone() }))
+        self.load.get_or_init(|| self.answer(1, || self.over_closed(self.load_numerator())))
     }
 
     /// The controller's output after a unit step of the command.
     pub fn control(&self) -> &Answer {
-        let above = || self.controller.above.times(&self.plant.below).times(&self.sensor.below);
-        self.control.get_or_init(|| self.answer(&BlockAt { above: above(), below: self.closed.clone() }))
+        self.control.get_or_init(|| self.answer(2, || self.over_closed(self.control_numerator())))
+    }
+
+    fn load_numerator(&self) -> IntPoly {
+        self.plant.above.times(&self.controller.below).times(&self.sensor.below)
+    }
+
+    fn control_numerator(&self) -> IntPoly {
+        self.controller.above.times(&self.plant.below).times(&self.sensor.below)
+    }
+
+    fn over_closed(&self, above: IntPoly) -> BlockAt {
+        BlockAt { above, below: self.closed.clone() }
     }
 
     /// The open loop over frequency. None where the closed loop is unstable.
-    pub fn frequency(&self) -> Option<&Frequency> {
-        self.is_stable().then(|| self.frequency.get_or_init(|| Frequency::new(self)))
+    pub fn frequency(&self) -> Option<&dyn OpenLoop> {
+        if !self.is_stable() {
+            return None;
+        }
+        if let Some(sampled) = &self.sampled {
+            return sampled.frequency().map(|found| found as &dyn OpenLoop);
+        }
+        if let Some(delayed) = &self.delayed {
+            return Some(delayed.frequency(&self.open, || self.output_transfer().above));
+        }
+        let own =
+            || Frequency::of(self.open.clone(), self.output_transfer(), &self.closed, self.rational_poles.clone());
+        Some(self.frequency.get_or_init(own))
     }
 
-    fn answer(&self, transfer: &BlockAt) -> Answer {
+    /// An answer; of a loop with dead time the one of that number.
+    fn answer(&self, number: usize, transfer: impl FnOnce() -> BlockAt) -> Answer {
         if !self.is_stable() {
             return Answer::Undefined;
         }
-        let Some(modes) = Modes::of_step(transfer, &self.poles) else { return Answer::Undefined };
-        modes.peaks().map_or(Answer::NotComputed, |peaks| Answer::Found(modes, peaks))
+        if let Some(sampled) = &self.sampled {
+            let pick = |all: &Answers| [&all.output, &all.load, &all.control][number].clone();
+            return delayed::answer(sampled.answers().map(pick).map(Motion::Trace).as_ref());
+        }
+        if let Some(delayed) = &self.delayed {
+            return delayed::answer(delayed.answers(&self.scaled_open(), || self.numerators()).map(|all| &all[number]));
+        }
+        let Some(modes) = Modes::of_step(&transfer(), &self.rational_poles) else { return Answer::Undefined };
+        Motion::Modes(modes).into()
+    }
+
+    /// N and D of the open loop, both times the factor by which [`Self::output_transfer`] scales its denominator.
+    fn scaled_open(&self) -> BlockAt {
+        let (_, scale) = self.output_scale();
+        BlockAt { above: times(&self.open.above, &scale), below: times(&self.open.below, &scale) }
+    }
+
+    fn numerators(&self) -> Numerators {
+        let (_, scale) = self.output_scale();
+        Numerators {
+            output: self.output_transfer().above,
+            load: times(&self.load_numerator(), &scale),
+            control: times(&self.control_numerator(), &scale),
+        }
+    }
+
+    /// h and g of the sensor's static gain h/g; 1 where it has none.
+    fn output_scale(&self) -> (IBig, IBig) {
+        let (gain, scale) = (self.sensor.above.coefficient(0), self.sensor.below.coefficient(0));
+        if gain.is_zero() || scale.is_zero() { (IBig::ONE, IBig::ONE) } else { (gain, scale) }
     }
 
     /// N·h and F·g of command to output: the output is scaled by the sensor's static gain h/g where it has one, so that
     /// 1 means no error.
     pub(super) fn output_transfer(&self) -> BlockAt {
         let above = self.controller.above.times(&self.plant.above).times(&self.sensor.below);
-        let (gain, scale) = (self.sensor.above.coefficient(0), self.sensor.below.coefficient(0));
-        if gain.is_zero() || scale.is_zero() {
-            return BlockAt { above, below: self.closed.clone() };
-        }
-        let times = |p: &IntPoly, factor: &IBig| IntPoly::new(p.coefficients().iter().map(|c| c * factor).collect());
+        let (gain, scale) = self.output_scale();
         BlockAt { above: times(&above, &gain), below: times(&self.closed, &scale) }
     }
+}
+
+fn times(p: &IntPoly, factor: &IBig) -> IntPoly {
+    IntPoly::new(p.coefficients().iter().map(|c| c * factor).collect())
 }
 
 /// The poles, with real parts that keep their digits however near to the axis.

@@ -2,16 +2,21 @@
 
 mod altered;
 mod axis;
+mod delayed;
 mod figures;
 mod frequency;
 mod loop_at;
 mod modes;
+mod motion;
+mod open_loop;
 mod searches;
 mod trace;
 
 pub use altered::FirstSwing;
 pub use figures::{Figure, SettlingBand};
 pub use frequency::Frequency;
-pub use loop_at::{Answer, LoopAt};
+pub use loop_at::{Answer, LoopAt, Setup};
 pub use modes::{Modes, Peaks};
+pub use motion::Motion;
+pub use open_loop::OpenLoop;
 pub use trace::{Trace, TracePoint};

@@ -18,6 +18,9 @@ const TOGETHER: f64 = 1e-5;
 /// Points of a curve for drawing.
 pub(super) const CURVE_POINTS: usize = 480;
 
+/// A mode is dead below this part of the final value, and of the largest mode.
+const DEAD: f64 = 1e-18;
+
 /// Halvings towards the time at which the envelope has fallen to a bound: any later time does as well.
 const QUIET_HALVINGS: usize = 14;
 
@@ -31,11 +34,14 @@ pub(super) struct Mode {
     pub(super) rate: f64,
     /// |coefficient|.
     share: f64,
+    /// s, from when on it is lost in the rounding of everything.
+    pub(super) dead_after: f64,
 }
 
 impl Mode {
     fn new(pole: Complex<f64>, coefficient: Complex<f64>) -> Self {
-        Self { pole, coefficient, rate: magnitude(pole), share: magnitude(coefficient) }
+        let dead_after = f64::INFINITY;
+        Self { pole, coefficient, rate: magnitude(pole), share: magnitude(coefficient), dead_after }
     }
 
     /// Its part of the answer at t, as a complex number whose real part counts.
@@ -102,27 +108,37 @@ impl Modes {
             modes.push(Mode::new(*pole, coefficient));
         }
         let at_start = RBig::from_parts_signed(above.coefficient(below.degree()), below.leading());
-        Some(Self { start: at_start.to_f64().value(), final_value: at_zero.to_f64().value(), modes })
+        let final_value = at_zero.to_f64().value();
+        let largest = modes.iter().map(|mode| mode.share).fold(0.0, f64::max);
+        let lost = DEAD * if final_value == 0.0 { largest } else { largest.min(final_value.abs()) };
+        for mode in &mut modes {
+            mode.dead_after = (libm::log(mode.share / lost) / -mode.pole.re).max(0.0);
+        }
+        Some(Self { start: at_start.to_f64().value(), final_value, modes })
     }
 
     /// y(t), t ≥ 0 in s.
     pub fn value(&self, t: f64) -> f64 {
-        self.final_value + self.modes.iter().map(|mode| mode.at(t).re).sum::<f64>()
+        self.final_value + self.alive(t).map(|mode| mode.at(t).re).sum::<f64>()
+    }
+
+    fn alive(&self, t: f64) -> impl Iterator<Item = &Mode> {
+        self.modes.iter().filter(move |mode| t < mode.dead_after)
     }
 
     /// y′(t).
     pub(super) fn slope(&self, t: f64) -> f64 {
-        self.modes.iter().map(|mode| (mode.at(t) * mode.pole).re).sum()
+        self.alive(t).map(|mode| (mode.at(t) * mode.pole).re).sum()
     }
 
     /// y″(t).
     pub(super) fn bend(&self, t: f64) -> f64 {
-        self.modes.iter().map(|mode| (mode.at(t) * mode.pole * mode.pole).re).sum()
+        self.alive(t).map(|mode| (mode.at(t) * mode.pole * mode.pole).re).sum()
     }
 
     /// A bound on |y(τ) − y(∞)| for every τ ≥ t.
     pub(super) fn envelope(&self, t: f64) -> f64 {
-        self.modes.iter().map(|mode| mode.size(t)).sum()
+        self.alive(t).map(|mode| mode.size(t)).sum()
     }
 
     /// A time after which the envelope stays below `bound` > 0; not much later than the earliest one.

@@ -5,6 +5,7 @@
 //! envelope; so fast modes do not make small steps where only slow ones matter, and no turn is ever missed.
 
 use super::modes::{Modes, Peaks};
+use crate::numerics::magnitude;
 use alloc::vec::Vec;
 
 /// A mode is expanded over stretches of at most so many radians to each side of the middle.
@@ -20,11 +21,11 @@ const SHORTEST: f64 = 1e-11;
 /// Extremes are right to this part of the answer's largest known value; closer ones are not told apart.
 const PEAK_ERROR: f64 = 1e-13;
 
-/// No peak is looked for where the answer stays this near to its final value: nobody sees it on a record.
-const SETTLED: f64 = 1e-6;
-
 /// Rounding of the sum of modes, as a part of the sum of their sizes.
 const ROUNDING: f64 = 1e-15;
+
+/// No peak is looked for where the answer stays this near to its final value: nobody sees it on a record.
+const SETTLED: f64 = 1e-6;
 
 /// Evaluations for one root: chord steps need some eight, halving alone 52.
 const ROOT_CAP: usize = 80;
@@ -74,15 +75,6 @@ impl Modes {
         Some(reach.found.unwrap_or(quiet))
     }
 
-    /// Time and value of the first `count` turns at which the answer, taken in the direction of its final value, is highest.
-    /// None where there are not so many before it has settled, or the search meets its cap.
-    pub fn first_peaks(&self, count: usize) -> Option<Vec<(f64, f64)>> {
-        let settled = SETTLED * self.final_value.abs();
-        let mut peaks = FirstPeaks { direction: self.final_value.signum(), count, rising: false, found: Vec::new() };
-        self.search(self.quiet_after(settled.max(f64::MIN_POSITIVE)), &mut peaks)?;
-        (peaks.found.len() == count).then_some(peaks.found)
-    }
-
     /// The last time at which |y − y(∞)| is `band`, 0 where it never is more. None where the search meets its cap.
     pub fn last_outside(&self, band: f64) -> Option<f64> {
         if band <= 0.0 {
@@ -91,6 +83,17 @@ impl Modes {
         let mut outside = LastOutside { end: self.final_value, band, found: None };
         self.search(self.quiet_after(band), &mut outside)?;
         Some(outside.found.unwrap_or(0.0))
+    }
+
+    /// Time and value of the first `count` turns at which the answer, taken in the direction of its final value, is highest.
+    /// None where there are not so many before it has settled, or the search meets its cap.
+    pub fn first_peaks(&self, count: usize) -> Option<Vec<(f64, f64)>> {
+        let direction = self.final_value.signum();
+        let seen = SETTLED * self.final_value.abs();
+        let swing = Swing::Down(direction * self.start);
+        let mut peaks = FirstPeaks { direction, seen, count, swing, found: Vec::with_capacity(count) };
+        self.search(self.quiet_after(seen), &mut peaks)?;
+        (peaks.found.len() == count).then_some(peaks.found)
     }
 
     /// Looks through the times from 0 to `until`. None where the cap is met.
@@ -136,7 +139,7 @@ impl Modes {
         let (middle, h) = (0.5 * (from + to), 0.5 * (to - from));
         let (mut y, mut slope, mut bend, mut third) = (self.final_value, 0.0, 0.0, 0.0);
         let mut long = [0.0; 3];
-        for mode in &self.modes {
+        for mode in self.modes.iter().filter(|mode| from < mode.dead_after) {
             let rate = mode.rate;
             if rate * h <= EXPANDED {
                 let z = mode.at(middle);
@@ -144,7 +147,9 @@ impl Modes {
                 y += z.re;
                 slope += first.re;
                 bend += (first * mode.pole).re;
-                third += mode.size(from) * rate * rate * rate;
+                // Back at `from` it is larger by e^(−σh) ≤ 1 + (e − 1)·|σ|h.
+                let size = magnitude(z) * (1.0 - (core::f64::consts::E - 1.0) * mode.pole.re * h);
+                third += size * rate * rate * rate;
             } else {
                 let size = mode.size(from);
                 long[0] += size;
@@ -265,41 +270,6 @@ impl Quest for Extremes {
     }
 }
 
-struct FirstPeaks {
-    /// The sign of the final value.
-    direction: f64,
-    /// As many are wanted.
-    count: usize,
-    /// Whether the answer rose on the stretch before.
-    rising: bool,
-    /// Time and value.
-    found: Vec<(f64, f64)>,
-}
-
-impl Quest for FirstPeaks {
-    fn is_dull(&self, _: &Stretch) -> bool {
-        false
-    }
-
-    fn look(&mut self, modes: &Modes, from: f64, to: f64) -> bool {
-        let (before, after) = (modes.value(from), modes.value(to));
-        let rises = (after - before) * self.direction > 0.0;
-        if self.rising && !rises {
-            self.found.push((from, before));
-        }
-        self.rising = rises;
-        self.found.len() == self.count
-    }
-
-    fn take(&mut self, _: &Stretch) -> bool {
-        false
-    }
-
-    fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
-        false
-    }
-}
-
 struct FirstReach {
     scale: f64,
     part: f64,
@@ -324,6 +294,53 @@ impl Quest for FirstReach {
     fn take(&mut self, stretch: &Stretch) -> bool {
         self.found = Some(stretch.to);
         true
+    }
+
+    fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
+        false
+    }
+}
+
+struct FirstPeaks {
+    direction: f64,
+    /// Smaller changes are none.
+    seen: f64,
+    count: usize,
+    swing: Swing,
+    found: Vec<(f64, f64)>,
+}
+
+/// Where an answer goes, in the direction of its final value.
+#[derive(Clone, Copy)]
+enum Swing {
+    /// Up; time and value of its highest point.
+    Up(f64, f64),
+    /// Down, or not yet up; its lowest value.
+    Down(f64),
+}
+
+impl Quest for FirstPeaks {
+    fn is_dull(&self, _: &Stretch) -> bool {
+        false
+    }
+
+    fn look(&mut self, modes: &Modes, _: f64, to: f64) -> bool {
+        let y = self.direction * modes.value(to);
+        self.swing = match self.swing {
+            Swing::Up(_, top) if y >= top => Swing::Up(to, y),
+            Swing::Up(t, top) if top - y > self.seen => {
+                self.found.push((t, self.direction * top));
+                Swing::Down(y)
+            }
+            Swing::Down(low) if y - low > self.seen => Swing::Up(to, y),
+            Swing::Down(low) => Swing::Down(low.min(y)),
+            up @ Swing::Up(..) => up,
+        };
+        self.found.len() == self.count
+    }
+
+    fn take(&mut self, _: &Stretch) -> bool {
+        false
     }
 
     fn later_first(&self, _: Option<(&Stretch, &Stretch)>) -> bool {
@@ -393,4 +410,64 @@ pub(super) fn root_between(mut a: (f64, f64), mut b: (f64, f64), value: impl Fn(
         }
     }
     0.5 * (a.0 + b.0)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::exact::IntPoly;
+    use crate::model::BlockAt;
+    use nalgebra::Complex;
+
+    fn answer(above: &[i64], below: &IntPoly, poles: &[(f64, f64)]) -> Modes {
+        let transfer = BlockAt { above: IntPoly::from_i64(above), below: below.clone() };
+        let poles: alloc::vec::Vec<Complex<f64>> = poles.iter().map(|p| Complex::new(p.0, p.1)).collect();
+        Modes::of_step(&transfer, &poles).expect("proper")
+    }
+
+    /// s² + 2ζs + 1, ζ as given but for 1e-12.
+    fn second_order(damping: f64) -> Modes {
+        const UNIT: i64 = 1_000_000_000_000;
+        let twice = libm::round(2.0 * damping * UNIT as f64) as i64;
+        let zeta = 0.5 * twice as f64 / UNIT as f64;
+        let im = libm::sqrt(1.0 - zeta * zeta);
+        answer(&[UNIT], &IntPoly::from_i64(&[UNIT, twice, UNIT]), &[(-zeta, im), (-zeta, -im)])
+    }
+
+    #[test]
+    fn a_turn_that_just_touches_the_band_is_told_from_one_that_does_not() {
+        // The second turn leaves e^(−2πζ/√(1 − ζ²)) = 2 %.
+        let x = libm::log(50.0) / core::f64::consts::TAU;
+        let touching = x / libm::sqrt(1.0 + x * x);
+        let at = |damping: f64| second_order(damping).last_outside(0.02).expect("settles");
+        let turn = core::f64::consts::TAU / libm::sqrt(1.0 - touching * touching);
+        assert!((at(touching * (1.0 - 1e-9)) - turn).abs() < 1e-3);
+        assert!(at(touching * (1.0 + 1e-9)) < turn - 1.0);
+    }
+
+    #[test]
+    fn a_fast_mode_long_dead_does_not_disturb_a_slow_one() {
+        // 1/((s + 1)(1e-9 s + 1)), seen long after the fast mode: e^(−t) = 2 %.
+        let below = IntPoly::from_i64(&[1, 1]).times(&IntPoly::from_i64(&[1_000_000_000, 1]));
+        let modes = answer(&[1_000_000_000], &below, &[(-1.0, 0.0), (-1e9, 0.0)]);
+        let settled = modes.last_outside(0.02).expect("settles");
+        assert!((settled - libm::log(50.0)).abs() < 1e-8, "{settled}");
+    }
+
+    #[test]
+    fn a_ripple_on_a_slow_mode_is_seen_in_every_figure() {
+        // A lag, and a pair a million times faster with next to no damping; data of our own.
+        let pair = IntPoly::from_i64(&[1_000_000, 0, 1_000_000]);
+        let below = IntPoly::from_i64(&[1, 1_000_000]).times(&pair.plus(&IntPoly::from_i64(&[0, 2])));
+        let (sigma, im) = (1e-6, libm::sqrt(1.0 - 1e-12));
+        let modes = answer(&[1_000_000, 500_000], &below, &[(-1e-6, 0.0), (-sigma, im), (-sigma, -im)]);
+        let reached = modes.first_reach(0.1).expect("reached");
+        assert!((modes.value(reached) - 0.1).abs() < 1e-12);
+        assert!(
+            (0..200_000)
+                .all(|k| modes.value(reached * (1.0 - 1e-3) + 1e-9 * f64::from(k) * reached * 5.0) < 0.1 + 1e-12)
+        );
+        let peaks = modes.peaks().expect("found");
+        assert!(peaks.highest.0 >= 1.0 && modes.last_outside(0.02).expect("settles") > 3.9e6);
+    }
 }

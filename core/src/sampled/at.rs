@@ -9,6 +9,7 @@ use crate::exact::complex_roots::polished;
 use crate::exact::{Dyadic, ExactError, IntPoly};
 use crate::numerics::magnitude;
 use crate::record::{Point, equivalent};
+use alloc::rc::Rc;
 use alloc::vec::Vec;
 use core::cell::OnceCell;
 use dashu_int::IBig;
@@ -17,9 +18,9 @@ use nalgebra::Complex;
 
 /// A sampled loop at one value of the knob.
 #[derive(Debug)]
-pub struct SampledAt<'a> {
+pub struct SampledAt {
     /// The loop and its ranges.
-    pub whole: &'a SampledRanges,
+    pub whole: Rc<SampledRanges>,
     /// The knob.
     pub knob: RBig,
     /// Poles of the closed loop in the z-plane.
@@ -31,16 +32,16 @@ pub struct SampledAt<'a> {
     answers: OnceCell<Option<Answers>>,
 }
 
-impl<'a> SampledAt<'a> {
+impl SampledAt {
     /// The loop at a knob value.
     ///
     /// # Errors
     /// From the exact methods, where the poles cannot be found.
-    pub fn new(whole: &'a SampledRanges, knob: RBig) -> Result<Self, ExactError> {
+    pub fn new(whole: &Rc<SampledRanges>, knob: RBig) -> Result<Self, ExactError> {
         let poles = polished(&whole.characteristic_at(&knob))?;
         let Controls { above, below } = controls(whole, &knob);
         Ok(Self {
-            whole,
+            whole: Rc::clone(whole),
             knob,
             poles,
             controller: [above, below],
@@ -54,10 +55,15 @@ impl<'a> SampledAt<'a> {
     ///
     /// # Errors
     /// As [`Self::new`].
-    pub fn known_stable(whole: &'a SampledRanges, knob: RBig) -> Result<Self, ExactError> {
+    pub fn known_stable(whole: &Rc<SampledRanges>, knob: RBig) -> Result<Self, ExactError> {
         let at = Self::new(whole, knob)?;
         at.stable.get_or_init(|| true);
         Ok(at)
+    }
+
+    /// Takes it as proven that the loop is stable here.
+    pub fn is_known_stable(&self) {
+        self.stable.get_or_init(|| true);
     }
 
     /// Whether every pole lies inside of the unit circle; proven. False where it cannot be decided.

@@ -12,7 +12,7 @@ use crate::exact::gcd::gcd;
 use crate::exact::{ExactError, IntPoly};
 use crate::model::BlockAt;
 use crate::record::{FrequencyResponse, GainCrossing, PhaseCrossing};
-use crate::response::Frequency;
+use crate::response::{Frequency, OpenLoop};
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
 use nalgebra::Complex;
@@ -38,7 +38,7 @@ const SAME_PEAK: f64 = 1e-9;
 
 impl SampledFrequency {
     /// Of a stable loop.
-    pub(super) fn new(at: &SampledAt<'_>) -> Self {
+    pub(super) fn new(at: &SampledAt) -> Self {
         let plant = &at.whole.family.plant;
         let [above, below] = &at.controller;
         let sign = Enclosed::exact(IntPoly::new([at.whole.input.feedback.clone()].into()));
@@ -76,14 +76,13 @@ impl SampledFrequency {
     pub fn nyquist(&self) -> f64 {
         core::f64::consts::PI / self.period
     }
+}
 
+impl OpenLoop for SampledFrequency {
     /// Where |L| = 1, ascending. `delay_margin` is the phase margin over the frequency: the time by which the signal at that
     /// frequency alone may come later.
-    ///
-    /// # Errors
-    /// From the exact methods, when a cap is met.
-    pub fn gain_crossings(&self) -> Result<Vec<GainCrossing>, ExactError> {
-        let found = self.in_v.gain_crossings()?.iter().map(|c| {
+    fn gain_crossings(&self) -> Result<Vec<GainCrossing>, ExactError> {
+        let found = self.in_v.gain_crossings()?.into_iter().map(|c| {
             let omega = self.omega(c.omega);
             GainCrossing { omega, phase_margin: c.phase_margin, delay_margin: c.delay_margin * c.omega / omega }
         });
@@ -91,72 +90,27 @@ impl SampledFrequency {
     }
 
     /// Where L is real and negative, ascending, z = 1 and z = −1 included.
-    ///
-    /// # Errors
-    /// From the exact methods, when a cap is met.
-    pub fn phase_crossings(&self) -> Result<Vec<PhaseCrossing>, ExactError> {
-        let found = self.in_v.phase_crossings()?.iter().filter(|c| POSSIBLE.contains(&c.factor));
+    fn phase_crossings(&self) -> Result<Vec<PhaseCrossing>, ExactError> {
+        let found = self.in_v.phase_crossings()?.into_iter().filter(|c| POSSIBLE.contains(&c.factor));
         Ok(found.map(|c| PhaseCrossing { omega: self.omega(c.omega), factor: c.factor }).collect())
     }
 
-    /// The factor by which the gain may rise; infinite without limit.
-    ///
-    /// # Errors
-    /// As [`Self::phase_crossings`].
-    pub fn gain_up(&self) -> Result<f64, ExactError> {
-        let factors = self.phase_crossings()?.into_iter().map(|c| c.factor);
-        Ok(factors.filter(|f| *f > 1.0).fold(f64::INFINITY, f64::min))
-    }
-
-    /// The divisor by which the gain may fall; infinite without limit.
-    ///
-    /// # Errors
-    /// As [`Self::phase_crossings`].
-    pub fn gain_down(&self) -> Result<f64, ExactError> {
-        let factors = self.phase_crossings()?.into_iter().map(|c| c.factor);
-        Ok(factors.filter(|f| *f < 1.0).map(|f| 1.0 / f).fold(f64::INFINITY, f64::min))
-    }
-
-    /// Degrees; infinite without a crossing.
-    ///
-    /// # Errors
-    /// As [`Self::gain_crossings`].
-    pub fn phase_margin(&self) -> Result<f64, ExactError> {
-        self.in_v.phase_margin()
-    }
-
-    /// s: the smallest delay margin of a crossing; infinite without one. It is the further delay that a loop with the same
-    /// curve but no sampling would bear; of the sampled loop itself a delay also bends the curve a little.
-    ///
-    /// # Errors
-    /// As [`Self::gain_crossings`].
-    pub fn delay_margin(&self) -> Result<f64, ExactError> {
-        Ok(self.gain_crossings()?.iter().map(|c| c.delay_margin).fold(f64::INFINITY, f64::min))
-    }
-
-    /// Where the sensitivity peaks, rad/s, and its peak.
-    pub fn peak(&self) -> (f64, f64) {
-        let (w, peak) = self.in_v.peak();
+    fn peak(&self) -> Result<(f64, f64), ExactError> {
+        let (w, peak) = self.in_v.peak()?;
         if peak <= self.at_nyquist * (1.0 + SAME_PEAK) {
-            return (self.nyquist(), self.at_nyquist);
+            return Ok((self.nyquist(), self.at_nyquist));
         }
-        (self.omega(w), peak)
+        Ok((self.omega(w), peak))
     }
 
     /// rad/s, of the output at the samples; infinite where it does not fall 3 dB below its static gain up to half the
     /// sampling frequency, None where the static gain is zero.
-    ///
-    /// # Errors
-    /// From the exact methods, when a cap is met.
-    pub fn bandwidth(&self) -> Result<Option<f64>, ExactError> {
+    fn bandwidth(&self) -> Result<Option<f64>, ExactError> {
         Ok(self.in_v.bandwidth()?.map(|w| if w.is_finite() { self.omega(w) } else { w }))
     }
 
     /// The open loop for drawing, up to half the sampling frequency.
-    ///
-    /// # Errors
-    /// As [`Self::gain_crossings`].
-    pub fn response(&self) -> Result<FrequencyResponse, ExactError> {
+    fn response(&self) -> Result<FrequencyResponse, ExactError> {
         let FrequencyResponse { omega, magnitude, phase } = self.in_v.response()?;
         Ok(FrequencyResponse { omega: omega.into_iter().map(|w| self.omega(w)).collect(), magnitude, phase })
     }
@@ -170,7 +124,7 @@ fn in_v<const N: usize>(parts: &[Enclosed; N]) -> [IntPoly; N] {
 
 /// The numerator of command to output, times what the second value adds to F as the denominator. The output is in the
 /// command's units: what the sensor shows at rest.
-fn output(at: &SampledAt<'_>) -> (Factored, Factored) {
+fn output(at: &SampledAt) -> (Factored, Factored) {
     let input = &at.whole.input;
     let plant = &at.whole.family.plant;
     let one = Factored::plain(Enclosed::one());

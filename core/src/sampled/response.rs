@@ -59,7 +59,7 @@ pub struct Answers {
 }
 
 /// The answers of a stable loop.
-pub(super) fn answers(at: &SampledAt<'_>) -> Option<Answers> {
+pub(super) fn answers(at: &SampledAt) -> Option<Answers> {
     let machine = Machine::new(at)?;
     let periods = libm::log(SETTLED) / libm::log(at.spectral_radius().clamp(1e-3, 1.0 - 1e-12));
     let input = &at.whole.input;
@@ -204,7 +204,7 @@ struct Run {
 }
 
 impl Machine {
-    fn new(at: &SampledAt<'_>) -> Option<Self> {
+    fn new(at: &SampledAt) -> Option<Self> {
         let input = &at.whole.input;
         let below = input.plant.below.times(&input.sensor.below);
         let system = if below.degree() > 0 { Some(Companion::new(&below, &input.period)) } else { None };
@@ -264,7 +264,7 @@ impl Machine {
                         Event::Load(after) if *after == k => pushed = load,
                         Event::Load(_) => {}
                         Event::Hold(ago) => {
-                            held = k.checked_sub(*ago).and_then(|j| controls.get(j).copied()).unwrap_or(held)
+                            held = k.checked_sub(*ago).and_then(|j| controls.get(j).copied()).unwrap_or(held);
                         }
                         Event::Sample(_) => {
                             let here = self.parts_hold_now(part, k, controls.len());
@@ -364,7 +364,7 @@ fn difference_equation([above, below]: &[Factored; 2]) -> Option<(Vec<f64>, Vec<
 }
 
 /// The parts of a period between its events.
-fn parts(at: &SampledAt<'_>, system: Option<&Companion>, poles: &[f64]) -> Vec<Part> {
+fn parts(at: &SampledAt, system: Option<&Companion>, poles: &[f64]) -> Vec<Part> {
     let input = &at.whole.input;
     let period = &input.period;
     let split = |time: &RBig| {

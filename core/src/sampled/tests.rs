@@ -4,7 +4,8 @@ use super::factored::Factored;
 use super::*;
 use crate::exact::IntPoly;
 use crate::model::BlockAt;
-use crate::response::Trace;
+use crate::response::{OpenLoop, Trace};
+use alloc::rc::Rc;
 use alloc::vec;
 use alloc::vec::Vec;
 use dashu_int::IBig;
@@ -71,7 +72,7 @@ fn sequence(above: &[f64], below: &[f64], count: usize) -> Vec<f64> {
 /// Compares a trace at the samples with the sequence of command to sensor.
 fn samples_agree(input: &SampledLoop, knob: (i64, u64)) {
     let whole = ranges(input).expect("found");
-    let at = SampledAt::new(&whole, rational(knob)).expect("poles");
+    let at = SampledAt::new(&Rc::new(whole.clone()), rational(knob)).expect("poles");
     let answers = at.answers().expect("stable");
     let plant = &whole.family.plant;
     let q = knob.0 as f64 / knob.1 as f64;
@@ -120,7 +121,7 @@ fn farthest(trace: &Trace, end: f64, expected: impl Fn(f64) -> f64) -> f64 {
 fn between_the_samples_an_integrator_runs_straight() {
     // K/s, K h = 1/2: y falls short by half at every sample.
     let whole = ranges(&in_z((&[1], &[1]), (&[1], &[0, 1]), (1, 2), (0, 1))).expect("found");
-    let at = SampledAt::new(&whole, RBig::ONE).expect("poles");
+    let at = SampledAt::new(&Rc::new(whole.clone()), RBig::ONE).expect("poles");
     let answers = at.answers().expect("stable");
     let expected = |t: f64| {
         let k = libm::floor(t / 0.5);
@@ -138,7 +139,7 @@ fn between_the_samples_an_integrator_runs_straight() {
 fn fast_modes_are_followed_between_the_samples() {
     // 1/((s + 1)(s/200 + 1)) every 1/2 s, after the first sample: a step K through the plant.
     let whole = ranges(&in_z((&[1], &[1]), (&[200], &[200, 201, 1]), (1, 2), (0, 1))).expect("found");
-    let at = SampledAt::new(&whole, RBig::ONE).expect("poles");
+    let at = SampledAt::new(&Rc::new(whole.clone()), RBig::ONE).expect("poles");
     let trace = &at.answers().expect("stable").output;
     let expected = |t: f64| 1.0 - 200.0 / 199.0 * libm::exp(-t) + libm::exp(-200.0 * t) / 199.0;
     assert!(farthest(trace, 0.499, expected) < 2e-5, "{}", farthest(trace, 0.499, expected));
@@ -150,7 +151,7 @@ fn gain_margins_end_where_the_ranges_do() {
     let stability = whole.partition.stability();
     let stable = stability.iter().find(|r| r.stable).expect("a stable range");
     let to = stable.to.as_ref().expect("an end");
-    let at = SampledAt::new(&whole, RBig::from_parts(1.into(), 10u8.into())).expect("poles");
+    let at = SampledAt::new(&Rc::new(whole.clone()), RBig::from_parts(1.into(), 10u8.into())).expect("poles");
     let frequency = at.frequency().expect("stable");
     assert!((frequency.gain_up().expect("found") * 0.1 / to.value - 1.0).abs() < 1e-10);
     let crossing = frequency.phase_crossings().expect("found");
@@ -162,7 +163,7 @@ fn gain_margins_end_where_the_ranges_do() {
 fn crossovers_and_sensitivity_agree_with_the_curve() {
     // K/s every 1/10, K = 2: L = 0.2/(z − 1); |L| = 1 at 2 sin(ωh/2) = 0.2.
     let whole = ranges(&in_z((&[1], &[1]), (&[1], &[0, 1]), (1, 10), (0, 1))).expect("found");
-    let at = SampledAt::new(&whole, RBig::from(2)).expect("poles");
+    let at = SampledAt::new(&Rc::new(whole.clone()), RBig::from(2)).expect("poles");
     let frequency = at.frequency().expect("stable");
     let crossing = frequency.gain_crossings().expect("found");
     let omega = 20.0 * libm::asin(0.1);
@@ -172,7 +173,7 @@ fn crossovers_and_sensitivity_agree_with_the_curve() {
     assert!((crossing[0].phase_margin - margin).abs() < 1e-7);
     assert!((frequency.delay_margin().expect("found") - margin.to_radians() / omega).abs() < 1e-9);
     // |1/(1 + L)| = |z − 1|/|z − 0.8| is largest at z = −1: 2/1.8, at half the sampling frequency.
-    let (where_, peak) = frequency.peak();
+    let (where_, peak) = frequency.peak().expect("found");
     assert!((peak - 2.0 / 1.8).abs() < 1e-9 && where_ >= frequency.nyquist(), "{where_} {peak}");
     // T = 0.2/(z − 0.8), |T|² = 1/2: |z − 0.8|² = 0.08.
     let bandwidth = frequency.bandwidth().expect("found").expect("defined");
@@ -186,7 +187,8 @@ fn crossovers_and_sensitivity_agree_with_the_curve() {
 fn figures_of_poles_are_those_of_the_equivalent_ones() {
     // A continuous pair −1 ± 2j as a fixed open loop: tiny knob.
     let whole = ranges(&in_z((&[1], &[1]), (&[1], &[5, 2, 1]), (1, 10), (0, 1))).expect("found");
-    let at = SampledAt::new(&whole, RBig::from_parts(1.into(), 1_000_000_000_000u64.into())).expect("poles");
+    let at = SampledAt::new(&Rc::new(whole.clone()), RBig::from_parts(1.into(), 1_000_000_000_000u64.into()))
+        .expect("poles");
     assert!((at.damping_ratio() - 1.0 / libm::sqrt(5.0)).abs() < 1e-9);
     assert!((at.decay_rate() - 1.0).abs() < 1e-9 && (at.natural_frequency() - libm::sqrt(5.0)).abs() < 1e-9);
 }
@@ -201,7 +203,10 @@ fn a_late_sensor_sees_the_past() {
         ..in_z((&[1], &[1]), (&[1], &[1, 2, 1]), (1, 4), (0, 1))
     };
     let (a, b) = (ranges(&front).expect("found"), ranges(&behind).expect("found"));
-    let (a, b) = (SampledAt::new(&a, RBig::ONE).expect("poles"), SampledAt::new(&b, RBig::ONE).expect("poles"));
+    let (a, b) = (
+        SampledAt::new(&Rc::new(a.clone()), RBig::ONE).expect("poles"),
+        SampledAt::new(&Rc::new(b.clone()), RBig::ONE).expect("poles"),
+    );
     let (a, b) = (a.answers().expect("stable"), b.answers().expect("stable"));
     for k in 0..60 {
         let t = 0.07 * f64::from(k);

@@ -6,6 +6,7 @@ use crate::exact::complex_roots::approximations;
 use crate::numerics::magnitude;
 use crate::ranges::permitted::short;
 use crate::record::{Notice, NoticeKind};
+use crate::response::OpenLoop;
 use alloc::format;
 use alloc::string::String;
 use alloc::vec::Vec;
@@ -33,7 +34,7 @@ pub fn of_the_plant(input: &SampledLoop) -> Vec<Notice> {
 }
 
 /// What there is to say of the period and the stable closed loop.
-pub fn of_the_closed_loop(at: &SampledAt<'_>) -> Option<Notice> {
+pub fn of_the_closed_loop(at: &SampledAt) -> Option<Notice> {
     let bandwidth = at.frequency()?.bandwidth().ok()??;
     let sampling = core::f64::consts::TAU / at.period();
     let slow = !bandwidth.is_finite() || sampling < SAMPLES_PER_BANDWIDTH * bandwidth;
@@ -124,6 +125,7 @@ mod tests {
     use super::*;
     use crate::sampled::tests::in_z;
     use crate::sampled::{SampledAt, ranges};
+    use alloc::rc::Rc;
     use dashu_ratio::RBig;
 
     fn texts(plant: (&[i64], &[i64]), period: (i64, u64)) -> Vec<String> {
@@ -149,7 +151,8 @@ mod tests {
         // K/s: bandwidth about K.
         let input = in_z((&[1], &[1]), (&[1], &[0, 1]), (1, 10), (0, 1));
         let whole = ranges(&input).expect("found");
-        let told = |knob: i64| of_the_closed_loop(&SampledAt::new(&whole, RBig::from(knob)).expect("poles"));
+        let told =
+            |knob: i64| of_the_closed_loop(&SampledAt::new(&Rc::new(whole.clone()), RBig::from(knob)).expect("poles"));
         assert!(told(1).is_none());
         assert!(told(12).is_some_and(|n| n.text.contains("common practice")));
     }

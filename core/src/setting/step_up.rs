@@ -12,7 +12,6 @@ use crate::notation;
 use crate::project::{Direction, RequirementKind, StepUpText};
 use crate::ranges::permitted::short;
 use crate::ranges::pieces::{Border, Piece};
-use crate::record::Edge;
 use crate::response::LoopAt;
 use crate::sheet::{EdgeAhead, StepUpPlan, StepUpRow, StopSign};
 use alloc::format;
@@ -35,6 +34,9 @@ const ROW_CAP: usize = 60;
 
 /// Digits of the settings where the controller has no grid.
 const FREE_DIGITS: i32 = 3;
+
+/// The middle of an edge's bracket, rounded in two ways.
+const SAME: f64 = 1e-14;
 
 /// How often the rest of the way to the edge is halved: a sixteenth of it, on a logarithmic scale, is then left.
 const HALVES: usize = 4;
@@ -60,6 +62,9 @@ pub struct Ground<'a> {
 /// From the exact methods, when a cap is met.
 pub fn step_up(ground: &Ground<'_>, text: &StepUpText) -> Result<StepUpPlan, ExactError> {
     let without = |remark: &str| StepUpPlan { remarks: [remark.to_string()].into(), edge: None, rows: Vec::new() };
+    if ground.analysis.rational().is_none() {
+        return Ok(without("the step-up plan does not know loops with dead time or sampling yet"));
+    }
     let ratio = match typed_number(&text.ratio) {
         Ok(ratio) => ratio.map_or(USUAL_RATIO, |ratio| ratio.to_f64().value()),
         Err(fault) => return Ok(without(&format!("ratio: {fault}"))),
@@ -225,18 +230,16 @@ impl Way<'_> {
     }
 
     fn edge(&self) -> Option<EdgeAhead> {
-        let border = self.ends(self.stable).1?;
-        let knob = border.value();
-        let ranges = &self.ground.analysis.findings.stability;
-        let own = |edge: &&Edge| edge.value == knob;
-        let omega = ranges.iter().filter_map(|range| range.to.as_ref()).find(own).and_then(|edge| edge.omega);
+        let knob = self.ends(self.stable).1?.value();
+        let edges = self.ground.analysis.findings.stability.iter().filter_map(|range| range.to.as_ref());
+        let omega = edges.filter(|edge| (edge.value - knob).abs() <= SAME * knob.abs()).find_map(|edge| edge.omega);
         let period = omega.map(|omega| core::f64::consts::TAU / omega);
         Some(EdgeAhead { knob, setting: self.ground.scale.setting_f64(knob), omega, period })
     }
 
     fn row(&self, setting: &RBig, edge: Option<&EdgeAhead>) -> Result<StepUpRow, ExactError> {
         let knob = self.ground.scale.knob(setting).unwrap_or(RBig::ZERO);
-        let at = LoopAt::new(&self.ground.analysis.model, knob.clone())?;
+        let at = LoopAt::new(self.ground.analysis.setup(), knob.clone())?;
         let swing = Swing::least_damped(at.poles());
         let value = knob.to_f64().value();
         let stop = match edge.filter(|edge| edge.omega.is_some()) {
@@ -267,7 +270,7 @@ impl Way<'_> {
         for _ in 0..HALVES {
             at = self.sign() * libm::sqrt(at * edge);
             let Some(q) = Dyadic::from_f64(at) else { return Ok(None) };
-            let there = LoopAt::new(&self.ground.analysis.model, q.round_down(KNOB_BITS).to_rational())?;
+            let there = LoopAt::new(self.ground.analysis.setup(), q.round_down(KNOB_BITS).to_rational())?;
             let swing = Swing::least_damped(there.poles()).filter(|swing| swing.decay() > decay);
             if let Some(swing) = swing {
                 return Ok(Some(StopSign { period: swing.period(), decay: swing.decay() }));

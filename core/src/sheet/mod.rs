@@ -34,10 +34,11 @@ pub fn sheet(
     let lanes = limits.iter().map(|limit| analysis.lane(limit)).collect::<Result<Vec<_>, _>>()?;
     let pieces = permitted(&analysis.findings.stable, controller_range(&model.scale).as_ref(), &lanes);
     let ground = Ground { analysis, scale: &model.scale, permitted: &pieces, setting: model.setting.as_ref() };
-    let remark = not_derived(model).map(ToString::to_string);
+    let derivation = derivation(analysis, limits)?;
+    let remark = if derivation.is_none() { Some(not_derived(model).to_string()) } else { None };
     Ok(SheetRecord {
         project_hash: hash(document),
-        derivation: derivation(analysis, limits)?,
+        derivation,
         remark,
         step_up: step_up(&ground, &project.step_up)?,
         site_check: site_check(project, analysis, &model.scale)?,
@@ -45,17 +46,14 @@ pub fn sheet(
 }
 
 /// Why a loop has no derivation by hand.
-fn not_derived(model: &Loop) -> Option<&'static str> {
+fn not_derived(model: &Loop) -> &'static str {
     if model.sampling.is_some() {
-        return Some(
-            "The derivation by hand is for continuous loops: the Routh array and the rules of the locus do not hold for a \
-             sampled one. Its ranges stand above, with their brackets.",
-        );
-    }
-    (!model.open_loop.dead_time.is_none()).then_some(
+        "The derivation by hand is for continuous loops: the Routh array and the rules of the locus do not hold for a sampled \
+         one. Its ranges stand above, with their brackets."
+    } else {
         "The derivation by hand is for loops without dead time: with it the characteristic equation is no polynomial, and the \
-         Routh array does not apply. Its ranges stand above, with their brackets.",
-    )
+         Routh array does not apply. Its ranges stand above, with their brackets."
+    }
 }
 
 /// SHA-256 in hexadecimal digits.

@@ -57,7 +57,7 @@ pub fn site_check(project: &Project, analysis: &Analysis, scale: &Scale) -> Resu
         Ok(seen) => seen,
         Err(remarks) => return Ok(Some(told(remarks))),
     };
-    let at = LoopAt::new(&analysis.model, seen.knob.clone())?;
+    let at = LoopAt::new(analysis.setup(), seen.knob.clone())?;
     let own = analysis.model.open_loop.dead_time.at(&seen.knob).to_f64().value();
     let (predicted, change) = match seen.overshoot {
         None => (at_nearest_edge(analysis, scale, &seen), from_oscillation(&at, own, seen.omega)),
@@ -65,7 +65,7 @@ pub fn site_check(project: &Project, analysis: &Analysis, scale: &Scale) -> Resu
             let swing = matching::swing(&at, own, Change { gain: 1.0, dead_time: 0.0 })?;
             let predicted = Predicted {
                 period: swing.map(|swing| swing.period),
-                overshoot: swing.map(|swing| swing.overshoot).or_else(|| at.figure(RequirementKind::Overshoot).value()),
+                overshoot: swing.map(|swing| swing.overshoot).or_else(|| overshoot_of(analysis, &at)),
                 setting: None,
             };
             (predicted, matching::from_step(&at, own, overshoot, seen.omega)?)
@@ -93,6 +93,11 @@ pub fn site_check(project: &Project, analysis: &Analysis, scale: &Scale) -> Resu
         remark: corrected.remark,
     };
     Ok(Some(SiteCheck { predicted: Some(predicted), correction: Some(correction), ..told(Vec::new()) }))
+}
+
+/// The overshoot of an answer without a second peak.
+fn overshoot_of(analysis: &Analysis, at: &LoopAt) -> Option<f64> {
+    analysis.rational().and_then(|_| at.figure(RequirementKind::Overshoot).value())
 }
 
 /// The observation in numbers.
@@ -156,8 +161,9 @@ fn at_nearest_edge(analysis: &Analysis, scale: &Scale, seen: &Seen) -> Predicted
     let knob = seen.knob.to_f64().value();
     let mut edges: Vec<(f64, f64)> = Vec::new();
     for edge in analysis.findings.stability.iter().filter_map(|range| range.to.as_ref()) {
-        let same_side = edge.value * knob > 0.0;
-        edges.extend(edge.omegas.iter().filter(|_| same_side).map(|omega| (edge.value, *omega)));
+        if edge.value * knob > 0.0 {
+            edges.extend(edge.omegas.iter().map(|omega| (edge.value, *omega)));
+        }
     }
     let distance = |edge: &(f64, f64)| libm::log(edge.0 / knob).abs();
     let nearest = edges.into_iter().min_by(|a, b| distance(a).total_cmp(&distance(b)));

@@ -21,6 +21,7 @@ use crate::exact::ExactError;
 use crate::model::Loop;
 use crate::project::RequirementKind;
 use crate::record::Cause;
+use crate::response::Setup;
 use alloc::string::String;
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
@@ -49,6 +50,8 @@ pub struct Lane {
 pub struct Ground<'a> {
     /// The loop as built.
     pub model: &'a Loop,
+    /// The same, for a look at single settings.
+    pub setup: Setup<'a>,
     /// Its family over the knob; None where it is no ratio of polynomials in s.
     pub family: Option<&'a Family>,
     /// The stable ranges.

@@ -3,10 +3,12 @@
 use super::super::pieces::{Border, Piece, intersection};
 use super::{Ground, Lane, Limit, at_least};
 use crate::exact::{Dyadic, ExactError, Interval};
-use crate::model::Loop;
 use crate::record::Cause;
-use crate::response::{Figure, LoopAt};
+use crate::response::{Figure, LoopAt, Setup};
+use alloc::collections::BTreeMap;
+use alloc::rc::Rc;
 use alloc::vec::Vec;
+use core::cell::RefCell;
 
 /// ln τ of the sampled knob values, τ as in [`Course`]: close enough that a figure rarely has two turns between two.
 const FIRST: f64 = -9.0;
@@ -19,15 +21,22 @@ const NEAR_ENDS: [f64; 2] = [13.0, 20.0];
 /// More values towards an infinite end or knob 0, where a loop may change its ways many decades out.
 const FAR_ENDS: [f64; 8] = [12.0, 16.0, 20.0, 26.0, 34.0, 44.0, 56.0, 70.0];
 
-/// Neighbours on one side of the limit are looked between where the nearer one's room is below this part of the change
-/// between them: the figure may turn there.
+/// How often a gap between two samples is halved: down to 3e-5 of the knob.
+const HALVINGS: usize = 14;
+
+/// In the first halvings, a gap is doubtful too where the nearer neighbour's room is below this part of the change between
+/// the two, whatever lies beside them.
+const COARSE_HALVINGS: usize = 5;
 const TURNING: f64 = 0.5;
 
 /// Likewise for settling times, which jump by half an oscillation.
 const JUMPING: f64 = 2.0;
 
-/// How often such a gap is halved: down to 1.5 % of the knob.
-const HALVINGS: u32 = 5;
+/// Samples added to one course at most.
+const ADDED_CAP: usize = 160;
+
+/// Loops kept between the first samples of one course; limits that are changed again and again would gather more.
+const KEPT: usize = 512;
 
 /// Edges are refined to this relative width; a tenth of what is promised.
 const EDGE_WIDTH: f64 = 1e-7;
@@ -48,13 +57,13 @@ impl Samples {
     ///
     /// # Errors
     /// From the exact methods, where poles cannot be found.
-    pub fn new(model: &Loop, stable: &[Piece]) -> Result<Self, ExactError> {
+    pub fn new(setup: Setup<'_>, stable: &[Piece]) -> Result<Self, ExactError> {
         let mut courses = Vec::new();
         for piece in stable.iter().flat_map(cut_at_zero) {
-            let course = Course { piece };
+            let course = Course { piece, between: RefCell::default() };
             let mut samples = Vec::new();
             for v in course.values() {
-                if let Some(at) = course.loop_at(model, v)? {
+                if let Some(at) = course.loop_at(setup, v)? {
                     samples.push((v, at));
                 }
             }
@@ -86,6 +95,8 @@ fn is_cut(border: Option<&Border>) -> bool {
 /// A range of one sign run through by v = ln τ, τ = (q − a)/(b − q); τ = (q − a)/|a| where b is infinite, and alike.
 struct Course {
     piece: Piece,
+    /// The loop between the first samples, by the bits of v: gaps are halved in the same places for several kinds.
+    between: RefCell<BTreeMap<u64, Option<Rc<LoopAt>>>>,
 }
 
 impl Course {
@@ -117,15 +128,29 @@ impl Course {
         }
     }
 
+    /// The loop at v, kept for the next kind.
+    fn kept(&self, setup: Setup<'_>, v: f64) -> Result<Option<Rc<LoopAt>>, ExactError> {
+        if let Some(known) = self.between.borrow().get(&v.to_bits()) {
+            return Ok(known.clone());
+        }
+        let found = self.loop_at(setup, v)?.map(Rc::new);
+        let mut between = self.between.borrow_mut();
+        if between.len() >= KEPT {
+            between.clear();
+        }
+        between.insert(v.to_bits(), found.clone());
+        Ok(found)
+    }
+
     /// The loop at v. None where f64 rounds the knob to an end.
-    fn loop_at(&self, model: &Loop, v: f64) -> Result<Option<LoopAt>, ExactError> {
+    fn loop_at(&self, setup: Setup<'_>, v: f64) -> Result<Option<LoopAt>, ExactError> {
         let Some(knob) = Dyadic::from_f64(self.knob(v)) else { return Ok(None) };
         let knob = knob.round_down(KNOB_BITS).to_rational();
         let at_cut = knob.is_zero();
         if at_cut || !self.piece.surely_holds(&knob) {
             return Ok(None);
         }
-        LoopAt::known_stable(model, knob).map(Some)
+        LoopAt::known_stable(setup, knob).map(Some)
     }
 }
 
@@ -167,8 +192,8 @@ pub(super) fn lane(ground: &Ground<'_>, limit: &Limit) -> Result<Lane, ExactErro
             defined |= figure != Figure::Undefined;
             points.push((*v, judge.room(figure)));
         }
-        judge.look_into_gaps(ground.model, course, &mut points)?;
-        for piece in judge.pieces(ground.model, course, &points)? {
+        judge.look_into_gaps(ground.setup, course, &mut points)?;
+        for piece in judge.pieces(ground.setup, course, &points)? {
             // What ends at the cut on one side goes on at the other.
             match pieces.last_mut() {
                 Some(last) if is_cut(last.to.as_ref()) && is_cut(piece.from.as_ref()) => last.to = piece.to,
@@ -213,41 +238,47 @@ impl Judge<'_> {
         }
     }
 
-    fn room_at(&self, model: &Loop, course: &Course, v: f64) -> Result<Room, ExactError> {
-        Ok(course.loop_at(model, v)?.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind))))
+    fn room_at(&self, setup: Setup<'_>, course: &Course, v: f64) -> Result<Room, ExactError> {
+        Ok(self.room_of(course.loop_at(setup, v)?.as_ref()))
     }
 
-    fn nervousness(&self) -> f64 {
+    fn room_of(&self, at: Option<&LoopAt>) -> Room {
+        at.map_or(Room::Met(false), |at| self.room(at.figure(self.limit.kind)))
+    }
+
+    /// Halves the gaps in which the figure may pass the limit and come back.
+    fn look_into_gaps(
+        &self,
+        setup: Setup<'_>,
+        course: &Course,
+        points: &mut Vec<(f64, Room)>,
+    ) -> Result<(), ExactError> {
+        let mut left_over = ADDED_CAP;
         use crate::project::RequirementKind as Kind;
-        if matches!(self.limit.kind, Kind::SettlingTime2 | Kind::SettlingTime5) { JUMPING } else { TURNING }
-    }
-
-    /// Looks between neighbours on the same side of the limit where the figure may jump or turn to the other side.
-    fn look_into_gaps(&self, model: &Loop, course: &Course, points: &mut Vec<(f64, Room)>) -> Result<(), ExactError> {
-        let mut all = core::mem::take(points);
-        // From left to right: a gap that is halved puts its two halves back on the stack.
-        let mut done: Vec<(f64, Room)> = all.first().copied().into_iter().collect();
-        let mut stack: Vec<((f64, Room), u32)> = Vec::new();
-        for point in all.drain(..).skip(1) {
-            stack.push((point, 0));
-            while let Some((right, depth)) = stack.pop() {
-                let Some(left) = done.last().copied() else { break };
-                if depth < HALVINGS && doubtful(left.1, right.1, self.nervousness()) {
-                    let middle = 0.5 * (left.0 + right.0);
-                    let room = self.room_at(model, course, middle)?;
-                    stack.push((right, depth + 1));
-                    stack.push(((middle, room), depth + 1));
-                } else {
-                    done.push(right);
-                }
+        let nervous = matches!(self.limit.kind, Kind::SettlingTime2 | Kind::SettlingTime5);
+        let part = if nervous { JUMPING } else { TURNING };
+        for halving in 0..HALVINGS {
+            let near = |k: usize| halving < COARSE_HALVINGS && changes_much(points[k - 1].1, points[k].1, part);
+            let doubtful: Vec<bool> = (1..points.len()).map(|k| near(k) || goes_across(points, k)).collect();
+            if !doubtful.contains(&true) {
+                break;
             }
+            let mut finer = Vec::with_capacity(2 * points.len());
+            for (k, point) in points.iter().enumerate() {
+                if k > 0 && doubtful[k - 1] && left_over > 0 {
+                    left_over -= 1;
+                    let middle = 0.5 * (points[k - 1].0 + point.0);
+                    finer.push((middle, self.room_of(course.kept(setup, middle)?.as_deref())));
+                }
+                finer.push(*point);
+            }
+            *points = finer;
         }
-        *points = done;
         Ok(())
     }
 
     /// The pieces of one course.
-    fn pieces(&self, model: &Loop, course: &Course, points: &[(f64, Room)]) -> Result<Vec<Piece>, ExactError> {
+    fn pieces(&self, setup: Setup<'_>, course: &Course, points: &[(f64, Room)]) -> Result<Vec<Piece>, ExactError> {
         let range = &course.piece;
         let mut pieces = Vec::new();
         // At the range's own ends the sample next to them decides.
@@ -255,10 +286,10 @@ impl Judge<'_> {
         for pair in points.windows(2) {
             match (pair[0].1.is_met(), pair[1].1.is_met()) {
                 (false, true) => {
-                    open = Some(Piece { from: Some(self.edge(model, course, pair[0], pair[1])?), to: None });
+                    open = Some(Piece { from: Some(self.edge(setup, course, pair[0], pair[1])?), to: None });
                 }
                 (true, false) => {
-                    let to = Some(self.edge(model, course, pair[0], pair[1])?);
+                    let to = Some(self.edge(setup, course, pair[0], pair[1])?);
                     pieces.extend(open.take().map(|piece| Piece { to, ..piece }));
                 }
                 _ => {}
@@ -272,7 +303,7 @@ impl Judge<'_> {
     /// a chord step did not halve.
     fn edge(
         &self,
-        model: &Loop,
+        setup: Setup<'_>,
         course: &Course,
         mut low: (f64, Room),
         mut high: (f64, Room),
@@ -292,7 +323,7 @@ impl Judge<'_> {
                 }
                 _ => 0.5 * (low.0 + high.0),
             };
-            let room = self.room_at(model, course, v)?;
+            let room = self.room_at(setup, course, v)?;
             if room.is_met() == low_met {
                 low = (v, room);
             } else {
@@ -307,8 +338,27 @@ impl Judge<'_> {
     }
 }
 
-/// Whether the figure may pass the limit between two neighbours on the same side of it.
-fn doubtful(left: Room, right: Room, part: f64) -> bool {
+/// Whether the figure may pass the limit between two neighbours on the same side of it, k − 1 and k: going on from either
+/// of them as it came from its other neighbour. So a turn is noticed, and a jump as well, behind which the figure goes on
+/// from another value.
+fn goes_across(points: &[(f64, Room)], k: usize) -> bool {
+    let (left, right) = (points[k - 1], points[k]);
+    if left.1.is_met() != right.1.is_met() {
+        return false;
+    }
+    let width = right.0 - left.0;
+    let crosses = |here: (f64, Room), before: Option<&(f64, Room)>| match (here.1, before) {
+        (Room::By(room), Some((v, Room::By(other)))) => {
+            let ahead = room + (room - other) / (here.0 - v).abs() * width;
+            (ahead >= 0.0) != (room >= 0.0)
+        }
+        _ => false,
+    };
+    crosses(left, k.checked_sub(2).map(|i| &points[i])) || crosses(right, points.get(k + 1))
+}
+
+/// Whether the figure changes so much between two neighbours on one side of the limit that it may pass it between them.
+fn changes_much(left: Room, right: Room, part: f64) -> bool {
     match (left, right) {
         (Room::By(a), Room::By(b)) => (a >= 0.0) == (b >= 0.0) && (b - a).abs() * part > a.abs().min(b.abs()),
         // Defined on one side only, yet both met or both not.
