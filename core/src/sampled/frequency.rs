@@ -29,6 +29,10 @@ pub struct SampledFrequency {
     at_nyquist: f64,
 }
 
+/// Where a pole or zero of the open loop lies on the circle, its phase jumps: the middles of the enclosures put a crossing
+/// there, with a factor beyond these.
+const POSSIBLE: core::ops::Range<f64> = 1e-25..1e25;
+
 /// A peak within this part of the sensitivity at z = −1 is there.
 const SAME_PEAK: f64 = 1e-9;
 
@@ -87,7 +91,7 @@ impl OpenLoop for SampledFrequency {
 
     /// Where L is real and negative, ascending, z = 1 and z = −1 included.
     fn phase_crossings(&self) -> Result<Vec<PhaseCrossing>, ExactError> {
-        let found = self.in_v.phase_crossings()?.into_iter();
+        let found = self.in_v.phase_crossings()?.into_iter().filter(|c| POSSIBLE.contains(&c.factor));
         Ok(found.map(|c| PhaseCrossing { omega: self.omega(c.omega), factor: c.factor }).collect())
     }
 

@@ -264,7 +264,7 @@ impl Machine {
                         Event::Load(after) if *after == k => pushed = load,
                         Event::Load(_) => {}
                         Event::Hold(ago) => {
-                            held = k.checked_sub(*ago).and_then(|j| controls.get(j).copied()).unwrap_or(held)
+                            held = k.checked_sub(*ago).and_then(|j| controls.get(j).copied()).unwrap_or(held);
                         }
                         Event::Sample(_) => {
                             let here = self.parts_hold_now(part, k, controls.len());
