@@ -12,6 +12,7 @@ use stayband_core::dead_time::response::{Output, to_step};
 use stayband_core::dead_time::{DeadTimeError, DeadTimePartition, Quasi, branches, delay, landmarks, poles};
 use stayband_core::exact::IntPoly;
 use stayband_core::record::{Root, View};
+use stayband_core::response::OpenLoop;
 use std::io::{BufRead, Write, stdin, stdout};
 use std::time::Instant;
 
