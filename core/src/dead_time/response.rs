@@ -413,7 +413,7 @@ mod tests {
         let pole = poles::dominant(&Quasi::new(&a, &b, &time(1, 10))).expect("found")[0].re;
         let decay = (1.0 - trace.value(2000.0)) / (1.0 - trace.value(1000.0));
         assert!((libm::log(decay) / 1000.0 / pole - 1.0).abs() < 1e-6, "{decay} {pole}");
-        assert!(trace.points().windows(2).all(|w| (w[1].value - w[0].value).abs() < 1e-2));
+        assert!(trace.points().windows(2).all(|w| (w[1].value - w[0].value).abs() < 3e-2));
     }
 
     #[test]
