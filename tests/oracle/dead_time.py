@@ -20,6 +20,8 @@ import numpy as np
 LARGEST_TURN = 1.0
 # Relative distance from an edge at which both sides are counted.
 BESIDE = 1e-4
+# Points of a contour beyond which a count is left out as unclear.
+POINTS_CAP = 1_500_000
 # Points of the knob between edges that are counted besides.
 SAMPLES = 3
 
@@ -35,6 +37,8 @@ def contour_frequencies(a, b, dead_time):
     top = 10.0 * max(1e-3, np.abs(roots).max(initial=0))
     while np.abs(value(b, 1j * top)) * 3 > np.abs(value(a, 1j * top)) or top * dead_time < 1:
         top *= 1.5
+    if top * dead_time / 0.02 > POINTS_CAP:
+        return None
     pieces = [np.arange(0, top, 0.02 / dead_time), np.geomspace(1e-9 * top, top, 4000)]
     for root in roots:
         width = max(abs(root.real), 1e-7 * abs(root), 1e-12)
@@ -46,6 +50,8 @@ def contour_frequencies(a, b, dead_time):
 def unstable(a, b, dead_time):
     """Zeros right of the axis, or None where the winding is not clear."""
     frequencies = contour_frequencies(a, b, dead_time)
+    if frequencies is None:
+        return None
     for _ in range(12):
         s = 1j * frequencies
         f = value(a, s) + value(b, s) * np.exp(-s * dead_time)

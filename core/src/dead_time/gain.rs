@@ -9,21 +9,21 @@
 //! Every crossing up to W is known, and every one with |q| ≤ Q, for a Q beyond which the count exceeds all that the crossings
 //! left out could still take away. One count anchors the ranges: it follows dead time from 0 on ([`super::delay`]).
 
+use super::bounds::inner_frequency;
 use super::delay::{ComplexInterval, WORKING_BITS, count_at, over, square_root, squared};
 use super::isolation::{AxisFunction, Isolated};
+use super::origin::{order_at_zero, origin_crossing};
 use super::partition::Crossing;
 use super::trigonometry::Trigonometry;
 use super::{Count, DeadTimeError, DeadTimePartition};
-use crate::exact::dyadic::sign_of;
 use crate::exact::gcd::{gcd, squarefree_part};
 use crate::exact::half_plane;
-use crate::exact::real_roots::{positive_roots, sign_changes};
+use crate::exact::real_roots::positive_roots;
 use crate::exact::{Dyadic, IntPoly, Interval};
 use crate::ranges::{Contact, Place};
 use alloc::vec::Vec;
 use core::f64::consts::PI;
 use dashu_int::IBig;
-use dashu_int::ops::BitTest;
 use dashu_ratio::RBig;
 
 /// Brackets of edges are at least this narrow, in bits: a thousandth of the rounding of f64, and far below the 1e-15 of the record.
@@ -34,12 +34,6 @@ const NEWTON_CAP: usize = 12;
 
 /// Times the bound on |q| is raised before no outer range is found.
 const OUTER_CAP: usize = 40;
-
-/// Coefficients of a power series looked at for the first that is not zero.
-const SERIES_CAP: usize = 80;
-
-/// Halvings of a bound on roots.
-const BOUND_CAP: usize = 4000;
 
 /// The loop: its parts have no common root.
 #[derive(Clone, Debug)]
@@ -414,131 +408,6 @@ fn of_x_as_of_s(p: &IntPoly) -> IntPoly {
         coefficients[2 * i] = if i % 2 == 1 { -c } else { c.clone() };
     }
     IntPoly::new(coefficients)
-}
-
-/// The order in ω of h's zero at 0, and the sign of h right of it, from the exact power series.
-fn order_at_zero(u: &IntPoly, v: &IntPoly, c: &IntPoly, dead_time: &RBig) -> Result<(usize, i32), DeadTimeError> {
-    let square = dead_time * dead_time;
-    for m in 0..SERIES_CAP {
-        // h/ω = u·T·Σ (−xT²)^k/(2k+1)! + v·Σ (−xT²)^k/(2k)! + c, the coefficient of x^m.
-        let mut sum = RBig::from(c.coefficient(m));
-        let mut term = RBig::ONE;
-        for k in 0..=m {
-            sum += &term * RBig::from(v.coefficient(m - k));
-            let odd = &term / RBig::from(2 * k + 1);
-            sum += odd * dead_time * RBig::from(u.coefficient(m - k));
-            term = -term * &square / RBig::from((2 * k + 1) * (2 * k + 2));
-        }
-        if !sum.is_zero() {
-            return Ok((2 * m + 1, sign_of(sum.numerator())));
-        }
-    }
-    Err(DeadTimeError::AlwaysZero)
-}
-
-/// The crossing of the origin; `sign` is that of h right of 0.
-fn origin_crossing(family: &GainFamily, sign: i32) -> Result<Option<Crossing>, DeadTimeError> {
-    let (above, below) = (family.a.coefficient(0) + family.b0.coefficient(0), family.b1.coefficient(0));
-    if below.is_zero() {
-        return if above.is_zero() { Err(DeadTimeError::AlwaysAtOrigin) } else { Ok(None) };
-    }
-    let q = RBig::from_parts_signed(-above, below.clone());
-    let change = i64::from(-sign);
-    let place = Place::exactly(q.clone(), Contact::Origin);
-    let (a, b) = family.at(&q);
-    let Some((multiplicity, leading)) = order_at_origin(&a, &b, &family.dead_time) else {
-        return Err(DeadTimeError::AlwaysZero);
-    };
-    if multiplicity == 1 {
-        return Ok(Some(Crossing::simple(place, change)));
-    }
-    // Near it leading·s^m + (q − q0)·B1(0) = 0: the roots leave along the m-th roots of a number of known sign.
-    let direction = -leading * sign_of(&below);
-    let (lower, upper) = (to_the_right(multiplicity, -direction), to_the_right(multiplicity, direction));
-    let from_right = match (lower, upper) {
-        (Some(right), _) => Some(right),
-        (None, Some(right)) => usize::try_from(right as i64 - change).ok(),
-        (None, None) => None,
-    };
-    Ok(Some(Crossing { place, change, axis: multiplicity, from_right }))
-}
-
-/// The order of the zero at s = 0 of A + B·e^(−sT), and the sign of its first coefficient; with e^(+sT)·A + B the same.
-fn order_at_origin(a: &IntPoly, b: &IntPoly, dead_time: &RBig) -> Option<(usize, i32)> {
-    for i in 0..SERIES_CAP {
-        let mut sum = RBig::from(a.coefficient(i));
-        let mut term = RBig::ONE;
-        for k in 0..=i {
-            sum += &term * RBig::from(b.coefficient(i - k));
-            term = -term * dead_time / RBig::from(k + 1);
-        }
-        if !sum.is_zero() {
-            return Some((i, sign_of(sum.numerator())));
-        }
-    }
-    None
-}
-
-/// How many m-th roots of a positive (or negative) number have a positive real part; None where some have none.
-fn to_the_right(m: usize, sign: i32) -> Option<usize> {
-    let mut right = 0;
-    for k in 0..m {
-        let cos = libm::cos((2.0 * k as f64 + if sign < 0 { 1.0 } else { 0.0 }) * PI / m as f64);
-        if cos.abs() < 1e-9 {
-            return None;
-        }
-        right += usize::from(cos > 0.0);
-    }
-    Some(right)
-}
-
-/// A frequency beyond which every crossing adds two unstable poles as |q| grows, rad/s.
-///
-/// With z = A·conj B1·e^(jωT), S = |z|² and θ its phase, S·θ′ = T·S + u·(v + 2x·v′) − 2x·u′·v. At a crossing
-/// Im z = −ωc and h′ = θ′·Re z + (S′/2S)·Im z + (ωc)′. Without B0, θ′ > 0 is enough. With it, these four together are:
-/// |A| ≥ 2|B0|, so that Re z has the sign of −q and at least √3/2 of |z|; θ′ ≥ T/2; and two that leave the other terms
-/// below that.
-fn inner_frequency(a: &IntPoly, b0: &IntPoly, u: &IntPoly, v: &IntPoly, c: &IntPoly, dead_time: &RBig) -> f64 {
-    let x = IntPoly::from_i64(&[0, 1]);
-    let scaled = |p: &IntPoly, k: &IBig| IntPoly::new(p.coefficients().iter().map(|c| c * k).collect());
-    let (tn, td) = (dead_time.numerator().clone(), IBig::from(dead_time.denominator().clone()));
-    let size = u.times(u).plus(&v.times(v).times(&x));
-    let dv = v.plus(&scaled(&v.derivative().times(&x), &IBig::from(2)));
-    let turning = u.times(&dv).minus(&scaled(&u.derivative().times(v).times(&x), &IBig::from(2)));
-    if b0.is_zero() {
-        return libm::sqrt(bound_of_positive_roots(&size.combined(&tn, &turning, &td)));
-    }
-    let (tn2, td2) = (&tn * &tn * 3, &td * &td);
-    let dc = c.plus(&scaled(&c.derivative().times(&x), &IBig::from(2)));
-    let slope = size.derivative();
-    let conditions = [
-        squared(a).combined(&IBig::ONE, &squared(b0), &IBig::from(-4)),
-        size.combined(&tn, &turning, &(&td * 2)),
-        size.times(&size).combined(&tn2, &slope.times(&slope).times(&x), &(&td2 * -16)),
-        size.combined(&tn2, &dc.times(&dc), &(&td2 * -64)),
-    ];
-    libm::sqrt(conditions.iter().map(bound_of_positive_roots).fold(0.0, f64::max))
-}
-
-/// A number that no positive root exceeds, at most about twice the largest by Descartes' rule: beyond it the coefficients of
-/// the shifted polynomial show no change of sign.
-fn bound_of_positive_roots(p: &IntPoly) -> f64 {
-    if sign_changes(p.coefficients()) == 0 {
-        return 0.0;
-    }
-    let top = p.leading().bit_len() as i64;
-    let bits = |(i, c): (usize, &IBig)| (c.bit_len() as i64 - top + 1).div_euclid((p.degree() - i) as i64) + 1;
-    let lower = p.coefficients().iter().enumerate().take(p.degree()).filter(|(_, c)| !c.is_zero());
-    // Fujiwara's bound, 2^exponent.
-    let mut exponent = lower.map(bits).max().unwrap_or(0) + 1;
-    for _ in 0..BOUND_CAP {
-        let (up, down) = (IBig::ONE << ((exponent - 1).max(0) as usize), IBig::ONE << ((1 - exponent).max(0) as usize));
-        if sign_changes(p.shifted_right(&-up, &down, p.degree()).coefficients()) > 0 {
-            break;
-        }
-        exponent -= 1;
-    }
-    libm::ldexp(1.0, exponent.clamp(-1000, 1000) as i32)
 }
 
 #[cfg(test)]

@@ -5,6 +5,7 @@
 //! e^(jωT) is transcendental for every algebraic ω ≠ 0; so no crossing of the axis at ω > 0 has an algebraic ω or knob,
 //! and none is a mere touch.
 
+mod bounds;
 pub mod branches;
 pub mod delay;
 pub mod frequency;
@@ -12,6 +13,7 @@ mod function;
 pub mod gain;
 mod isolation;
 pub mod landmarks;
+mod origin;
 mod partition;
 mod plane;
 pub mod poles;

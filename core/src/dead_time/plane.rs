@@ -113,12 +113,6 @@ impl Plane {
         inside(s.re, self.view.re) && inside(s.im, self.view.im)
     }
 
-    /// Whether |q| grows from a point of the real axis to the right, seen at a small distance.
-    pub(super) fn grows_right(&self, x: f64) -> bool {
-        let step = 1e-3 * self.pixel();
-        self.on_axis(x + step).abs() > self.on_axis(x).abs()
-    }
-
     /// The roots of q′ = 0 on the real axis: (A′·B1 − A·B1′ + T·A·B1) + (B0′·B1 − B0·B1′)·e^(−Ts), again a
     /// quasi-polynomial, so that none is missed.
     fn real_meetings(&self, family: &GainFamily) -> Result<Vec<RealMeeting>, DeadTimeError> {
@@ -137,10 +131,18 @@ impl Plane {
                 s: root.re,
                 knob: self.on_axis(root.re),
                 multiplicity: root.multiplicity + 1,
-                grows_right: self.grows_right(root.re),
+                grows_right: false,
             })
             .collect();
         meetings.sort_by(|a, b| a.s.total_cmp(&b.s));
+        // Up to the next special point q rises or falls all the way.
+        let others = self.poles.iter().chain(&self.zeros).filter(|r| r.im == 0.0).map(|r| r.re);
+        let special: Vec<f64> =
+            others.chain(meetings.iter().map(|m| m.s)).chain([self.view.re[1] + 1000.0 * self.pixel()]).collect();
+        for meeting in &mut meetings {
+            let next = special.iter().copied().filter(|x| *x > meeting.s).fold(f64::INFINITY, f64::min);
+            meeting.grows_right = self.on_axis(0.5 * (meeting.s + next)).abs() > meeting.knob.abs();
+        }
         Ok(meetings)
     }
 
@@ -155,10 +157,26 @@ impl Plane {
         self.directions(zero, -(zero.multiplicity as f64), sign)
     }
 
+    /// The k-th Taylor coefficient of A·e^(Ts) + B0.
+    fn sum_coefficient(&self, s: Complex<f64>, k: usize) -> Complex<f64> {
+        let lead = (s * self.dead_time).exp();
+        let (mut sum, mut term) = (Complex::new(0.0, 0.0), Complex::new(1.0, 0.0));
+        for (i, coefficient) in taylor(&self.a, s).iter().take(k + 1).enumerate().rev() {
+            // T^(k−i)/(k−i)!, from i = k down.
+            let missing = k - i;
+            if missing > 0 {
+                term *= self.dead_time / missing as f64;
+            }
+            sum += coefficient * term;
+        }
+        sum * lead + taylor(&self.b0, s).get(k).copied().unwrap_or_default()
+    }
+
     fn directions(&self, root: &Root, order: f64, sign: KnobSign) -> Vec<f64> {
         let s = Complex::new(root.re, root.im);
-        let step = 1e-5 * self.pixel();
-        let knob = self.at(s + step).value;
+        // q ≈ knob·(s − root)^order, from the first Taylor coefficients that do not vanish.
+        let (of_sum, of_b1) = if order > 0.0 { (root.multiplicity, 0) } else { (0, root.multiplicity) };
+        let knob = -self.sum_coefficient(s, of_sum) / taylor(&self.b1, s)[of_b1];
         if !(knob.re.is_finite() && knob.im.is_finite()) {
             return Vec::new();
         }
@@ -178,4 +196,16 @@ impl Plane {
             })
             .collect()
     }
+}
+
+/// All Taylor coefficients of a polynomial at a point, by repeated synthetic division.
+fn taylor(p: &[f64], s: Complex<f64>) -> Vec<Complex<f64>> {
+    let mut all: Vec<Complex<f64>> = p.iter().map(|c| Complex::new(*c, 0.0)).collect();
+    for round in 0..all.len() {
+        for i in (round..all.len().saturating_sub(1)).rev() {
+            let next = all[i + 1];
+            all[i] += next * s;
+        }
+    }
+    all
 }

@@ -5,13 +5,17 @@
 //! Differential-Difference Equations, Academic Press 1963, chapter 3). Each dead time is cut into equal segments that resolve
 //! the fastest pole of A; in each, z and the delayed term are Taylor polynomials of an order at which the rest is below
 //! rounding. Nothing is interpolated between a segment and its delayed image: their ends coincide.
+//! Where slow modes outlast thousands of segments, the rest is the sum of these modes, which must continue the answer.
 
-use super::DeadTimeError;
+use super::function::{Quasi, horner, scaled};
+use super::{DeadTimeError, poles};
 use crate::exact::{Dyadic, IntPoly};
+use crate::numerics::magnitude;
 use crate::response::{Trace, TracePoint};
 use alloc::collections::VecDeque;
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
+use nalgebra::{Complex, ComplexField};
 
 /// The order of the Taylor polynomials. Time is scaled so that the coefficients of A are at most 1 and its roots at most 2:
 /// 2^22/22! is 4e-15.
@@ -23,8 +27,20 @@ const LONGEST: f64 = 1.0;
 /// Segments before an answer is given up: a few tens of milliseconds.
 const SEGMENT_CAP: usize = 60_000;
 
-/// Segments of an answer that is looked at live: a few milliseconds.
-const SOON: f64 = 6_000.0;
+/// Segments after which the rest is tried as a sum of the slow modes.
+const SEGMENTS_BEFORE_MODES: usize = 1500;
+
+/// Modes that have faded to e^-this by then are left out of that sum.
+const FADED: f64 = 25.0;
+
+/// The modes must continue the stepped answer within this part of its largest distance from rest.
+const CONTINUED: f64 = 1e-7;
+
+/// Points for one time constant, or one radian, of the fastest of the modes: the error of the cubics is 1e-9.
+const POINTS_FOR_MODES: f64 = 40.0;
+
+/// Points of such a rest.
+const MODE_POINT_CAP: usize = 60_000;
 
 /// The answer has settled when, over a whole dead time, state and outputs stay within this part of their largest distance from
 /// rest. The figures speak of parts in a hundred; peaks of 1e-9.
@@ -69,17 +85,15 @@ pub fn to_step(a: &IntPoly, b: &IntPoly, dead_time: &RBig, outputs: &[Output]) -
         .iter()
         .map(|output| Writer::new(stepper.scaled(&output.above), final_value(&output.above), output.lag))
         .collect();
-    stepper.run(&mut writers)?;
+    if let Run::Slow(start) = stepper.run(&mut writers, SEGMENTS_BEFORE_MODES)? {
+        let slow = SlowModes::new(a, b, dead_time, start / stepper.rate, outputs);
+        if !slow.is_some_and(|slow| slow.finish(start / stepper.rate, &mut writers)) {
+            writers.iter_mut().for_each(Writer::restart);
+            stepper.run(&mut writers, SEGMENT_CAP)?;
+        }
+    }
     let traces = writers.into_iter().map(|w| Trace::new(w.final_value, w.points));
     traces.collect::<Option<Vec<_>>>().ok_or(DeadTimeError::TooManySteps { cap: SEGMENT_CAP })
-}
-
-/// Whether the answers settle within few enough segments to be looked at live, where the slowest pole decays at `decay` > 0,
-/// 1/s; [`to_step`] itself goes on for ten times as long.
-pub fn settles_soon(a: &IntPoly, b: &IntPoly, dead_time: &RBig, decay: f64) -> bool {
-    let stepper = Stepper::new(a, b, dead_time.to_f64().value());
-    let time = -libm::log(SETTLED) / decay * stepper.rate;
-    time / stepper.length < SOON
 }
 
 /// The loop in scaled time.
@@ -135,8 +149,8 @@ impl Stepper {
         p.coefficients().iter().enumerate().map(scale).collect()
     }
 
-    /// Steps until everything is at rest.
-    fn run(&self, writers: &mut [Writer]) -> Result<(), DeadTimeError> {
+    /// Steps until everything is at rest, or the limit is met.
+    fn run(&self, writers: &mut [Writer], limit: usize) -> Result<Run, DeadTimeError> {
         if self.segments > SEGMENT_CAP {
             return Err(DeadTimeError::TooManySteps { cap: SEGMENT_CAP });
         }
@@ -144,7 +158,7 @@ impl Stepper {
         let mut delayed: VecDeque<[f64; ORDER]> = VecDeque::with_capacity(self.segments + 1);
         let mut series = alloc::vec![[0.0; ORDER + 1]; self.degree + 1];
         let (mut largest, mut quiet) = (0.0_f64, 0);
-        for number in 0..SEGMENT_CAP {
+        for number in 0..limit {
             let mut force = [0.0; ORDER];
             force[0] = 1.0;
             if delayed.len() == self.segments
@@ -173,8 +187,11 @@ impl Stepper {
             }
             quiet = if still { quiet + 1 } else { 0 };
             if quiet > self.segments {
-                return Ok(());
+                return Ok(Run::Settled);
             }
+        }
+        if limit < SEGMENT_CAP && largest.is_finite() && state.iter().all(|v| v.is_finite()) {
+            return Ok(Run::Slow(limit as f64 * self.length));
         }
         Err(DeadTimeError::TooManySteps { cap: SEGMENT_CAP })
     }
@@ -197,6 +214,78 @@ impl Stepper {
     }
 }
 
+/// How a run of segments ended.
+enum Run {
+    Settled,
+    /// Not settled by this scaled time.
+    Slow(f64),
+}
+
+/// The slow modes of the answers: y = y(∞) + Σ c·e^(p·(t − lag)), c = M(p)/(p·F′(p)).
+struct SlowModes {
+    /// With Im p ≥ 0; a pair counts twice.
+    poles: Vec<Complex<f64>>,
+    /// For each output, one coefficient a pole.
+    coefficients: Vec<Vec<Complex<f64>>>,
+}
+
+impl SlowModes {
+    /// The modes that are alive at a time, s. None where poles coincide, or cannot be found.
+    fn new(a: &IntPoly, b: &IntPoly, dead_time: &RBig, time: f64, outputs: &[Output]) -> Option<Self> {
+        let found = poles::right_of(&Quasi::new(a, b, dead_time), -FADED / time).ok()?;
+        if found.is_empty() || found.iter().any(|root| root.multiplicity > 1 || root.re >= 0.0) {
+            return None;
+        }
+        let poles: Vec<Complex<f64>> =
+            found.iter().filter(|root| root.im >= 0.0).map(|root| Complex::new(root.re, root.im)).collect();
+        let seconds = dead_time.to_f64().value();
+        let of = |output: &Output| {
+            let [a, b, m] = scaled([a, b, &output.above]);
+            let f = Quasi { a, b, dead_time: seconds };
+            let coefficient = |p: &Complex<f64>| {
+                let above = horner(&m, *p, magnitude(*p)).0;
+                above / (p * f.at(*p).slope) * if p.im > 0.0 { 2.0 } else { 1.0 }
+            };
+            poles.iter().map(coefficient).collect()
+        };
+        let coefficients = outputs.iter().map(of).collect();
+        Some(Self { poles, coefficients })
+    }
+
+    /// Value and slope of an output at a time, from its lag on.
+    fn at(&self, output: usize, t: f64, final_value: f64) -> (f64, f64) {
+        let (mut value, mut slope) = (final_value, 0.0);
+        for (p, c) in self.poles.iter().zip(&self.coefficients[output]) {
+            let mode = c * (p * t).exp();
+            value += mode.re;
+            slope += (mode * p).re;
+        }
+        (value, slope)
+    }
+
+    /// Writes the rest from a time on; false where it does not continue what is there, or is too long.
+    fn finish(&self, start: f64, writers: &mut [Writer]) -> bool {
+        let continues = |(k, w): (usize, &Writer)| {
+            let last = w.points.last().map_or(0.0, |p| p.value);
+            (self.at(k, start, w.final_value).0 - last).abs() <= CONTINUED * w.largest
+        };
+        let slowest = self.poles.iter().map(|p| -p.re).fold(f64::INFINITY, f64::min);
+        let step = 1.0 / (POINTS_FOR_MODES * self.poles.iter().map(|p| magnitude(*p)).fold(0.0, f64::max));
+        let count = libm::ceil(-libm::log(SETTLED) / (slowest * step));
+        if !writers.iter().enumerate().all(continues) || count >= MODE_POINT_CAP as f64 {
+            return false;
+        }
+        for (k, writer) in writers.iter_mut().enumerate() {
+            for i in 1..=(count as usize) {
+                let t = start + i as f64 * step;
+                let (value, slope) = self.at(k, t, writer.final_value);
+                writer.points.push(TracePoint { time: writer.lag + t, value, slope });
+            }
+        }
+        true
+    }
+}
+
 /// Quotient of two numbers given as mantissa and exponent.
 fn ratio(above: (f64, i64), below: (f64, i64)) -> f64 {
     libm::ldexp(above.0 / below.0, (above.1 - below.1).clamp(-4000, 4000) as i32)
@@ -214,12 +303,18 @@ struct Writer {
 
 impl Writer {
     fn new(weights: Vec<f64>, final_value: f64, lag: f64) -> Self {
-        let mut points = Vec::new();
-        if lag > 0.0 {
-            points.push(TracePoint { time: 0.0, value: 0.0, slope: 0.0 });
-            points.push(TracePoint { time: lag, value: 0.0, slope: 0.0 });
+        let mut writer = Self { weights, final_value, lag, points: Vec::new(), largest: 0.0 };
+        writer.restart();
+        writer
+    }
+
+    fn restart(&mut self) {
+        self.points.clear();
+        self.largest = self.final_value.abs();
+        if self.lag > 0.0 {
+            self.points.push(TracePoint { time: 0.0, value: 0.0, slope: 0.0 });
+            self.points.push(TracePoint { time: self.lag, value: 0.0, slope: 0.0 });
         }
-        Self { weights, final_value, lag, points, largest: final_value.abs() }
     }
 
     /// Adds the points of a segment; true where the output is at rest in all of it.
@@ -307,6 +402,18 @@ mod tests {
             assert!((traces[1].value(0.5 + t) - y(t)).abs() < 1e-8, "{t}");
         }
         assert!((traces[0].final_value - 1.0).abs() < 1e-15 && (traces[1].value(200.0) - 1.0).abs() < 1e-15);
+    }
+
+    #[test]
+    fn a_slow_loop_is_finished_by_its_modes() {
+        // e^(−s/10)/(s(s/10 + 1)) with gain 1/1000 settles in 1000 s: the slowest pole is next to −1/1000.
+        let (a, b) = (p(&[0, 10_000, 1000]), p(&[10]));
+        let output = Output { above: p(&[10]), lag: 0.1 };
+        let trace = to_step(&a, &b, &time(1, 10), &[output]).expect("settles").remove(0);
+        let pole = poles::dominant(&Quasi::new(&a, &b, &time(1, 10))).expect("found")[0].re;
+        let decay = (1.0 - trace.value(2000.0)) / (1.0 - trace.value(1000.0));
+        assert!((libm::log(decay) / 1000.0 / pole - 1.0).abs() < 1e-6, "{decay} {pole}");
+        assert!(trace.points().windows(2).all(|w| (w[1].value - w[0].value).abs() < 3e-2));
     }
 
     #[test]
