@@ -43,41 +43,44 @@ const REMAINING: f64 = 1e-4;
 /// Sample periods before an answer is given up: the sampling is then far faster than the loop, or the loop nearly unstable.
 const PERIODS_CAP: f64 = 1e9;
 
-/// Answers to unit steps.
+/// Answers to a unit step of the command.
 #[derive(Debug)]
 pub struct Answers {
-    /// Of the output, in the command's units, to the command.
+    /// Of the output, in the command's units.
     pub output: Trace,
-    /// Of the hold's output to the command: a staircase.
+    /// Of the hold's output: a staircase.
     pub control: Trace,
-    /// Of the output, in its own units, to a step at the plant's input.
-    pub load: Trace,
 }
 
-/// The answers of a stable loop.
-pub(super) fn answers(at: &SampledAt) -> Option<Answers> {
-    let machine = Machine::new(at)?;
-    let periods = libm::log(SETTLED) / libm::log(at.spectral_radius().clamp(1e-3, 1.0 - 1e-12));
+/// Periods until the loop has settled. None where there are too many.
+fn periods(at: &SampledAt) -> Option<usize> {
     let input = &at.whole.input;
+    let decay = libm::log(SETTLED) / libm::log(at.spectral_radius().clamp(1e-3, 1.0 - 1e-12));
     let lead = (input.delay() / &input.period).to_f64().value();
     // Repeated poles decay more slowly at first.
-    let periods = libm::ceil(1.25 * periods + 2.0 * lead + 2.0 * at.poles.len() as f64) + 2.0;
-    if periods > PERIODS_CAP {
-        return None;
-    }
-    let sensor = at_rest(&input.sensor.above, &input.sensor.below);
-    let scale = sensor.unwrap_or(1.0);
-    let command = run(&machine, periods as usize, Excitation::Command);
-    let load = run(&machine, periods as usize, Excitation::Load);
-    let last = |points: &[TracePoint]| points.last().map_or(0.0, |p| p.value);
-    let output: Vec<TracePoint> = command.output.iter().map(|p| scaled(p, scale)).collect();
+    let periods = libm::ceil(1.25 * decay + 2.0 * lead + 2.0 * at.poles.len() as f64) + 2.0;
+    (periods <= PERIODS_CAP).then_some(periods as usize)
+}
+
+/// The answers of a stable loop to the command.
+pub(super) fn answers(at: &SampledAt) -> Option<Answers> {
+    let sensor = at_rest(&at.whole.input.sensor.above, &at.whole.input.sensor.below);
+    let found = run(&Machine::new(at)?, periods(at)?, Excitation::Command);
+    let output: Vec<TracePoint> = found.output.iter().map(|p| scaled(p, sensor.unwrap_or(1.0))).collect();
     let final_output = if sensor.is_some() { at.final_measured() } else { last(&output) };
-    let final_load = sensor.map_or_else(|| last(&load.output), |gain| at.final_load() / gain);
-    Some(Answers {
-        output: settled(final_output, output)?,
-        control: settled(at.final_control(), command.control)?,
-        load: settled(final_load, load.output)?,
-    })
+    Some(Answers { output: settled(final_output, output)?, control: settled(at.final_control(), found.control)? })
+}
+
+/// The answer of the output of a stable loop, in its own units, to a unit step at the plant's input.
+pub(super) fn load(at: &SampledAt) -> Option<Trace> {
+    let sensor = at_rest(&at.whole.input.sensor.above, &at.whole.input.sensor.below);
+    let found = run(&Machine::new(at)?, periods(at)?, Excitation::Load).output;
+    let final_load = sensor.map_or_else(|| last(&found), |gain| at.final_load() / gain);
+    settled(final_load, found)
+}
+
+fn last(points: &[TracePoint]) -> f64 {
+    points.last().map_or(0.0, |p| p.value)
 }
 
 fn scaled(p: &TracePoint, factor: f64) -> TracePoint {
@@ -88,8 +91,9 @@ fn scaled(p: &TracePoint, factor: f64) -> TracePoint {
 fn settled(final_value: f64, points: Vec<TracePoint>) -> Option<Trace> {
     let off = |p: &TracePoint| (p.value - final_value).abs();
     let largest = points.iter().map(off).fold(final_value.abs(), f64::max);
-    let tail = &points[points.len() - points.len() / 10..];
-    if tail.iter().any(|p| off(p) > REMAINING * largest) { None } else { Trace::new(final_value, points) }
+    let tail = 0.9 * points.last().map_or(0.0, |p| p.time);
+    let moving = points.iter().any(|p| p.time >= tail && off(p) > REMAINING * largest);
+    if moving { None } else { Trace::new(final_value, points) }
 }
 
 /// The static gain, where it is finite and not zero.
