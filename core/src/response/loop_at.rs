@@ -9,7 +9,7 @@ use crate::exact::complex_roots::{enclose_all, polished};
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
 use crate::model::{BlockAt, Loop};
-use crate::sampled::{Answers, SampledAt, SampledRanges};
+use crate::sampled::{SampledAt, SampledRanges};
 use alloc::rc::Rc;
 use alloc::vec::Vec;
 use core::cell::OnceCell;
@@ -219,8 +219,12 @@ impl LoopAt {
             return Answer::Undefined;
         }
         if let Some(sampled) = &self.sampled {
-            let pick = |all: &Answers| [&all.output, &all.load, &all.control][number].clone();
-            return delayed::answer(sampled.answers().map(pick).map(Motion::Trace).as_ref());
+            let found = match number {
+                1 => sampled.load(),
+                2 => sampled.answers().map(|all| &all.control),
+                _ => sampled.answers().map(|all| &all.output),
+            };
+            return delayed::answer(found.cloned().map(Motion::Trace).as_ref());
         }
         if let Some(delayed) = &self.delayed {
             return delayed::answer(delayed.answers(&self.scaled_open(), || self.numerators()).map(|all| &all[number]));

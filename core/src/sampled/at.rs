@@ -4,11 +4,12 @@ use super::enclosed::Enclosed;
 use super::factored::Factored;
 use super::frequency::SampledFrequency;
 use super::ranges::SampledRanges;
-use super::response::{Answers, answers};
+use super::response::{Answers, answers, load};
 use crate::exact::complex_roots::polished;
 use crate::exact::{Dyadic, ExactError, IntPoly};
 use crate::numerics::magnitude;
 use crate::record::{Point, equivalent};
+use crate::response::Trace;
 use alloc::rc::Rc;
 use alloc::vec::Vec;
 use core::cell::OnceCell;
@@ -30,6 +31,7 @@ pub struct SampledAt {
     stable: OnceCell<bool>,
     frequency: OnceCell<SampledFrequency>,
     answers: OnceCell<Option<Answers>>,
+    load: OnceCell<Option<Trace>>,
 }
 
 impl SampledAt {
@@ -48,6 +50,7 @@ impl SampledAt {
             stable: OnceCell::new(),
             frequency: OnceCell::new(),
             answers: OnceCell::new(),
+            load: OnceCell::new(),
         })
     }
 
@@ -139,9 +142,14 @@ impl SampledAt {
         self.is_stable().then(|| self.frequency.get_or_init(|| SampledFrequency::new(self)))
     }
 
-    /// Answers over time. None where the closed loop is unstable, or settles too slowly to be followed.
+    /// Answers to the command over time. None where the closed loop is unstable, or settles too slowly to be followed.
     pub fn answers(&self) -> Option<&Answers> {
         self.answers.get_or_init(|| if self.is_stable() { answers(self) } else { None }).as_ref()
+    }
+
+    /// The answer of the output, in its own units, to a unit step at the plant's input. None likewise.
+    pub fn load(&self) -> Option<&Trace> {
+        self.load.get_or_init(|| if self.is_stable() { load(self) } else { None }).as_ref()
     }
 
     /// The largest |z| of a pole.

@@ -13,6 +13,7 @@ pub mod period;
 pub mod plant;
 pub mod ranges;
 pub mod response;
+mod stepping;
 #[cfg(test)]
 mod tests;
 pub mod warnings;

@@ -8,6 +8,7 @@
 use super::at::SampledAt;
 use super::factored::Factored;
 use super::plant::{Companion, direct_part};
+use super::stepping::run;
 use crate::exact::complex_roots::approximations;
 use crate::exact::{Dyadic, IntPoly};
 use crate::numerics::magnitude;
@@ -16,6 +17,7 @@ use alloc::rc::Rc;
 use alloc::vec;
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
+use nalgebra::Complex;
 
 /// Bits of the matrix exponentials, which become f64.
 const BITS: usize = 128;
@@ -39,49 +41,46 @@ const SETTLED: f64 = 1e-5;
 const REMAINING: f64 = 1e-4;
 
 /// Sample periods before an answer is given up: the sampling is then far faster than the loop, or the loop nearly unstable.
-const PERIODS_CAP: f64 = 300_000.0;
+const PERIODS_CAP: f64 = 1e9;
 
-/// Points of one answer that are kept. Where there would be more, whole periods are left out evenly behind the first ones.
-const POINTS_KEPT: usize = 60_000;
-
-/// The first periods, in which fast modes are alive, are kept in any case.
-const FIRST_PERIODS: usize = 200;
-
-/// Answers to unit steps.
+/// Answers to a unit step of the command.
 #[derive(Debug)]
 pub struct Answers {
-    /// Of the output, in the command's units, to the command.
+    /// Of the output, in the command's units.
     pub output: Trace,
-    /// Of the hold's output to the command: a staircase.
+    /// Of the hold's output: a staircase.
     pub control: Trace,
-    /// Of the output, in its own units, to a step at the plant's input.
-    pub load: Trace,
 }
 
-/// The answers of a stable loop.
-pub(super) fn answers(at: &SampledAt) -> Option<Answers> {
-    let machine = Machine::new(at)?;
-    let periods = libm::log(SETTLED) / libm::log(at.spectral_radius().clamp(1e-3, 1.0 - 1e-12));
+/// Periods until the loop has settled. None where there are too many.
+fn periods(at: &SampledAt) -> Option<usize> {
     let input = &at.whole.input;
+    let decay = libm::log(SETTLED) / libm::log(at.spectral_radius().clamp(1e-3, 1.0 - 1e-12));
     let lead = (input.delay() / &input.period).to_f64().value();
     // Repeated poles decay more slowly at first.
-    let periods = libm::ceil(1.25 * periods + 2.0 * lead + 2.0 * at.poles.len() as f64) + 2.0;
-    if periods > PERIODS_CAP {
-        return None;
-    }
-    let sensor = at_rest(&input.sensor.above, &input.sensor.below);
-    let scale = sensor.unwrap_or(1.0);
-    let command = machine.run(periods as usize, Excitation::Command);
-    let load = machine.run(periods as usize, Excitation::Load);
-    let last = |points: &[TracePoint]| points.last().map_or(0.0, |p| p.value);
-    let output: Vec<TracePoint> = command.output.iter().map(|p| scaled(p, scale)).collect();
+    let periods = libm::ceil(1.25 * decay + 2.0 * lead + 2.0 * at.poles.len() as f64) + 2.0;
+    (periods <= PERIODS_CAP).then_some(periods as usize)
+}
+
+/// The answers of a stable loop to the command.
+pub(super) fn answers(at: &SampledAt) -> Option<Answers> {
+    let sensor = at_rest(&at.whole.input.sensor.above, &at.whole.input.sensor.below);
+    let found = run(&Machine::new(at)?, periods(at)?, Excitation::Command);
+    let output: Vec<TracePoint> = found.output.iter().map(|p| scaled(p, sensor.unwrap_or(1.0))).collect();
     let final_output = if sensor.is_some() { at.final_measured() } else { last(&output) };
-    let final_load = sensor.map_or_else(|| last(&load.output), |gain| at.final_load() / gain);
-    Some(Answers {
-        output: settled(final_output, output)?,
-        control: settled(at.final_control(), command.control)?,
-        load: settled(final_load, load.output)?,
-    })
+    Some(Answers { output: settled(final_output, output)?, control: settled(at.final_control(), found.control)? })
+}
+
+/// The answer of the output of a stable loop, in its own units, to a unit step at the plant's input.
+pub(super) fn load(at: &SampledAt) -> Option<Trace> {
+    let sensor = at_rest(&at.whole.input.sensor.above, &at.whole.input.sensor.below);
+    let found = run(&Machine::new(at)?, periods(at)?, Excitation::Load).output;
+    let final_load = sensor.map_or_else(|| last(&found), |gain| at.final_load() / gain);
+    settled(final_load, found)
+}
+
+fn last(points: &[TracePoint]) -> f64 {
+    points.last().map_or(0.0, |p| p.value)
 }
 
 fn scaled(p: &TracePoint, factor: f64) -> TracePoint {
@@ -92,8 +91,9 @@ fn scaled(p: &TracePoint, factor: f64) -> TracePoint {
 fn settled(final_value: f64, points: Vec<TracePoint>) -> Option<Trace> {
     let off = |p: &TracePoint| (p.value - final_value).abs();
     let largest = points.iter().map(off).fold(final_value.abs(), f64::max);
-    let tail = &points[points.len() - points.len() / 10..];
-    if tail.iter().any(|p| off(p) > REMAINING * largest) { None } else { Trace::new(final_value, points) }
+    let tail = 0.9 * points.last().map_or(0.0, |p| p.time);
+    let moving = points.iter().any(|p| p.time >= tail && off(p) > REMAINING * largest);
+    if moving { None } else { Trace::new(final_value, points) }
 }
 
 /// The static gain, where it is finite and not zero.
@@ -104,14 +104,14 @@ fn at_rest(above: &IntPoly, below: &IntPoly) -> Option<f64> {
 
 /// What acts.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-enum Excitation {
+pub(super) enum Excitation {
     Command,
     Load,
 }
 
 /// What happens at a cut of the period.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-enum Event {
+pub(super) enum Event {
     /// The plant's input takes the controller's value of so many periods ago.
     Hold(usize),
     /// The sensor's signal is read; it belongs to the sample so many periods ahead.
@@ -122,31 +122,31 @@ enum Event {
 
 /// A part of a period: its event at the start, and the steps to the next one.
 #[derive(Debug)]
-struct Part {
+pub(super) struct Part {
     /// s, from the period's start.
-    offset: f64,
+    pub(super) offset: f64,
     /// s, where the next part begins; None with the next period.
-    end: Option<f64>,
-    events: Vec<Event>,
-    steps: Vec<Step>,
+    pub(super) end: Option<f64>,
+    pub(super) events: Vec<Event>,
+    pub(super) steps: Vec<Step>,
 }
 
 /// One step of the plant.
 #[derive(Clone, Debug)]
-struct Step {
-    length: f64,
-    moves: Rc<Moves>,
+pub(super) struct Step {
+    pub(super) length: f64,
+    pub(super) moves: Rc<Moves>,
 }
 
 /// x⁺ = Φ x + Γ u.
 #[derive(Clone, Debug, Default)]
-struct Moves {
+pub(super) struct Moves {
     phi: Vec<f64>,
     gamma: Vec<f64>,
 }
 
 impl Moves {
-    fn apply(&self, x: &[f64], u: f64, next: &mut [f64]) {
+    pub(super) fn apply(&self, x: &[f64], u: f64, next: &mut [f64]) {
         let order = x.len();
         for (i, value) in next.iter_mut().enumerate() {
             let row = &self.phi[i * order..(i + 1) * order];
@@ -169,38 +169,38 @@ impl Moves {
 
 /// A row that reads a signal from the plant.
 #[derive(Debug)]
-struct Row {
-    state: Vec<f64>,
-    direct: f64,
+pub(super) struct Row {
+    pub(super) state: Vec<f64>,
+    pub(super) direct: f64,
 }
 
 impl Row {
-    fn read(&self, x: &[f64], u: f64) -> f64 {
+    pub(super) fn read(&self, x: &[f64], u: f64) -> f64 {
         self.state.iter().zip(x).map(|(c, x)| c * x).sum::<f64>() + self.direct * u
     }
 }
 
 /// The loop, ready to run.
 #[derive(Debug)]
-struct Machine {
-    order: usize,
-    parts: Vec<Part>,
-    output: Row,
-    slope: Row,
-    measured: Row,
+pub(super) struct Machine {
+    pub(super) order: usize,
+    pub(super) parts: Vec<Part>,
+    pub(super) output: Row,
+    pub(super) slope: Row,
+    pub(super) measured: Row,
     /// u_k = Σ b_i·e_(k−i) − Σ a_i·u_(k−i), i from 0 and from 1.
-    b: Vec<f64>,
-    a: Vec<f64>,
-    feedback: f64,
-    period: f64,
+    pub(super) b: Vec<f64>,
+    pub(super) a: Vec<f64>,
+    pub(super) feedback: f64,
+    pub(super) period: f64,
     /// From a sample to the hold, s.
-    computation: f64,
-}
-
-/// The recorded points.
-struct Run {
-    output: Vec<TracePoint>,
-    control: Vec<TracePoint>,
+    pub(super) computation: f64,
+    /// ln|z| and |ln z| of the poles of the closed loop.
+    pub(super) rates: Vec<(f64, f64)>,
+    /// Samples whose signal left the plant before the step.
+    pub(super) early: usize,
+    /// Outputs of the controller that are remembered.
+    pub(super) remembered: usize,
 }
 
 impl Machine {
@@ -221,9 +221,20 @@ impl Machine {
         });
         let (b, a) = difference_equation(&at.controller)?;
         let poles: Vec<f64> = approximations(&below.without_zero_roots().0).into_iter().map(magnitude).collect();
+        let parts = parts(at, system.as_ref(), &poles);
+        let events = || parts.iter().flat_map(|part| &part.events);
+        let early = events().map(|event| if let Event::Sample(ahead) = event { *ahead } else { 0 }).sum();
+        let ago = events().map(|event| if let Event::Hold(ago) = event { *ago } else { 0 }).max().unwrap_or(0);
+        let rate = |z: &Complex<f64>| {
+            let size = libm::log(magnitude(*z).max(f64::MIN_POSITIVE));
+            (size, libm::hypot(size, libm::atan2(z.im, z.re)))
+        };
         Some(Self {
             order: below.degree(),
-            parts: parts(at, system.as_ref(), &poles),
+            rates: at.poles.iter().map(rate).collect(),
+            early,
+            remembered: a.len().max(early + ago + 2),
+            parts,
             output,
             slope,
             measured,
@@ -233,116 +244,6 @@ impl Machine {
             period: input.period.to_f64().value(),
             computation: input.hold_delay().to_f64().value(),
         })
-    }
-
-    fn points_in_a_period(&self) -> usize {
-        self.parts.iter().map(|part| part.steps.len() + 2).sum()
-    }
-
-    fn run(&self, periods: usize, excitation: Excitation) -> Run {
-        let (command, load) = match excitation {
-            Excitation::Command => (1.0, 0.0),
-            Excitation::Load => (0.0, 1.0),
-        };
-        let mut x = vec![0.0; self.order];
-        let mut next = x.clone();
-        let (mut held, mut pushed) = (0.0, 0.0);
-        let mut errors: Vec<f64> = Vec::with_capacity(periods + 1);
-        let mut controls: Vec<f64> = Vec::with_capacity(periods + 1);
-        let every = periods * self.points_in_a_period() / POINTS_KEPT + 1;
-        let kept = |k: usize| k < FIRST_PERIODS || k.is_multiple_of(every);
-        let mut output: Vec<TracePoint> = Vec::with_capacity(periods.div_ceil(every) * self.points_in_a_period());
-        for _ in 0..self.early_samples() {
-            self.control(command, 0.0, &mut errors, &mut controls);
-        }
-        for k in 0..periods {
-            for part in &self.parts {
-                let time = k as f64 * self.period + part.offset;
-                let before = held + pushed;
-                for event in &part.events {
-                    match event {
-                        Event::Load(after) if *after == k => pushed = load,
-                        Event::Load(_) => {}
-                        Event::Hold(ago) => {
-                            held = k.checked_sub(*ago).and_then(|j| controls.get(j).copied()).unwrap_or(held);
-                        }
-                        Event::Sample(_) => {
-                            let here = self.parts_hold_now(part, k, controls.len());
-                            let quiet = self.measured.read(&x, if here { pushed } else { held + pushed });
-                            let direct = if here { self.measured.direct } else { 0.0 };
-                            self.control_with(command, quiet, direct, &mut errors, &mut controls);
-                        }
-                    }
-                }
-                let input = held + pushed;
-                let changed = libm::fabs(input - before) > 0.0;
-                if kept(k) && (changed || output.is_empty()) {
-                    if !output.is_empty() {
-                        output.push(self.point(time, &x, before));
-                    }
-                    output.push(self.point(time, &x, input));
-                }
-                let mut t = time;
-                // The next part begins exactly where this one ends.
-                let end = part.end.map_or((k + 1) as f64 * self.period, |end| k as f64 * self.period + end);
-                for (i, step) in part.steps.iter().enumerate() {
-                    step.moves.apply(&x, input, &mut next);
-                    core::mem::swap(&mut x, &mut next);
-                    t = if i + 1 == part.steps.len() { end } else { (t + step.length).min(end) };
-                    if kept(k) {
-                        output.push(self.point(t, &x, input));
-                    }
-                }
-            }
-        }
-        Run { output, control: self.staircase(&controls, periods, every) }
-    }
-
-    /// Samples whose signal left the plant before the step.
-    fn early_samples(&self) -> usize {
-        let events = self.parts.iter().flat_map(|part| &part.events);
-        events.filter_map(|event| if let Event::Sample(ahead) = event { Some(*ahead) } else { None }).sum()
-    }
-
-    /// Whether the value computed from the sample at this very event acts at once: no delay at all.
-    fn parts_hold_now(&self, part: &Part, k: usize, sample: usize) -> bool {
-        part.events.iter().any(|event| matches!(event, Event::Hold(ago) if k.checked_sub(*ago) == Some(sample)))
-    }
-
-    fn point(&self, time: f64, x: &[f64], u: f64) -> TracePoint {
-        TracePoint { time, value: self.output.read(x, u), slope: self.slope.read(x, u) }
-    }
-
-    fn control(&self, command: f64, measured: f64, errors: &mut Vec<f64>, controls: &mut Vec<f64>) {
-        self.control_with(command, measured, 0.0, errors, controls);
-    }
-
-    /// The next output of the controller; `direct` is what of it the sensor shows at once.
-    fn control_with(&self, command: f64, quiet: f64, direct: f64, errors: &mut Vec<f64>, controls: &mut Vec<f64>) {
-        let k = controls.len();
-        let past = |list: &[f64], c: &[f64]| -> f64 {
-            c.iter().enumerate().skip(1).filter_map(|(i, c)| Some(c * list[k.checked_sub(i)?])).sum()
-        };
-        let known = past(errors, &self.b) - past(controls, &self.a);
-        // u = known + b0·(r − f·(quiet + direct·u)).
-        let u = (known + self.b[0] * (command - self.feedback * quiet)) / (1.0 + self.b[0] * self.feedback * direct);
-        errors.push(command - self.feedback * (quiet + direct * u));
-        controls.push(u);
-    }
-
-    /// What the hold puts out.
-    fn staircase(&self, controls: &[f64], periods: usize, every: usize) -> Vec<TracePoint> {
-        let flat = |time: f64, value: f64| TracePoint { time, value, slope: 0.0 };
-        let mut points = vec![flat(0.0, 0.0)];
-        let mut before = 0.0;
-        let kept = |k: &usize| *k < FIRST_PERIODS || k.is_multiple_of(every);
-        for (k, u) in controls.iter().take(periods).enumerate().filter(|(k, _)| kept(k)) {
-            let time = k as f64 * self.period + self.computation;
-            points.extend([flat(time, before), flat(time, *u)]);
-            before = *u;
-        }
-        points.push(flat(periods as f64 * self.period + self.computation, before));
-        points
     }
 }
 

@@ -131,7 +131,7 @@ fn between_the_samples_an_integrator_runs_straight() {
     assert!(farthest(&answers.output, 5.0, expected) < 1e-12);
     let control = |t: f64| libm::pow(0.5, libm::floor(t / 0.5));
     assert!(farthest(&answers.control, 5.0, control) < 1e-12);
-    assert!((answers.load.final_value - 1.0).abs() < 1e-12);
+    assert!((at.load().expect("stable").final_value - 1.0).abs() < 1e-12);
     assert_eq!((at.static_error(0), at.static_error(1), at.static_error(2)), (0.0, 1.0, f64::INFINITY));
 }
 
@@ -213,4 +213,24 @@ fn a_late_sensor_sees_the_past() {
         assert!((a.output.value(t + 0.375) - b.output.value(t)).abs() < 1e-6, "{t}");
     }
     assert!((a.output.value(0.37)).abs() < 1e-15 && b.output.value(0.37) > 0.01);
+}
+
+#[test]
+fn a_loop_far_slower_than_its_sampler_is_followed_with_few_points() {
+    // K/s every 1/1000 s, K = 1/100: 1 − 0.99999^k at the samples, for a million periods.
+    let whole = Rc::new(ranges(&in_z((&[1], &[1]), (&[1], &[0, 1]), (1, 1000), (0, 1))).expect("found"));
+    let at = SampledAt::new(&whole, RBig::from_parts(1.into(), 100u8.into())).expect("poles");
+    let trace = &at.answers().expect("stable").output;
+    assert!(trace.points().len() < 20_000, "{}", trace.points().len());
+    let expected = |t: f64| 1.0 - libm::exp(libm::log1p(-1e-5) * 1000.0 * t);
+    assert!(farthest(trace, 900.0, expected) < 1e-5, "{}", farthest(trace, 900.0, expected));
+    // Nearly a double integrator with a slow, lightly damped answer: 1/(s² + 0.02 s + 1) every 1/50 with a small knob.
+    let whole = Rc::new(ranges(&in_z((&[1], &[1]), (&[100], &[100, 2, 100]), (1, 50), (1, 1))).expect("found"));
+    let at = SampledAt::new(&whole, RBig::from_parts(1.into(), 1_000_000_000u64.into())).expect("poles");
+    let trace = at.load().expect("stable");
+    let damped = libm::sqrt(1.0 - 1e-4);
+    let expected =
+        |t: f64| 1.0 - libm::exp(-0.01 * t) * (libm::cos(damped * t) + 0.01 / damped * libm::sin(damped * t));
+    assert!(farthest(trace, 1000.0, expected) < 1e-5, "{}", farthest(trace, 1000.0, expected));
+    assert!(trace.points().len() < 60_000, "{}", trace.points().len());
 }
