@@ -154,7 +154,7 @@ impl Session {
         let analysis = self.analysis(project, model).map_err(|error| [error.problem()])?;
         let knob = setting.as_ref().and_then(|setting| scale.knob(setting));
         let closed_loop =
-            knob.map(|knob| analysis.closed_loop(&knob)).transpose().map_err(|error| [error.problem()])?;
+            knob.as_ref().map(|knob| analysis.closed_loop(knob)).transpose().map_err(|error| [error.problem()])?;
         let judged = judge(analysis, &limits, &scale, setting.as_ref())
             .map_err(|error| [AnalysisError::from(error).problem()])?;
         let found = &analysis.findings;
@@ -167,7 +167,7 @@ impl Session {
             project: project.clone(),
             reading: reading.clone(),
             model: model::record(&analysis.model),
-            timing: model::timing(&analysis.model),
+            timing: analysis.timing(knob.as_ref()),
             stability: found.stability.clone(),
             character: found.character.clone(),
             landmarks: found.landmarks.clone(),
@@ -183,7 +183,7 @@ impl Session {
             step: judged.step,
             load: judged.load,
             view: found.view,
-            notices: found.notices.clone(),
+            notices: [found.notices.clone(), judged.notices].concat(),
             sheet: None,
         })
     }

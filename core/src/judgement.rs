@@ -10,10 +10,11 @@ use crate::ranges::permitted::{conflict, permitted};
 use crate::ranges::pieces::{Border, Piece};
 use crate::ranges::requirements::{Lane, Limit, at_least, check_limit, describe, meets, unit};
 use crate::record::{
-    Conflict, EdgeCurve, LimitEdge, LimitRange, LoadRecord, Margins, Permitted, PhaseCrossing, RequirementRecord,
-    StepRecord, Suggestion,
+    Conflict, EdgeCurve, LimitEdge, LimitRange, LoadRecord, Margins, Notice, Permitted, PhaseCrossing,
+    RequirementRecord, StepRecord, Suggestion,
 };
 use crate::response::{Figure, LoopAt};
+use crate::sampled::warnings;
 use crate::setting::{Scale, controller_range, suggest, typed};
 use alloc::format;
 use alloc::string::{String, ToString};
@@ -38,6 +39,8 @@ pub struct Judgement {
     pub step: Option<StepRecord>,
     /// At the setting.
     pub load: Option<LoadRecord>,
+    /// Warnings at the setting.
+    pub notices: Vec<Notice>,
 }
 
 /// Reads the requirements of a project.
@@ -103,14 +106,17 @@ pub fn judge(
         suggested: advice.suggested.map(|s| Suggestion {
             setting: typed(&s.setting),
             knob: s.knob.to_f64().value(),
-            reason: s.reason.to_string(),
+            reason: s.reason,
         }),
         conflict,
     };
     let step = here.as_ref().and_then(|here| step(analysis, here, &pieces));
-    let margins = here.as_ref().map(margins).transpose()?.flatten();
+    // What could not be found is not shown; the ranges are not touched by it.
+    let margins = here.as_ref().and_then(|here| margins(here).ok().flatten());
     let load = here.as_ref().and_then(load);
-    Ok(Judgement { requirements, permitted, margins, step, load })
+    let sampled = here.as_ref().and_then(LoopAt::sampled);
+    let notices = sampled.and_then(warnings::of_the_closed_loop).into_iter().collect();
+    Ok(Judgement { requirements, permitted, margins, step, load, notices })
 }
 
 fn requirement(limit: &Limit, lane: &Lane, scale: &Scale, here: Option<&LoopAt>) -> RequirementRecord {
@@ -281,5 +287,21 @@ mod tests {
         let found = record(ROLLER, "{}", r#"{"kind": "ramp-error", "limit": "1"}"#);
         assert!(found.requirements[0].ranges.is_empty());
         assert!(found.requirements[0].remark.as_deref().is_some_and(|text| text.contains("one integrator")));
+    }
+
+    #[test]
+    fn a_range_much_narrower_than_the_samples_is_found_with_its_jump() {
+        // K/(s(s + 1)): the overshoot touches the band of 2 % at x = ln 50/π, ζ = x/√(1 + x²), K = 1/(4ζ²), where the
+        // settling time is shortest and jumps.
+        let axis = r#"{"controller": "K", "plant": "1/(s (s + 1))"}"#;
+        let x = libm::log(50.0) / core::f64::consts::PI;
+        let touching = (1.0 + x * x) / (4.0 * x * x);
+        let beside = format!(r#"{{"value": "{}"}}"#, touching * (1.0 - 1e-4));
+        let settled = record(axis, &beside, "").step.and_then(|step| step.settling_time2).expect("settles");
+        let limit = format!(r#"{{"kind": "settling-time-2", "limit": "{settled}"}}"#);
+        let ranges = record(axis, "{}", &limit).requirements.remove(0).ranges;
+        let [range] = &ranges[..] else { panic!("{ranges:?}") };
+        let ends = [&range.from, &range.to].map(|end| end.as_ref().map_or(f64::NAN, |edge| edge.knob / touching - 1.0));
+        assert!((ends[0] + 1e-4).abs() < 1e-7 && ends[1].abs() < 1e-7, "{ends:?}");
     }
 }

@@ -2,18 +2,16 @@
 
 use crate::keeping::{open_file, saved_file};
 use crate::page::{Page, on_the_page};
+use crate::picture::show_demo;
 use anyhow::{Context, Result};
 use serde_json::{Value, json};
 use std::fs;
 use thirtyfour::prelude::*;
 
-/// Opens a demo and waits for its answer.
+/// Opens a demo and waits for its answer and its pictures.
 async fn open_demo(page: &Page, index: usize) -> Result<()> {
-    page.run("document.querySelectorAll('#demo-list button')[arguments[0]].click()", vec![json!(index)]).await?;
-    let drawn = r##"return document.querySelector("#response .curve") !== null && window.stayband.project().title
-        === window.stayband.record().project.title"##;
-    page.until("the demo is drawn", drawn, vec![]).await?;
-    // The first demo stands there from the start: the pictures of another one need a frame more.
+    show_demo(page, index).await?;
+    // The pictures of the one before are replaced with the next frame.
     let settled = "const done = arguments[0]; requestAnimationFrame(() => requestAnimationFrame(() => done(true)))";
     page.run_async(settled, vec![]).await?;
     Ok(())

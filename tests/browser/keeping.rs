@@ -153,16 +153,21 @@ fn undo_takes_the_last_change_back_and_redo_makes_it_again() {
     });
 }
 
-/// Changes every input and choice of the form, one after the other, and takes each change back.
+/// Changes every input and choice of the form that is shown, one after the other, and takes each change back.
 const CHANGE_AND_UNDO: &str = r##"
     const before = JSON.stringify(window.stayband.project());
     for (const part of document.querySelectorAll("#scale, #add-requirement")) part.open = true;
     const labelled = (control) => control.labels?.[0]?.textContent.trim() || control.getAttribute("aria-label") || control.id;
-    const names = [...document.querySelectorAll("#title, #loop input, #loop select:not(#conversion)")].map(labelled);
+    const names = [...document.querySelectorAll("#title, #loop input, #loop select:not(#conversion)")]
+        .filter((control) => control.checkVisibility()).map(labelled);
     const find = (name) => [...document.querySelectorAll("#title, #loop input, #loop select")].find((one) => labelled(one) === name);
     const wrong = [];
     for (const name of names) {
         const control = find(name);
+        if (!control) {
+            wrong.push(`${name} is gone`);
+            continue;
+        }
         if (control.type === "checkbox") control.click();
         else {
             if (control.tagName === "SELECT") control.selectedIndex = (control.selectedIndex + 1) % control.options.length;

@@ -19,3 +19,4 @@ mod recovery;
 mod requirements;
 mod sheet;
 mod shelf;
+mod timing;

@@ -105,6 +105,12 @@ impl Page {
         Ok(())
     }
 
+    /// Clicks the box with this id.
+    pub(crate) async fn tick(&self, id: &str) -> Result<()> {
+        self.driver.find(By::Id(id)).await?.click().await?;
+        Ok(())
+    }
+
     /// What stands in the element with this id, as a user sees it.
     pub(crate) async fn text(&self, id: &str) -> Result<String> {
         Ok(self.driver.find(By::Id(id)).await?.text().await?)

@@ -17,7 +17,7 @@ const TELEPHONE: (u32, u32) = (390, 844);
 const LEAST_BYTES: usize = 20_000;
 
 /// Opens a demo and waits until its pictures are drawn.
-async fn show_demo(page: &Page, index: usize) -> Result<()> {
+pub(crate) async fn show_demo(page: &Page, index: usize) -> Result<()> {
     page.run("document.querySelectorAll('#demo-list button')[arguments[0]].click()", vec![json!(index)]).await?;
     let drawn = r##"
         const title = window.stayband.record()?.project.title ?? "";

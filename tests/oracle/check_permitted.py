@@ -135,9 +135,17 @@ def far_setting(project, knob):
 
 
 def width(knobs):
-    """The ratio of a range's ends as a logarithm."""
+    """The ratio of a range's ends as a logarithm; with a single limit as much as a ratio of 4, 6 dB to each side; endless without."""
     a, b = knobs
-    return abs(math.log(b / a)) if math.isfinite(a) and math.isfinite(b) and a * b > 0 else math.inf
+    if math.isfinite(a) and math.isfinite(b) and a * b > 0:
+        return abs(math.log(b / a))
+    unlimited = b == math.inf and a <= 0 or a == -math.inf and b == 0
+    return math.inf if unlimited else math.log(4)
+
+
+def two_sided(knobs):
+    """Whether a range has two finite ends of one sign."""
+    return all(map(math.isfinite, knobs)) and knobs[0] * knobs[1] > 0
 
 
 def distance(knobs, knob):
@@ -149,7 +157,7 @@ def check_suggestion(case, ranges, suggested, report):
     """Inside the widest range that holds a setting, on the grid, and no neighbour on the grid is farther from both ends."""
     if suggested is None:
         step = case.project["setting"].get("step", "")
-        free = [k for k in ranges if not step and width(k) > 1e-4 or width(k) < math.inf and grid_settings(case.project, k)]
+        free = [k for k in ranges if not step and width(k) > 1e-4 or two_sided(k) and grid_settings(case.project, k)]
         report.check(not free, "suggestion", f"a setting in {free}", None)
         return
     setting = Fraction(suggested["setting"])
@@ -160,10 +168,10 @@ def check_suggestion(case, ranges, suggested, report):
     holding = [k for k in ranges if inside(case.project, k, setting) is not False]
     if not report.check(bool(holding), "suggestion: inside", ranges, suggested):
         return
-    wider = [k for k in ranges if width(k) > width(holding[0]) * (1 + 1e-9) and math.isfinite(width(k)) and grid_settings(case.project, k)]
+    wider = [k for k in ranges if width(k) > width(holding[0]) * (1 + 1e-9) and two_sided(k) and grid_settings(case.project, k)]
     report.check(not wider, "suggestion: in the widest range", wider, holding[0])
     step = case.project["setting"].get("step", "")
-    if step and math.isfinite(width(holding[0])):
+    if step and two_sided(holding[0]):
         here = distance(holding[0], float(knob))
         for other in (setting - Fraction(step), setting + Fraction(step)):
             if inside(case.project, holding[0], other):

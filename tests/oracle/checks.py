@@ -4,7 +4,7 @@ import traceback
 
 import events
 from binary import NoAnswer
-from check_branches import check_branches
+from check_branches import check_branches, check_drawn
 from check_landmarks import check_asymptotes, check_landmarks, check_real_axis
 from check_ranges import Recount, check_character, check_stability
 from check_roots import check_roots
@@ -37,6 +37,7 @@ def check_record(case, truth, record, branches, report):
         ("asymptotes", lambda: check_asymptotes(case, record, report)),
         ("real axis", lambda: check_real_axis(case, record, report)),
         ("roots", lambda: check_roots(case, record, report)),
+        ("drawn", lambda: check_drawn(record, report)),
         ("branches", lambda: branches is None or check_branches(case, truth, record, branches, report)),
     ):
         try:

@@ -8,8 +8,6 @@ class Report:
     """Counts what passed and keeps what failed: (check, expected, actual)."""
 
     passed: int = 0
-    #: Halves of the locus that are not drawn, and said to be so.
-    undrawn: int = 0
     failures: list = field(default_factory=list)
 
     def check(self, good, what, expected, actual):

@@ -179,6 +179,12 @@ def swap_branches(record, branches):
     branches[pair[0]]["points"], branches[pair[1]]["points"] = heads[0] + tails[1], heads[1] + tails[0]
 
 
+def leave_out_half(record, branches):
+    text = "the branches of the negative half of the locus could not be followed with certainty and are not drawn"
+    record["notices"].append({"kind": "not-computed", "text": text})
+    branches[:] = [b for b in branches if b["sign"] == "positive"]
+
+
 def same_branch_twice(record, branches):
     branches[1]["points"] = copy.deepcopy(branches[0]["points"])
     branches[1]["sign"] = branches[0]["sign"]
@@ -270,6 +276,8 @@ CORRUPTIONS = {
     "branches swapped": ("branches", swap_branches),
     "one branch twice": ("branches", same_branch_twice),
     "branch missing": ("branches", lambda record, branches: branches.pop() is not None),
+    "half left out, said": ("branches: both halves drawn", leave_out_half),
+    "half left out, branches": ("branches negative: number", leave_out_half),
     "vertex off the locus": ("branches", move_vertex),
     "polyline too coarse": ("branches", coarse_branch),
     "branch cut short": ("branches", cut_branch),

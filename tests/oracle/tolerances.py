@@ -32,9 +32,6 @@ VERTEX_KNOB = 1e-13
 OWN_ROOT = 1e-7
 #: Two roots nearer to each other than this part of their modulus: which of them an f64 vertex belongs to is not judged.
 TOO_NEAR = 1e-8
-#: Part of the random loops of which a half of the locus may be missing, with a notice that says so: poles nearer to each other
-#: than f64 resolves.
-UNDRAWN = 0.08
 
 #: Pixels between the true locus and the polyline, in a picture of PICTURE pixels each way.
 SAGITTA = 0.25

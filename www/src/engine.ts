@@ -69,7 +69,7 @@ export class Engine {
   readonly #source: string;
 
   constructor() {
-    this.#wasm = unpacked("engine-wasm").then((bytes) => bytes.arrayBuffer());
+    this.#wasm = unpacked("engine-wasm").arrayBuffer();
     this.#source = URL.createObjectURL(new Blob([partText("worker-source")], { type: "text/javascript" }));
     void this.#start();
   }

@@ -87,12 +87,14 @@ export function figuresTable(session: Session): void {
   const figureBody = byId("figures", HTMLTableSectionElement);
   const poles = byId("poles-table", HTMLTableElement);
   const poleBody = byId("poles", HTMLTableSectionElement);
+  const poleUnit = byId("poles-unit", HTMLElement);
   session.onChange(({ good }) => {
     if (!good) return;
     const { record } = good;
     const loop = record.closedLoop;
     figures.hidden = loop === null;
     poles.hidden = loop === null;
+    poleUnit.textContent = record.timing.plane === "z" ? "pole in z" : "pole, 1/s";
     heading.textContent = loop ? `At ${settingName(record)} = ${withUnit(settingText(record), settingUnit(record))}` : "At the setting";
     verdict.textContent = loop ? `${capital(verdictWords(loop, record.timing.plane))}.` : "No setting is chosen yet.";
     figureBody.replaceChildren(...(loop ? figureRows(record) : []).map(figureRow));

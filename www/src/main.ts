@@ -12,6 +12,7 @@ import { carriesProject, projectText } from "./link.ts";
 import { messageBar, say } from "./message.ts";
 import { Paper } from "./paper.ts";
 import { projectList } from "./projects.ts";
+import { periodsTable } from "./periods.ts";
 import { Plane } from "./plane.ts";
 import { Responses } from "./responses.ts";
 import { Ruler } from "./ruler.ts";
@@ -36,6 +37,7 @@ function start(): void {
   landmarksTable(session, new Plane(session));
   new Responses(session);
   figuresTable(session);
+  periodsTable(session);
   const paper = new Paper(engine, session);
   stepUpPanel(paper);
   siteCheckPanel(session, paper);

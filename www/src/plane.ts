@@ -238,6 +238,7 @@ export class Plane {
     this.#layers.back.replaceChildren(
       svg("line", { class: "axis-line", x1: left, x2: right, y1: y(0), y2: y(0) }),
       svg("line", { class: "axis-line", x1: x(0), x2: x(0), y1: top, y2: bottom }),
+      ...(timing.plane === "z" ? [svg("circle", { class: "axis-line", cx: x(0), cy: y(0), r: Math.abs(x(1) - x(0)) })] : []),
     );
   }
 

@@ -117,11 +117,14 @@ export class Session {
 
   /** Begins an empty project. It is kept when something is typed into it. */
   beginEmpty(): void {
-    this.#history.note(this.#step, null, Date.now());
-    this.#answer = null;
-    this.#good = null;
-    this.#place = Store.newPlace();
+    this.#begin();
     this.#ask(emptyProject());
+  }
+
+  /** Puts another project in place of the present one, and keeps it as an entry of its own. */
+  replace(project: Project): void {
+    this.#begin();
+    this.#take(project);
   }
 
   /**
@@ -212,6 +215,14 @@ export class Session {
 
   get #step(): Step {
     return { project: this.#project, place: this.#place };
+  }
+
+  /** A project that has nothing to do with the present one comes next. */
+  #begin(): void {
+    this.#history.note(this.#step, null, Date.now());
+    this.#answer = null;
+    this.#good = null;
+    this.#place = Store.newPlace();
   }
 
   #go(step: Step | null): void {

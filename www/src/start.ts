@@ -6,7 +6,7 @@ const NEEDS = "Stayband needs Chrome or Edge 109, Firefox 115, Safari 16.4, or a
 
 async function start(): Promise<void> {
   const script = document.createElement("script");
-  script.textContent = await (await unpacked("page-script")).text();
+  script.textContent = await unpacked("page-script").text();
   document.body.append(script);
 }
 

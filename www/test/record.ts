@@ -1,4 +1,5 @@
 // Records for the tests: small, invented, with only what a test needs spelled out.
+import { emptyProject } from "../src/project.ts";
 import type { CharacterRange, ClosedPole, Edge, LimitEdge, LimitRange, Record as Findings, RequirementRecord, Scale, StabilityRange } from "../src/types.ts";
 
 /** An edge at a value; parts may be given otherwise. */
@@ -38,13 +39,10 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
     format: "stayband-record/1",
     program: { version: "0", hash: null },
     project: {
-      format: "stayband-project/1",
-      title: "",
-      loop: { controller: "K", plant: "1/s", sensor: "1", feedback: "negative", deadTime: "", sampling: null },
-      quantities: [{ symbol: "K", value: "", unit: "V", meaning: "" }],
+      ...emptyProject(),
+      loop: { ...emptyProject().loop, controller: "K", plant: "1/s" },
+      quantities: [{ symbol: "K", value: "", unit: "V", meaning: "", tolerance: "" }],
       knob: "K",
-      setting: { value: "", name: "", unit: "", direction: "proportional", factor: "", minimum: "", maximum: "", step: "" },
-      requirements: [],
     },
     reading: { controller: null, plant: null, sensor: null, names: ["K"] },
     model: { order: 3, knobDegree: 1, coefficients: [], mathml: "" },
@@ -65,6 +63,7 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
     load: null,
     view: { re: [-1, 1], im: [-1, 1] },
     notices: [],
+    sheet: null,
     ...parts,
   };
 }

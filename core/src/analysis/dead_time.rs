@@ -3,15 +3,18 @@
 use super::{AnalysisError, Findings};
 use crate::answer::Field;
 use crate::dead_time::gain::GainFamily;
-use crate::dead_time::{DeadTimePartition, Quasi, delay, poles};
+use crate::dead_time::{DeadTimeError, DeadTimePartition, Quasi, branches, delay, landmarks, poles};
 use crate::exact::complex_roots::roots;
 use crate::exact::dyadic::{exact_text, rational_bracket};
 use crate::exact::{ExactError, IntPoly, Interval};
-use crate::locus::view;
+use crate::locus::{Branch, view};
 use crate::model::Loop;
 use crate::ranges::pieces::{Border, Piece};
-use crate::record::{Cause, CharacterName, ClosedLoop, Edge, EdgeKind, Point, Root, StabilityRange, View};
-use alloc::string::ToString;
+use crate::record::{
+    Cause, CharacterName, ClosedLoop, Edge, EdgeKind, Landmark, Notice, NoticeKind, Point, Root, StabilityRange, View,
+};
+use alloc::format;
+use alloc::string::{String, ToString};
 use alloc::vec::Vec;
 use dashu_ratio::RBig;
 
@@ -101,18 +104,24 @@ impl DeadTime {
         let crossings = crossings.map(|im| Point { re: 0.0, im });
         let roots = poles.iter().chain(&zeros).map(|root| Point { re: root.re, im: root.im });
         let view = view::frame(roots.chain(crossings));
+        let mut notices = model.notices.clone();
+        let (landmarks, branches) = drawn(&parts, &partition, &view).unwrap_or_else(|reason| {
+            let text = format!("the branches of the locus are not drawn: {reason}; the ranges are not touched by this");
+            notices.push(Notice { kind: NoticeKind::NotComputed, text });
+            (landmarks::crossings(&partition), Vec::new())
+        });
         let start = first_knob(&model.open_loop.dead_time);
         let findings = Findings {
             stability: stability(&partition, start.as_ref()),
             character: Vec::new(),
-            landmarks: Vec::new(),
+            landmarks,
             asymptotes: None,
             real_axis: None,
             view,
             poles,
             zeros,
-            notices: model.notices.clone(),
-            branches: Vec::new(),
+            notices,
+            branches,
             stable: stable_pieces(&partition, start.as_ref()),
         };
         let time = model.open_loop.dead_time.clone();
@@ -158,6 +167,18 @@ impl DeadTime {
         };
         View { re: wider(self.view.re), im: wider(self.view.im) }
     }
+}
+
+/// Landmarks and branches.
+///
+/// # Errors
+/// Why there are no branches.
+fn drawn(parts: &Parts, partition: &DeadTimePartition, view: &View) -> Result<(Vec<Landmark>, Vec<Branch>), String> {
+    let Parts::Gain(family) = parts else {
+        return Err("the knob is the dead time, and poles come from infinity as it grows from zero".to_string());
+    };
+    let told = |error: DeadTimeError| error.to_string();
+    Ok((landmarks::landmarks(family, partition, view).map_err(told)?, branches::branches(family, view).map_err(told)?))
 }
 
 /// Poles and zeros of the open loop; zeros where the knob is a factor of it.

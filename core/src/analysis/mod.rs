@@ -7,13 +7,13 @@ mod sampled;
 
 use crate::exact::ExactError;
 use crate::locus::Branch;
-use crate::model::Loop;
+use crate::model::{self, Loop};
 use crate::ranges::pieces::Piece;
 use crate::ranges::requirements::{Ground, Lane, Limit, Samples, lane};
 use crate::ranges::{Family, Partition};
 use crate::record::{
     Asymptotes, BothSigns, CharacterRange, ClosedLoop, KnobSign, Landmark, Notice, NoticeKind, Root, Segment,
-    StabilityRange, View,
+    StabilityRange, Timing, View,
 };
 use crate::response::Setup;
 use alloc::boxed::Box;
@@ -117,7 +117,13 @@ impl Analysis {
 
     /// For a look at single settings.
     pub fn setup(&self) -> Setup<'_> {
-        Setup { model: &self.model }
+        Setup {
+            model: &self.model,
+            sampled: match &self.method {
+                Method::Sampled(sampled) => Some(&sampled.ranges),
+                _ => None,
+            },
+        }
     }
 
     /// Where a requirement is met; kept for the next time.
@@ -145,6 +151,16 @@ impl Analysis {
         }
         lanes.push((limit.clone(), found.clone()));
         Ok(found)
+    }
+
+    /// Dead time and sampling for the record.
+    pub fn timing(&self, knob: Option<&RBig>) -> Timing {
+        let mut timing = model::timing(&self.model);
+        if let (Method::Sampled(sampled), Some(record)) = (&self.method, &mut timing.sampling) {
+            record.by_period = sampled.by_period();
+            record.longest_period = knob.and_then(|knob| sampled.longest_period(knob));
+        }
+        timing
     }
 
     /// The closed loop at a value of the knob.

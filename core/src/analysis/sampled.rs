@@ -1,20 +1,25 @@
 //! The analysis of a loop with a sampled controller.
 
-use super::{AnalysisError, Findings};
+use super::{AnalysisError, Findings, lost_branches, not_computed};
 use crate::exact::complex_roots::roots;
-use crate::locus::view;
 use crate::model::{Loop, Sampling};
+use crate::ranges::permitted::short;
 use crate::ranges::requirements::stable_pieces;
-use crate::record::{CharacterName, ClosedLoop, ClosedPole, Notice, NoticeKind, Point, Root};
-use crate::sampled::{SampledLoop, SampledRanges, ranges};
+use crate::record::{CharacterName, ClosedLoop, ClosedPole, Notice, NoticeKind, Root, StableAtPeriod, View};
+use crate::sampled::period::{by_period, longest_period};
+use crate::sampled::{SampledLocus, SampledLoop, SampledRanges, locus, ranges, warnings};
 use alloc::format;
+use alloc::rc::Rc;
 use alloc::vec::Vec;
+use core::cell::OnceCell;
 use dashu_ratio::RBig;
 
 /// What the questions about such a loop need.
 pub(super) struct Sampled {
-    found: SampledRanges,
+    /// The ranges, with the loop they were found from.
+    pub(super) ranges: Rc<SampledRanges>,
     period: f64,
+    by_period: OnceCell<Vec<StableAtPeriod>>,
 }
 
 impl Sampled {
@@ -23,34 +28,47 @@ impl Sampled {
     /// # Errors
     /// Where the loop is not treated, or a cap is met.
     pub(super) fn analyse(model: &Loop, sampling: &Sampling) -> Result<(Findings, Self), AnalysisError> {
-        let input = SampledLoop::new(model, sampling)?;
-        let found = ranges(&input)?;
-        let poles = roots(&found.family.middle_at(&RBig::ZERO))?;
+        let found = ranges(&SampledLoop::new(model, sampling)?)?;
         let mut notices = model.notices.clone();
+        notices.extend(warnings::of_the_plant(&found.input));
         for value in &found.unresolved {
             let text = format!(
                 "near {} = {} poles come so close to the unit circle that a contact could not be told from a near miss",
                 model.knob,
-                crate::ranges::permitted::short(*value)
+                short(*value)
             );
             notices.push(Notice { kind: NoticeKind::NotComputed, text });
         }
-        let circle = [Point { re: -1.0, im: 1.0 }, Point { re: 1.0, im: 1.0 }];
+        let drawn = locus(&found).unwrap_or_else(|error| {
+            notices.push(not_computed("the branches of the locus", &error));
+            without_branches()
+        });
+        notices.extend(drawn.lost.iter().map(|sign| lost_branches(*sign)));
         let findings = Findings {
             stability: found.partition.stability(),
-            character: found.partition.character(),
-            landmarks: Vec::new(),
-            asymptotes: None,
-            real_axis: None,
-            view: view::frame(circle.into_iter().chain(poles.iter().map(|r| Point { re: r.re, im: r.im }))),
-            poles,
-            zeros: Vec::new(),
+            character: Vec::new(),
+            landmarks: drawn.landmarks,
+            asymptotes: drawn.asymptotes,
+            real_axis: drawn.real_axis,
+            view: drawn.view,
+            poles: drawn.poles,
+            zeros: drawn.zeros,
             notices,
-            branches: Vec::new(),
+            branches: drawn.branches,
             stable: stable_pieces(&found.partition),
         };
         let period = sampling.period.to_f64().value();
-        Ok((findings, Self { found, period }))
+        Ok((findings, Self { ranges: Rc::new(found), period, by_period: OnceCell::new() }))
+    }
+
+    /// The stable ranges at other periods.
+    pub(super) fn by_period(&self) -> Vec<StableAtPeriod> {
+        self.by_period.get_or_init(|| by_period(&self.ranges)).clone()
+    }
+
+    /// The longest period up to which the loop is stable at a value of the knob.
+    pub(super) fn longest_period(&self, knob: &RBig) -> Option<f64> {
+        longest_period(&self.ranges.input, knob)
     }
 
     /// The closed loop at a value of the knob.
@@ -58,22 +76,35 @@ impl Sampled {
     /// # Errors
     /// From the exact methods, when a cap is met.
     pub(super) fn closed_loop(&self, knob: &RBig) -> Result<ClosedLoop, AnalysisError> {
-        let poles: Vec<Root> = roots(&self.found.family.middle_at(knob))?;
-        let count = self.found.partition.verdict_at(knob).half_plane;
-        let (unstable_poles, axis_poles) = (count.right, count.axis);
+        let poles: Vec<Root> = roots(&self.ranges.characteristic_at(knob))?;
+        let verdict = self.ranges.partition.verdict_at(knob);
         // A pole left of z = 0 changes its sign from sample to sample.
         let aperiodic = poles.iter().all(|r| r.im == 0.0 && r.re >= -r.radius);
-        let name = match (unstable_poles, axis_poles) {
-            (0, 0) if aperiodic => CharacterName::Overdamped,
-            (0, 0) => CharacterName::Underdamped,
-            _ => self.found.partition.verdict_at(knob).name,
+        let name = match verdict.half_plane.is_stable() {
+            true if aperiodic => CharacterName::Overdamped,
+            true => CharacterName::Underdamped,
+            false => verdict.name,
         };
         Ok(ClosedLoop {
             knob: knob.to_f64().value(),
             poles: poles.iter().map(|r| ClosedPole::sampled(*r, self.period)).collect(),
-            unstable_poles,
-            axis_poles,
+            unstable_poles: verdict.half_plane.right,
+            axis_poles: verdict.half_plane.axis,
             name,
         })
+    }
+}
+
+/// A picture with the unit circle alone.
+fn without_branches() -> SampledLocus {
+    SampledLocus {
+        branches: Vec::new(),
+        landmarks: Vec::new(),
+        poles: Vec::new(),
+        zeros: Vec::new(),
+        asymptotes: None,
+        real_axis: None,
+        view: View { re: [-1.3, 1.3], im: [-1.3, 1.3] },
+        lost: Vec::new(),
     }
 }

@@ -37,8 +37,12 @@ const SEARCH_STEP: f64 = 0.1;
 /// Steps of ωT at most: some thousand turns of the phase.
 const SEARCH_CAP: usize = 60_000;
 
-/// |L| below which the sensitivity is within 5 % of 1 for ever.
-const NEGLIGIBLE: i64 = 20;
+/// 1/|L| beyond which no larger sensitivity is looked for: there it stays below 1.06. Where nothing larger was found before,
+/// the search goes on to the second one, and 1.005 is as good as 1.
+const NEGLIGIBLE: [i64; 2] = [20, 200];
+
+/// A peak above this is surely beyond anything behind the first.
+const CLEAR_PEAK: f64 = 1.06;
 
 /// Halvings of a bracket in which the sensitivity peaks, or the closed loop falls below 3 dB.
 const HALVINGS: usize = 60;
@@ -239,15 +243,28 @@ impl DelayFrequency {
         let mut omegas: Vec<f64> =
             (0..=count).map(|k| start * libm::pow(10.0, decades * k as f64 / count as f64)).collect();
         let steps = libm::ceil(end * self.seconds / SEARCH_STEP).min(SEARCH_CAP as f64) as usize;
-        omegas.extend((1..=steps).map(|k| end * k as f64 / steps as f64));
+        // From 0 on: without an integrator the sensitivity may be largest at rest.
+        omegas.extend((0..=steps).map(|k| end * k as f64 / steps.max(1) as f64));
         omegas.extend(self.resonances.iter().copied().filter(|w| *w < end));
         omegas.sort_by(f64::total_cmp);
         omegas
     }
 
     fn peak_sensitivity(&self) -> Result<(f64, f64), DeadTimeError> {
-        let small =
-            squared(&self.above).combined(&IBig::from(NEGLIGIBLE * NEGLIGIBLE), &squared(&self.below), &IBig::NEG_ONE);
+        let mut best = (0.0, 0.0);
+        for negligible in NEGLIGIBLE {
+            best = self.peak_up_to(negligible)?;
+            if best.1 > CLEAR_PEAK {
+                break;
+            }
+        }
+        Ok(best)
+    }
+
+    /// The peak up to where |L| stays below 1/negligible.
+    fn peak_up_to(&self, negligible: i64) -> Result<(f64, f64), DeadTimeError> {
+        let factor = IBig::from(negligible * negligible);
+        let small = squared(&self.above).combined(&factor, &squared(&self.below), &IBig::NEG_ONE);
         let (_, high) = self.radii();
         let end = frequencies(&small)?.last().copied().unwrap_or(0.0).max(high);
         let omegas = self.grid(end);
@@ -259,7 +276,9 @@ impl DelayFrequency {
             if self.sensitivity(a) > self.sensitivity(b) { high = b } else { low = a }
         }
         let omega = 0.5 * (low + high);
-        Ok((omega, self.sensitivity(omega)))
+        let refined = (omega, self.sensitivity(omega));
+        // Two maxima between the neighbours may have led the search to the lower one.
+        Ok(if refined.1 >= values[best] { refined } else { (omegas[best], values[best]) })
     }
 
     fn first_fall(&self) -> Result<Option<f64>, DeadTimeError> {

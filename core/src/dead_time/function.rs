@@ -45,15 +45,8 @@ impl Value {
 impl Quasi {
     /// From exact parts.
     pub fn new(a: &IntPoly, b: &IntPoly, dead_time: &RBig) -> Self {
-        let parts = |p: &IntPoly| -> Vec<(f64, i64)> {
-            p.coefficients().iter().map(|c| Dyadic::new(c.clone(), 0).to_f64_parts()).collect()
-        };
-        let (a, b) = (parts(a), parts(b));
-        let top = a.iter().chain(&b).filter(|c| c.0 != 0.0).map(|c| c.1).max().unwrap_or(0);
-        let scaled = |p: Vec<(f64, i64)>| -> Vec<f64> {
-            p.into_iter().map(|(m, e)| libm::ldexp(m, (e - top).max(-2000) as i32)).collect()
-        };
-        Self { a: scaled(a), b: scaled(b), dead_time: dead_time.to_f64().value() }
+        let [a, b] = scaled([a, b]);
+        Self { a, b, dead_time: dead_time.to_f64().value() }
     }
 
     /// The degree of the undelayed part.
@@ -89,6 +82,15 @@ impl Quasi {
         }
         radius
     }
+}
+
+/// Coefficients over one common power of two, so that the largest is about 1.
+pub(super) fn scaled<const N: usize>(polynomials: [&IntPoly; N]) -> [Vec<f64>; N] {
+    let parts = polynomials.map(|p| -> Vec<(f64, i64)> {
+        p.coefficients().iter().map(|c| Dyadic::new(c.clone(), 0).to_f64_parts()).collect()
+    });
+    let top = parts.iter().flatten().filter(|c| c.0 != 0.0).map(|c| c.1).max().unwrap_or(0);
+    parts.map(|p| p.into_iter().map(|(m, e)| libm::ldexp(m, (e - top).max(-2000) as i32)).collect())
 }
 
 /// p(s), p′(s) and Σ |c_k|·|s|^k.

@@ -44,10 +44,10 @@ const BOUND_CAP: usize = 4000;
 /// The loop: its parts have no common root.
 #[derive(Clone, Debug)]
 pub struct GainFamily {
-    a: IntPoly,
-    b0: IntPoly,
-    b1: IntPoly,
-    dead_time: RBig,
+    pub(super) a: IntPoly,
+    pub(super) b0: IntPoly,
+    pub(super) b1: IntPoly,
+    pub(super) dead_time: RBig,
     /// The common factor of the parts as given; its roots are the fixed modes.
     pub fixed: IntPoly,
 }
@@ -123,7 +123,7 @@ struct Found {
 }
 
 impl Found {
-    /// Whether two unstable poles go as |q| grows.
+    /// Whether unstable poles go as |q| grows.
     fn removes(&self) -> bool {
         (self.crossing.change < 0) == (self.knob > 0.0)
     }
@@ -151,7 +151,7 @@ struct Search {
     /// rad/s: beyond this every crossing adds unstable poles as |q| grows.
     inner_frequency: f64,
     /// The crossing at the origin, and those of A's own axis poles at q = 0.
-    at_origin: Vec<Crossing>,
+    at_origin: Vec<Found>,
 }
 
 impl Search {
@@ -188,9 +188,10 @@ impl Search {
             function,
             inner_frequency,
         };
-        search.at_origin.extend(origin_crossing(family, sign * search.factor_sign(&Dyadic::ZERO))?);
+        let origin = origin_crossing(family, sign * search.factor_sign(&Dyadic::ZERO))?;
         let own = search.crossings_of_own_poles()?;
-        search.at_origin.extend(own);
+        let found = |crossing: Crossing| Found { knob: crossing.place.value(), crossing };
+        search.at_origin = origin.into_iter().chain(own).map(found).collect();
         Ok(search)
     }
 
@@ -240,11 +241,10 @@ impl Search {
         };
         let smallest = known.iter().chain(&near).map(|f| f.knob.abs()).fold(f64::INFINITY, f64::min);
         let wanted = [of_sign(true), of_sign(false)].into_iter().filter(|q| q.is_finite()).fold(smallest, f64::max);
-        let origin = self.at_origin.iter().map(|c| c.place.value().abs()).fold(0.0, f64::max);
-        if wanted.is_finite() { Ok(1.01 * wanted.max(origin)) } else { Err(DeadTimeError::NoOuterBound) }
+        if wanted.is_finite() { Ok(1.01 * wanted) } else { Err(DeadTimeError::NoOuterBound) }
     }
 
-    /// The partition with every crossing of |q| ≤ bound; None where its outermost ranges are not surely unstable for ever.
+    /// The partition with every crossing of |q| ≤ bound, the origin's included; None where its outermost ranges are not surely unstable for ever.
     fn bounded(
         &self,
         family: &GainFamily,
@@ -252,9 +252,9 @@ impl Search {
         bound: f64,
     ) -> Result<Option<DeadTimePartition>, DeadTimeError> {
         let mut looked = 0;
-        let mut crossings = self.at_origin.clone();
-        let inside = |f: &&Found| f.knob.abs() <= bound;
-        crossings.extend(known.iter().filter(inside).map(|f| f.crossing.clone()));
+        let (inside, outside): (Vec<&Found>, Vec<&Found>) =
+            known.iter().chain(&self.at_origin).partition(|f| f.knob.abs() <= bound);
+        let mut crossings: Vec<Crossing> = inside.into_iter().map(|f| f.crossing.clone()).collect();
         for (from, to) in self.bands(bound)? {
             for isolated in self.zeros(from.max(self.inner_frequency), to, &mut looked)? {
                 let found = self.refined(&isolated)?;
@@ -265,8 +265,8 @@ impl Search {
         }
         let mut partition = DeadTimePartition::new(crossings, |q| family.count(q))?;
         let removed = |positive: bool| {
-            let all = known.iter().filter(|f| f.knob.abs() > bound && (f.knob > 0.0) == positive && f.removes());
-            2 * all.count()
+            let all = outside.iter().filter(|f| (f.knob > 0.0) == positive && f.removes());
+            all.map(|f| f.crossing.change.unsigned_abs() as usize).sum::<usize>()
         };
         let ends = (partition.ranges[0].right, partition.ranges[partition.places.len()].right);
         let settled = ends.0 > removed(false) && ends.1 > removed(true);

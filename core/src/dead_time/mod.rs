@@ -5,12 +5,15 @@
 //! e^(jωT) is transcendental for every algebraic ω ≠ 0; so no crossing of the axis at ω > 0 has an algebraic ω or knob,
 //! and none is a mere touch.
 
+pub mod branches;
 pub mod delay;
 pub mod frequency;
 mod function;
 pub mod gain;
 mod isolation;
+pub mod landmarks;
 mod partition;
+mod plane;
 pub mod poles;
 pub mod response;
 mod trigonometry;

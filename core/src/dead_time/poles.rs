@@ -37,11 +37,12 @@ const GROWTH: [f64; 5] = [0.0, 1e-6, 1e-4, 1e-3, 1e-2];
 /// Newton steps for a pole.
 const NEWTON_CAP: usize = 24;
 
-/// Poles that share a rectangle of this part of their magnitude count as one.
+/// Poles that share a rectangle of this part of their magnitude count as one, or, next to the origin, of this part of a
+/// hundredth of the whole rectangle.
 const TOGETHER: f64 = 1e-7;
 
 /// e^(−T·s) is followed to the left up to this exponent: far from overflow of products.
-const LARGEST_EXPONENT: f64 = 250.0;
+pub(super) const LARGEST_EXPONENT: f64 = 250.0;
 
 /// A pole counts as dominant when it fades at most this many times as fast as the slowest.
 const DOMINANT: f64 = 3.0;
@@ -107,13 +108,15 @@ struct OnSide;
 
 struct Search<'a> {
     f: &'a Quasi,
+    /// The extent of the whole rectangle.
+    size: f64,
     evaluations: usize,
     found: Vec<Root>,
 }
 
 fn within(f: &Quasi, left: f64, right: f64, top: f64) -> Result<Vec<Root>, DeadTimeError> {
-    let mut search = Search { f, evaluations: 0, found: Vec::new() };
     let size = (right - left).max(top);
+    let mut search = Search { f, size, evaluations: 0, found: Vec::new() };
     for growth in GROWTH {
         let by = growth * size;
         let outer = Rectangle { left: left - by, right: right + by, bottom: None, top: top + by };
@@ -205,7 +208,8 @@ impl Search<'_> {
                 continue;
             }
             let (width, height) = (rectangle.right - rectangle.left, rectangle.top - rectangle.bottom.unwrap_or(0.0));
-            let scale = rectangle.left.abs().max(rectangle.right.abs()).max(rectangle.top);
+            let magnitude = rectangle.left.abs().max(rectangle.right.abs()).max(rectangle.top);
+            let scale = magnitude.max(0.01 * self.size);
             if width.max(height) <= TOGETHER * scale {
                 self.take_together(&rectangle, count);
                 continue;

@@ -100,11 +100,7 @@ fn inverse_tangent_of_inverse(n: i64) -> IBig {
     let mut sum = IBig::ZERO;
     for k in 0..TERM_CAP {
         let term = &power / IBig::from(2 * k + 1);
-        if k % 2 == 0 {
-            sum += term
-        } else {
-            sum -= term
-        }
+        sum += if k % 2 == 0 { term } else { -term };
         power /= &square;
         if power.is_zero() {
             break;

@@ -80,7 +80,8 @@ impl ComplexDyadic {
         Self::from_parts(&cut(&re), &cut(&im))
     }
 
-    fn minus(&self, other: &Self) -> Complex<f64> {
+    /// self − other, rounded once.
+    pub fn minus(&self, other: &Self) -> Complex<f64> {
         Complex::new((&self.re() - &other.re()).to_f64(), (&self.im() - &other.im()).to_f64())
     }
 }

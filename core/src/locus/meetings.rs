@@ -79,18 +79,14 @@ pub fn encounters(family: &Family, partition: &Partition) -> Result<Encounters, 
         }
         None if family.knob_degree() == 0 => {}
         None => {
-            found.meetings.extend(polynomial::meetings(family)?.into_iter().filter(|m| m.s.im > 0.0).filter_map(|m| {
-                let knob = m.bracket.midpoint().to_f64();
-                (knob != 0.0).then_some(Meeting {
-                    s: m.s,
-                    knob,
-                    multiplicity: m.multiplicity,
-                    leaves_axis: true,
-                    miss: 0.0,
-                })
-            }))
+            for meeting in polynomial::meetings(family)?.into_iter().filter(|meeting| meeting.s.im > 0.0) {
+                let knob = meeting.bracket.midpoint().to_f64();
+                let (s, multiplicity) = (meeting.s, meeting.multiplicity);
+                found.meetings.push(Meeting { s, knob, multiplicity, leaves_axis: true, miss: 0.0 });
+            }
         }
     }
+    found.meetings.retain(|meeting| meeting.knob != 0.0);
     found.meetings.sort_by(|a, b| a.knob.total_cmp(&b.knob));
     let meetings = &found.meetings;
     found.close_calls.retain(|q| !meetings.iter().any(|m| (m.knob - q).abs() <= KNOWN * q.abs()));

@@ -1,8 +1,11 @@
 //! The root locus in f64: branches, landmarks, and the rules of the trade for drawing it by hand.
 
+mod arrivals;
 mod branches;
 pub mod landmarks;
 mod meetings;
+mod position;
+mod stretch;
 mod system;
 mod track;
 pub mod trade;

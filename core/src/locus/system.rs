@@ -1,11 +1,11 @@
 //! The moving poles as a function of the knob, in f64: one Newton step, its rounding error, and the direction of motion.
 
+use super::position::{Position, ROUNDING};
 use crate::exact::{Dyadic, IntPoly};
 use crate::numerics::magnitude;
 use crate::ranges::Family;
-use crate::record::Root;
 use alloc::vec::Vec;
-use nalgebra::{Complex, ComplexField};
+use nalgebra::Complex;
 
 /// Products are brought back to this magnitude before they can over- or underflow.
 const LARGE: f64 = 1e100;
@@ -17,9 +17,9 @@ pub(super) enum System {
     /// lose 1e-6).
     Factored {
         /// Roots of D with multiplicity written out.
-        poles: Vec<Complex<f64>>,
+        poles: Vec<Position>,
         /// Roots of N likewise.
-        zeros: Vec<Complex<f64>>,
+        zeros: Vec<Position>,
         /// Ratio of the leading coefficients of N and D.
         gain: f64,
     },
@@ -45,14 +45,11 @@ pub(super) struct Newton {
 
 impl System {
     /// The factored system of an affine family; `sign` is that of the knob.
-    pub(super) fn factored(d: &IntPoly, n: &IntPoly, poles: &[Root], zeros: &[Root], sign: f64) -> Self {
-        let written_out = |roots: &[Root]| {
-            roots.iter().flat_map(|r| core::iter::repeat_n(Complex::new(r.re, r.im), r.multiplicity)).collect()
-        };
+    pub(super) fn factored(d: &IntPoly, n: &IntPoly, poles: Vec<Position>, zeros: Vec<Position>, sign: f64) -> Self {
         let (n_lead, d_lead) = (Dyadic::new(n.leading(), 0), Dyadic::new(d.leading(), 0));
         let ((nm, ne), (dm, de)) = (n_lead.to_f64_parts(), d_lead.to_f64_parts());
         let gain = sign * libm::ldexp(nm / dm, (ne - de).clamp(-1070, 1020) as i32);
-        Self::Factored { poles: written_out(poles), zeros: written_out(zeros), gain }
+        Self::Factored { poles, zeros, gain }
     }
 
     /// The expanded system of any family. None where its coefficients do not fit into f64.
@@ -81,10 +78,10 @@ impl System {
     }
 
     /// One evaluation at s and q > 0. None where it is singular in f64.
-    pub(super) fn newton(&self, s: Complex<f64>, q: f64) -> Option<Newton> {
+    pub(super) fn newton(&self, s: Position, q: f64) -> Option<Newton> {
         let result = match self {
             Self::Factored { poles, zeros, gain } => factored_newton(poles, zeros, gain * q, s),
-            Self::Expanded { coefficients, scale } => expanded_newton(coefficients, *scale, s, q),
+            Self::Expanded { coefficients, scale } => expanded_newton(coefficients, *scale, s.rounded(), q),
         };
         let finite = |z: Complex<f64>| z.re.is_finite() && z.im.is_finite();
         (finite(result.correction) && finite(result.motion) && result.floor.is_finite()).then_some(result)
@@ -94,14 +91,15 @@ impl System {
     pub(super) fn typical_knob(&self) -> f64 {
         match self {
             Self::Factored { poles, zeros, gain } => {
-                let logs = |roots: &[Complex<f64>]| -> (f64, usize) {
-                    let sizes = roots.iter().map(|r| magnitude(*r)).filter(|m| *m > 0.0);
+                let logs = |roots: &[Position]| -> (f64, usize) {
+                    let sizes = roots.iter().map(|r| magnitude(r.rounded())).filter(|m| *m > 0.0);
                     sizes.fold((0.0, 0), |(sum, count), m| (sum + libm::log(m), count + 1))
                 };
                 let ((a, i), (b, k)) = (logs(poles), logs(zeros));
                 let radius = if i + k == 0 { 1.0 } else { libm::exp((a + b) / (i + k) as f64) };
-                let log_product = |roots: &[Complex<f64>]| -> f64 {
-                    roots.iter().map(|r| 0.5 * libm::log(r.modulus_squared() + radius * radius)).sum()
+                let log_product = |roots: &[Position]| -> f64 {
+                    let log = |r: &Position| 0.5 * libm::log(r.rounded().norm_sqr() + radius * radius);
+                    roots.iter().map(log).sum()
                 };
                 let log = log_product(poles) - log_product(zeros) - libm::log(libm::fabs(*gain));
                 libm::exp(log.clamp(-600.0, 600.0))
@@ -112,11 +110,10 @@ impl System {
 }
 
 /// With L = q·N/D: F/F′ = (1 + L)/(σD + L·σN) and q·ds/dq = −L/(σD + L·σN), σ the sums of 1/(s − root).
-fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s: Complex<f64>) -> Newton {
+fn factored_newton(poles: &[Position], zeros: &[Position], gain: f64, s: Position) -> Newton {
     let (mut sigma_d, mut sigma_n) = (Complex::new(0.0, 0.0), Complex::new(0.0, 0.0));
     let mut product = Complex::new(gain, 0.0);
     let mut exponent = 0;
-    let mut doubt = (poles.len() + zeros.len()) as f64 * 4.0 + 4.0;
     let mut keep_in_range = |product: &mut Complex<f64>| {
         let size = product.re.abs().max(product.im.abs());
         if !(1.0 / LARGE..LARGE).contains(&size) && size > 0.0 && size.is_finite() {
@@ -128,7 +125,6 @@ fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s:
     for k in 0..poles.len().max(zeros.len()) {
         if let Some(p) = poles.get(k) {
             let inverse = reciprocal(distance(s, *p));
-            doubt += magnitude(*p) * magnitude(inverse);
             sigma_d += inverse;
             product *= inverse;
             keep_in_range(&mut product);
@@ -136,7 +132,6 @@ fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s:
         if let Some(z) = zeros.get(k) {
             let difference = distance(s, *z);
             let inverse = reciprocal(difference);
-            doubt += magnitude(*z) * magnitude(inverse);
             sigma_n += inverse;
             product *= difference;
             keep_in_range(&mut product);
@@ -153,6 +148,8 @@ fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s:
         (m + 1.0, m * sigma_d + sigma_n, Complex::new(1.0, 0.0))
     };
     let slope = reciprocal(bottom);
+    // Every factor rounds its distance, its reciprocal and the product.
+    let doubt = 8.0 * (poles.len() + zeros.len() + 1) as f64;
     Newton {
         correction: top * slope,
         floor: doubt * f64::EPSILON * magnitude(slope) * magnitude(l).min(1.0),
@@ -160,14 +157,13 @@ fn factored_newton(poles: &[Complex<f64>], zeros: &[Complex<f64>], gain: f64, s:
     }
 }
 
-/// s − root, or a quarter of a rounding unit where the two are the same number: a pole of the closed loop may be nearer to
-/// one of the open loop than f64 can tell, and is then found there.
-fn distance(s: Complex<f64>, root: Complex<f64>) -> Complex<f64> {
-    let difference = s - root;
-    if difference.re == 0.0 && difference.im == 0.0 {
-        return Complex::new((0.25 * f64::EPSILON * magnitude(root)).max(1e-300), 0.0);
-    }
-    difference
+/// s − root, or a quarter of a rounding unit where it is less: a pole of the closed loop may be nearer to one of the open
+/// loop than a [`Position`] can tell, and is then found there.
+fn distance(s: Position, root: Position) -> Complex<f64> {
+    let difference = s.minus(root);
+    let place = root.rounded();
+    let least = (0.25 * ROUNDING * (place.re.abs() + place.im.abs())).max(1e-300);
+    if difference.re.abs() + difference.im.abs() < least { Complex::new(least, 0.0) } else { difference }
 }
 
 /// Horner's scheme for F, its slope and its derivative by the knob.
@@ -192,7 +188,8 @@ fn expanded_newton(coefficients: &[Vec<f64>], scale: f64, s: Complex<f64>, q: f6
     let inverse = reciprocal(slope) * scale;
     Newton {
         correction: value * inverse,
-        floor: 4.0 * f64::EPSILON * coefficients.len() as f64 * total * magnitude(inverse),
+        // The rounding of the evaluation, and of s itself.
+        floor: f64::EPSILON * (4.0 * coefficients.len() as f64 * total * magnitude(inverse) + magnitude(s)),
         motion: -by_knob * inverse,
     }
 }

@@ -5,36 +5,34 @@
 //! from the exact direction of motion at both ends) stays within a fraction of a pixel of its chord.
 //! Real poles stay exactly real; of a complex pair only the upper one is carried.
 
-use super::system::System;
+use super::position::{Position, ROUNDING};
+use super::stretch::{Arrival, Carried, Lost, Parameter, Row, Stretch, Track, Way};
+use super::system::{Newton, System};
 use super::view::Pixels;
 use crate::numerics::magnitude;
 use alloc::vec::Vec;
 use nalgebra::Complex;
 
 /// Newton steps for one pole after a good prediction; two or three are the rule.
-const NEWTON_CAP: usize = 12;
+pub(super) const NEWTON_CAP: usize = 12;
 
 /// Rows on one stretch before giving up: a hundred times what ordinary loops need.
 const ROW_CAP: usize = 20_000;
 
 /// A pole may end up this far from its prediction, as a part of the distance to the nearest other pole.
-const DRIFT: f64 = 0.15;
+pub(super) const DRIFT: f64 = 0.15;
+
+/// A correction below this part of the distance to what is near is the last one.
+const SETTLED: f64 = 1e-9;
 
 /// Chord to curve, in pixels of the default view; a quarter is promised.
-const SAGITTA: f64 = 0.08;
-
-/// The smallest exponent of an approach: at order 40 forty poles may meet.
-const SLOWEST_APPROACH: f64 = 0.02;
-
-/// |ln τ| from which a meeting of several poles may be joined: farther away the terms of higher order can hide in the
-/// motion at one point.
-const NEAR_MEETING: f64 = 2.5;
-
-/// |ln τ| from which the way to an end is not looked at halfway any more: there rounding decides what is found.
-const VERY_NEAR_MEETING: f64 = 10.0;
+pub(super) const SAGITTA: f64 = 0.08;
 
 /// The smallest step in ln τ: f64 cannot tell smaller ones apart.
 const SMALLEST_STEP: f64 = 1e-15;
+
+/// Parts of the knob by which a near miss is jumped that no step can follow: far below a pixel.
+const LEAPS: [f64; 4] = [1e-13, 1e-12, 1e-11, 1e-10];
 
 /// The largest step in ln τ while a pole is in the picture: keeps the knob readable by interpolation between two rows.
 const LARGEST_STEP: f64 = 0.7;
@@ -42,112 +40,13 @@ const LARGEST_STEP: f64 = 0.7;
 /// The largest step once every moving pole is out of it, or at its end.
 const LARGEST_STEP_OUTSIDE: f64 = 3.0;
 
-/// Beyond this |ln τ| an end at knob 0 or infinity is joined even where the prediction is poor: the knob leaves the range
-/// of f64. At other ends that is so where f64 cannot tell the knob from the end's.
-const LOG_CAP: f64 = 600.0;
-
-/// Where poles meet.
-#[derive(Clone, Copy, Debug)]
-pub(super) struct Cluster {
-    /// In the closed upper half plane; on the real axis with imaginary part exactly 0.
-    pub(super) s: Complex<f64>,
-    /// How many poles meet.
-    pub(super) multiplicity: usize,
-    /// Where two poles only just miss each other, the side to which they turn: the sign of [`super::Meeting::miss`]; 0
-    /// where they meet.
-    pub(super) turn: f64,
-}
-
-/// One end of a stretch.
-#[derive(Clone, Debug)]
-pub(super) struct End {
-    /// The knob: 0, a value where poles meet or vanish, or infinity.
-    pub(super) knob: f64,
-    /// Where poles meet; at 0 and infinity every pole's or zero's place, simple ones included.
-    pub(super) clusters: Vec<Cluster>,
-    /// True where poles without a cluster keep a finite place (not at 0 and infinity).
-    pub(super) others_stay: bool,
-    /// How many poles are at infinity there.
-    pub(super) at_infinity: usize,
-}
-
-/// A stretch of the knob between two ends, with the number of real poles in it.
-#[derive(Clone, Debug)]
-pub(super) struct Stretch {
-    /// The end nearer to zero.
-    pub(super) inner: End,
-    /// The end farther from zero.
-    pub(super) outer: End,
-    /// Moving poles on the real axis.
-    pub(super) real: usize,
-    /// Knob values inside at which a row is wanted.
-    pub(super) stops: Vec<f64>,
-}
-
-/// One carried pole.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct Carried {
-    /// Where it is; on the real axis or in the upper half plane.
-    pub(super) s: Complex<f64>,
-    /// ds/dv of the stretch's parameter v.
-    velocity: Complex<f64>,
-}
-
-/// All carried poles at one knob value.
-#[derive(Clone, Debug)]
-pub(super) struct Row {
-    /// The knob.
-    pub(super) knob: f64,
-    v: f64,
-    /// The poles, in an order kept along the stretch.
-    pub(super) poles: Vec<Carried>,
-}
-
-/// Where a carried pole is at an end.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) enum Arrival {
-    /// In the cluster of that number.
-    Cluster(usize),
-    /// At a simple place.
-    Place(Complex<f64>),
-    /// At infinity.
-    Infinity,
-}
-
-/// A tracked stretch.
-#[derive(Clone, Debug)]
-pub(super) struct Track {
-    /// Rows with growing knob.
-    pub(super) rows: Vec<Row>,
-    /// What each carried pole does at the inner end.
-    pub(super) inner: Vec<Arrival>,
-    /// What each carried pole does at the outer end.
-    pub(super) outer: Vec<Arrival>,
-}
-
-/// Which way along a stretch.
-#[derive(Clone, Copy, PartialEq)]
-enum Way {
-    Inward,
-    Outward,
-}
-
-/// The tracking could not be finished within its caps.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) struct Lost;
-
 /// Follows one stretch in both directions from its middle.
 ///
 /// # Errors
 /// [`Lost`] when a cap is met; nothing uncertain is returned.
-pub(super) fn track(
-    system: &System,
-    stretch: &Stretch,
-    pixels: &Pixels,
-    first: &[Complex<f64>],
-) -> Result<Track, Lost> {
+pub(super) fn track(system: &System, stretch: &Stretch, pixels: &Pixels, first: &[Position]) -> Result<Track, Lost> {
     let tracker = Tracker { system, stretch, pixels, typical: system.typical_knob() };
-    let start = tracker.first_row(first)?;
+    let start = tracker.row(0.0, first)?;
     let (mut rows, inner) = tracker.run(&start, Way::Inward)?;
     rows.reverse();
     let (more, outer) = tracker.run(&start, Way::Outward)?;
@@ -161,110 +60,51 @@ pub(super) fn middle(system: &System, stretch: &Stretch) -> f64 {
     Parameter { inner: stretch.inner.knob, outer: stretch.outer.knob, typical: system.typical_knob() }.knob(0.0)
 }
 
-/// The parameter v = ln τ of a stretch (a, b): τ = (q − a)/(b − q); for b = ∞, τ = (q − a)/a, or q/typical for a = 0.
-/// Near a meeting of m poles their distance from it goes like e^(v/m): the tracking slows down by itself.
-struct Parameter {
-    inner: f64,
-    outer: f64,
-    typical: f64,
-}
-
-impl Parameter {
-    fn unit(&self) -> f64 {
-        if self.inner > 0.0 { self.inner } else { self.typical }
-    }
-
-    fn knob(&self, v: f64) -> f64 {
-        let tau = libm::exp(v);
-        if self.outer.is_finite() {
-            // Written so that neither end is lost to cancellation.
-            if tau < 1.0 {
-                self.inner + (self.outer - self.inner) * (tau / (1.0 + tau))
-            } else {
-                self.outer - (self.outer - self.inner) / (1.0 + tau)
-            }
-        } else {
-            self.inner + self.unit() * tau
-        }
-    }
-
-    fn at(&self, knob: f64) -> f64 {
-        if self.outer.is_finite() {
-            libm::log((knob - self.inner) / (self.outer - knob))
-        } else {
-            libm::log((knob - self.inner) / self.unit())
-        }
-    }
-
-    /// dq/dv.
-    fn speed(&self, v: f64) -> f64 {
-        let tau = libm::exp(v);
-        if self.outer.is_finite() {
-            (self.outer - self.inner) * tau / ((1.0 + tau) * (1.0 + tau))
-        } else {
-            self.unit() * tau
-        }
-    }
-}
-
-struct Tracker<'a> {
-    system: &'a System,
-    stretch: &'a Stretch,
-    pixels: &'a Pixels,
+/// What stays the same along a stretch.
+pub(super) struct Tracker<'a> {
+    pub(super) system: &'a System,
+    pub(super) stretch: &'a Stretch,
+    pub(super) pixels: &'a Pixels,
     typical: f64,
 }
 
 impl Tracker<'_> {
-    fn parameter(&self) -> Parameter {
+    pub(super) fn parameter(&self) -> Parameter {
         Parameter { inner: self.stretch.inner.knob, outer: self.stretch.outer.knob, typical: self.typical }
     }
 
-    /// The first row from uncertified approximations of all poles.
-    fn first_row(&self, approximations: &[Complex<f64>]) -> Result<Row, Lost> {
-        let knob = self.parameter().knob(0.0);
+    /// A row from uncertified approximations of all poles.
+    fn row(&self, v: f64, approximations: &[Position]) -> Result<Row, Lost> {
+        let knob = self.parameter().knob(v);
         let mut s = approximations.to_vec();
         simultaneous(self.system, knob, &mut s)?;
         // The exact count of real poles says how many belong on the axis.
-        s.sort_by(|a, b| (libm::fabs(a.im) / magnitude(*a)).total_cmp(&(libm::fabs(b.im) / magnitude(*b))));
+        let above_rounding = |z: &Position| {
+            let floor = self.system.newton(*z, knob).map_or(0.0, |newton| newton.floor);
+            libm::fabs(z.rounded().im) / floor.max(ROUNDING * magnitude(z.rounded()))
+        };
+        s.sort_by(|a, b| above_rounding(a).total_cmp(&above_rounding(b)));
         let real = self.stretch.real;
-        let mut carried: Vec<Complex<f64>> = s[..real].iter().map(|z| Complex::new(z.re, 0.0)).collect();
-        carried.extend(s[real..].iter().filter(|z| z.im > 0.0));
+        let mut carried: Vec<Position> = s[..real].iter().map(|z| z.on_real_axis()).collect();
+        carried.extend(s[real..].iter().filter(|z| z.rounded().im > 0.0));
         if real + 2 * (carried.len() - real) != s.len() {
             return Err(Lost);
         }
-        let poles = carried
-            .iter()
-            .map(|z| self.corrected(*z, *z, f64::INFINITY, 0.0))
-            .collect::<Option<Vec<_>>>()
-            .ok_or(Lost)?;
-        Ok(Row { knob, v: 0.0, poles })
+        let pole = |k: usize| self.corrected(carried[k], nearest_other(&carried, k), v);
+        let poles = (0..carried.len()).map(pole).collect::<Option<Vec<_>>>().ok_or(Lost)?;
+        Ok(Row { knob, v, poles })
     }
 
-    /// Newton's iteration for one pole from a prediction; None where it leaves the allowance or does not settle.
-    fn corrected(&self, start: Complex<f64>, predicted: Complex<f64>, allowance: f64, v: f64) -> Option<Carried> {
+    /// One pole at v, from a prediction with that much room around it.
+    fn corrected(&self, predicted: Position, room: f64, v: f64) -> Option<Carried> {
         let parameter = self.parameter();
         let knob = parameter.knob(v);
-        let real = start.im == 0.0;
-        let mut s = predicted;
-        for _ in 0..NEWTON_CAP {
-            let newton = self.system.newton(s, knob)?;
-            s -= newton.correction;
-            if real {
-                s.im = 0.0;
-            }
-            if magnitude(s - predicted) > allowance {
-                return None;
-            }
-            let step = magnitude(newton.correction);
-            if step <= newton.floor.max(1e-13 * magnitude(s)) {
-                let mut velocity = newton.motion * (parameter.speed(v) / knob);
-                if real {
-                    velocity.im = 0.0;
-                }
-                return Some(Carried { s, velocity });
-            }
+        let (s, newton) = settled(self.system, predicted, room, knob)?;
+        let mut velocity = newton.motion * (parameter.speed(v) / knob);
+        if s.is_real() {
+            velocity.im = 0.0;
         }
-        None
+        Some(Carried { s, velocity })
     }
 
     /// Rows from `start` to one end, and what each pole does there.
@@ -305,234 +145,144 @@ impl Tracker<'_> {
                 None => step *= 0.4,
             }
             if step < SMALLEST_STEP * (1.0 + v.abs()) {
-                return Err(Lost);
+                let row = self.leap(rows.last().unwrap_or(start), way).ok_or(Lost)?;
+                stops.retain(|knob| if way == Way::Inward { *knob < row.knob } else { *knob > row.knob });
+                step = (row.v - rows.last().unwrap_or(start).v).abs();
+                rows.push(row);
             }
         }
         Err(Lost)
     }
 
+    /// Across a near miss in which poles change faster than f64 can follow. Real poles keep their order there, and complex
+    /// ones have only each other to be taken for.
+    fn leap(&self, from: &Row, way: Way) -> Option<Row> {
+        LEAPS.iter().find_map(|leap| {
+            let knob = from.knob * if way == Way::Inward { 1.0 - leap } else { 1.0 + leap };
+            if knob <= self.stretch.inner.knob || knob >= self.stretch.outer.knob {
+                return None;
+            }
+            let v = self.parameter().at(knob);
+            let (before, predictions) = predicted(from, v - from.v);
+            let mirrored = predictions.iter().filter(|s| !s.is_real()).map(|s| s.mirrored());
+            let all: Vec<Position> = predictions.iter().copied().chain(mirrored).collect();
+            let mut row = self.row(v, &all).ok()?;
+            let (real, complex): (Vec<Carried>, Vec<Carried>) = row.poles.iter().partition(|pole| pole.s.is_real());
+            let mut real = real.into_iter();
+            let off_axis = |places: &[Position]| places.iter().filter(|s| !s.is_real()).copied().collect::<Vec<_>>();
+            let (complex_before, complex_ahead) = (off_axis(&before), off_axis(&predictions));
+            let mut next = |k: usize| {
+                if before[k].is_real() {
+                    return real.next();
+                }
+                let away = |pole: &&Carried| magnitude(pole.s.minus(predictions[k]));
+                let others = distances(&complex_before, before[k]).chain(distances(&complex_ahead, predictions[k]));
+                let room = others.fold(f64::INFINITY, f64::min);
+                complex.iter().min_by(|a, b| away(a).total_cmp(&away(b))).filter(|p| away(p) <= DRIFT * room).copied()
+            };
+            row.poles = (0..before.len()).map(&mut next).collect::<Option<Vec<Carried>>>()?;
+            keep_order(&before, &mut row.poles);
+            Some(row)
+        })
+    }
+
     /// How far the next step may go at the most.
     fn largest_step(&self, row: &Row) -> f64 {
-        let moving = |pole: &Carried| magnitude(pole.velocity) > 1e-3 * magnitude(pole.s);
-        let seen = |pole: &Carried| moving(pole) && self.pixels.remoteness(pole.s) == 0.0;
+        let moving = |pole: &Carried| magnitude(pole.velocity) > 1e-3 * magnitude(pole.s.rounded());
+        let seen = |pole: &Carried| moving(pole) && self.pixels.remoteness(pole.s.rounded()) == 0.0;
         if row.poles.iter().any(seen) { LARGEST_STEP } else { LARGEST_STEP_OUTSIDE }
     }
 
     /// One step to v: the new row and by how much the next step may grow. None where the step was too bold.
     fn step(&self, from: &Row, v: f64) -> Option<(Row, f64)> {
         let h = v - from.v;
-        let predictions: Vec<Complex<f64>> = from.poles.iter().map(|pole| pole.s + pole.velocity * h).collect();
-        let before: Vec<Complex<f64>> = from.poles.iter().map(|pole| pole.s).collect();
+        let (before, predictions) = predicted(from, h);
         let mut poles = Vec::with_capacity(from.poles.len());
         let mut worst: f64 = 0.01;
-        for (k, pole) in from.poles.iter().enumerate() {
-            let predicted = predictions[k];
+        for (k, predicted) in predictions.iter().enumerate() {
             // Both where the poles are and where they are thought to go: no two of them can end up in the same place.
             let room = nearest_other(&before, k).min(nearest_other(&predictions, k));
-            let next = self.corrected(pole.s, predicted, DRIFT * room, v)?;
+            let next = self.corrected(*predicted, room, v)?;
             // A complex pole never crosses to the lower half plane inside of a stretch.
-            if (pole.s.im > 0.0) != (next.s.im > 0.0) {
+            if !before[k].is_real() && next.s.rounded().im <= 0.0 {
                 return None;
             }
-            let drift = magnitude(next.s - predicted) / (DRIFT * room);
-            let sagitta = self.pixels.sagitta(pole.s, next.s, pole.velocity * h, next.velocity * h) / SAGITTA;
+            worst = worst.max(magnitude(next.s.minus(*predicted)) / (DRIFT * room));
+            poles.push(next);
+        }
+        keep_order(&before, &mut poles);
+        for (pole, next) in from.poles.iter().zip(&poles) {
+            let (out, into) = (pole.velocity * h, next.velocity * h);
+            let sagitta = self.pixels.sagitta(pole.s.rounded(), next.s.rounded(), out, into) / SAGITTA;
             if sagitta > 1.6 {
                 return None;
             }
-            worst = worst.max(sagitta).max(drift);
-            poles.push(next);
+            worst = worst.max(sagitta);
         }
         // Both drift and sagitta grow with the square of the step.
         let ease = (0.85 / libm::sqrt(worst)).clamp(0.3, 2.0);
         Some((Row { knob: self.parameter().knob(v), v, poles }, ease))
     }
+}
 
-    /// |ln τ| beyond which an end is joined in any case.
-    fn log_cap(&self, way: Way) -> f64 {
-        let Parameter { inner, outer, .. } = self.parameter();
-        let end = if way == Way::Inward { inner } else { outer };
-        if end == 0.0 || end.is_infinite() {
-            return LOG_CAP;
-        }
-        let width = if outer.is_finite() { outer - inner } else { inner };
-        libm::log(width / (8.0 * f64::EPSILON * end)).max(0.0)
+/// Where the poles of a row are, and where they would be a step later by their velocities.
+fn predicted(from: &Row, h: f64) -> (Vec<Position>, Vec<Position>) {
+    from.poles.iter().map(|pole| (pole.s, pole.s.plus(pole.velocity * h))).unzip()
+}
+
+/// Real poles that do not meet keep their order on the axis: where a step went past the moment in which one pushes the
+/// other away, each was taken for the other.
+fn keep_order(before: &[Position], after: &mut [Carried]) {
+    let mut ranks: Vec<usize> = (0..before.len()).filter(|k| before[*k].is_real()).collect();
+    ranks.sort_by(|a, b| before[*a].minus(before[*b]).re.total_cmp(&0.0));
+    let mut real: Vec<Carried> = ranks.iter().map(|k| after[*k]).collect();
+    real.sort_by(|a, b| a.s.minus(b.s).re.total_cmp(&0.0));
+    for (k, pole) in ranks.into_iter().zip(real) {
+        after[k] = pole;
     }
+}
 
-    /// Whether the end can be joined to this row by straight chords; then how.
-    fn arrivals(&self, row: &Row, way: Way) -> Option<Vec<Arrival>> {
-        let end = if way == Way::Inward { &self.stretch.inner } else { &self.stretch.outer };
-        let forced = row.v.abs() > self.log_cap(way);
-        let mut arrivals: Vec<Option<Arrival>> = alloc::vec![None; row.poles.len()];
-        self.send_to_infinity(row, end, forced, &mut arrivals)?;
-        for (number, cluster) in end.clusters.iter().enumerate() {
-            self.gather(row, way, (number, cluster), forced, &mut arrivals)?;
+/// Newton's iteration for one pole from a prediction with that much room around it; None where it leaves its part of the
+/// room or does not settle. From the real axis it does not leave it.
+pub(super) fn settled(system: &System, predicted: Position, room: f64, knob: f64) -> Option<(Position, Newton)> {
+    let mut s = predicted;
+    for _ in 0..NEWTON_CAP {
+        let newton = system.newton(s, knob)?;
+        s = s.plus(-newton.correction);
+        if predicted.is_real() {
+            s = s.on_real_axis();
         }
-        for (k, arrival) in arrivals.iter_mut().enumerate().filter(|(_, a)| a.is_none()) {
-            if !end.others_stay {
-                return None;
-            }
-            *arrival = Some(Arrival::Place(self.settled(row, k, end.knob, forced)?));
+        if magnitude(s.minus(predicted)) > DRIFT * room {
+            return None;
         }
-        arrivals.into_iter().collect()
-    }
-
-    /// The farthest poles go to infinity, once they are far out of the picture.
-    fn send_to_infinity(&self, row: &Row, end: &End, forced: bool, arrivals: &mut [Option<Arrival>]) -> Option<()> {
-        let mut order: Vec<usize> = (0..row.poles.len()).collect();
-        let far = |k: &usize| self.pixels.remoteness(row.poles[*k].s);
-        order.sort_by(|a, b| far(b).total_cmp(&far(a)));
-        let mut left = end.at_infinity;
-        for k in order {
-            if left == 0 {
-                break;
-            }
-            let weight = if row.poles[k].s.im > 0.0 { 2 } else { 1 };
-            if weight > left {
-                continue;
-            }
-            if !forced && !self.pixels.is_far(row.poles[k].s) {
-                return None;
-            }
-            arrivals[k] = Some(Arrival::Infinity);
-            left -= weight;
-        }
-        (left == 0).then_some(())
-    }
-
-    /// Assigns the poles nearest to a cluster to it, where their straight prediction hits it well enough.
-    fn gather(
-        &self,
-        row: &Row,
-        way: Way,
-        cluster: (usize, &Cluster),
-        forced: bool,
-        arrivals: &mut [Option<Arrival>],
-    ) -> Option<()> {
-        let (number, Cluster { s, multiplicity, .. }) = cluster;
-        let mut order: Vec<usize> = (0..row.poles.len()).filter(|k| arrivals[*k].is_none()).collect();
-        let distance = |k: usize| magnitude(row.poles[k].s - s);
-        order.sort_by(|a, b| distance(*a).total_cmp(&distance(*b)));
-        let mut left = *multiplicity;
-        let mut farthest: f64 = 0.0;
-        for k in order {
-            if left == 0 {
-                // The next pole must be clearly outside.
-                return (forced || distance(k) > 2.0 * farthest).then_some(());
-            }
-            // A pair meets a point of the real axis with both poles.
-            let weight = if s.im == 0.0 && row.poles[k].s.im > 0.0 { 2 } else { 1 };
-            if weight > left {
-                return None;
-            }
-            if !forced && !self.hits(row, way, k, *s, *multiplicity) {
-                return None;
-            }
-            farthest = farthest.max(distance(k));
-            arrivals[k] = Some(Arrival::Cluster(number));
-            left -= weight;
-        }
-        (left == 0).then_some(())
-    }
-
-    /// Near a meeting of m poles s − s* ~ (q − q*)^α, so that s − (q − q*)·ds/dq/α points at s*. For an affine knob
-    /// α = 1/m; otherwise any fraction may occur, and is read off the motion itself.
-    fn hits(&self, row: &Row, way: Way, k: usize, s: Complex<f64>, multiplicity: usize) -> bool {
-        let pole = row.poles[k];
-        let chord = s - pole.s;
-        let distance = magnitude(chord);
-        if distance == 0.0 {
-            return true;
-        }
-        // (q − q*)·ds/dq, or −q·ds/dq towards infinity: dv is d ln|q − q*| near the end.
-        let end_speed = self.end_motion(row, way, pole);
-        let exponent = match self.system {
-            System::Factored { .. } => 1.0 / multiplicity as f64,
-            System::Expanded { .. } => -(end_speed / chord).re,
-        };
-        if exponent < SLOWEST_APPROACH || (multiplicity > 1 && row.v.abs() < NEAR_MEETING) {
-            return false;
-        }
-        // The parabola that leaves with this velocity and ends in s.
-        let out = -end_speed / exponent;
-        let bend = self.pixels.sagitta(pole.s, s, out, chord * 2.0 - out);
-        magnitude(out - chord) <= 0.2 * distance
-            && bend <= 0.8 * SAGITTA
-            && (row.v.abs() > VERY_NEAR_MEETING || self.halfway_is_near(row, way, pole.s, s, exponent))
-    }
-
-    /// Whether the pole halfway to the end is where the chord says: terms of higher order can hide in the motion at one
-    /// point.
-    fn halfway_is_near(&self, row: &Row, way: Way, from: Complex<f64>, to: Complex<f64>, exponent: f64) -> bool {
-        let Parameter { inner, outer, .. } = self.parameter();
-        // s − s* halves where q − q* (or 1/q, towards infinity) falls by this factor.
-        let factor = libm::pow(0.5, 1.0 / exponent);
-        let knob = match way {
-            Way::Inward => inner + (row.knob - inner) * factor,
-            Way::Outward if outer.is_finite() => outer + (row.knob - outer) * factor,
-            Way::Outward => row.knob / factor,
-        };
-        let middle = (from + to) * 0.5;
-        let mut s = middle;
-        for _ in 0..NEWTON_CAP {
-            let Some(newton) = self.system.newton(s, knob) else { return false };
-            s -= newton.correction;
-            if magnitude(newton.correction) <= newton.floor.max(1e-9 * magnitude(s)) {
-                break;
-            }
-        }
-        magnitude(s - middle) <= 0.25 * magnitude(to - from) && self.pixels.off_chord(from, to, s) <= 1.6 * SAGITTA
-    }
-
-    /// ds/d ln|q − q*| at the end the row is heading for.
-    fn end_motion(&self, row: &Row, way: Way, pole: Carried) -> Complex<f64> {
-        let parameter = self.parameter();
-        let by_knob = pole.velocity / parameter.speed(row.v);
-        match way {
-            Way::Inward => by_knob * (row.knob - parameter.inner),
-            Way::Outward if parameter.outer.is_finite() => by_knob * (row.knob - parameter.outer),
-            Way::Outward => -by_knob * row.knob,
+        // The next one would be of the order of the square of this one, in parts of the distance to what is near: another
+        // pole of the closed loop, or, as the motion tells, one of the open loop or a zero.
+        let scale = room.min(magnitude(newton.motion));
+        let enough = newton.floor.max(SETTLED * scale).max(4.0 * ROUNDING * magnitude(s.rounded()));
+        if magnitude(newton.correction) <= enough {
+            return Some((s, newton));
         }
     }
-
-    /// The place of a pole that neither meets another nor vanishes, at the end's knob.
-    fn settled(&self, row: &Row, k: usize, knob: f64, forced: bool) -> Option<Complex<f64>> {
-        let pole = row.poles[k];
-        let by_knob = pole.velocity / self.parameter().speed(row.v);
-        let predicted = pole.s + by_knob * (knob - row.knob);
-        let places: Vec<Complex<f64>> = row.poles.iter().map(|pole| pole.s).collect();
-        let room = nearest_other(&places, k);
-        let mut s = predicted;
-        for _ in 0..NEWTON_CAP {
-            let newton = self.system.newton(s, knob)?;
-            s -= newton.correction;
-            if pole.s.im == 0.0 {
-                s.im = 0.0;
-            }
-            if magnitude(s - predicted) > DRIFT * room {
-                return None;
-            }
-            if magnitude(newton.correction) <= newton.floor.max(1e-13 * magnitude(s)) {
-                let motion = newton.motion * ((knob - row.knob) / knob);
-                let bend = self.pixels.sagitta(pole.s, s, by_knob * (knob - row.knob), motion);
-                return (forced || bend <= 1.6 * SAGITTA).then_some(s);
-            }
-        }
-        None
-    }
+    None
 }
 
 /// The distance to the nearest other pole, mirrored ones included.
-fn nearest_other(places: &[Complex<f64>], k: usize) -> f64 {
+pub(super) fn nearest_other(places: &[Position], k: usize) -> f64 {
     let s = places[k];
-    let own_mirror = if s.im == 0.0 { f64::INFINITY } else { 2.0 * s.im.abs() };
+    let own_mirror = if s.is_real() { f64::INFINITY } else { 2.0 * s.rounded().im.abs() };
     places.iter().enumerate().filter(|(j, _)| *j != k).fold(own_mirror, |nearest, (_, other)| {
         // In the closed upper half plane the mirrored pole is never the nearer one.
-        nearest.min(magnitude(other - s))
+        nearest.min(magnitude(other.minus(s)))
     })
 }
 
+/// The distances of a place from the others.
+fn distances(places: &[Position], s: Position) -> impl Iterator<Item = f64> {
+    places.iter().filter(move |other| **other != s).map(move |other| magnitude(other.minus(s)))
+}
+
 /// Aberth's simultaneous iteration on the system itself, until every pole is at its rounding floor.
-fn simultaneous(system: &System, knob: f64, s: &mut [Complex<f64>]) -> Result<(), Lost> {
+fn simultaneous(system: &System, knob: f64, s: &mut [Position]) -> Result<(), Lost> {
     /// Sweeps before the start is called lost.
     const SWEEP_CAP: usize = 60;
     for _ in 0..SWEEP_CAP {
@@ -540,19 +290,21 @@ fn simultaneous(system: &System, knob: f64, s: &mut [Complex<f64>]) -> Result<()
         for i in 0..s.len() {
             let Some(newton) = system.newton(s[i], knob) else {
                 // On a pole of the open loop: step aside.
-                let aside = magnitude(s[i]).max(f64::MIN_POSITIVE) * 1e-9;
-                s[i] += Complex::new(aside, aside);
+                let aside = magnitude(s[i].rounded()).max(f64::MIN_POSITIVE) * 1e-9;
+                s[i] = s[i].plus(Complex::new(aside, aside));
                 settled = false;
                 continue;
             };
+            let ways = (0..s.len()).filter(|j| *j != i).map(|j| s[i].minus(s[j]));
             let repulsion: Complex<f64> =
-                (0..s.len()).filter(|j| *j != i && s[*j] != s[i]).map(|j| Complex::new(1.0, 0.0) / (s[i] - s[j])).sum();
+                ways.filter(|way| magnitude(*way) > 0.0).map(|way| Complex::new(1.0, 0.0) / way).sum();
             let step = newton.correction / (Complex::new(1.0, 0.0) - newton.correction * repulsion);
             if !(step.re.is_finite() && step.im.is_finite()) {
                 return Err(Lost);
             }
-            s[i] -= step;
-            settled &= magnitude(newton.correction) <= newton.floor.max(1e-13 * magnitude(s[i]));
+            s[i] = s[i].plus(-step);
+            let enough = newton.floor.max(4.0 * ROUNDING * magnitude(s[i].rounded()));
+            settled &= magnitude(newton.correction) <= enough;
         }
         if settled {
             return Ok(());

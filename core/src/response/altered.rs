@@ -102,7 +102,7 @@ mod tests {
             r#"{"format": "stayband-project/1", "loop": {"controller": "K", "plant": "1/(s (s + 0.4))"}, "knob": "K"}"#;
         let project = serde_json::from_str(json).expect("a project");
         let model = crate::model::build(&project).expect("a loop");
-        let at = LoopAt::new(Setup { model: &model }, RBig::ONE).expect("poles");
+        let at = LoopAt::new(Setup::from(&model), RBig::ONE).expect("poles");
         let swing = at.altered_swing(&RBig::ONE, &RBig::ZERO).expect("poles").expect("a swing");
         let root = libm::sqrt(1.0 - 0.04);
         assert!((swing.overshoot - 100.0 * libm::exp(-core::f64::consts::PI * 0.2 / root)).abs() < 1e-6, "{swing:?}");

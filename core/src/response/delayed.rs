@@ -5,7 +5,7 @@ use super::motion::Motion;
 use super::open_loop::OpenLoop;
 use crate::dead_time::delay::count_at;
 use crate::dead_time::frequency::DelayFrequency;
-use crate::dead_time::response::{Output, to_step};
+use crate::dead_time::response::{Output, settles_soon, to_step};
 use crate::dead_time::{Quasi, poles};
 use crate::exact::IntPoly;
 use crate::model::BlockAt;
@@ -80,6 +80,11 @@ impl Delayed {
     /// Output, load and controller output after a unit step. None where the answers do not settle in time.
     pub(super) fn answers(&self, open: &BlockAt, wanted: impl FnOnce() -> Numerators) -> Option<&[Motion; 3]> {
         let found = self.answers.get_or_init(|| {
+            // Beside an edge, or at next to no gain, nobody waits for the end.
+            let decay = -self.poles(open).iter().map(|pole| pole.re).fold(f64::NEG_INFINITY, f64::max);
+            if !settles_soon(&open.below, &open.above, &self.total, decay) {
+                return None;
+            }
             let Numerators { output, load, control } = wanted();
             let lag = |time: &RBig| time.to_f64().value();
             let outputs = [

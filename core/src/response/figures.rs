@@ -5,6 +5,7 @@ use super::modes::Peaks;
 use super::motion::Motion;
 use crate::exact::IntPoly;
 use crate::project::RequirementKind;
+use crate::sampled::SampledAt;
 use dashu_ratio::RBig;
 use nalgebra::ComplexField;
 
@@ -72,6 +73,9 @@ impl LoopAt {
         }
         let decibel = |factor: f64| 20.0 * libm::log10(factor);
         let frequency = || self.frequency();
+        if let Some(found) = self.sampled().and_then(|sampled| sampled_figure(sampled, kind)) {
+            return found;
+        }
         match kind {
             Kind::DampingRatio => self.over_poles(|p| -p.re / p.modulus()),
             Kind::DecayRate => self.over_poles(|p| -p.re),
@@ -110,7 +114,9 @@ impl LoopAt {
         }
     }
 
-    /// The static error at the comparison, |lim s·E(s)| for the command 1/s^(order + 1) and E = D/F·1/s^(order + 1).
+    /// The static error at the comparison, |lim s·E(s)| for the command 1/s^(order + 1) and E = D/F·1/s^(order + 1): the
+    /// command minus (with positive feedback, plus) what the sensor shows. On a ramp or a parabola the output's own error
+    /// differs from it where the sensor lags: for C·P = k/s and H = 1/(τs + 1) it is 1/k − τ, here it is 1/k.
     fn static_error(&self, order: usize) -> Figure {
         match static_error(&self.open.below, &self.closed, order) {
             Some(error) => Figure::Value(error.to_f64().value().abs()),
@@ -127,6 +133,21 @@ fn static_error(below: &IntPoly, closed: &IntPoly, order: usize) -> Option<RBig>
         return None;
     }
     Some(RBig::from_parts_signed(at(below, order), at(closed, 0)))
+}
+
+/// What a sampled loop says itself: figures of its poles, and static errors.
+fn sampled_figure(sampled: &SampledAt, kind: RequirementKind) -> Option<Figure> {
+    use RequirementKind as Kind;
+    let value = match kind {
+        Kind::DampingRatio => sampled.damping_ratio(),
+        Kind::DecayRate => sampled.decay_rate(),
+        Kind::NaturalFrequencyMinimum | Kind::NaturalFrequencyMaximum => sampled.natural_frequency(),
+        Kind::StepError => 100.0 * sampled.static_error(0).abs(),
+        Kind::RampError => sampled.static_error(1).abs(),
+        Kind::ParabolaError => sampled.static_error(2).abs(),
+        _ => return None,
+    };
+    Some(Some(value).into())
 }
 
 impl Answer {

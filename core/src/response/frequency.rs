@@ -321,3 +321,20 @@ fn bandwidth(transfer: &BlockAt) -> Result<Option<f64>, ExactError> {
     root.refine_to(&difference, BANDWIDTH_BITS)?;
     Ok(Some(libm::sqrt(root.to_f64())))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_resonance_narrower_than_f64_keeps_its_margins() {
+        // L = K·s/(s² + 1), K = 1e-20: |L| = 1 on both sides of ω = 1, 5e-21 away, where L = ±j.
+        let (above, below) = (IntPoly::from_i64(&[0, 1]), IntPoly::from_i64(&[1, 0, 1]));
+        let ten_to_20 = IBig::from(10).pow(20);
+        let open =
+            BlockAt { above, below: IntPoly::new(below.coefficients().iter().map(|c| c * &ten_to_20).collect()) };
+        let found = gain_crossings(&open).expect("found");
+        let margins: Vec<f64> = found.iter().map(|c| c.phase_margin).collect();
+        assert!(margins.len() == 2 && margins.iter().all(|m| (m.abs() - 90.0).abs() < 1e-9), "{margins:?}");
+    }
+}

@@ -9,6 +9,8 @@ use crate::exact::complex_roots::{enclose_all, polished};
 use crate::exact::half_plane::count;
 use crate::exact::{ExactError, IntPoly};
 use crate::model::{BlockAt, Loop};
+use crate::sampled::{Answers, SampledAt, SampledRanges};
+use alloc::rc::Rc;
 use alloc::vec::Vec;
 use core::cell::OnceCell;
 use dashu_int::IBig;
@@ -58,6 +60,15 @@ impl From<Motion> for Answer {
 pub struct Setup<'a> {
     /// The loop as built.
     pub model: &'a Loop,
+    /// What is known of it where its controller samples.
+    pub sampled: Option<&'a Rc<SampledRanges>>,
+}
+
+impl<'a> From<&'a Loop> for Setup<'a> {
+    /// Of a loop whose controller works continuously.
+    fn from(model: &'a Loop) -> Self {
+        Self { model, sampled: None }
+    }
 }
 
 /// The loop at one value of the knob.
@@ -75,6 +86,7 @@ pub struct LoopAt {
     /// Of the loop without dead time; empty where it has some.
     rational_poles: Vec<Complex<f64>>,
     delayed: Option<Delayed>,
+    sampled: Option<SampledAt>,
     stable: OnceCell<bool>,
     output: OnceCell<Answer>,
     load: OnceCell<Answer>,
@@ -90,6 +102,9 @@ impl LoopAt {
     pub fn known_stable(setup: Setup<'_>, knob: RBig) -> Result<Self, ExactError> {
         let at = Self::new(setup, knob)?;
         at.stable.get_or_init(|| true);
+        if let Some(sampled) = &at.sampled {
+            sampled.is_known_stable();
+        }
         Ok(at)
     }
 
@@ -110,8 +125,11 @@ impl LoopAt {
         // For positive feedback L below is −(controller·plant·sensor), so that 1 + L stays the denominator.
         let open =
             BlockAt { above: IntPoly::new(open.above.coefficients().iter().map(|c| c * &sign).collect()), ..open };
-        let delayed = Delayed::new(model.blocks.each_ref().map(|block| block.dead_time.at(&knob)));
-        let rational_poles = if delayed.is_none() { poles(&closed)? } else { Vec::new() };
+        let sampled = setup.sampled.map(|whole| SampledAt::new(whole, knob.clone())).transpose()?;
+        let times = model.blocks.each_ref().map(|block| block.dead_time.at(&knob));
+        let delayed = if sampled.is_none() { Delayed::new(times) } else { None };
+        let continuous = sampled.is_none() && delayed.is_none();
+        let rational_poles = if continuous { poles(&closed)? } else { Vec::new() };
         Ok(Self {
             knob,
             controller,
@@ -121,6 +139,7 @@ impl LoopAt {
             closed,
             rational_poles,
             delayed,
+            sampled,
             stable: OnceCell::new(),
             output: OnceCell::new(),
             load: OnceCell::new(),
@@ -129,7 +148,12 @@ impl LoopAt {
         })
     }
 
-    /// The poles of the closed loop, in f64; with dead time those that shape its answers. Empty where they were not found.
+    /// The sampled loop, where the controller samples.
+    pub fn sampled(&self) -> Option<&SampledAt> {
+        self.sampled.as_ref()
+    }
+
+    /// The poles of the closed loop in the s-plane, in f64; none of a sampled one; with dead time those that shape its answers. Empty where they were not found.
     pub fn poles(&self) -> &[Complex<f64>] {
         match &self.delayed {
             Some(delayed) => delayed.poles(&self.open),
@@ -139,9 +163,10 @@ impl LoopAt {
 
     /// Whether every pole lies left of the axis; exact.
     pub fn is_stable(&self) -> bool {
-        *self.stable.get_or_init(|| match &self.delayed {
-            Some(delayed) => delayed.is_stable(&self.open),
-            None => count(&self.closed).is_ok_and(|count| count.is_stable()),
+        *self.stable.get_or_init(|| match (&self.sampled, &self.delayed) {
+            (Some(sampled), _) => sampled.is_stable(),
+            (_, Some(delayed)) => delayed.is_stable(&self.open),
+            _ => count(&self.closed).is_ok_and(|count| count.is_stable()),
         })
     }
 
@@ -177,6 +202,9 @@ impl LoopAt {
         if !self.is_stable() {
             return None;
         }
+        if let Some(sampled) = &self.sampled {
+            return sampled.frequency().map(|found| found as &dyn OpenLoop);
+        }
         if let Some(delayed) = &self.delayed {
             return Some(delayed.frequency(&self.open, || self.output_transfer().above));
         }
@@ -189,6 +217,10 @@ impl LoopAt {
     fn answer(&self, number: usize, transfer: impl FnOnce() -> BlockAt) -> Answer {
         if !self.is_stable() {
             return Answer::Undefined;
+        }
+        if let Some(sampled) = &self.sampled {
+            let pick = |all: &Answers| [&all.output, &all.load, &all.control][number].clone();
+            return delayed::answer(sampled.answers().map(pick).map(Motion::Trace).as_ref());
         }
         if let Some(delayed) = &self.delayed {
             return delayed::answer(delayed.answers(&self.scaled_open(), || self.numerators()).map(|all| &all[number]));

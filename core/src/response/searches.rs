@@ -411,3 +411,63 @@ pub(super) fn root_between(mut a: (f64, f64), mut b: (f64, f64), value: impl Fn(
     }
     0.5 * (a.0 + b.0)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::exact::IntPoly;
+    use crate::model::BlockAt;
+    use nalgebra::Complex;
+
+    fn answer(above: &[i64], below: &IntPoly, poles: &[(f64, f64)]) -> Modes {
+        let transfer = BlockAt { above: IntPoly::from_i64(above), below: below.clone() };
+        let poles: alloc::vec::Vec<Complex<f64>> = poles.iter().map(|p| Complex::new(p.0, p.1)).collect();
+        Modes::of_step(&transfer, &poles).expect("proper")
+    }
+
+    /// s² + 2ζs + 1, ζ as given but for 1e-12.
+    fn second_order(damping: f64) -> Modes {
+        const UNIT: i64 = 1_000_000_000_000;
+        let twice = libm::round(2.0 * damping * UNIT as f64) as i64;
+        let zeta = 0.5 * twice as f64 / UNIT as f64;
+        let im = libm::sqrt(1.0 - zeta * zeta);
+        answer(&[UNIT], &IntPoly::from_i64(&[UNIT, twice, UNIT]), &[(-zeta, im), (-zeta, -im)])
+    }
+
+    #[test]
+    fn a_turn_that_just_touches_the_band_is_told_from_one_that_does_not() {
+        // The second turn leaves e^(−2πζ/√(1 − ζ²)) = 2 %.
+        let x = libm::log(50.0) / core::f64::consts::TAU;
+        let touching = x / libm::sqrt(1.0 + x * x);
+        let at = |damping: f64| second_order(damping).last_outside(0.02).expect("settles");
+        let turn = core::f64::consts::TAU / libm::sqrt(1.0 - touching * touching);
+        assert!((at(touching * (1.0 - 1e-9)) - turn).abs() < 1e-3);
+        assert!(at(touching * (1.0 + 1e-9)) < turn - 1.0);
+    }
+
+    #[test]
+    fn a_fast_mode_long_dead_does_not_disturb_a_slow_one() {
+        // 1/((s + 1)(1e-9 s + 1)), seen long after the fast mode: e^(−t) = 2 %.
+        let below = IntPoly::from_i64(&[1, 1]).times(&IntPoly::from_i64(&[1_000_000_000, 1]));
+        let modes = answer(&[1_000_000_000], &below, &[(-1.0, 0.0), (-1e9, 0.0)]);
+        let settled = modes.last_outside(0.02).expect("settles");
+        assert!((settled - libm::log(50.0)).abs() < 1e-8, "{settled}");
+    }
+
+    #[test]
+    fn a_ripple_on_a_slow_mode_is_seen_in_every_figure() {
+        // A lag, and a pair a million times faster with next to no damping; data of our own.
+        let pair = IntPoly::from_i64(&[1_000_000, 0, 1_000_000]);
+        let below = IntPoly::from_i64(&[1, 1_000_000]).times(&pair.plus(&IntPoly::from_i64(&[0, 2])));
+        let (sigma, im) = (1e-6, libm::sqrt(1.0 - 1e-12));
+        let modes = answer(&[1_000_000, 500_000], &below, &[(-1e-6, 0.0), (-sigma, im), (-sigma, -im)]);
+        let reached = modes.first_reach(0.1).expect("reached");
+        assert!((modes.value(reached) - 0.1).abs() < 1e-12);
+        assert!(
+            (0..200_000)
+                .all(|k| modes.value(reached * (1.0 - 1e-3) + 1e-9 * f64::from(k) * reached * 5.0) < 0.1 + 1e-12)
+        );
+        let peaks = modes.peaks().expect("found");
+        assert!(peaks.highest.0 >= 1.0 && modes.last_outside(0.02).expect("settles") > 3.9e6);
+    }
+}

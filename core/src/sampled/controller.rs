@@ -12,8 +12,8 @@
 
 use super::enclosed::Enclosed;
 use super::factored::Factored;
-use super::fixed::{Matrix, resolvent};
-use super::plant::Companion;
+use super::fixed::Matrix;
+use super::plant::taken_along;
 use crate::exact::gcd::{gcd, squarefree_part};
 use crate::exact::half_plane::{HalfPlaneCount, count};
 use crate::exact::{ExactError, IntPoly};
@@ -152,7 +152,7 @@ fn circle_count(p: &IntPoly) -> Result<HalfPlaneCount, ExactError> {
 /// An exact polynomial in z, with what is known of its roots on the unit circle.
 fn on_the_circle(p: &IntPoly) -> Factored {
     let known = Factored::from_exact(p);
-    let rest = squarefree_part(&known.rest.center);
+    let rest = squarefree_part(&known.rest().center);
     let circle_pairs = circle_count(&rest).map_or(0, |count| count.axis / 2);
     Factored { circle_pairs, ..known }
 }
@@ -214,7 +214,7 @@ impl Rule {
         let circle_pairs =
             if self.trapezoid { count(&squarefree_part(&stripped)).map_or(0, |count| count.axis / 2) } else { 0 };
         let (zeros, minus_ones) = if self.trapezoid { (0, missing) } else { (missing, 0) };
-        Factored { zeros, ones: at_zero, minus_ones, rest, circle_pairs }
+        Factored { zeros, ones: at_zero, minus_ones, circle_pairs, ..Factored::plain(rest) }
     }
 }
 
@@ -230,17 +230,7 @@ fn constant(value: IBig) -> Enclosed {
 /// The polynomial with a root e^(r h) for every root r of p, leading coefficient 1.
 fn roots_taken_along(p: &IntPoly, period: &RBig, bits: usize) -> Factored {
     let (rest, ones) = p.without_zero_roots();
-    if rest.degree() == 0 {
-        return Factored { ones, ..Factored::plain(Enclosed::one()) };
-    }
-    let (phi, _) = Companion::new(&rest, period).transition(period, bits);
-    let found = resolvent(&phi);
-    let mut center = found.coefficients;
-    center.push(IBig::ONE << bits);
-    let rest_in_z =
-        Enclosed { center: IntPoly::new(center), radius: IntPoly::new(found.radii), exponent: -(bits as i64) };
-    let circle_pairs = count(&squarefree_part(&rest)).map_or(0, |count| count.axis / 2);
-    Factored { ones, circle_pairs, ..Factored::plain(rest_in_z) }
+    Factored { ones, ..taken_along(&rest, period, bits) }
 }
 
 /// p(s)·κ(q), where the parts are multiples of one polynomial.
@@ -279,7 +269,7 @@ fn matched(
     // at z = 1 and the other's power of h.
     let (denominator, numerator) = parts(period);
     let power = |base: &IBig, count: usize| base.pow(count);
-    let at_one = |p: &Factored| value_at_one(&p.rest).scaled(&power(&IBig::from(2), p.minus_ones));
+    let at_one = |p: &Factored| value_at_one(&p.rest()).scaled(&power(&IBig::from(2), p.minus_ones));
     let lowest = |p: &IntPoly| p.without_zero_roots().0.coefficient(0);
     let above_gain =
         at_one(&below).scaled(&(lowest(&zeros) * power(&denominator, above.ones) * power(&numerator, below.ones)));
@@ -360,8 +350,8 @@ mod tests {
         let z = 1.0 + 1e-9;
         let s = 1e-8;
         assert!((value(&found, 1, z) / continuous(s) - 1.0).abs() < 1e-6);
-        let zero = found.above[1].rest.coefficient(0).midpoint().to_f64()
-            / found.above[1].rest.coefficient(1).midpoint().to_f64();
+        let zero = found.above[1].rest().coefficient(0).midpoint().to_f64()
+            / found.above[1].rest().coefficient(1).midpoint().to_f64();
         assert!((zero + libm::exp(-0.2)).abs() < 1e-14);
     }
 

@@ -5,8 +5,10 @@
 
 use super::enclosed::{Enclosed, Unit};
 use crate::exact::IntPoly;
+use alloc::vec::Vec;
+use dashu_int::IBig;
 
-/// z^zeros·(z − 1)^ones·(z + 1)^minus_ones·rest.
+/// z^zeros·(z − 1)^ones·(z + 1)^minus_ones·Π factors.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Factored {
     /// Roots at z = 0.
@@ -15,8 +17,8 @@ pub struct Factored {
     pub ones: usize,
     /// Roots at z = −1.
     pub minus_ones: usize,
-    /// The rest.
-    pub rest: Enclosed,
+    /// The rest; a factor that stands several times is known to be repeated.
+    pub factors: Vec<Enclosed>,
     /// Pairs of the rest that are known to lie on the unit circle, all different.
     pub circle_pairs: usize,
 }
@@ -24,7 +26,7 @@ pub struct Factored {
 impl Factored {
     /// A polynomial about whose roots nothing is known.
     pub fn plain(rest: Enclosed) -> Self {
-        Self { zeros: 0, ones: 0, minus_ones: 0, rest, circle_pairs: 0 }
+        Self { zeros: 0, ones: 0, minus_ones: 0, factors: [rest].into(), circle_pairs: 0 }
     }
 
     /// An exact polynomial, its roots at 0, 1 and −1 taken out.
@@ -39,17 +41,22 @@ impl Factored {
             count
         };
         let (ones, minus_ones) = (strip(&[-1, 1]), strip(&[1, 1]));
-        Self { zeros, ones, minus_ones, rest: Enclosed::exact(rest), circle_pairs: 0 }
+        Self { zeros, ones, minus_ones, factors: [Enclosed::exact(rest)].into(), circle_pairs: 0 }
     }
 
     /// True for the polynomial that is zero without doubt.
     pub fn is_zero(&self) -> bool {
-        self.rest.is_zero()
+        self.factors.iter().any(Enclosed::is_zero)
+    }
+
+    /// The factors multiplied.
+    pub fn rest(&self) -> Enclosed {
+        self.factors.iter().skip(1).fold(self.factors.first().cloned().unwrap_or_else(Enclosed::one), |p, f| p.times(f))
     }
 
     /// The degree, as far as the highest coefficient may differ from zero.
     pub fn degree(&self) -> usize {
-        self.zeros + self.ones + self.minus_ones + self.rest.degree()
+        self.zeros + self.ones + self.minus_ones + self.factors.iter().map(Enclosed::degree).sum::<usize>()
     }
 
     /// Product.
@@ -58,14 +65,20 @@ impl Factored {
             zeros: self.zeros + other.zeros,
             ones: self.ones + other.ones,
             minus_ones: self.minus_ones + other.minus_ones,
-            rest: self.rest.times(&other.rest),
+            factors: self.factors.iter().chain(&other.factors).cloned().collect(),
             circle_pairs: self.circle_pairs + other.circle_pairs,
         }
     }
 
     /// Product with an enclosed constant.
     pub fn scaled(&self, constant: &Enclosed) -> Self {
-        Self { rest: self.rest.times(constant), ..self.clone() }
+        let mut found = self.clone();
+        match found.factors.first_mut() {
+            // A repeated factor must stay recognisable.
+            Some(first) if self.factors.len() == 1 => *first = first.times(constant),
+            _ => found.factors.push(constant.clone()),
+        }
+        found
     }
 
     /// Sum. Known roots that both have stay known.
@@ -80,7 +93,7 @@ impl Factored {
         let ones = self.ones.min(other.ones);
         let minus_ones = self.minus_ones.min(other.minus_ones);
         let remaining = |p: &Self| p.without(zeros, ones, minus_ones).expanded();
-        Self { zeros, ones, minus_ones, rest: remaining(self).plus(&remaining(other)), circle_pairs: 0 }
+        Self { zeros, ones, minus_ones, ..Self::plain(remaining(self).plus(&remaining(other))) }
     }
 
     /// The quotient by known roots.
@@ -95,21 +108,33 @@ impl Factored {
 
     /// Multiplied out.
     pub fn expanded(&self) -> Enclosed {
-        self.rest.times_exact(&known_factor(self.zeros, self.ones, self.minus_ones))
+        self.rest().times_exact(&known_factor(self.zeros, self.ones, self.minus_ones))
     }
 
     /// The rest is known to vanish at z = 1 or z = −1.
     pub fn with_root(self, at: Unit) -> Self {
-        let rest = self.rest.without_root(at);
+        let factors = [self.rest().without_root(at)].into();
         match at {
-            Unit::Plus => Self { ones: self.ones + 1, rest, ..self },
-            Unit::Minus => Self { minus_ones: self.minus_ones + 1, rest, ..self },
+            Unit::Plus => Self { ones: self.ones + 1, factors, ..self },
+            Unit::Minus => Self { minus_ones: self.minus_ones + 1, factors, ..self },
         }
+    }
+
+    /// The middle of the product, each factor cut to `bits` bits by itself so that what is known of roots stays true, as an
+    /// integer polynomial and a power of two.
+    pub fn middle(&self, bits: usize) -> (IntPoly, i64) {
+        let known = known_factor(self.zeros, self.ones, self.minus_ones);
+        self.factors.iter().fold((known, 0), |(product, exponent), factor| {
+            let excess = factor.center.bits().saturating_sub(bits);
+            let cut = |c: &IBig| if excess == 0 { c.clone() } else { c >> excess };
+            let center = IntPoly::new(factor.center.coefficients().iter().map(cut).collect());
+            (product.times(&center), exponent + factor.exponent + excess as i64)
+        })
     }
 
     /// (1 − v)^degree·p((1 + v)/(1 − v)), with coefficients that vanish without doubt where roots are at z = ±1.
     pub fn from_circle(&self, degree: usize) -> Enclosed {
-        let own = self.rest.degree();
+        let rest = self.rest();
         let missing = degree.saturating_sub(self.degree());
         let power = |factor: &[i64; 2], count: usize| {
             (0..count).fold(IntPoly::from_i64(&[1]), |p, _| p.times(&IntPoly::from_i64(factor)))
@@ -119,7 +144,7 @@ impl Factored {
             .times(&power(&[0, 2], self.ones))
             .times(&power(&[2, 0], self.minus_ones))
             .times(&power(&[1, -1], missing));
-        self.rest.from_circle(own).times_exact(&known)
+        rest.from_circle(rest.degree()).times_exact(&known)
     }
 }
 
@@ -134,7 +159,6 @@ fn known_factor(zeros: usize, ones: usize, minus_ones: usize) -> IntPoly {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use dashu_int::IBig;
 
     #[test]
     fn known_roots_are_taken_out_and_come_back() {

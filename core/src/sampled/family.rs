@@ -20,8 +20,11 @@ pub const FIRST_BITS: usize = 192;
 /// Bits at the last try. Doubled from [`FIRST_BITS`] on while a sign stays open.
 pub const MAXIMUM_BITS: usize = 1024;
 
+/// A hundred times the largest product of frequency and period for prewarping, π rounded down.
+const PREWARP_LIMIT: u32 = 314;
+
 /// The longest delay that is treated, in sample periods: every period adds a pole.
-const MAXIMUM_DELAY_PERIODS: u32 = 60;
+const MAXIMUM_DELAY_PERIODS: u32 = 40;
 
 /// Everything about a loop with a sampled controller.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -36,8 +39,10 @@ pub struct SampledLoop {
     pub sensor: BlockAt,
     /// s, above zero.
     pub period: RBig,
-    /// s, from a sample to the hold's new value.
+    /// Sample periods, from a sample to the hold's new value.
     pub computation: RBig,
+    /// s, of the controller, beside its computation.
+    pub controller_delay: RBig,
     /// s, of the plant.
     pub plant_delay: RBig,
     /// s, of the sensor.
@@ -105,7 +110,8 @@ impl SampledLoop {
             plant: plant.at(&RBig::ZERO),
             sensor: sensor.at(&RBig::ZERO),
             period: sampling.period.clone(),
-            computation: &sampling.delay * &sampling.period + &controller.dead_time.fixed,
+            computation: sampling.delay.clone(),
+            controller_delay: controller.dead_time.fixed.clone(),
             plant_delay: plant.dead_time.fixed.clone(),
             sensor_delay: sensor.dead_time.fixed.clone(),
             feedback: model.feedback_sign(),
@@ -123,7 +129,17 @@ impl SampledLoop {
 
     /// From the hold's input to the sample, in s.
     pub fn delay(&self) -> RBig {
-        &self.computation + &self.plant_delay + &self.sensor_delay
+        self.hold_delay() + &self.plant_delay + &self.sensor_delay
+    }
+
+    /// From a sample to the hold, s.
+    pub fn hold_delay(&self) -> RBig {
+        &self.computation * &self.period + &self.controller_delay
+    }
+
+    /// The same loop with another sample period. A controller in z keeps its numbers.
+    pub fn at_period(&self, period: RBig) -> Self {
+        Self { period, ..self.clone() }
     }
 
     /// What keeps the loop from being treated.
@@ -138,8 +154,15 @@ impl SampledLoop {
         if improper(&path.above, &path.below) {
             return Some("a step of the hold makes an impulse at the sensor: add filter poles to the sensor");
         }
+        if let Given::InS(Method::Prewarped(omega)) = &self.given
+            && omega * &self.period >= RBig::from_parts(PREWARP_LIMIT.into(), 100u8.into())
+        {
+            return Some(
+                "the frequency of the conversion must stay below half the sampling frequency, π over the period",
+            );
+        }
         if self.delay() > &self.period * RBig::from(MAXIMUM_DELAY_PERIODS) {
-            return Some("the dead time is longer than 60 sample periods: type a longer sample period");
+            return Some("the dead time is longer than 40 sample periods: type a longer sample period");
         }
         None
     }
@@ -244,8 +267,12 @@ impl SampledFamily {
     /// F at a rational knob value, times a positive integer, the fixed factors included; middles only.
     pub fn middle_at(&self, q: &RBig) -> IntPoly {
         let parts: Vec<Enclosed> = self.parts.iter().map(Factored::expanded).collect();
-        let moving = at(&parts, q).center;
-        self.fixed.iter().fold(moving, |p, (factor, _)| p.times(&factor.expanded().center))
+        at(&parts, q).center.times(&self.fixed_in_z())
+    }
+
+    /// The middle of the factor that no knob moves.
+    pub fn fixed_in_z(&self) -> IntPoly {
+        self.fixed.iter().fold(IntPoly::from_i64(&[1]), |p, (factor, _)| p.times(&factor.expanded().center))
     }
 }
 

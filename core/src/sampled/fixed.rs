@@ -4,6 +4,7 @@
 //! Van Loan, "Nineteen dubious ways to compute the exponential of a matrix, twenty-five years later", SIAM Review 45,
 //! 2003, method 3); every rounding and the rest of the series go into the radius.
 
+use crate::exact::Dyadic;
 use alloc::vec;
 use alloc::vec::Vec;
 use dashu_int::IBig;
@@ -54,6 +55,11 @@ impl Matrix {
     /// The entry in a row and a column.
     pub fn at(&self, row: usize, column: usize) -> &IBig {
         &self.entries[row * self.columns + column]
+    }
+
+    /// The entries rounded to f64.
+    pub fn to_f64(&self) -> Vec<f64> {
+        self.entries.iter().map(|e| Dyadic::new(e.clone(), -(self.bits as i64)).to_f64()).collect()
     }
 
     /// Some rows and columns of it.
@@ -210,7 +216,7 @@ mod tests {
     }
 
     fn value(m: &Matrix, i: usize, j: usize) -> f64 {
-        crate::exact::Dyadic::new(m.at(i, j).clone(), -(m.bits as i64)).to_f64()
+        Dyadic::new(m.at(i, j).clone(), -(m.bits as i64)).to_f64()
     }
 
     #[test]
@@ -244,11 +250,8 @@ mod tests {
         // Eigenvalues 2 and 3, and 5.
         let entries = [2, 1, 4, 0, 3, 7, 0, 0, 5].map(|k| rational(k, 1));
         let found = resolvent(&Matrix::from_rationals(3, &entries, 64));
-        let rounded: Vec<i64> = found
-            .coefficients
-            .iter()
-            .map(|c| libm::round(crate::exact::Dyadic::new(c.clone(), -64).to_f64()) as i64)
-            .collect();
+        let rounded: Vec<i64> =
+            found.coefficients.iter().map(|c| libm::round(Dyadic::new(c.clone(), -64).to_f64()) as i64).collect();
         assert_eq!(rounded, [-30, 31, -10]);
     }
 }

@@ -23,7 +23,7 @@ const WIDENED_BITS: i64 = 58;
 /// The places; `parts` are given on the axis.
 pub(super) fn places(family: &SampledFamily, parts: &[Enclosed], period: f64) -> Result<Places, Trouble> {
     let mut found = Places { proven: false, ..Places::default() };
-    let middle = Family::new(middles(parts)).ok_or(Trouble::Undecided)?;
+    let middle = Family::new(middles(parts, MIDDLE_BITS)).ok_or(Trouble::Undecided)?;
     for place in polynomial::stability_places(&middle)? {
         let contacts = place.contacts.into_iter().map(|contact| match contact {
             Contact::Axis { omega } => Contact::Axis { omega: 2.0 * libm::atan(omega) / period },
@@ -34,7 +34,7 @@ pub(super) fn places(family: &SampledFamily, parts: &[Enclosed], period: f64) ->
     }
     let order = family.order();
     let in_z: Vec<Enclosed> = family.parts.iter().map(super::factored::Factored::expanded).collect();
-    let leading = IntPoly::new(middles(&in_z).iter().map(|part| part.coefficient(order)).collect());
+    let leading = IntPoly::new(middles(&in_z, MIDDLE_BITS).iter().map(|part| part.coefficient(order)).collect());
     if leading.degree() > 0 {
         let leading = squarefree_part(&leading);
         for mut root in real_roots(&leading)? {
@@ -45,8 +45,8 @@ pub(super) fn places(family: &SampledFamily, parts: &[Enclosed], period: f64) ->
     Ok(found)
 }
 
-/// The middles of all parts over one power of two.
-pub(super) fn middles(parts: &[Enclosed]) -> Vec<IntPoly> {
+/// The middles of all parts over one power of two, the largest coefficient with at most `bits` bits.
+pub(super) fn middles(parts: &[Enclosed], bits: usize) -> Vec<IntPoly> {
     let exponent = parts.iter().map(|p| p.exponent).min().unwrap_or(0);
     let aligned: Vec<IntPoly> = parts
         .iter()
@@ -54,7 +54,7 @@ pub(super) fn middles(parts: &[Enclosed]) -> Vec<IntPoly> {
             IntPoly::new(p.center.coefficients().iter().map(|c| c << ((p.exponent - exponent) as usize)).collect())
         })
         .collect();
-    let excess = aligned.iter().map(IntPoly::bits).max().unwrap_or(0).saturating_sub(MIDDLE_BITS);
+    let excess = aligned.iter().map(IntPoly::bits).max().unwrap_or(0).saturating_sub(bits);
     let cut = |c: &IBig| if excess == 0 { c.clone() } else { c >> excess };
     aligned.iter().map(|p| IntPoly::new(p.coefficients().iter().map(cut).collect())).collect()
 }

@@ -8,10 +8,11 @@
 
 use super::enclosed::{Enclosed, Unit};
 use super::factored::Factored;
-use super::fixed::{Matrix, fixed, resolvent};
-use crate::exact::IntPoly;
-use crate::exact::gcd::squarefree_part;
+use super::fixed::{Matrix, Resolvent, fixed, resolvent};
+use super::ranges::zones;
+use crate::exact::gcd::{squarefree_factors, squarefree_part};
 use crate::exact::half_plane::count;
+use crate::exact::{Dyadic, IntPoly};
 use alloc::vec;
 use alloc::vec::Vec;
 use dashu_int::IBig;
@@ -96,6 +97,20 @@ impl Companion {
             entries.into_iter().zip(&self.scales).map(|(c, scale)| c * power_of_two(scale - top)).collect();
         (Matrix::from_rationals(order, &row, bits), top - self.scales[order - 1] - self.input_scale)
     }
+
+    /// The row of [`Self::output`] in f64.
+    pub fn output_f64(&self, above: &[RBig], bits: usize) -> Vec<f64> {
+        let (row, exponent) = self.output(above, bits);
+        row.entries.iter().map(|e| Dyadic::new(e.clone(), exponent - bits as i64).to_f64()).collect()
+    }
+
+    /// The derivative of a signal read by a row, as a row and what the input adds to it.
+    pub fn derivative(&self, row: &[f64]) -> (Vec<f64>, f64) {
+        let order = self.order();
+        let matrix: Vec<f64> = self.augmented(&RBig::ONE).iter().map(|e| e.to_f64().value()).collect();
+        let column = |j: usize| (0..order).map(|i| row[i] * matrix[i * (order + 1) + j]).sum::<f64>();
+        ((0..order).map(column).collect(), column(order))
+    }
 }
 
 /// 2^exponent.
@@ -146,15 +161,7 @@ pub fn hold(above: &IntPoly, below: &IntPoly, period: &RBig, delay: &RBig, bits:
     let system = Companion::new(below, period);
     let (phi, gamma) = system.transition(period, bits);
     let found = resolvent(&phi);
-    let monic = |mut low: Vec<IBig>, top: IBig| {
-        low.push(top);
-        IntPoly::new(low)
-    };
-    let characteristic = Enclosed {
-        center: monic(found.coefficients.clone(), IBig::ONE << bits),
-        radius: IntPoly::new(found.radii.clone()),
-        exponent: -(bits as i64),
-    };
+    let characteristic = characteristic(&found, bits);
     let (direct, remainder) = direct_part(above, below);
     let (row, exponent) = system.output(&remainder, bits);
     let read = |gamma: &Matrix| numerator(&row, &found.adjugate, gamma, exponent);
@@ -172,7 +179,7 @@ pub fn hold(above: &IntPoly, below: &IntPoly, period: &RBig, delay: &RBig, bits:
     };
     Held {
         above: known_zeros(sum.plus(&direct), above, below, &(&fraction / period)),
-        below: known_poles(characteristic, below, whole + usize::from(late)),
+        below: known_poles(characteristic, below, period, whole + usize::from(late)),
     }
 }
 
@@ -201,31 +208,68 @@ fn numerator(row: &Matrix, adjugate: &[Matrix], gamma: &Matrix, exponent: i64) -
     }
 }
 
-/// The poles that are known without error: integrators, delays, and that undamped pairs stay on the circle.
-fn known_poles(characteristic: Enclosed, below: &IntPoly, delays: usize) -> Factored {
+/// The poles that are known without error: integrators, delays, repeated ones, and undamped pairs, which stay on the circle.
+fn known_poles(characteristic: Enclosed, below: &IntPoly, period: &RBig, delays: usize) -> Factored {
     let (rest, integrators) = below.without_zero_roots();
+    if squarefree_part(&rest).degree() < rest.degree() {
+        return Factored {
+            zeros: delays,
+            ones: integrators,
+            ..taken_along(&rest, period, -characteristic.exponent as usize)
+        };
+    }
     let plain = Factored { zeros: delays, ..Factored::plain(characteristic) };
     let found = (0..integrators).fold(plain, |p, _| p.with_root(Unit::Plus));
-    let pairs = count(&squarefree_part(&rest)).map_or(0, |count| count.axis / 2);
-    Factored { circle_pairs: pairs, ..found }
+    Factored { circle_pairs: undamped_pairs(&rest), ..found }
 }
 
-/// The zeros that are known without error. A zero at s = 0 stays one at z = 1. A strictly proper plant with G(−s) = G(s)
-/// has G(1/z) = z·G(z) without delay, and one with G(−s) = −G(s) has G(1/z) = −z²·G(z) with half a period of it: both
-/// vanish at z = −1.
+/// The polynomial with a root e^(r h) for every root r of p, which does not vanish at 0; leading coefficient 1.
+pub fn taken_along(p: &IntPoly, period: &RBig, bits: usize) -> Factored {
+    let mut factors = Vec::new();
+    for (factor, multiplicity) in squarefree_factors(p) {
+        let (phi, _) = Companion::new(&factor, period).transition(period, bits);
+        factors.extend(vec![characteristic(&resolvent(&phi), bits); multiplicity]);
+    }
+    if factors.is_empty() {
+        factors.push(Enclosed::one());
+    }
+    Factored { zeros: 0, ones: 0, minus_ones: 0, factors, circle_pairs: undamped_pairs(p) }
+}
+
+/// Different pairs of roots on the imaginary axis away from 0.
+fn undamped_pairs(p: &IntPoly) -> usize {
+    count(&squarefree_part(p)).map_or(0, |count| count.axis / 2)
+}
+
+/// det(zI − Φ).
+fn characteristic(found: &Resolvent, bits: usize) -> Enclosed {
+    let mut center = found.coefficients.clone();
+    center.push(IBig::ONE << bits);
+    Enclosed { center: IntPoly::new(center), radius: IntPoly::new(found.radii.clone()), exponent: -(bits as i64) }
+}
+
+/// The zeros that are known without error. A zero at s = 0 stays one at z = 1. A strictly proper plant with G(−s) = ±G(s)
+/// keeps a symmetry: G(1/z) = ±z·G(z) without delay, and ∓z²·G(z) with half a period of it. Where the sign so demands,
+/// it vanishes at z = −1, and zeros that lie on the unit circle cannot leave it one by one.
 fn known_zeros(sum: Enclosed, above: &IntPoly, below: &IntPoly, fraction: &RBig) -> Factored {
     let plain = Factored::plain(sum);
-    let strictly = above.degree() < below.degree();
+    let blocks_constants = above.coefficient(0).is_zero() && !above.is_zero();
+    let with_one = |p: Factored| if blocks_constants { p.with_root(Unit::Plus) } else { p };
     let half = *fraction == RBig::from_parts(IBig::ONE, 2u8.into());
-    let symmetric = |sign: &IBig| {
-        let mirrored = above.mirrored().times(below);
-        let own = above.times(&below.mirrored());
-        mirrored == IntPoly::new(own.coefficients().iter().map(|c| c * sign).collect())
-    };
-    let at_minus_one =
-        strictly && ((fraction.is_zero() && symmetric(&IBig::ONE)) || (half && symmetric(&IBig::NEG_ONE)));
-    let found = if at_minus_one { plain.with_root(Unit::Minus) } else { plain };
-    if above.coefficient(0).is_zero() && !above.is_zero() { found.with_root(Unit::Plus) } else { found }
+    if above.degree() >= below.degree() || !(fraction.is_zero() || half) {
+        return with_one(plain);
+    }
+    let mirrored = above.mirrored().times(below);
+    let own = above.times(&below.mirrored());
+    let (even, odd) = (mirrored == own, mirrored == own.negated());
+    if !even && !odd {
+        return with_one(plain);
+    }
+    let found = with_one(if even != half { plain.with_root(Unit::Minus) } else { plain });
+    // What remains is symmetric: an even polynomial in v.
+    let (in_x, _) = found.rest().from_circle(found.rest().degree()).axis_parts();
+    let pairs = zones(&in_x).map_or(0, |zones| zones.iter().filter(|zone| zone.crosses).count());
+    Factored { circle_pairs: pairs, ..found }
 }
 
 #[cfg(test)]
@@ -326,6 +370,16 @@ mod tests {
         assert!((dc - 1.0).abs() < 1e-12, "{dc}");
         assert!((below[2] + libm::exp(-0.01) + libm::exp(-10.0)).abs() < 1e-15);
         assert!(worst < 1e-40, "{worst}");
+    }
+
+    #[test]
+    fn zeros_of_a_symmetric_plant_stay_on_the_circle() {
+        // (s² + 4)/(s² (s² + 1)): a pair of zeros on the circle, and one at −1.
+        let held = hold(&p(&[4, 0, 1]), &p(&[0, 0, 1, 0, 1]), &rational(1, 5), &RBig::ZERO, 192);
+        assert_eq!((held.above.circle_pairs, held.above.minus_ones), (1, 1));
+        // (s² + 4)/(s (s² + 1)): without the one at −1.
+        let held = hold(&p(&[4, 0, 1]), &p(&[0, 1, 0, 1]), &rational(1, 5), &RBig::ZERO, 192);
+        assert_eq!((held.above.circle_pairs, held.above.minus_ones), (1, 0));
     }
 
     #[test]

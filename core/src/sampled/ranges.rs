@@ -10,6 +10,7 @@
 //!   roots move continuously: |F(jw)|² ≥ (error)² for all w, which one more count of real roots shows.
 
 use super::enclosed::Enclosed;
+use super::factored::Factored;
 use super::family::{FIRST_BITS, MAXIMUM_BITS, SampledFamily, SampledLoop, Trouble, at};
 use crate::exact::complex_roots::roots;
 use crate::exact::gcd::squarefree_part;
@@ -18,6 +19,7 @@ use crate::exact::real_roots::positive_roots;
 use crate::exact::{Dyadic, IntPoly, Interval, RealRoot};
 use crate::ranges::{Contact, Partition, Place, Verdict, merge, samples};
 use crate::record::CharacterName;
+use alloc::vec;
 use alloc::vec::Vec;
 use dashu_int::IBig;
 use dashu_ratio::RBig;
@@ -25,8 +27,15 @@ use dashu_ratio::RBig;
 /// Edges are enclosed at least this narrowly, relative to their value: below the last bit of f64.
 const EDGE_BITS: i64 = 60;
 
+/// Bits of the middles from which poles and curves are computed: digits enough for eight poles within 1e-4 of each other.
+const DRAWN_BITS: usize = 256;
+
 /// Zones of x are refined to these many bits, one after the other, until the edge is narrow.
 const ZONE_BITS: [i64; 4] = [80, 120, 200, 400];
+
+/// Up to this order the poles are counted in every range, which needs no theorem on crossings; above, in the first and the
+/// last one, with the crossings between (a count at order 40 takes some milliseconds).
+const DIRECT_ORDER: usize = 12;
 
 /// A pole of the middle polynomial nearer to the unit circle than this is on it, at an edge where something must be.
 const ON_CIRCLE: f64 = 1e-9;
@@ -45,6 +54,14 @@ pub struct SampledRanges {
     pub unresolved: Vec<f64>,
     /// Bits of the fixed point that were needed.
     pub bits: usize,
+    /// The loop.
+    pub input: SampledLoop,
+    /// The parts of the family with the unit circle as the imaginary axis.
+    pub on_the_axis: Vec<Enclosed>,
+    /// The middles of the parts in z over one power of two, for what is drawn.
+    pub in_z: Vec<IntPoly>,
+    /// The middle of the factor that no knob moves.
+    pub fixed_in_z: IntPoly,
 }
 
 /// Finds the ranges.
@@ -52,7 +69,12 @@ pub struct SampledRanges {
 /// # Errors
 /// Bad input; a cap; or [`Trouble::Undecided`] where even the highest precision leaves a sign open.
 pub fn ranges(input: &SampledLoop) -> Result<SampledRanges, Trouble> {
-    let mut bits = FIRST_BITS;
+    ranges_from(input, FIRST_BITS)
+}
+
+/// The same, with fewer bits of the fixed point at the first try.
+pub(super) fn ranges_from(input: &SampledLoop, first_bits: usize) -> Result<SampledRanges, Trouble> {
+    let mut bits = first_bits;
     loop {
         match ranges_at(input, bits) {
             Err(Trouble::Undecided) if 2 * bits <= MAXIMUM_BITS => bits *= 2,
@@ -75,7 +97,17 @@ fn ranges_at(input: &SampledLoop, bits: usize) -> Result<SampledRanges, Trouble>
     let places = merge(core::mem::take(&mut found.places));
     let fixed = family.fixed_count();
     let counted = |q: &RBig| Ok::<_, Trouble>(certain_count(&at(&parts, q))?.plus(fixed));
-    let between = samples(&places).iter().map(counted).collect::<Result<Vec<_>, _>>()?;
+    let samples = samples(&places);
+    let by_crossings = if family.order() > DIRECT_ORDER && !found.steps.is_empty() {
+        let (first, last) = (counted(&samples[0])?, counted(&samples[samples.len() - 1])?);
+        counts_by_crossings(&places, &found.steps, first, last)
+    } else {
+        None
+    };
+    let between = match by_crossings {
+        Some(counts) => counts,
+        None => samples.iter().map(counted).collect::<Result<Vec<_>, _>>()?,
+    };
     let at_places = places
         .iter()
         .enumerate()
@@ -85,7 +117,48 @@ fn ranges_at(input: &SampledLoop, bits: usize) -> Result<SampledRanges, Trouble>
     let ranges = between.into_iter().map(|count| verdict(count, false)).collect();
     let unresolved = found.unresolved.iter().map(|bracket| bracket.midpoint().to_f64()).collect();
     let partition = Partition::from_parts(places, ranges, at_places, proven);
-    Ok(SampledRanges { partition, family, unresolved, bits })
+    let in_z = drawn(&family.parts);
+    let fixed_in_z = family.fixed_in_z();
+    Ok(SampledRanges {
+        partition,
+        family,
+        unresolved,
+        bits,
+        input: input.clone(),
+        on_the_axis: parts,
+        in_z,
+        fixed_in_z,
+    })
+}
+
+/// The middles over one power of two.
+pub(super) fn drawn(parts: &[Factored]) -> Vec<IntPoly> {
+    let middles: Vec<_> = parts.iter().map(|part| part.middle(DRAWN_BITS)).collect();
+    let exponent = middles.iter().filter(|(p, _)| !p.is_zero()).map(|(_, e)| *e).min().unwrap_or(0);
+    let aligned = |(p, e): &(IntPoly, i64)| {
+        if p.is_zero() {
+            IntPoly::default()
+        } else {
+            p.times(&IntPoly::new([IBig::ONE << ((e - exponent) as usize)].into()))
+        }
+    };
+    middles.iter().map(aligned).collect()
+}
+
+impl SampledRanges {
+    /// Poles outside of the unit circle (`right`) and on it (`axis`) at a knob value that is not exactly an edge; proven.
+    ///
+    /// # Errors
+    /// [`Trouble::Undecided`] too near to an edge.
+    pub fn count_at(&self, q: &RBig) -> Result<HalfPlaneCount, Trouble> {
+        Ok(certain_count(&at(&self.on_the_axis, q))?.plus(self.family.fixed_count()))
+    }
+
+    /// F in z at a knob value, times a positive number; middles only.
+    pub fn characteristic_at(&self, q: &RBig) -> IntPoly {
+        let parts: Vec<Enclosed> = self.in_z.iter().cloned().map(Enclosed::exact).collect();
+        at(&parts, q).center.times(&self.fixed_in_z)
+    }
 }
 
 /// Places, before they are put in order.
@@ -94,13 +167,15 @@ pub(super) struct Places {
     pub(super) places: Vec<Place>,
     /// Where a pair touches the circle or just misses it.
     pub(super) unresolved: Vec<Interval>,
+    /// How many poles leave the circle as the knob grows past a bracket; empty where that is not known.
+    pub(super) steps: Vec<(Interval, i64)>,
     /// Whether every place is proven, and that there is no other.
     pub(super) proven: bool,
 }
 
 impl Default for Places {
     fn default() -> Self {
-        Self { places: Vec::new(), unresolved: Vec::new(), proven: true }
+        Self { places: Vec::new(), unresolved: Vec::new(), steps: Vec::new(), proven: true }
     }
 }
 
@@ -110,38 +185,63 @@ impl Place {
     }
 }
 
+/// The counts in all ranges from those in the first one: every crossing adds or takes away its poles. None where the last
+/// one does not agree.
+fn counts_by_crossings(
+    places: &[Place],
+    steps: &[(Interval, i64)],
+    first: HalfPlaneCount,
+    last: HalfPlaneCount,
+) -> Option<Vec<HalfPlaneCount>> {
+    let mut counts = vec![first];
+    let mut right = first.right as i64;
+    for place in places {
+        right += steps.iter().filter(|(bracket, _)| bracket.meets(&place.bracket)).map(|(_, step)| step).sum::<i64>();
+        counts.push(HalfPlaneCount { right: usize::try_from(right).ok()?, axis: first.axis });
+    }
+    (counts.last() == Some(&last)).then_some(counts)
+}
+
 /// The places of D + q·N, given on the axis.
 fn affine(family: &SampledFamily, d: &Enclosed, n: &Enclosed, period: f64) -> Result<Places, Trouble> {
     let mut found = Places::default();
     let order = family.order();
-    let mut at_end = |d: &Enclosed, n: &Enclosed, i: usize, contact: Contact| {
+    let ((de, d_odd), (ne, no)) = (d.axis_parts(), n.axis_parts());
+    let crossing = d_odd.times(&ne).minus(&de.times(&no));
+    // As q grows past its value there, a pair leaves to the right where the crossing polynomial falls through zero; at the
+    // ends of the axis one pole by its sign beside them.
+    let (lowest, leading) = (crossing.center.lowest_sign(), crossing.center.leading_sign());
+    let mut at_end = |d: &Enclosed, n: &Enclosed, i: usize, contact: Contact, step: i32| {
         if let Some(place) = quotient_place(d, n, i, contact)? {
+            found.steps.push((place.bracket.clone(), i64::from(step)));
             found.places.push(place);
         }
         Ok::<_, Trouble>(())
     };
-    at_end(d, n, 0, Contact::Origin)?;
+    at_end(d, n, 0, Contact::Origin, -lowest)?;
     if order > 0 {
-        at_end(d, n, order, Contact::Alternation)?;
+        at_end(d, n, order, Contact::Alternation, leading)?;
         let in_z = [0, 1].map(|k| family.parts[k].expanded());
-        at_end(&in_z[0], &in_z[1], order, Contact::DegreeDrop)?;
+        at_end(&in_z[0], &in_z[1], order, Contact::DegreeDrop, 0)?;
     }
-    let ((de, d_odd), (ne, no)) = (d.axis_parts(), n.axis_parts());
-    let crossing = d_odd.times(&ne).minus(&de.times(&no));
     let quotients = [(&de, &ne), (&d_odd, &no)];
     let mut at_zero = 0;
     let mut at_infinity = 0;
     for mut zone in zones(&crossing)? {
+        let step = if zone.crosses { 2 * i64::from(zone.sign_before) } else { 0 };
         match zone.knob(&quotients)? {
             Knob::Finite(bracket) => {
                 if !zone.crosses {
                     found.unresolved.push(bracket.clone());
                 }
+                found.steps.push((bracket.clone(), step));
                 found.places.push(Place::within(bracket, zone.contact(period)));
             }
             Knob::Zero => {
                 at_zero += 1;
-                found.places.push(Place::exactly(RBig::ZERO, zone.contact(period)));
+                let place = Place::exactly(RBig::ZERO, zone.contact(period));
+                found.steps.push((place.bracket.clone(), step));
+                found.places.push(place);
             }
             Knob::Infinite => at_infinity += 1,
         }
@@ -170,11 +270,13 @@ fn quotient_place(d: &Enclosed, n: &Enclosed, i: usize, contact: Contact) -> Res
 }
 
 /// Where an enclosed polynomial of x > 0 may vanish.
-struct Zone {
+pub(super) struct Zone {
     /// x lies in here.
     x: Interval,
+    /// The sign of every member just below.
+    sign_before: i32,
     /// Whether every member changes its sign here.
-    crosses: bool,
+    pub(super) crosses: bool,
     /// The roots of the two bounds that make up the zone.
     roots: Vec<(usize, RealRoot)>,
     /// The square-free bounds.
@@ -232,7 +334,7 @@ impl Zone {
 }
 
 /// The zones of x > 0 in which some member of an enclosure vanishes, ascending.
-fn zones(p: &Enclosed) -> Result<Vec<Zone>, Trouble> {
+pub(super) fn zones(p: &Enclosed) -> Result<Vec<Zone>, Trouble> {
     if p.is_zero() {
         return Err(Trouble::Undecided);
     }
@@ -266,26 +368,26 @@ fn grouped(all: Vec<(usize, RealRoot)>, bounds: &[IntPoly; 2], simple: &[IntPoly
     let mut sign = bounds[0].lowest_sign();
     let mut group: Vec<(usize, RealRoot)> = Vec::new();
     let mut high: Option<Dyadic> = None;
-    let close = |group: Vec<(usize, RealRoot)>, crosses: bool| -> Option<Zone> {
+    let close = |group: Vec<(usize, RealRoot)>, sign_before: i32, after: i32| -> Option<Zone> {
         let x = group.iter().map(|(_, root)| root.bracket.clone()).reduce(|a, b| a.hull(&b))?;
-        Some(Zone { x, crosses, roots: group, bounds: simple.clone() })
+        Some(Zone { x, sign_before, crosses: after != sign_before, roots: group, bounds: simple.clone() })
     };
     for (which, root) in all {
         let gap = high.as_ref().filter(|high| **high < root.bracket.low);
         if let Some(next) = gap.and_then(|high| sign_before(&high.midpoint(&root.bracket.low))) {
-            found.extend(close(core::mem::take(&mut group), next != sign));
+            found.extend(close(core::mem::take(&mut group), sign, next));
             sign = next;
         }
         let end = root.bracket.high.clone();
         high = Some(high.map_or(end.clone(), |h| h.max(end)));
         group.push((which, root));
     }
-    found.extend(close(group, bounds[0].leading_sign() != sign));
+    found.extend(close(group, sign, bounds[0].leading_sign()));
     found
 }
 
 /// The count of roots right of the axis for every member of an enclosure in v, whose degree is certain.
-fn certain_count(p: &Enclosed) -> Result<HalfPlaneCount, Trouble> {
+pub(super) fn certain_count(p: &Enclosed) -> Result<HalfPlaneCount, Trouble> {
     let degree = p.degree();
     let decided = |i: usize| matches!(p.coefficient(i).sign(), Some(1 | -1));
     if !decided(degree) || !decided(0) || !is_clear_of_the_axis(p)? {
@@ -369,7 +471,8 @@ mod tests {
             given: Given::InZ,
             plant: BlockAt { above: p(plant.0), below: p(plant.1) },
             sensor: BlockAt { above: p(&[1]), below: p(&[1]) },
-            computation: &delay * &period,
+            computation: delay,
+            controller_delay: RBig::ZERO,
             period,
             plant_delay: RBig::ZERO,
             sensor_delay: RBig::ZERO,
@@ -469,6 +572,28 @@ mod tests {
         let (a, b) = (found(&typed), found(&image));
         assert_eq!((a.1, a.0.len()), (b.1, b.0.len()));
         assert!(a.0.iter().zip(&b.0).all(|(x, y)| (x.0 - y.0).abs() <= 1e-14 * y.0.abs() && x.1 == y.1));
+    }
+
+    #[test]
+    fn counting_by_crossings_agrees_with_counting_everywhere() {
+        // A lag with 20 periods of delay, a lead with a resonance, a direct path, an undamped plant, a double integrator.
+        let inputs = [
+            sampled((&[1], &[1]), (&[1], &[1, 1]), rational(1, 10), rational(20, 1)),
+            sampled((&[-9, 10], &[-2, 10]), (&[7, 1], &[40, 17, 3, 2]), rational(1, 7), rational(3, 2)),
+            sampled((&[1], &[1]), (&[2, 1], &[1, 1]), rational(1, 10), RBig::ZERO),
+            sampled((&[1], &[1]), (&[1], &[4, 0, 1]), rational(1, 5), rational(1, 2)),
+            sampled((&[-9, 10], &[-2, 10]), (&[1], &[0, 0, 1]), rational(1, 10), RBig::ZERO),
+        ];
+        for input in inputs {
+            let family = input.family(FIRST_BITS).expect("found");
+            let parts = family.on_the_axis();
+            let found = affine(&family, &parts[0], &parts[1], 1.0).expect("found");
+            let places = merge(found.places);
+            let counted: Vec<_> =
+                samples(&places).iter().map(|q| certain_count(&at(&parts, q)).expect("counted")).collect();
+            let last = counted[counted.len() - 1];
+            assert_eq!(counts_by_crossings(&places, &found.steps, counted[0], last), Some(counted));
+        }
     }
 
     #[test]

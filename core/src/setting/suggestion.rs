@@ -3,7 +3,8 @@
 use super::{Rounding, Scale};
 use crate::exact::Dyadic;
 use crate::project::Direction;
-use crate::ranges::pieces::Piece;
+use crate::ranges::pieces::{Border, Piece};
+use alloc::string::String;
 use alloc::vec::Vec;
 use dashu_int::IBig;
 use dashu_ratio::RBig;
@@ -17,6 +18,9 @@ const SUGGESTED_DIGITS: core::ops::RangeInclusive<i32> = 2..=6;
 /// Steps of the grid tried from a rounded end inward. The rounding itself is off by less than one; an open end that lies
 /// on the grid needs one more.
 const STEPS_INWARD: usize = 3;
+
+/// How one of several ranges was chosen.
+const SEVERAL: &str = "; of the permitted ranges it is the one that leaves most room on a logarithmic scale, where an open end, or one at zero, leaves 6 dB";
 
 /// What to do with the permitted ranges.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -36,22 +40,25 @@ pub struct Suggested {
     /// The knob there.
     pub knob: RBig,
     /// How it was chosen.
-    pub reason: &'static str,
+    pub reason: String,
 }
 
 /// Rounds permitted ranges inward and suggests a setting in the widest of them.
 pub fn suggest(scale: &Scale, pieces: &[Piece]) -> Advice {
     let ends: Vec<[Option<RBig>; 2]> = pieces.iter().map(|piece| ends(scale, piece)).collect();
     let mut order: Vec<usize> = (0..pieces.len()).collect();
-    order.sort_by(|a, b| width(&pieces[*b]).total_cmp(&width(&pieces[*a])));
-    let suggested = order.into_iter().find_map(|i| within(scale, &pieces[i], &ends[i]));
+    order.sort_by(|a, b| aim(&pieces[*b]).room.total_cmp(&aim(&pieces[*a]).room));
+    let mut suggested = order.into_iter().find_map(|i| within(scale, &pieces[i], &ends[i]));
+    if let Some(suggested) = suggested.as_mut().filter(|_| pieces.len() > 1) {
+        suggested.reason.push_str(SEVERAL);
+    }
     Advice { ends, suggested }
 }
 
 /// The settings of the grid just inside of a range, ascending.
 fn ends(scale: &Scale, piece: &Piece) -> [Option<RBig>; 2] {
     let (low, high) = if scale.rises() { (&piece.from, &piece.to) } else { (&piece.to, &piece.from) };
-    let inner = |border: &Option<crate::ranges::pieces::Border>, rounding: Rounding| {
+    let inner = |border: &Option<Border>, rounding: Rounding| {
         let border = border.as_ref()?;
         // Start at the safe side of the bracket.
         let knob = if (rounding == Rounding::Up) == scale.rises() { &border.bracket.high } else { &border.bracket.low };
@@ -86,17 +93,12 @@ pub(super) fn with_step(scale: &Scale, step: &RBig) -> Scale {
     Scale { step: Some(step.clone()), ..scale.clone() }
 }
 
-/// The width of a range as a ratio of its ends; infinite where an end is 0, infinite, or of the other sign.
-fn width(piece: &Piece) -> f64 {
-    match (&piece.from, &piece.to) {
-        (Some(a), Some(b)) if a.value() * b.value() > 0.0 => libm::fabs(libm::log(b.value() / a.value())),
-        _ => f64::INFINITY,
-    }
-}
+/// The factor from a single limit to the setting aimed at: 6 dB.
+const FROM_LIMIT: f64 = 2.0;
 
 /// A setting inside of one range.
 fn within(scale: &Scale, piece: &Piece, ends: &[Option<RBig>; 2]) -> Option<Suggested> {
-    let (target, reason) = target(piece);
+    let Aim { knob: target, reason, .. } = aim(piece);
     let wanted = scale.setting_f64(target).and_then(Dyadic::from_f64)?.to_rational();
     let holds =
         |setting: &RBig| scale.takes(setting) && scale.knob(setting).is_some_and(|knob| piece.surely_holds(&knob));
@@ -111,38 +113,53 @@ fn within(scale: &Scale, piece: &Piece, ends: &[Option<RBig>; 2]) -> Option<Sugg
         let order = if nearer_below { [below, above] } else { [above, below] };
         if let Some(setting) = order.into_iter().find(holds) {
             let knob = scale.knob(&setting)?;
-            return Some(Suggested { setting, knob, reason });
+            return Some(Suggested { setting, knob, reason: reason.into() });
         }
     }
     let setting = ends.iter().flatten().find(|setting| holds(setting))?.clone();
     let knob = scale.knob(&setting)?;
-    Some(Suggested { setting, knob, reason: "the only setting of the controller's grid in the widest permitted range" })
+    Some(Suggested {
+        setting,
+        knob,
+        reason: "the only setting of the controller's grid in the widest permitted range".into(),
+    })
 }
 
-/// The knob to aim at, and why.
-fn target(piece: &Piece) -> (f64, &'static str) {
+/// Where to aim in a range.
+struct Aim {
+    knob: f64,
+    /// The smaller of the logarithmic distances to the range's limits.
+    room: f64,
+    reason: &'static str,
+}
+
+/// Midway between two limits on a logarithmic scale, and at [`FROM_LIMIT`] of a single one: an end that is 0, infinite or
+/// of the other sign is none to keep away from, and what lies beyond is no gain. So a range with one limit leaves as much
+/// room as one with the ratio 4.
+fn aim(piece: &Piece) -> Aim {
     const HALF: &str = "half of the limit: 6 dB away from it (common practice, no source)";
     const DOUBLE: &str = "twice the limit: 6 dB away from it (common practice, no source)";
-    let value = |b: &crate::ranges::pieces::Border| b.value();
-    match (piece.from.as_ref().map(value), piece.to.as_ref().map(value)) {
-        (Some(a), Some(b)) if a * b > 0.0 => {
-            let middle = libm::copysign(libm::sqrt(a) * libm::sqrt(b), b);
-            let middle = if b < 0.0 { -libm::sqrt(-a) * libm::sqrt(-b) } else { middle };
-            (middle, "midway, on a logarithmic scale, between the ends of the widest permitted range")
-        }
-        (Some(a), Some(b)) if b >= -a => (0.5 * b, HALF),
-        (Some(a), Some(_)) => (0.5 * a, HALF),
-        (Some(a), None) if a > 0.0 => (2.0 * a, DOUBLE),
-        (None, Some(b)) if b < 0.0 => (2.0 * b, DOUBLE),
-        (None, Some(b)) if b > 0.0 => (0.5 * b, HALF),
-        _ => (1.0, "any setting above zero is permitted"),
+    let from_limit = |knob: f64, reason| Aim { knob, room: libm::log(FROM_LIMIT), reason };
+    let free = |knob: f64, reason| Aim { knob, room: f64::INFINITY, reason };
+    match (piece.from.as_ref().map(Border::value), piece.to.as_ref().map(Border::value)) {
+        (Some(a), Some(b)) if a * b > 0.0 => Aim {
+            knob: libm::copysign(libm::sqrt(a.abs()) * libm::sqrt(b.abs()), b),
+            room: 0.5 * libm::fabs(libm::log(b / a)),
+            reason: "midway, on a logarithmic scale, between the ends of the widest permitted range",
+        },
+        (Some(a), Some(b)) if b >= -a => from_limit(b / FROM_LIMIT, HALF),
+        (Some(a), Some(_)) => from_limit(a / FROM_LIMIT, HALF),
+        (Some(a), None) if a > 0.0 => from_limit(FROM_LIMIT * a, DOUBLE),
+        (None, Some(b)) if b < 0.0 => from_limit(FROM_LIMIT * b, DOUBLE),
+        (None, Some(b)) if b > 0.0 => from_limit(b / FROM_LIMIT, HALF),
+        (None, Some(_)) => free(-1.0, "any setting below zero is permitted"),
+        (_, None) => free(1.0, "any setting above zero is permitted"),
     }
 }
 
 /// The knob values that the controller can set, as a range of its own; None where it excludes none.
 pub fn controller_range(scale: &Scale) -> Option<Piece> {
     use crate::exact::Interval;
-    use crate::ranges::pieces::Border;
     use crate::record::Cause;
     let border = |knob: RBig| Border { bracket: Interval::around(&knob, 64), proven: true, cause: Cause::Controller };
     let (minimum, maximum) = match scale.direction {
@@ -170,9 +187,7 @@ pub fn controller_range(scale: &Scale) -> Option<Piece> {
 mod tests {
     use super::*;
     use crate::exact::Interval;
-    use crate::ranges::pieces::Border;
     use crate::record::Cause;
-    use alloc::string::String;
 
     fn rational(n: i64, d: u64) -> RBig {
         RBig::from_parts(n.into(), d.into())
@@ -211,6 +226,21 @@ mod tests {
         let gain = scale(Direction::Proportional, RBig::ONE, Some(rational(10, 1)));
         let advice = suggest(&gain, &[piece(rational(31, 1), rational(39, 1))]);
         assert_eq!((advice.ends, advice.suggested), ([[None, None]].into(), None));
+    }
+
+    #[test]
+    fn a_range_open_to_zero_counts_as_much_as_one_of_ratio_four() {
+        let gain = scale(Direction::Proportional, RBig::ONE, None);
+        let low = piece(RBig::ZERO, RBig::ONE);
+        let suggested = |low_end: i64, high_end: i64| {
+            suggest(&gain, &[low.clone(), piece(rational(low_end, 1), rational(high_end, 1))])
+                .suggested
+                .expect("a setting")
+        };
+        assert_eq!(suggested(10, 39).setting, rational(1, 2));
+        let wider = suggested(10, 50);
+        assert_eq!(wider.setting, rational(22, 1));
+        assert!(wider.reason.contains("most room"), "{}", wider.reason);
     }
 
     #[test]

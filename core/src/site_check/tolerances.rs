@@ -63,7 +63,7 @@ pub(super) fn allowed(project: &Project, at: &LoopAt, omega: f64) -> Result<Opti
             changed.quantities[i].value = written(&value);
             // At such a value the loop makes no sense: no machine is there.
             let Ok(model) = model::build(&changed) else { continue };
-            let there = LoopAt::new(Setup { model: &model }, at.knob.clone())?.open_loop_at(Complex::new(0.0, omega));
+            let there = LoopAt::new(Setup::from(&model), at.knob.clone())?.open_loop_at(Complex::new(0.0, omega));
             let ratio = there / here;
             let time = model.open_loop.dead_time.at(&at.knob).to_f64().value() - own;
             widen(&mut own_gain, libm::log(libm::hypot(ratio.re, ratio.im)));

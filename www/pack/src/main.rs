@@ -11,6 +11,7 @@ mod bundle;
 mod engine;
 mod page;
 mod places;
+mod printable;
 mod run;
 mod types;
 

@@ -9,6 +9,7 @@
 use crate::bundle::Scripts;
 use crate::hexadecimal;
 use crate::places::Places;
+use crate::printable::printable;
 use anyhow::{Context, Result, bail};
 use base64::Engine;
 use base64::engine::general_purpose::STANDARD;
@@ -61,10 +62,11 @@ pub(crate) fn assemble(places: &Places, parts: &Parts) -> Result<Page> {
     Ok(Page { html, program_hash })
 }
 
-/// An element that the browser does not run, with the bytes deflated, in base64.
+/// An element that the browser does not run, with the bytes deflated, as printable text.
 fn packed(id: &str, bytes: &[u8]) -> Result<String> {
-    let text = STANDARD.encode(deflate(bytes)?);
-    Ok(format!("<script type=\"application/octet-stream;base64\" id=\"{id}\">{text}</script>"))
+    let deflated = deflate(bytes)?;
+    let (count, text) = (deflated.len(), printable(&deflated));
+    Ok(format!("<script type=\"application/octet-stream\" id=\"{id}\" data-bytes=\"{count}\">{text}</script>"))
 }
 
 /// Puts `value` in the place of `mark`, which must be there once.

@@ -24,6 +24,14 @@ const FAR_ENDS: [f64; 8] = [12.0, 16.0, 20.0, 26.0, 34.0, 44.0, 56.0, 70.0];
 /// How often a gap between two samples is halved: down to 3e-5 of the knob.
 const HALVINGS: usize = 14;
 
+/// In the first halvings, a gap is doubtful too where the nearer neighbour's room is below this part of the change between
+/// the two, whatever lies beside them.
+const COARSE_HALVINGS: usize = 5;
+const TURNING: f64 = 0.5;
+
+/// Likewise for settling times, which jump by half an oscillation.
+const JUMPING: f64 = 2.0;
+
 /// Samples added to one course at most.
 const ADDED_CAP: usize = 160;
 
@@ -246,8 +254,12 @@ impl Judge<'_> {
         points: &mut Vec<(f64, Room)>,
     ) -> Result<(), ExactError> {
         let mut left_over = ADDED_CAP;
-        for _ in 0..HALVINGS {
-            let doubtful: Vec<bool> = (1..points.len()).map(|k| is_doubtful(points, k)).collect();
+        use crate::project::RequirementKind as Kind;
+        let nervous = matches!(self.limit.kind, Kind::SettlingTime2 | Kind::SettlingTime5);
+        let part = if nervous { JUMPING } else { TURNING };
+        for halving in 0..HALVINGS {
+            let near = |k: usize| halving < COARSE_HALVINGS && changes_much(points[k - 1].1, points[k].1, part);
+            let doubtful: Vec<bool> = (1..points.len()).map(|k| near(k) || goes_across(points, k)).collect();
             if !doubtful.contains(&true) {
                 break;
             }
@@ -329,7 +341,7 @@ impl Judge<'_> {
 /// Whether the figure may pass the limit between two neighbours on the same side of it, k − 1 and k: going on from either
 /// of them as it came from its other neighbour. So a turn is noticed, and a jump as well, behind which the figure goes on
 /// from another value.
-fn is_doubtful(points: &[(f64, Room)], k: usize) -> bool {
+fn goes_across(points: &[(f64, Room)], k: usize) -> bool {
     let (left, right) = (points[k - 1], points[k]);
     if left.1.is_met() != right.1.is_met() {
         return false;
@@ -343,4 +355,14 @@ fn is_doubtful(points: &[(f64, Room)], k: usize) -> bool {
         _ => false,
     };
     crosses(left, k.checked_sub(2).map(|i| &points[i])) || crosses(right, points.get(k + 1))
+}
+
+/// Whether the figure changes so much between two neighbours on one side of the limit that it may pass it between them.
+fn changes_much(left: Room, right: Room, part: f64) -> bool {
+    match (left, right) {
+        (Room::By(a), Room::By(b)) => (a >= 0.0) == (b >= 0.0) && (b - a).abs() * part > a.abs().min(b.abs()),
+        // Defined on one side only, yet both met or both not.
+        (Room::By(_), Room::Met(_)) | (Room::Met(_), Room::By(_)) => left.is_met() == right.is_met(),
+        (Room::Met(_), Room::Met(_)) => false,
+    }
 }

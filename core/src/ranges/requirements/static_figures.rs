@@ -1,5 +1,5 @@
-//! Static figures: errors on a step, a ramp and a parabola, and what a load leaves. Each is a ratio of two polynomials in
-//! the knob, |above(q)| ≤ limit·|below(q)|, so that the edges are exact.
+//! Static figures: errors on a step, a ramp and a parabola, each at the comparison, and what a load leaves. Each is a ratio
+//! of two polynomials in the knob, |above(q)| ≤ limit·|below(q)|, so that the edges are exact.
 
 use super::super::EDGE_BITS;
 use super::super::place::{Contact, Place, short_rational};
