@@ -4,7 +4,7 @@ import { angleText, counted, figure, listed, pairText, THIN_SPACE } from "./form
 import { html, type Content } from "./dom.ts";
 import { mathElement } from "./mathml.ts";
 import { kindOf } from "./requirements.ts";
-import type { Candidate, Derivation, DirectionStep, Formula, RangeCheck, RequirementStep, RouthRow, RouthTable } from "./types.ts";
+import type { Candidate, Derivation, DirectionStep, Edge, Formula, Plane, RangeCheck, RequirementStep, RouthRow, RouthTable } from "./types.ts";
 
 /** Digits to check a solution with: as many as a pocket calculator shows. */
 const DIGITS = 10;
@@ -87,7 +87,7 @@ export function derivationParts(derivation: Derivation, knob: string): HTMLEleme
           ...(axis.eliminated ? [equation(`Without ${knob}: `, axis.eliminated), candidateTable(axis.candidates, knob)] : []),
         ]
       : []),
-    ...edgeTable(derivation, knob),
+    ...edgeTable(derivation.edges, knob, "s"),
     heading("Every range, counted at one number"),
     rangeTable(derivation.ranges, knob),
     ...asymptoteParts(derivation, knob),
@@ -154,13 +154,14 @@ function candidateTable(candidates: readonly Candidate[], knob: string): HTMLEle
   );
 }
 
-function edgeTable({ edges }: Derivation, knob: string): HTMLElement[] {
+/** The edges with their brackets. */
+export function edgeTable(edges: readonly Edge[], knob: string, plane: Plane): HTMLElement[] {
   if (edges.length === 0) return [];
   const rows = edges.map((edge) => [
     edge.exact === null ? figure(edge.value, DIGITS) : `${figure(edge.value, DIGITS)} = ${edge.exact.replace("-", "−")} exactly`,
     edge.bracket.map((text) => text.replace("-", "−")).join(" … "),
     edge.omega === null ? "–" : figure(edge.omega, DIGITS),
-    happening(edge, "s"),
+    happening(edge, plane),
     edge.proven ? "proven" : "not proven",
   ]);
   return [html("p", {}, "The edges with the decimal numbers between which they surely lie:"), plainTable([knob, "bracket", "ω, rad/s", "what happens", ""], rows)];

@@ -74,7 +74,7 @@ export class Paper {
     const fields = [...byId("paper", HTMLElement).querySelectorAll<HTMLInputElement | HTMLSelectElement>("[data-part]")];
     for (const field of fields) {
       const place = partOf(field);
-      field.addEventListener("input", () => {
+      field.addEventListener(field instanceof HTMLSelectElement ? "change" : "input", () => {
         const { project } = this.#session.situation;
         const part = { ...project[place.section], [place.name]: field.value };
         this.#session.change({ ...project, [place.section]: part }, `${place.section} ${place.name}`);

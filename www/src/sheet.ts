@@ -3,7 +3,7 @@ import { answerSentence, plain, settingSentence, stabilitySentence, suggestionRe
 import { CAUTION } from "./caution.ts";
 import { chartOf, type ChartName } from "./charts.ts";
 import { fromNumber, printedText, roundDigits } from "./decimal.ts";
-import { derivationParts, formula } from "./derivation.ts";
+import { derivationParts, edgeTable, formula } from "./derivation.ts";
 import { byId, html, type Content } from "./dom.ts";
 import { withUnit } from "./format.ts";
 import type { Paper, SheetFindings } from "./paper.ts";
@@ -61,11 +61,17 @@ export function sheetParts(record: SheetFindings): HTMLElement[] {
     ...section("Root locus", html("figure", {}, copy("plane")), copy("landmarks", "table"), copy("landmarks-more")),
     ...(record.closedLoop ? section(byId("figures-heading", HTMLElement).textContent ?? "", copy("figures-verdict"), copy("figures-table"), copy("poles-table")) : []),
     ...responseParts(record),
-    ...section("Derivation for a check by hand", ...(derivation ? derivationParts(derivation, record.project.knob) : [html("p", {}, remark ?? "")])),
+    ...section("Derivation for a check by hand", ...(derivation ? derivationParts(derivation, record.project.knob) : [html("p", {}, remark ?? ""), ...edgesOf(record)])),
     ...section("Step-up plan", ...planParts(record)),
     ...(record.sheet.siteCheck ? section("Site check", ...checkParts(record, record.sheet.siteCheck)) : []),
     ...section("What this rests on", ...groundParts(record)),
   ];
+}
+
+/** The edges of a loop that has no derivation by hand. */
+function edgesOf(record: SheetFindings): HTMLElement[] {
+  const edges = record.stability.flatMap(({ to }) => (to ? [to] : []));
+  return edgeTable(edges, record.project.knob, record.timing.plane);
 }
 
 function section(title: string, ...content: readonly HTMLElement[]): HTMLElement[] {

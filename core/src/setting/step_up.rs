@@ -62,8 +62,8 @@ pub struct Ground<'a> {
 /// From the exact methods, when a cap is met.
 pub fn step_up(ground: &Ground<'_>, text: &StepUpText) -> Result<StepUpPlan, ExactError> {
     let without = |remark: &str| StepUpPlan { remarks: [remark.to_string()].into(), edge: None, rows: Vec::new() };
-    if ground.analysis.rational().is_none() {
-        return Ok(without("the step-up plan does not know loops with dead time or sampling yet"));
+    if ground.analysis.model.sampling.is_some() {
+        return Ok(without("the step-up plan does not know sampled loops yet"));
     }
     let ratio = match typed_number(&text.ratio) {
         Ok(ratio) => ratio.map_or(USUAL_RATIO, |ratio| ratio.to_f64().value()),

@@ -49,10 +49,10 @@ pub fn sheet(
 fn not_derived(model: &Loop) -> &'static str {
     if model.sampling.is_some() {
         "The derivation by hand is for continuous loops: the Routh array and the rules of the locus do not hold for a sampled \
-         one. Its ranges stand above, with their brackets."
+         one. Its edges are proven by other means:"
     } else {
         "The derivation by hand is for loops without dead time: with it the characteristic equation is no polynomial, and the \
-         Routh array does not apply. Its ranges stand above, with their brackets."
+         Routh array does not apply. Its edges are proven by other means:"
     }
 }
 

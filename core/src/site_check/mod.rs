@@ -65,7 +65,7 @@ pub fn site_check(project: &Project, analysis: &Analysis, scale: &Scale) -> Resu
             let swing = matching::swing(&at, own, Change { gain: 1.0, dead_time: 0.0 })?;
             let predicted = Predicted {
                 period: swing.map(|swing| swing.period),
-                overshoot: swing.map(|swing| swing.overshoot).or_else(|| overshoot_of(analysis, &at)),
+                overshoot: swing.map(|swing| swing.overshoot).or_else(|| overshoot_of(&at)),
                 setting: None,
             };
             (predicted, matching::from_step(&at, own, overshoot, seen.omega)?)
@@ -96,8 +96,8 @@ pub fn site_check(project: &Project, analysis: &Analysis, scale: &Scale) -> Resu
 }
 
 /// The overshoot of an answer without a second peak.
-fn overshoot_of(analysis: &Analysis, at: &LoopAt) -> Option<f64> {
-    analysis.rational().and_then(|_| at.figure(RequirementKind::Overshoot).value())
+fn overshoot_of(at: &LoopAt) -> Option<f64> {
+    at.figure(RequirementKind::Overshoot).value()
 }
 
 /// The observation in numbers.
