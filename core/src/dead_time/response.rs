@@ -24,8 +24,8 @@ const ORDER: usize = 22;
 /// The longest segment in that time.
 const LONGEST: f64 = 1.0;
 
-/// Segments before an answer is given up: a few tens of milliseconds.
-const SEGMENT_CAP: usize = 60_000;
+/// Segments before an answer is given up: a few milliseconds.
+const SEGMENT_CAP: usize = 8_000;
 
 /// Segments after which the rest is tried as a sum of the slow modes.
 const SEGMENTS_BEFORE_MODES: usize = 1500;
@@ -40,7 +40,7 @@ const CONTINUED: f64 = 1e-7;
 const POINTS_FOR_MODES: f64 = 40.0;
 
 /// Points of such a rest.
-const MODE_POINT_CAP: usize = 60_000;
+const MODE_POINT_CAP: usize = 8_000;
 
 /// The answer has settled when, over a whole dead time, state and outputs stay within this part of their largest distance from
 /// rest. The figures speak of parts in a hundred; peaks of 1e-9.

@@ -306,14 +306,14 @@ mod tests {
         at(&c.above[power]) / at(&c.below[0])
     }
 
-    fn made(above: &[IntPoly], below: &[IntPoly], method: Method, period: RBig) -> Controller {
+    fn made(above: &[IntPoly], below: &[IntPoly], method: Method, period: &RBig) -> Controller {
         let ratio = KnobRatio { above: above.to_vec(), below: below.to_vec() };
-        controller(&ratio, &Given::InS(method), &period, 192).expect("counted").expect("applies")
+        controller(&ratio, &Given::InS(method), period, 192).expect("counted").expect("applies")
     }
 
     /// K (s + 2)/(s (s + 5)) at h = 1/10.
     fn lead(method: Method) -> Controller {
-        made(&[p(&[]), p(&[2, 1])], &[p(&[0, 5, 1])], method, RBig::from_parts(1.into(), 10u8.into()))
+        made(&[p(&[]), p(&[2, 1])], &[p(&[0, 5, 1])], method, &RBig::from_parts(1.into(), 10u8.into()))
     }
 
     fn continuous(s: f64) -> f64 {

@@ -253,20 +253,23 @@ impl Judge<'_> {
         course: &Course,
         points: &mut Vec<(f64, Room)>,
     ) -> Result<(), ExactError> {
-        let mut left_over = ADDED_CAP;
+        let (mut left_over, mut left_for_change) = (ADDED_CAP, ADDED_CAP / 2);
         use crate::project::RequirementKind as Kind;
         let nervous = matches!(self.limit.kind, Kind::SettlingTime2 | Kind::SettlingTime5);
         let part = if nervous { JUMPING } else { TURNING };
         for halving in 0..HALVINGS {
             let near = |k: usize| halving < COARSE_HALVINGS && changes_much(points[k - 1].1, points[k].1, part);
-            let doubtful: Vec<bool> = (1..points.len()).map(|k| near(k) || goes_across(points, k)).collect();
+            let across: Vec<bool> = (1..points.len()).map(|k| goes_across(points, k)).collect();
+            let doubtful: Vec<bool> = (1..points.len()).map(|k| across[k - 1] || near(k)).collect();
             if !doubtful.contains(&true) {
                 break;
             }
             let mut finer = Vec::with_capacity(2 * points.len());
             for (k, point) in points.iter().enumerate() {
-                if k > 0 && doubtful[k - 1] && left_over > 0 {
-                    left_over -= 1;
+                // What only changes much has its own share, so that enough is left for what goes across.
+                let share = if k > 0 && across[k - 1] { &mut left_over } else { &mut left_for_change };
+                if k > 0 && doubtful[k - 1] && *share > 0 {
+                    *share -= 1;
                     let middle = 0.5 * (points[k - 1].0 + point.0);
                     finer.push((middle, self.room_of(course.kept(setup, middle)?.as_deref())));
                 }
