@@ -71,7 +71,7 @@ enum Method {
     /// A ratio of polynomials in s.
     Rational(Box<Rational>),
     /// With dead time, controlled continuously.
-    DeadTime(DeadTime),
+    DeadTime(Box<DeadTime>),
     /// With a sampled controller.
     Sampled(Sampled),
 }
@@ -93,7 +93,7 @@ impl Analysis {
             (findings, Method::Rational(Box::new(rational)))
         } else {
             let (findings, dead_time) = DeadTime::analyse(&model)?;
-            (findings, Method::DeadTime(dead_time))
+            (findings, Method::DeadTime(Box::new(dead_time)))
         };
         findings.notices.sort_by_key(|notice| notice.kind);
         Ok(Self { model, findings, method, samples: OnceCell::new(), lanes: RefCell::default() })
