@@ -121,7 +121,8 @@ function loopParts(record: SheetFindings): HTMLElement[] {
     html("div", { class: "together" }, block("C(s) = ", reading.controller), block("P(s) = ", reading.plant), block("H(s) = ", reading.sensor)),
     html("p", {}, facts.filter(Boolean).join(" ")),
     ...(rows.length > 0 ? [table(["quantity", "value", "unit", "tolerance", "meaning"], rows)] : []),
-    html("p", { class: "equation" }, formula(model.mathml)),
+    // With dead time or sampling the characteristic equation is no polynomial in s.
+    ...(record.sheet.derivation ? [html("p", { class: "equation" }, formula(model.mathml))] : []),
   ];
 }
 

@@ -167,13 +167,14 @@ impl Way<'_> {
             };
         }
         let quarter = START_PART * suggested.to_f64().value().abs();
-        let holding = self.ground.permitted.iter().find(|piece| piece.holds(self.last.1.to_f64().value()));
+        let at = |knob: &RBig| self.ground.permitted.iter().find(|piece| piece.holds(knob.to_f64().value()));
+        let holding = at(&self.last.1).or_else(|| at(suggested));
         let low = holding.and_then(|piece| self.ends(piece).0).map_or(0.0, |border| border.value().abs());
         let (wanted, inward) = if low > quarter { (low, true) } else { (quarter, false) };
-        let start = self.on_grid(self.sign() * wanted, inward).filter(|start| {
-            scale.takes(start)
-                && scale.knob(start).is_some_and(|knob| self.stable.surely_holds(&knob) && !knob.is_zero())
-        });
+        let start = self
+            .on_grid(self.sign() * wanted, inward)
+            .map(|start| self.taken(start))
+            .filter(|start| scale.knob(start).is_some_and(|knob| self.stable.surely_holds(&knob) && !knob.is_zero()));
         let start = match (start, unstable_below) {
             (Some(start), _) => start,
             // Nothing is permitted, or the quarter is unstable: a quarter of the way up from the edge.
@@ -201,6 +202,16 @@ impl Way<'_> {
         let larger_size = (scale.direction == Direction::Reciprocal) != inward;
         let upward = larger_size == (wanted > RBig::ZERO);
         Some(grid.rounded(&wanted, if upward { Rounding::Up } else { Rounding::Down }))
+    }
+
+    /// The setting, or the nearest one on the grid that the controller takes.
+    fn taken(&self, setting: RBig) -> RBig {
+        let scale = self.ground.scale;
+        match (&scale.minimum, &scale.maximum) {
+            (Some(minimum), _) if setting < *minimum => scale.rounded(minimum, Rounding::Up),
+            (_, Some(maximum)) if setting > *maximum => scale.rounded(maximum, Rounding::Down),
+            _ => setting,
+        }
     }
 
     /// The settings from the first to the last; None where they are too many.
@@ -365,6 +376,15 @@ mod tests {
         let bands: Vec<f64> = found.rows.iter().map(|row| row.setting.parse().expect("a number")).collect();
         assert!(bands.len() > 2 && bands.windows(2).all(|pair| pair[0] > pair[1]), "{bands:?}");
         assert_eq!(bands.last(), Some(&20.0));
+    }
+
+    #[test]
+    fn a_start_beyond_the_controllers_range_is_its_end() {
+        // A quarter of the suggestion would be a band far above 100 %.
+        let setting = r#"{"value": "20", "direction": "reciprocal", "factor": "100", "step": "1", "minimum": "5", "maximum": "100"}"#;
+        let lag = r#"{"controller": "K", "plant": "2/((s + 1)(0.5 s + 1)(0.2 s + 1))"}"#;
+        let found = plan(lag, setting, "");
+        assert_eq!((found.rows[0].setting.as_str(), found.rows.len() > 3), ("100", true), "{:?}", settings(&found));
     }
 
     #[test]
