@@ -194,7 +194,7 @@ def main():
             for complaint in complaints[:4]:
                 print(f"loop {number} {task['task']}: {complaint}\n  {json.dumps(task)}")
     print(totals, f"median {np.median(times):.2f} ms, worst {max(times):.1f} ms")
-    return 1 if totals["complaints"] else 0
+    return 1 if totals["complaints"] or totals["errors"] else 0
 
 
 if __name__ == "__main__":
