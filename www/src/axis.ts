@@ -21,7 +21,7 @@ export interface Axis {
 export interface Subject {
   /** Edges of the stability lane. */
   readonly stability: readonly number[];
-  /** Edges of the character lane. */
+  /** Edges of the character lane, and ends of the permitted ranges. */
   readonly character: readonly number[];
   /** The stable ranges; infinite ends allowed. */
   readonly stable: readonly (readonly [number, number])[];

@@ -264,9 +264,13 @@ function subjectOf(record: Findings, other: Findings | null, setting: number | n
   const otherStability = other ? onScale(other).stability : [];
   const open = record.scale.direction === "reciprocal" ? 0 : -Infinity;
   const ends = (ranges: readonly { to: Edge | null }[]): number[] => ranges.flatMap(({ to }) => (to ? [to.value] : []));
+  const permitted = record.permitted.knob.flatMap((range) => {
+    const span = limitSpan(record.scale, range);
+    return span ? [span.low, span.high].filter((end) => Number.isFinite(end) && end !== 0) : [];
+  });
   return {
     stability: [...ends(stability), ...ends(otherStability)],
-    character: ends(character),
+    character: [...ends(character), ...permitted],
     stable: stableSpans(stability).map(({ from, to }) => [from?.value ?? open, to?.value ?? Infinity]),
     setting,
     limits: [record.scale.minimum, record.scale.maximum],
