@@ -16,7 +16,7 @@ VANISHING = Fraction(1, 10**11)
 #: Degrees; angles are sums of arguments of differences.
 ANGLE = 1e-6
 #: Figures that jump where a crossing or a peak comes or goes: at an edge they need not be at the limit.
-JUMPING = {"settling-time-2", "settling-time-5", "peak-time", "delay-margin", "phase-margin", "bandwidth", "gain-margin-up", "gain-margin-down"}
+JUMPING = {"rise-time", "settling-time-2", "settling-time-5", "peak-time", "delay-margin", "phase-margin", "bandwidth", "gain-margin-up", "gain-margin-down"}
 #: Knob values that stand for "any".
 ANY_KNOB = (Fraction(37, 11), Fraction(-5, 7))
 
@@ -215,7 +215,9 @@ def complex_vanishes(p, s):
     """p(s) against the sum of the sizes of its terms."""
     unit = abs(s) or 1.0
     # Scaled, so that no power overflows.
-    terms = [float(Fraction(int(p[i]), int(p[p.degree()])) * Fraction(unit) ** (i - p.degree())) for i in range(p.degree() + 1)]
+    exact = [int(p[i]) * Fraction(unit) ** i for i in range(p.degree() + 1)]
+    largest = max(abs(term) for term in exact)
+    terms = [float(term / largest) for term in exact]
     z = s / unit
     value = sum(t * z**i for i, t in enumerate(terms))
     return abs(value) <= float(VANISHING) * sum(abs(t) for t in terms)
