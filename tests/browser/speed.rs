@@ -1,10 +1,12 @@
-//! How long an order-10 loop takes in the browser, printed in milliseconds:
+//! How long loops take in the browser, printed in milliseconds; of order 10 unless another is said:
 //!
 //! * the whole record without requirements (exact ranges, locus and landmarks, and their way out of WebAssembly), and
 //!   beside it numpy's batched `eigvals` for as many points of the locus;
 //! * the whole record with every requirement on, so all lanes; it should stay below 100 ms;
 //! * one step of the pointer on the page, from the key press until poles, responses, margins and figures stand in the
-//!   page and are laid out; it should stay below a frame, 16.7 ms.
+//!   page and are laid out; it should stay below a frame, 16.7 ms;
+//! * the whole record of an order-6 loop with dead time, which should stay below 100 ms, and with a sampled controller,
+//!   below 50 ms.
 //!
 //! `cargo bench --package stayband-tests --bench speed`; needs the built page, Chromium, and numpy in the Python that
 //! the variable PYTHON names. It measures and judges nothing: a slow machine is no fault of the program.
@@ -21,16 +23,30 @@ use std::io::Write;
 use std::path::Path;
 use std::process::{Command, Stdio};
 
+/// A flexible axis with two resonances and a filtered controller, of our own invention; so are the others.
+const AXIS: &str = r#"{
+    controller: "K (0.3 s + 1)/(tau s + 1)",
+    plant: "(s^2 + 0.4 s + 9)/(s (s + 1)(s + 3)(s + 8)(s + 20)(s^2 + 0.6 s + 16)(s^2 + 3 s + 60))",
+}"#;
+
+/// A belt behind a lag, of order 6 with dead time.
+const DELAYED: &str = r#"{
+    controller: "K (0.5 s + 1)/(tau s + 1)",
+    plant: "e^(-0.05 s)/((s + 1)(s + 2)(s + 5)(s^2 + s + 30))",
+}"#;
+
+/// The same order with a sampled controller.
+const SAMPLED: &str = r#"{
+    controller: "K (0.5 s + 1)/(tau s + 1)",
+    plant: "1/((s + 1)(s + 2)(s + 5)(s^2 + s + 30))",
+    sampling: { period: "0.02", delay: "1" },
+}"#;
+
 /// The project of a run, each with another time constant, so that nothing can be kept from the one before.
-///
-/// The loop is our own invention: a flexible axis with two resonances and a filtered controller.
 const PROJECT: &str = r#"
     const project = (run, requirements) => JSON.stringify({
         format: "stayband-project/1",
-        loop: {
-            controller: "K (0.3 s + 1)/(tau s + 1)",
-            plant: "(s^2 + 0.4 s + 9)/(s (s + 1)(s + 3)(s + 8)(s + 20)(s^2 + 0.6 s + 16)(s^2 + 3 s + 60))",
-        },
+        loop,
         quantities: [{ symbol: "tau", value: `0.02${run}` }],
         knob: "K",
         setting: { value: "100" },
@@ -138,7 +154,7 @@ const REQUIREMENTS: [(&str, &str); 22] = [
 
 fn main() {
     on_the_page(|page| async move {
-        let measured = measure(&page, MEASURE, RUNS, json!([])).await?;
+        let measured = measure(&page, AXIS, MEASURE, RUNS, json!([])).await?;
         let order = measured["record"]["model"]["order"].as_u64().context("an order")?;
         let points = measured["knobs"].as_array().map_or(0, Vec::len);
         say(&format!("order {order}, {points} points of the locus, {RUNS} runs in {}", browser_name(&page).await?));
@@ -148,22 +164,28 @@ fn main() {
         say(&format!("ratio: the whole record takes {:.2} of numpy's time", whole / numpy));
 
         let all: Value = REQUIREMENTS.iter().map(|(kind, limit)| json!({ "kind": kind, "limit": limit })).collect();
-        let lanes = measure(&page, MEASURE, FEW_RUNS, all.clone()).await?;
+        let lanes = measure(&page, AXIS, MEASURE, FEW_RUNS, all.clone()).await?;
         report("whole record with every requirement on (should be below 100 ms)", &lanes)?;
-        let steps = measure(&page, MEASURE_STEPS, RUNS, json!([])).await?;
+        let steps = measure(&page, AXIS, MEASURE_STEPS, RUNS, json!([])).await?;
         if steps["complete"] != json!(true) {
             bail!("the loop has no answer at the setting: {steps:#}");
         }
         report("one step of the pointer until everything is drawn (should be below 16.7 ms)", &steps)?;
-        let steps = measure(&page, MEASURE_STEPS, RUNS, all).await?;
+        let steps = measure(&page, AXIS, MEASURE_STEPS, RUNS, all).await?;
         report("the same with every requirement on", &steps)?;
+
+        let delayed = measure(&page, DELAYED, MEASURE, RUNS, json!([])).await?;
+        report("whole record of order 6 with dead time (should be below 100 ms)", &delayed)?;
+        let sampled = measure(&page, SAMPLED, MEASURE, RUNS, json!([])).await?;
+        report("whole record of order 6, sampled (should be below 50 ms)", &sampled)?;
         Ok(())
     });
 }
 
 /// What a script of this file measured.
-async fn measure(page: &page::Page, script: &str, runs: u32, requirements: Value) -> Result<Value> {
-    let measured = page.run_async(&format!("{PROJECT}{script}"), vec![runs.into(), requirements]).await?;
+async fn measure(page: &page::Page, of: &str, script: &str, runs: u32, requirements: Value) -> Result<Value> {
+    let script_of = format!("const loop = {of};{PROJECT}{script}");
+    let measured = page.run_async(&script_of, vec![runs.into(), requirements]).await?;
     if measured["times"].as_array().is_none_or(Vec::is_empty) || measured["record"].is_null() && script == MEASURE {
         bail!("no times: {measured:#}");
     }
