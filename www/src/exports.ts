@@ -5,6 +5,7 @@ import { drawingText } from "./drawing.ts";
 import { download, fileName } from "./file.ts";
 import { menu } from "./menu.ts";
 import { say } from "./message.ts";
+import type { Paper } from "./paper.ts";
 import type { Good, Session } from "./session.ts";
 import { answerText } from "./words.ts";
 
@@ -13,7 +14,7 @@ interface Export {
   readonly name: string;
   readonly ending: string;
   readonly type: string;
-  make(good: Good): string;
+  make(good: Good, paper: Paper): string | Promise<string>;
 }
 
 const CSV = "text/csv";
@@ -31,7 +32,13 @@ const picture = (name: string, ending: string, id: string): Export => ({
 });
 
 const EXPORTS: readonly Export[] = [
-  { name: "Record, JSON", ending: ".record.json", type: "application/json", make: ({ record }) => `${JSON.stringify(record, null, 2)}\n` },
+  {
+    name: "Record, JSON",
+    ending: ".record.json",
+    type: "application/json",
+    // With the sheet's part, which is worked out only when asked for.
+    make: async ({ record }, paper) => `${JSON.stringify((await paper.refresh()) ?? record, null, 2)}\n`,
+  },
   { name: "Locus, CSV", ending: ".locus.csv", type: CSV, make: ({ record, branches }) => csvText(locusTable(record, branches)) },
   { name: "Answers over time, CSV", ending: ".answers.csv", type: CSV, make: ({ record }) => csvText(answersTable(record)) },
   { name: "Open loop over frequency, CSV", ending: ".frequency.csv", type: CSV, make: ({ record }) => csvText(frequencyTable(record)) },
@@ -41,7 +48,7 @@ const EXPORTS: readonly Export[] = [
 ];
 
 /** Fills the menu of exports. */
-export function exportMenu(session: Session): void {
+export function exportMenu(session: Session, paper: Paper): void {
   // What is exported belongs together, so there is nothing to export while the project waits for its own answer.
   const withAnswer = (act: (good: Good) => void): void => {
     const { good, stale } = session.situation;
@@ -52,9 +59,13 @@ export function exportMenu(session: Session): void {
     { name: "Copy the answer as text", act: () => withAnswer((good) => void copy(answerText(good.record), "The answer is copied.")) },
     ...EXPORTS.map((one) => ({
       name: one.name,
-      act: () => withAnswer((good) => download(fileName(good.record.project.title, one.ending), one.type, one.make(good))),
+      act: () => withAnswer((good) => void save(one, good, paper)),
     })),
   ]);
+}
+
+async function save(one: Export, good: Good, paper: Paper): Promise<void> {
+  download(fileName(good.record.project.title, one.ending), one.type, await one.make(good, paper));
 }
 
 /** Copies a text, or shows it where the browser does not let the page copy. */

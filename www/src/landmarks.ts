@@ -90,6 +90,7 @@ export function realAxisWords(record: Findings, sign: KnobSign): string | null {
 export function landmarksTable(session: Session, plane: Plane): void {
   const body = byId("landmarks", HTMLTableSectionElement);
   const head = byId("landmarks-knob", HTMLElement);
+  const place = byId("landmarks-place", HTMLElement);
   const none = byId("landmarks-none", HTMLElement);
   const more = byId("landmarks-more", HTMLElement);
   let drawn = "";
@@ -102,6 +103,7 @@ export function landmarksTable(session: Session, plane: Plane): void {
     if (key === drawn) return;
     drawn = key;
     head.textContent = withUnit(settingName(record), unit && `(${unit})`);
+    place.textContent = record.timing.plane === "z" ? "z" : "s, 1/s";
     const rows = grouped(notable(record.landmarks, signs));
     body.replaceChildren(...rows.map((landmark) => tableRow(landmark, record, session)));
     none.hidden = rows.length > 0;

@@ -44,7 +44,7 @@ function start(): void {
   sheetPanel(paper);
   roomForPictures();
   tools(session, store);
-  exportMenu(session);
+  exportMenu(session, paper);
   projectList(session, store, new Comparison(session, (other) => ruler.compare(other)));
   keepingSigns(store);
   busySign(engine, session);

@@ -81,6 +81,11 @@ impl Partition {
         Self { places, ranges, at_places, with_meetings: false, proven }
     }
 
+    /// Whether what is said of a place is proven.
+    pub fn is_proven(&self, place: usize) -> bool {
+        self.proven[place]
+    }
+
     /// The verdict at a knob value; in the bracket of a place that of the place.
     pub fn verdict_at(&self, knob: &RBig) -> &Verdict {
         let below = |place: &Place| place.bracket.high.to_rational() < *knob;

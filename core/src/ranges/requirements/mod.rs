@@ -62,8 +62,11 @@ pub struct Ground<'a> {
 
 /// The stable ranges of a partition.
 pub fn stable_pieces(partition: &Partition) -> Vec<Piece> {
-    let border =
-        |i: usize| Border { bracket: partition.places[i].bracket.clone(), proven: true, cause: Cause::Stability };
+    let border = |i: usize| Border {
+        bracket: partition.places[i].bracket.clone(),
+        proven: partition.is_proven(i),
+        cause: Cause::Stability,
+    };
     let cuts = partition.stability_places();
     let mut pieces = Vec::new();
     for k in 0..=cuts.len() {
