@@ -179,6 +179,7 @@ impl Session {
             scale: scale.record(),
             requirements: judged.requirements,
             permitted: judged.permitted,
+            figures: judged.figures,
             margins: judged.margins,
             step: judged.step,
             load: judged.load,

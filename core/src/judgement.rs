@@ -10,7 +10,7 @@ use crate::ranges::permitted::{conflict, permitted};
 use crate::ranges::pieces::{Border, Piece};
 use crate::ranges::requirements::{Lane, Limit, at_least, check_limit, describe, meets, unit};
 use crate::record::{
-    Conflict, EdgeCurve, LimitEdge, LimitRange, LoadRecord, Margins, Notice, Permitted, PhaseCrossing,
+    Conflict, EdgeCurve, FigureRecord, LimitEdge, LimitRange, LoadRecord, Margins, Notice, Permitted, PhaseCrossing,
     RequirementRecord, StepRecord, Suggestion,
 };
 use crate::response::{Figure, LoopAt};
@@ -33,6 +33,8 @@ pub struct Judgement {
     pub requirements: Vec<RequirementRecord>,
     /// Where all agree.
     pub permitted: Permitted,
+    /// At the setting.
+    pub figures: Vec<FigureRecord>,
     /// At the setting.
     pub margins: Option<Margins>,
     /// At the setting.
@@ -114,9 +116,11 @@ pub fn judge(
     // What could not be found is not shown; the ranges are not touched by it.
     let margins = here.as_ref().and_then(|here| margins(here).ok().flatten());
     let load = here.as_ref().and_then(load);
+    let of_kind = |at: &LoopAt| RequirementKind::ALL.map(|kind| FigureRecord { kind, value: at.figure(kind).value() });
+    let figures = here.as_ref().map(|at| of_kind(at).to_vec()).unwrap_or_default();
     let sampled = here.as_ref().and_then(LoopAt::sampled);
     let notices = sampled.and_then(warnings::of_the_closed_loop).into_iter().collect();
-    Ok(Judgement { requirements, permitted, margins, step, load, notices })
+    Ok(Judgement { requirements, permitted, figures, margins, step, load, notices })
 }
 
 fn requirement(limit: &Limit, lane: &Lane, scale: &Scale, here: Option<&LoopAt>) -> RequirementRecord {

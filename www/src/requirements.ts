@@ -81,59 +81,9 @@ export function offerFor(kind: Kind, record: Findings | null): Offer {
   return { limit: typedText(limit), source: "this loop" };
 }
 
-/** The figure at the setting, in the kind's unit; null where the record has none without the requirement. */
+/** The figure at the setting, in the kind's unit; null where it is infinite or has no meaning for this loop. */
 export function figureOf(kind: RequirementKind, record: Findings): number | null {
-  const judged = record.requirements.find((requirement) => requirement.kind === kind);
-  if (judged) return judged.figure;
-  const { margins, step, load, closedLoop } = record;
-  const stable = closedLoop !== null && closedLoop.unstablePoles === 0 && closedLoop.axisPoles === 0;
-  const poles = stable ? closedLoop.poles : [];
-  const decibels = (factor: number | null | undefined): number | null => (factor ? 20 * Math.log10(factor) : null);
-  const smallest = (values: readonly number[]): number | null => (values.length === 0 ? null : Math.min(...values));
-  switch (kind) {
-    case "damping-ratio":
-      return smallest(poles.flatMap(({ dampingRatio }) => dampingRatio ?? []));
-    case "decay-rate":
-      return smallest(poles.map(({ re }) => -re));
-    case "natural-frequency-minimum":
-    case "natural-frequency-maximum":
-      return smallest(poles.map(({ naturalFrequency }) => naturalFrequency));
-    case "gain-margin-up":
-      return decibels(margins?.gainUp);
-    case "gain-margin-down":
-      return decibels(margins?.gainDown);
-    case "phase-margin":
-      return margins?.phase ?? null;
-    case "delay-margin":
-      return margins?.delay ?? null;
-    case "peak-sensitivity":
-      return margins?.peakSensitivity ?? null;
-    case "bandwidth":
-      return margins?.bandwidth ?? null;
-    case "overshoot":
-      return step?.overshoot ?? null;
-    case "undershoot":
-      return step?.undershoot ?? null;
-    case "rise-time":
-      return step?.riseTime ?? null;
-    case "settling-time-2":
-      return step?.settlingTime2 ?? null;
-    case "settling-time-5":
-      return step?.settlingTime5 ?? null;
-    case "peak-time":
-      return step?.peakTime ?? null;
-    case "step-error":
-      return step ? Math.abs(1 - step.finalValue) * 100 : null;
-    case "load-peak":
-      return load ? Math.abs(load.peak) : null;
-    case "load-final":
-      return load ? Math.abs(load.finalValue) : null;
-    case "controller-peak":
-      return step?.controllerPeak ?? null;
-    case "ramp-error":
-    case "parabola-error":
-      return null;
-  }
+  return record.figures.find((figure) => figure.kind === kind)?.value ?? null;
 }
 
 /** Several requirements in common use. */

@@ -557,6 +557,19 @@ export type Feedback = "negative" | "positive";
 export type Field = "controller" | "plant" | "sensor" | "deadTime" | "sampling" | "quantity" | "knob" | "setting" | "requirement" | "loop" | "document";
 
 /**
+ * A figure at the chosen setting.
+ */
+export type FigureRecord = {
+/**
+ * What it is.
+ */
+kind: RequirementKind,
+/**
+ * In the kind's unit. None where it is infinite, has no meaning for this loop, or could not be computed.
+ */
+value: number | null, };
+
+/**
  * A formula.
  */
 export type Formula = {
@@ -1131,6 +1144,10 @@ requirements: Array<RequirementRecord>,
  * Where stability and all requirements agree.
  */
 permitted: Permitted,
+/**
+ * What requirements can be put on, at the chosen setting, in the kinds' units; empty without one.
+ */
+figures: Array<FigureRecord>,
 /**
  * Margins and frequency response at the chosen setting. None without a setting, or where the loop is unstable there.
  */

@@ -57,6 +57,7 @@ export function record(ranges: StabilityRange[], parts: Partial<Findings> = {}):
     closedLoop: null,
     scale: { name: "K", unit: "", direction: "proportional", factor: 1, minimum: null, maximum: null, step: null },
     requirements: [],
+    figures: [],
     permitted: { knob: [], setting: [], proven: true, suggested: null, conflict: null },
     margins: null,
     step: null,

@@ -3,7 +3,7 @@ import test from "node:test";
 import { DEMOS } from "../src/demos.ts";
 import { GROUPS, KINDS, kindOf, nameInSentence, offerFor, PRESETS } from "../src/requirements.ts";
 import { REQUIREMENT_FACTS, type Project } from "../src/types.ts";
-import { pole, record } from "./record.ts";
+import { record } from "./record.ts";
 
 test("Every kind stands once, in a group that is listed", () => {
   assert.deepEqual(KINDS.map(({ kind }) => kind).sort(), Object.keys(REQUIREMENT_FACTS).sort());
@@ -12,8 +12,8 @@ test("Every kind stands once, in a group that is listed", () => {
 });
 
 test("The usual limit is offered, else one that the present loop just meets", () => {
-  const closedLoop = { knob: 37, poles: [pole(-8.047, 0, { dampingRatio: 1, naturalFrequency: 8.047 })], unstablePoles: 0, axisPoles: 0, name: "overdamped" as const };
-  const found = record([], { closedLoop });
+  const kinds = ["decay-rate", "natural-frequency-maximum"] as const;
+  const found = record([], { figures: kinds.map((kind) => ({ kind, value: 8.047 })) });
   assert.deepEqual(offerFor(kindOf("phase-margin"), found), { limit: "45", source: "usual" });
   assert.deepEqual(offerFor(kindOf("decay-rate"), found), { limit: "8", source: "this loop" });
   assert.deepEqual(offerFor(kindOf("natural-frequency-maximum"), found), { limit: "8.1", source: "this loop" });

@@ -101,7 +101,7 @@ test("The half that is shown is the one of the setting, else the one with stable
 
 test("Figures with a limit come first, with their verdict; others follow without", () => {
   const closedLoop = { ...loop([pole(-3, 4, { dampingRatio: 0.6, naturalFrequency: 5 })]), name: "underdamped" as const };
-  const rows = figureRows(record([], { closedLoop, requirements: [requirement({ kind: "phase-margin", limit: 45, figure: 41.26, unit: "°", met: false })] }));
+  const rows = figureRows(record([], { closedLoop, figures: [{ kind: "damping-ratio", value: 0.6 }], requirements: [requirement({ kind: "phase-margin", limit: 45, figure: 41.26, unit: "°", met: false })] }));
   assert.deepEqual(rows[0], { name: "Phase margin", here: "41.3°", limit: "at least 45°", met: false });
   assert.deepEqual(rows.find(({ name }) => name === "Damping ratio"), { name: "Damping ratio", here: "0.6", limit: "", met: null });
 });

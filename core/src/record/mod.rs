@@ -10,7 +10,9 @@ pub use locus::{
     Asymptotes, BothSigns, ClosedLoop, ClosedPole, EquivalentPole, KnobSign, Landmark, LandmarkKind, Point, Root,
     Segment, View,
 };
-pub use permitted::{Cause, Conflict, LimitEdge, LimitRange, Permitted, RequirementRecord, Scale, Suggestion};
+pub use permitted::{
+    Cause, Conflict, FigureRecord, LimitEdge, LimitRange, Permitted, RequirementRecord, Scale, Suggestion,
+};
 pub use ranges::{CharacterName, CharacterRange, Edge, EdgeKind, StabilityRange};
 pub use responses::{
     Curve, EdgeCurve, FrequencyResponse, GainCrossing, LoadRecord, Margins, PhaseCrossing, StepRecord,
@@ -66,6 +68,8 @@ pub struct Record {
     pub requirements: Vec<RequirementRecord>,
     /// Where stability and all requirements agree.
     pub permitted: Permitted,
+    /// What requirements can be put on, at the chosen setting, in the kinds' units; empty without one.
+    pub figures: Vec<FigureRecord>,
     /// Margins and frequency response at the chosen setting. None without a setting, or where the loop is unstable there.
     pub margins: Option<Margins>,
     /// The answer to a unit step of the command at the chosen setting. None likewise.

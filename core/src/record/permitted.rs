@@ -26,6 +26,17 @@ pub struct Scale {
     pub step: Option<f64>,
 }
 
+/// A figure at the chosen setting.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+#[serde(rename_all = "camelCase")]
+#[cfg_attr(feature = "types", derive(ts_rs::TS))]
+pub struct FigureRecord {
+    /// What it is.
+    pub kind: RequirementKind,
+    /// In the kind's unit. None where it is infinite, has no meaning for this loop, or could not be computed.
+    pub value: Option<f64>,
+}
+
 /// An end of a requirement's or a permitted range.
 #[derive(Clone, Debug, PartialEq, Serialize)]
 #[serde(rename_all = "camelCase")]
