@@ -2,7 +2,7 @@
 //!
 //! On s = jω, q is real where h(ω) = Im((A·e^(jωT) + B0)·conj B1) vanishes, and then q = −Re(…)/|B1|²; where h falls
 //! through zero two poles more are unstable as q grows, where it rises two fewer. Every zero of h is isolated
-//! ([`super::isolation`]) and proven, and q enclosed, with the signs of h in integer arithmetic.
+//! (`isolation.rs`) and proven, and q enclosed, with the signs of h in integer arithmetic.
 //!
 //! That finitely many suffice: h = |A·B1|·sin θ + c with the phase θ of A·conj B1·e^(jωT). Beyond a frequency W, found from
 //! polynomial inequalities, θ grows and outweighs c, so that every further crossing adds two unstable poles as |q| grows.

@@ -156,7 +156,8 @@ impl Ratio {
         Ok(sum.delayed(dead_time.clone()))
     }
 
-    /// As [`Self::polynomials`], without the reason where the numbers are too large.
+    /// Numerator and denominator over the integers, multiplied out, common factors kept. None where the numbers are too
+    /// large.
     #[must_use]
     pub fn multiplied_out(&self) -> Option<(KnobPolynomial, KnobPolynomial)> {
         self.polynomials().ok()
