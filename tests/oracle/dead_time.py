@@ -31,11 +31,23 @@ def value(coefficients, s):
     return np.polynomial.polynomial.polyval(s, np.array(coefficients, dtype=float))
 
 
+def squared(coefficients):
+    """|p(jω)|² as a polynomial in ω², lowest power first."""
+    p = np.array(coefficients, dtype=float)
+    turned = p * np.array([1, 1j, -1, -1j])[np.arange(len(p)) % 4]
+    product = np.polynomial.polynomial.polymul(turned, turned.conj())
+    return product.real[::2]
+
+
 def contour_frequencies(a, b, dead_time):
     """Frequencies from 0 to where A outweighs B three times for good, fine beside every root of A and in ωT."""
     roots = np.polynomial.polynomial.polyroots(np.array(a, dtype=float))
     top = 10.0 * max(1e-3, np.abs(roots).max(initial=0))
-    while np.abs(value(b, 1j * top)) * 3 > np.abs(value(a, 1j * top)) or top * dead_time < 1:
+    # Where |A| = 3·|B|, squared: beyond the last such frequency A outweighs B for good.
+    weight = np.polynomial.polynomial.polysub(squared(a), 9 * squared(b))
+    even = np.polynomial.polynomial.polyroots(weight)
+    top = max(top, 1.1 * np.sqrt(np.abs(even)).max(initial=0))
+    while top * dead_time < 1:
         top *= 1.5
     if top * dead_time / 0.02 > POINTS_CAP:
         return None

@@ -71,7 +71,7 @@ impl Partition {
         // Of a family of higher degree in the knob an irrational touching edge is told from a near miss by 100 bits, not by
         // proof.
         let affine = family.knob_degree() < 2;
-        let touching = |i: usize| ranges[i].half_plane == ranges[i + 1].half_plane;
+        let touching = |i: usize| places[i].is_of_stability() && ranges[i].half_plane == ranges[i + 1].half_plane;
         let proven = places.iter().enumerate().map(|(i, p)| affine || !touching(i) || p.exact.is_some()).collect();
         Ok(Self { places, ranges, at_places, with_meetings, proven })
     }
@@ -139,7 +139,7 @@ impl Partition {
     }
 
     fn is_stability_place(&self, i: usize) -> bool {
-        self.places[i].contacts.iter().any(|c| !matches!(c, Contact::RealMeeting { .. }))
+        self.places[i].is_of_stability()
     }
 
     /// The record of a place.

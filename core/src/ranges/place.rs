@@ -62,6 +62,11 @@ impl Place {
         }
     }
 
+    /// Whether poles reach the axis, the origin or infinity here.
+    pub fn is_of_stability(&self) -> bool {
+        self.contacts.iter().any(|contact| !matches!(contact, Contact::RealMeeting { .. }))
+    }
+
     /// Inside of a bracket.
     pub fn within(bracket: Interval, contact: Contact) -> Self {
         Self { bracket, exact: None, contacts: [contact].into() }
