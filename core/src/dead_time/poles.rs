@@ -71,7 +71,7 @@ pub fn right_of(f: &Quasi, line: f64) -> Result<Vec<Root>, DeadTimeError> {
 }
 
 /// The poles that shape the answers: the rightmost and all that fade at most three times as fast, by real part from the
-/// right; where one is unstable, all up to the axis.
+/// right; where one is unstable, all up to the axis. Where thousands fade like that, only those found with the rightmost.
 ///
 /// Far to the left a loop with dead time has infinitely many poles, of ever smaller damping ratio and without weight.
 ///
@@ -83,7 +83,7 @@ pub fn dominant(f: &Quasi) -> Result<Vec<Root>, DeadTimeError> {
         let found = right_of(f, line)?;
         if let Some(first) = found.first() {
             let wanted = if first.re < 0.0 { DOMINANT * first.re } else { 0.0 };
-            let all = if wanted < line { right_of(f, wanted)? } else { found };
+            let all = if wanted < line { right_of(f, wanted).unwrap_or(found) } else { found };
             return Ok(all.into_iter().filter(|root| root.re >= wanted).collect());
         }
         line *= 2.0;
