@@ -112,8 +112,14 @@ function edgeLines(record: Findings, edge: Edge): ReasonLine[] {
     ...(isPlain(record.scale) ? [] : [{ term: "knob there", text: `${knob} = ${withUnit(figure(edge.value, 6), knobUnitOf(record))}` }]),
     ...(edge.exact === null ? [] : [{ term: "exact value", text: exactText(knob, edge.exact) }]),
     { term: isPlain(record.scale) ? "lies between" : "knob between", text: edge.bracket.map(bracketText).join(" and ") },
-    { term: "proof", text: edge.proven ? "proven by exact arithmetic" : "not proven; computed in floating point" },
+    { term: "proof", text: edge.proven ? provenBy(record) : "not proven; computed in floating point" },
   ];
+}
+
+/** Exponentials have no exact numbers: those of dead time and sampling are enclosed. */
+function provenBy({ timing }: Findings): string {
+  const enclosed = timing.sampling !== null || timing.deadTime > 0 || timing.deadTimePerKnob > 0;
+  return enclosed ? "proven by rigorous enclosures" : "proven by exact arithmetic";
 }
 
 /** The ranges below and above an edge, as the lane says them. */

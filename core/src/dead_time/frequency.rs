@@ -14,7 +14,7 @@ use crate::exact::scaled::Scaled;
 use crate::exact::{ExactError, IntPoly};
 use crate::ranges::Contact;
 use crate::record::{FrequencyResponse, GainCrossing, PhaseCrossing};
-use crate::response::OpenLoop;
+use crate::response::{OpenLoop, drawn};
 use alloc::vec::Vec;
 use core::cell::OnceCell;
 use core::f64::consts::PI;
@@ -337,27 +337,7 @@ impl DelayFrequency {
             .collect();
         omegas.sort_by(f64::total_cmp);
         omegas.dedup();
-        let mut response = FrequencyResponse::default();
-        let mut last: Option<f64> = None;
-        for omega in omegas {
-            let l = self.undelayed(omega);
-            let magnitude = 20.0 * libm::log10(l.modulus());
-            if !magnitude.is_finite() {
-                continue;
-            }
-            let raw = l.argument().to_degrees();
-            // Continuous from point to point; the start lies in (−360, 0]. The dead time turns without ambiguity.
-            let phase = match last {
-                None if raw > 0.0 => raw - 360.0,
-                None => raw,
-                Some(before) => raw - 360.0 * libm::round((raw - before) / 360.0),
-            };
-            last = Some(phase);
-            response.omega.push(omega);
-            response.magnitude.push(magnitude);
-            response.phase.push(phase - (omega * self.seconds).to_degrees());
-        }
-        Ok(response)
+        Ok(drawn(omegas, |omega| self.undelayed(omega), |omega| -(omega * self.seconds).to_degrees()))
     }
 }
 

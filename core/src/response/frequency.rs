@@ -5,7 +5,7 @@
 //! gain, or stable in several ranges, gain margins are the distances to the nearest crossing in each direction.
 
 use super::axis::AxisRatio;
-use super::open_loop::OpenLoop;
+use super::open_loop::{OpenLoop, drawn};
 use crate::exact::gcd::{gcd, squarefree_part, without_common_roots};
 use crate::exact::real_roots::positive_roots;
 use crate::exact::scaled::Scaled;
@@ -185,28 +185,11 @@ impl OpenLoop for Frequency {
         omegas.extend(crossings.chain(resonances).filter(|w| *w > range.0 && w.is_finite()));
         omegas.sort_by(f64::total_cmp);
         omegas.dedup();
-        let mut response = FrequencyResponse::default();
-        let mut last: Option<f64> = None;
-        for omega in omegas {
+        let open = |omega: f64| {
             let s = Complex::new(0.0, omega);
-            let l = self.above.value(s).over(self.below.value(s)).to_complex();
-            let magnitude = 20.0 * libm::log10(l.modulus());
-            if !magnitude.is_finite() {
-                continue;
-            }
-            let raw = l.argument().to_degrees();
-            // Continuous from point to point; the start lies in (−360, 0].
-            let phase = match last {
-                None if raw > 0.0 => raw - 360.0,
-                None => raw,
-                Some(before) => raw - 360.0 * libm::round((raw - before) / 360.0),
-            };
-            last = Some(phase);
-            response.omega.push(omega);
-            response.magnitude.push(magnitude);
-            response.phase.push(phase);
-        }
-        Ok(response)
+            self.above.value(s).over(self.below.value(s)).to_complex()
+        };
+        Ok(drawn(omegas, open, |_| 0.0))
     }
 }
 

@@ -18,5 +18,5 @@ pub use frequency::Frequency;
 pub use loop_at::{Answer, LoopAt, Setup};
 pub use modes::{Modes, Peaks};
 pub use motion::Motion;
-pub use open_loop::OpenLoop;
+pub use open_loop::{OpenLoop, drawn};
 pub use trace::{Trace, TracePoint};

@@ -3,6 +3,7 @@
 use crate::exact::ExactError;
 use crate::record::{FrequencyResponse, GainCrossing, PhaseCrossing};
 use alloc::vec::Vec;
+use nalgebra::{Complex, ComplexField};
 
 /// The open loop L of a stable closed loop, over the frequency ω in rad/s. The smallest margin over all crossings counts.
 pub trait OpenLoop {
@@ -69,4 +70,33 @@ pub trait OpenLoop {
     fn delay_margin(&self) -> Result<f64, ExactError> {
         Ok(self.gain_crossings()?.into_iter().map(|c| c.delay_margin).fold(f64::INFINITY, f64::min))
     }
+}
+
+/// The curves of L(jω) at ascending ω, the phase continuous from point to point; it starts in (−360, 0]. `turned` is what a
+/// dead time adds to the phase of `value`, degrees, without ambiguity.
+pub fn drawn(
+    omegas: impl IntoIterator<Item = f64>,
+    value: impl Fn(f64) -> Complex<f64>,
+    turned: impl Fn(f64) -> f64,
+) -> FrequencyResponse {
+    let mut response = FrequencyResponse::default();
+    let mut last: Option<f64> = None;
+    for omega in omegas {
+        let l = value(omega);
+        let magnitude = 20.0 * libm::log10(l.modulus());
+        if !magnitude.is_finite() {
+            continue;
+        }
+        let raw = l.argument().to_degrees();
+        let phase = match last {
+            None if raw > 0.0 => raw - 360.0,
+            None => raw,
+            Some(before) => raw - 360.0 * libm::round((raw - before) / 360.0),
+        };
+        last = Some(phase);
+        response.omega.push(omega);
+        response.magnitude.push(magnitude);
+        response.phase.push(phase + turned(omega));
+    }
+    response
 }
